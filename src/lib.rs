@@ -1,0 +1,7 @@
+//! Scalewright: a small language for scale analysis.
+
+pub mod diagnostic;
+pub mod limits;
+pub mod number;
+pub mod source;
+pub mod syntax;

@@ -1,0 +1,32 @@
+//! Every limit of the program, in one place. Meeting one is an ordinary error
+//! (`too-deep`, `too-long`, `too-large`), never a panic or a hang.
+
+/// Largest script, in bytes. A longer one is `too-long`.
+pub const SCRIPT_BYTES: usize = 1 << 20;
+
+/// Deepest nesting of brackets and of expressions. Walking and dropping a tree of
+/// this depth is safe on a small stack.
+pub const NESTING: usize = 200;
+
+/// Largest number of tokens in one statement outside a `phenomenon`.
+pub const STATEMENT_TOKENS: usize = 4_000;
+
+/// Largest numerator and denominator of an exponent. Sums and products of two such
+/// exponents fit 64 bits with room to spare, so plain arithmetic on them is exact.
+pub const EXPONENT: i64 = 1_000_000;
+
+/// Largest size of an exact number, in bits of its numerator or denominator (about
+/// 1,200 decimal digits).
+pub const NUMBER_BITS: u64 = 4_096;
+
+/// Largest power of ten of a literal, either way: what a floating-point size can hold.
+pub const LITERAL_DECADES: i64 = 300;
+
+/// Most terms that one equation may have once its products are multiplied out.
+pub const TERMS: usize = 2_000;
+
+/// Highest whole power of a sum that is multiplied out.
+pub const SUM_POWER: i64 = 12;
+
+/// Most modules and files that one script may bring in.
+pub const MODULES: usize = 200;
