@@ -5,3 +5,4 @@ pub mod limits;
 pub mod number;
 pub mod source;
 pub mod syntax;
+pub mod units;
