@@ -3,5 +3,6 @@
 pub mod diagnostic;
 pub mod limits;
 pub mod number;
+pub mod polyhedra;
 pub mod source;
 pub mod syntax;
