@@ -1,0 +1,3 @@
+//! The tests of the public library, in one binary; folders by what they prove.
+
+mod polyhedra;
