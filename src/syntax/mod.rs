@@ -1,4 +1,9 @@
 //! From text to syntax tree and back: tokens (`token`), the tree (`ast`), the parser
-//! (`parser`) and the printer (`print`).
+//! (`parser`), the printer (`print`) and what can be wrong (`errors`).
 
 pub mod ast;
+pub mod errors;
+pub mod names;
+pub mod parser;
+pub mod token;
+mod unit_run;

@@ -1,0 +1,202 @@
+//! From a fault of the parser to an error with its place in the text.
+
+use crate::source::Span;
+use crate::syntax::errors::{Mend, SyntaxError};
+use crate::syntax::parser::rule::{Fault, FaultKind, span_of_tokens};
+use crate::syntax::parser::words::{Speller, begins_line};
+use crate::syntax::token::{Kind, Kinds, Token};
+
+/// The tokens of a statement in the script that they come from.
+pub(super) struct Place<'t, 's> {
+    /// The tokens of the statement.
+    pub(super) tokens: &'t [Token<'s>],
+    /// Whether the script ends with them.
+    pub(super) is_last: bool,
+    /// The whole text.
+    pub(super) text: &'s str,
+}
+
+/// The error that a fault is.
+pub(super) fn explain(fault: Fault, place: &Place<'_, '_>, speller: &mut Speller) -> SyntaxError {
+    let tokens = place.tokens;
+    let end = fault.end.min(tokens.len());
+    let span = span_of_tokens(&tokens[fault.start.min(end)..end]);
+    match fault.kind {
+        FaultKind::Expected(expected) => match tokens.get(fault.start) {
+            None => unfinished(expected, place),
+            Some(_) => unexpected(fault.start, expected, place, speller),
+        },
+        FaultKind::TooLarge => SyntaxError::TooLarge { span },
+        FaultKind::UnitAfterQuotient => unit_after_quotient(&tokens[fault.start..end], place.text),
+        FaultKind::UnlikeOrders(above, below) => SyntaxError::UnlikeOrders { span, above, below },
+        FaultKind::SumAsSize => SyntaxError::SumAsSize { span },
+        FaultKind::OnlyNumber(only) => SyntaxError::OnlyNumber { span, only },
+    }
+}
+
+/// What a word that begins no statement may mean.
+pub(super) fn mend_of_stray(token: &Token<'_>, is_expression: bool, speller: &mut Speller) -> Mend {
+    if token.kind == Kind::Name
+        && let Some((_, word)) = speller.nearest(token.text, Kind::begins_statement)
+    {
+        return Mend::Word(word);
+    }
+    match is_expression {
+        true => Mend::Show,
+        false => Mend::None,
+    }
+}
+
+fn unfinished(expected: Kinds, place: &Place<'_, '_>) -> SyntaxError {
+    let (span, behind) = match place.tokens.last() {
+        Some(last) => (end_of(last), last.text.to_owned()),
+        None => (Span::default(), String::new()),
+    };
+    SyntaxError::Unfinished {
+        span,
+        behind,
+        expected,
+        is_last: place.is_last,
+    }
+}
+
+/// The empty span behind a token.
+pub(super) fn end_of(token: &Token<'_>) -> Span {
+    Span {
+        start: token.span.end,
+        ..token.span
+    }
+}
+
+fn unexpected(
+    at: usize,
+    expected: Kinds,
+    place: &Place<'_, '_>,
+    speller: &mut Speller,
+) -> SyntaxError {
+    if let Some(error) = unit_apart(at, place) {
+        return error;
+    }
+    let found = &place.tokens[at];
+    SyntaxError::Unexpected {
+        span: found.span,
+        found: found.text.to_owned(),
+        expected,
+        mend: mend(at, expected, place, speller),
+    }
+}
+
+/// A name that begins the line behind a bare number is a unit gone astray.
+fn unit_apart(at: usize, place: &Place<'_, '_>) -> Option<SyntaxError> {
+    let found = &place.tokens[at];
+    let number = place.tokens.get(at.checked_sub(1)?)?;
+    let is_apart = found.kind == Kind::Name
+        && number.kind == Kind::Number
+        && begins_line(place.tokens, at, place.text);
+    if !is_apart {
+        return None;
+    }
+    let start = found.span.start as usize;
+    let rest = place.text.get(start..)?;
+    let len = rest.find(char::is_whitespace).unwrap_or(rest.len());
+    Some(SyntaxError::UnitApart {
+        unit: Span::new(found.span.file, start, start + len),
+        text: rest[..len].to_owned(),
+        number: number.span,
+    })
+}
+
+fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller) -> Mend {
+    let found = &place.tokens[at];
+    if found.kind == Kind::Name
+        && let Some((_, word)) = speller.nearest(found.text, |kind| {
+            expected.has(kind) || expected.has_end() && kind.begins_statement()
+        })
+    {
+        return Mend::Word(word);
+    }
+    if found.kind == Kind::Dot && place.tokens.get(at + 1).is_some_and(is_number) {
+        return Mend::Instead("a digit before the point, as in `0.5`");
+    }
+    if at == 0 {
+        return Mend::None;
+    }
+    let before = &place.tokens[at - 1];
+    if before.kind == Kind::Nabla {
+        return Mend::Instead("`grad(q)`, `div(V)` or `laplacian(q)`");
+    }
+    if expected.has(Kind::Star) && begins_operand(found) && ends_operand(before) {
+        return match begins_line(place.tokens, at, place.text) {
+            true => Mend::Show,
+            false => product(at, place),
+        };
+    }
+    Mend::None
+}
+
+/// The product of what stands before a token and the token; `2 sin(phi)` reads as a
+/// number with the unit `sin`, so there the product sign belongs before the unit.
+fn product(at: usize, place: &Place<'_, '_>) -> Mend {
+    let text = |idx: usize| place.tokens[idx].text.to_owned();
+    match place.tokens[at - 1].kind {
+        Kind::Unit if at >= 2 => Mend::Product(text(at - 2), text(at - 1)),
+        _ => Mend::Product(text(at - 1), text(at)),
+    }
+}
+
+fn is_number(token: &Token<'_>) -> bool {
+    token.kind == Kind::Number
+}
+
+fn begins_operand(token: &Token<'_>) -> bool {
+    matches!(
+        token.kind,
+        Kind::Name | Kind::Number | Kind::LeftBracket | Kind::Partial | Kind::Nabla
+    )
+}
+
+fn ends_operand(token: &Token<'_>) -> bool {
+    matches!(
+        token.kind,
+        Kind::Name | Kind::Number | Kind::Unit | Kind::RightBracket | Kind::Superscript
+    )
+}
+
+/// The two readings of `1/2 m`, from the tokens of the product that holds it.
+fn unit_after_quotient(tokens: &[Token<'_>], text: &str) -> SyntaxError {
+    let quotient = tokens.windows(4).find(|four| {
+        let kinds = [four[0].kind, four[1].kind, four[2].kind, four[3].kind];
+        kinds == [Kind::Number, Kind::Slash, Kind::Number, Kind::Unit]
+    });
+    let quotient = quotient.unwrap_or(tokens);
+    let written = span_of_tokens(quotient);
+    let (as_number, with_brackets) = match quotient {
+        [above, _, below, unit] => (
+            short_quotient(above.text, below.text).map(|number| format!("{number} {}", unit.text)),
+            format!("{}/({} {})", above.text, below.text, unit.text),
+        ),
+        _ => (None, format!("({})", slice(text, written))),
+    };
+    SyntaxError::UnitAfterQuotient {
+        span: written,
+        as_number,
+        with_brackets,
+    }
+}
+
+fn slice(text: &str, span: Span) -> &str {
+    text.get(span.start as usize..span.end as usize)
+        .unwrap_or("")
+}
+
+/// The quotient of two small whole numbers as a decimal, where that ends soon.
+fn short_quotient(above: &str, below: &str) -> Option<String> {
+    let (above, below): (u32, u32) = (above.parse().ok()?, below.parse().ok()?);
+    if above > 10_000 || below == 0 {
+        return None;
+    }
+    let thousandths = above * 1_000;
+    (thousandths.is_multiple_of(below))
+        .then(|| f64::from(thousandths / below) / 1_000.0)
+        .map(|number| number.to_string())
+}

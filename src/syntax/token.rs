@@ -1,0 +1,366 @@
+//! From text to tokens: the lexer.
+//!
+//! Gives every token with its kind, its text and its place, and the comments apart.
+//! Units are read here, since only the text right behind a number (or behind `in`)
+//! tells a unit from a name. A character that no script has is reported here and gives
+//! no token. What a number or a unit is worth is left to others.
+
+use logos::Logos;
+
+use crate::source::{FileId, Span};
+use crate::syntax::ast::Comment;
+use crate::syntax::errors::SyntaxError;
+use crate::syntax::unit_run::{StartOfUnit, exponent_length, unit_length};
+
+/// A token.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Token<'s> {
+    /// What it is.
+    pub kind: Kind,
+    /// How it is written.
+    pub text: &'s str,
+    /// Where it stands.
+    pub span: Span,
+}
+
+/// What the lexer gives.
+#[derive(Debug, Default)]
+pub struct Lexed<'s> {
+    /// The tokens in order.
+    pub tokens: Vec<Token<'s>>,
+    /// The comments in order.
+    pub comments: Vec<Comment>,
+    /// What could not be read.
+    pub errors: Vec<SyntaxError>,
+}
+
+/// Reads a text.
+pub fn read(text: &str, file: FileId) -> Lexed<'_> {
+    let mut reader = Reader {
+        file,
+        lexer: Kind::lexer(text),
+        out: Lexed::default(),
+        unit_wanted: false,
+    };
+    if text.starts_with(BYTE_ORDER_MARK) {
+        reader.lexer.bump(BYTE_ORDER_MARK.len_utf8());
+    }
+    reader.read();
+    reader.out
+}
+
+const BYTE_ORDER_MARK: char = '\u{feff}';
+
+/// The kinds of token: first the statement keywords, then the clause words, then the rest.
+#[derive(Logos, Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+#[logos(skip r"[ \t\r\n\f]+")]
+#[rustfmt::skip]
+#[allow(missing_docs)] // each keyword stands for itself
+pub enum Kind {
+    #[token("scale")] Scale,
+    #[token("constant")] Constant,
+    #[token("coordinate")] Coordinate,
+    #[token("frame")] Frame,
+    #[token("vector")] Vector,
+    #[token("field")] Field,
+    #[token("fluctuation")] Fluctuation,
+    #[token("velocity")] Velocity,
+    #[token("equation")] Equation,
+    #[token("group")] Group,
+    #[token("balance")] Balance,
+    #[token("tolerance")] Tolerance,
+    #[token("phenomenon")] Phenomenon,
+    #[token("use")] Use,
+    #[token("show")] Show,
+    #[token("rank")] Rank,
+    #[token("nondimensionalize")] Nondimensionalize,
+    #[token("reduce")] Reduce,
+    #[token("bounds")] Bounds,
+    #[token("find")] Find,
+    #[token("layers")] Layers,
+    #[token("groups")] Groups,
+    #[token("limit")] Limit,
+    #[token("expand")] Expand,
+    #[token("sweep")] Sweep,
+    #[token("regimes")] Regimes,
+    #[token("compare")] Compare,
+    #[token("claim")] Claim,
+
+    #[token("in")] In,
+    #[token("for")] For,
+    #[token("by")] By,
+    #[token("from")] From,
+    #[token("to")] To,
+    #[token("within")] Within,
+    #[token("about")] About,
+    #[token("along")] Along,
+    #[token("as")] As,
+    #[token("where")] Where,
+    #[token("with")] With,
+    #[token("varying")] Varying,
+    #[token("using")] Using,
+    #[token("save")] Save,
+    #[token("matching")] Matching,
+
+    #[regex(r"\p{L}[\p{L}\p{M}0-9_\u{2080}-\u{2089}]*['\u{2032}]*")] Name,
+    #[regex(r"[0-9]+(\.[0-9]+)?([eE][+-]?[0-9]+)?")] Number,
+    /// Made in the loop, not by a pattern.
+    Unit,
+    #[regex("\"[^\"\r\n]*\"")] Text,
+    #[regex("\u{207B}?[\u{2070}\u{B9}\u{B2}\u{B3}\u{2074}-\u{2079}]+")] Superscript,
+    #[token("+")] Plus,
+    #[token("-")] Minus,
+    #[token("*")] #[token("\u{B7}")] #[token("\u{D7}")] Star,
+    #[token("/")] Slash,
+    #[token("^")] Caret,
+    #[token("(")] LeftBracket,
+    #[token(")")] RightBracket,
+    #[token("{")] LeftBrace,
+    #[token("}")] RightBrace,
+    #[token(",")] Comma,
+    #[token(":")] Colon,
+    #[token(".")] Dot,
+    #[token("..")] Range,
+    #[token("=")] Equals,
+    #[token("~")] Tilde,
+    #[token("<")] Less,
+    #[token(">")] Greater,
+    #[token("<<")] #[token("\u{226A}")] MuchLess,
+    #[token(">>")] #[token("\u{226B}")] MuchGreater,
+    #[token("+-")] #[token("\u{B1}")] PlusMinus,
+    #[token("->")] #[token("\u{2192}")] Arrow,
+    #[token("\u{2202}")] Partial,
+    #[token("\u{2207}")] Nabla,
+
+    /// A text that its line ends; it becomes a [`Kind::Text`].
+    #[regex("\"[^\"\r\n]*")] OpenText,
+    /// It goes to the comments.
+    #[regex(r"#[^\n]*", allow_greedy = true)] Comment,
+}
+
+/// The reserved words: first those that begin a statement.
+pub const RESERVED: [(Kind, &str); 43] = [
+    (Kind::Scale, "scale"),
+    (Kind::Constant, "constant"),
+    (Kind::Coordinate, "coordinate"),
+    (Kind::Frame, "frame"),
+    (Kind::Vector, "vector"),
+    (Kind::Field, "field"),
+    (Kind::Fluctuation, "fluctuation"),
+    (Kind::Velocity, "velocity"),
+    (Kind::Equation, "equation"),
+    (Kind::Group, "group"),
+    (Kind::Balance, "balance"),
+    (Kind::Tolerance, "tolerance"),
+    (Kind::Phenomenon, "phenomenon"),
+    (Kind::Use, "use"),
+    (Kind::Show, "show"),
+    (Kind::Rank, "rank"),
+    (Kind::Nondimensionalize, "nondimensionalize"),
+    (Kind::Reduce, "reduce"),
+    (Kind::Bounds, "bounds"),
+    (Kind::Find, "find"),
+    (Kind::Layers, "layers"),
+    (Kind::Groups, "groups"),
+    (Kind::Limit, "limit"),
+    (Kind::Expand, "expand"),
+    (Kind::Sweep, "sweep"),
+    (Kind::Regimes, "regimes"),
+    (Kind::Compare, "compare"),
+    (Kind::Claim, "claim"),
+    (Kind::In, "in"),
+    (Kind::For, "for"),
+    (Kind::By, "by"),
+    (Kind::From, "from"),
+    (Kind::To, "to"),
+    (Kind::Within, "within"),
+    (Kind::About, "about"),
+    (Kind::Along, "along"),
+    (Kind::As, "as"),
+    (Kind::Where, "where"),
+    (Kind::With, "with"),
+    (Kind::Varying, "varying"),
+    (Kind::Using, "using"),
+    (Kind::Save, "save"),
+    (Kind::Matching, "matching"),
+];
+
+/// Whether a word is reserved, so that it names nothing and is no unit.
+pub fn is_reserved(word: &str) -> bool {
+    RESERVED.iter().any(|&(_, reserved)| reserved == word)
+}
+
+impl Kind {
+    /// Whether a statement begins with it.
+    pub fn begins_statement(self) -> bool {
+        self <= Kind::Claim
+    }
+
+    /// Whether it is a reserved word.
+    pub fn is_reserved(self) -> bool {
+        self <= Kind::Matching
+    }
+}
+
+/// A set of kinds of token, and of the end of a statement.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub struct Kinds(u128);
+
+impl Kinds {
+    /// The end of the statement.
+    pub const END: Kinds = Kinds(1 << 127);
+
+    /// One kind.
+    pub const fn one(kind: Kind) -> Kinds {
+        Kinds(1 << kind as u32)
+    }
+
+    /// All that are in either.
+    #[must_use]
+    pub const fn and(self, other: Kinds) -> Kinds {
+        Kinds(self.0 | other.0)
+    }
+
+    /// Whether a kind is in it.
+    pub const fn has(self, kind: Kind) -> bool {
+        self.0 & Kinds::one(kind).0 != 0
+    }
+
+    /// Whether the end of the statement is in it.
+    pub const fn has_end(self) -> bool {
+        self.0 & Kinds::END.0 != 0
+    }
+}
+
+struct Reader<'s> {
+    file: FileId,
+    lexer: logos::Lexer<'s, Kind>,
+    out: Lexed<'s>,
+    /// Behind `in`: a unit comes next, on whatever line.
+    unit_wanted: bool,
+}
+
+impl<'s> Reader<'s> {
+    fn read(&mut self) {
+        loop {
+            if self.unit_wanted {
+                self.read_unit_behind_in();
+            }
+            match self.lexer.next() {
+                None => return,
+                Some(Ok(kind)) => self.take(kind),
+                Some(Err(())) => self.unknown(),
+            }
+        }
+    }
+
+    fn take(&mut self, kind: Kind) {
+        if kind == Kind::Comment {
+            self.out.comments.push(Comment {
+                text: self.lexer.slice().trim_end().to_owned(),
+                span: self.span(self.lexer.slice().trim_end().len()),
+            });
+            return;
+        }
+        self.unit_wanted = kind == Kind::In;
+        match kind {
+            Kind::OpenText => {
+                let span = self.span(self.lexer.slice().trim_end().len());
+                self.out.errors.push(SyntaxError::OpenText { span });
+                self.push(Kind::Text);
+            }
+            Kind::Number => self.number(),
+            kind => self.push(kind),
+        }
+    }
+
+    fn push(&mut self, kind: Kind) {
+        let text = self.lexer.slice();
+        let span = self.span(text.len());
+        self.out.tokens.push(Token { kind, text, span });
+    }
+
+    /// The span of the first bytes of the token just read.
+    fn span(&self, len: usize) -> Span {
+        let start = self.lexer.span().start;
+        Span::new(self.file, start, start + len)
+    }
+
+    /// A number, and the unit behind it on the same line.
+    fn number(&mut self) {
+        if self.lexer.slice() == "10" {
+            let power = power_of_ten_length(self.lexer.remainder());
+            self.lexer.bump(power);
+        }
+        self.push(Kind::Number);
+        let rest = self.lexer.remainder();
+        let blanks = rest.len() - rest.trim_start_matches([' ', '\t']).len();
+        let len = unit_length(&rest[blanks..], StartOfUnit::BehindNumber);
+        self.push_unit(blanks, len);
+    }
+
+    fn read_unit_behind_in(&mut self) {
+        let rest = self.lexer.remainder();
+        let blanks = rest.len()
+            - rest
+                .trim_start_matches([' ', '\t', '\r', '\n', '\x0c'])
+                .len();
+        let len = unit_length(&rest[blanks..], StartOfUnit::BehindIn);
+        self.push_unit(blanks, len);
+    }
+
+    /// Takes `len` bytes behind some blanks as a unit; none if there are none.
+    fn push_unit(&mut self, blanks: usize, len: usize) {
+        if len == 0 {
+            return;
+        }
+        let start = self.lexer.span().end + blanks;
+        let text = &self.lexer.remainder()[blanks..blanks + len];
+        self.lexer.bump(blanks + len);
+        self.unit_wanted = false;
+        self.out.tokens.push(Token {
+            kind: Kind::Unit,
+            text,
+            span: Span::new(self.file, start, start + len),
+        });
+    }
+
+    /// A character that no script has; several side by side are one fault.
+    fn unknown(&mut self) {
+        let span = self.span(self.lexer.slice().len());
+        if let Some(SyntaxError::UnexpectedCharacter { span: before, .. }) =
+            self.out.errors.last_mut()
+            && before.end == span.start
+        {
+            *before = before.to(span);
+            return;
+        }
+        let found = self.lexer.slice().chars().next().unwrap_or_default();
+        self.out
+            .errors
+            .push(SyntaxError::UnexpectedCharacter { span, found });
+    }
+}
+
+/// How much of the text behind `10` belongs to the number: `^-4`, or superscripts.
+/// Nothing if the exponent is no whole number or if it is itself raised to a power.
+fn power_of_ten_length(rest: &str) -> usize {
+    let len = match rest.strip_prefix('^') {
+        Some(digits) if digits.starts_with('(') => 0,
+        Some(_) | None => exponent_length(rest),
+    };
+    let behind = rest[len..].trim_start_matches([' ', '\t', '\r', '\n']);
+    let is_whole = !rest[..len].contains('.') && !has_exponent(&rest[len..]);
+    if is_whole && !behind.starts_with('^') {
+        len
+    } else {
+        0
+    }
+}
+
+/// Whether a text goes on as `e5` does: a decimal exponent behind digits.
+fn has_exponent(text: &str) -> bool {
+    text.strip_prefix(['e', 'E'])
+        .map(|rest| rest.strip_prefix(['+', '-']).unwrap_or(rest))
+        .is_some_and(|rest| rest.starts_with(|c: char| c.is_ascii_digit()))
+}
