@@ -1,0 +1,3 @@
+//! The tests of the whole, in one binary; the folders say what they prove.
+
+mod published;
