@@ -235,9 +235,9 @@ fn a_second_solidus_is_an_error_with_its_mend() {
 fn a_product_behind_a_solidus_wants_brackets() {
     let expected = UnitError::ProductBehindSolidus {
         range: 4..5,
-        mend: "J/(kg.K)".to_owned(),
+        mend: "J/(kg.K.s)".to_owned(),
     };
-    assert_eq!(error("J/kg.K"), expected);
+    assert_eq!(error("J/kg.K.s"), expected);
 }
 
 #[test]
@@ -346,8 +346,9 @@ fn limits_are_errors() {
         "(m^1000)^1001".to_owned(),
         "m^1000000.m".to_owned(),
         "km^10000".to_owned(),
-        format!("{}m{}", "(".repeat(1_000), ")".repeat(1_000)),
+        format!("{}m{}", "(".repeat(300), ")".repeat(300)),
         "(".repeat(100_000),
+        "x".repeat(1_000_000),
     ] {
         let short: String = text.chars().take(30).collect();
         assert!(
