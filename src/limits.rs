@@ -11,6 +11,9 @@ pub const NESTING: usize = 200;
 /// Largest number of tokens in one statement outside a `phenomenon`.
 pub const STATEMENT_TOKENS: usize = 4_000;
 
+/// Longest unit, in bytes: several times the longest that anybody writes.
+pub const UNIT_BYTES: usize = 1_000;
+
 /// Largest numerator and denominator of an exponent. Sums and products of two such
 /// exponents fit 64 bits with room to spare, so plain arithmetic on them is exact.
 pub const EXPONENT: i64 = 1_000_000;

@@ -1,3 +1,4 @@
-//! The tests of the public library, in one binary; folders by what they prove.
+//! The tests of the whole, in one binary; the folders say what they prove.
 
 mod polyhedra;
+mod published;

@@ -54,7 +54,7 @@ pub enum UnitError {
         /// The whole unit with the degree's size instead: `J/(kg.K)`.
         mend: String,
     },
-    /// An exponent or factor beyond the limits, or too many brackets.
+    /// An exponent or factor beyond the limits, too many brackets, or too long a text.
     TooLarge {
         /// What is too large.
         range: Range<usize>,
@@ -150,7 +150,7 @@ impl UnitError {
             .with_help(format!("write `{mend}`: a difference has no offset")),
             UnitError::TooLarge { .. } => error(
                 "too-large",
-                format!("exponent or factor of `{text}` too large"),
+                "exponent, factor or length of a unit beyond its limit".to_owned(),
             ),
         }
     }

@@ -171,6 +171,7 @@ fn arc_argument(argument: &Range) -> Result<Range, RangeError> {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use proptest::prelude::*;
 
     fn range(low: f64, nominal: f64, high: f64) -> Range {
         Range::new(low, nominal, high).unwrap()
@@ -233,21 +234,30 @@ mod tests {
         assert_eq!((cosh.low, cosh.high), (1.0, 2f64.cosh()));
     }
 
-    #[test]
-    fn values_inside_the_range_stay_inside() {
-        for function in Function::ALL {
-            let argument = range(0.1, 0.5, 0.9);
-            let values = function.over(&argument).unwrap();
-            for step in 0..=100 {
-                let inside = 0.1 + 0.8 * f64::from(step) / 100.0;
-                let value = function.over(&Range::exact(inside)).unwrap().nominal;
-                assert!(
-                    values.low - 1e-15 <= value && value <= values.high + 1e-15,
-                    "{}",
-                    function.name()
-                );
+    proptest! {
+        #[test]
+        fn results_hold_the_values_at_all_points(
+            low in -20.0..20.0, width in 0.0..8.0, nominal in 0.0..=1.0, inside in 0.0..=1.0,
+        ) {
+            let argument = range(low, low + width * nominal, low + width);
+            for function in Function::ALL {
+                let Ok(values) = function.over(&argument) else {
+                    continue;
+                };
+                let point = Range::exact(low + width * inside);
+                let value = function.over(&point).unwrap().nominal;
+                let slack = 1e-12 * value.abs().max(1.0);
+                let is_held = values.low - slack <= value && value <= values.high + slack;
+                prop_assert!(is_held, "{} of {:?}", function.name(), argument);
             }
+        }
+    }
+
+    #[test]
+    fn every_function_is_found_by_its_name() {
+        for function in Function::ALL {
             assert_eq!(Function::named(function.name()), Some(function));
         }
+        assert_eq!(Function::named("sine"), None);
     }
 }

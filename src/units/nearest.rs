@@ -1,6 +1,8 @@
 //! What an unknown unit probably meant: a name written out, a forgotten exponent sign,
 //! or a symbol that differs by a letter.
 
+use std::sync::LazyLock;
+
 use strsim::damerau_levenshtein;
 
 use super::prefixes::{PREFIXES, Prefix};
@@ -12,14 +14,16 @@ use super::table::{UnitInfo, table, units};
 const WRITTEN: &[(&str, &str)] = &[
     ("sec", "s"), ("secs", "s"), ("mins", "min"), ("hr", "h"), ("hrs", "h"), ("dy", "d"),
     ("wk", "week"), ("weeks", "week"), ("a", "yr"), ("year", "yr"), ("years", "yr"), ("yrs", "yr"),
-    ("in", "inch"), ("inches", "inch"), ("sm", "mi"), ("NM", "nmi"),
-    ("kts", "kt"), ("mps", "m/s"), ("kph", "km/h"), ("kmh", "km/h"), ("kmph", "km/h"), ("fps", "ft/s"),
-    ("fpm", "ft/min"), ("cumec", "m^3/s"), ("cumecs", "m^3/s"), ("cc", "cm^3"), ("sqm", "m^2"),
-    ("mb", "mbar"), ("mmhg", "mmHg"), ("degree", "deg"), ("degs", "deg"), ("degK", "K"), ("°K", "K"),
-    ("celsius", "degC"), ("centigrade", "degC"), ("º", "deg"), ("ºC", "degC"), ("ºF", "degF"),
-    ("fahrenheit", "degF"), ("rankine", "degR"), ("sievert", "J/kg"), ("ampere", "A"),
-    ("amp", "A"), ("amps", "A"), ("lbs", "lb"), ("gal", "galUS"), ("gallon", "galUS"), ("tonne", "t"),
-    ("tonnes", "t"), ("usft", "ftUS"), ("percent", "%"), ("per_cent", "%"),
+    ("in", "inch"), ("inches", "inch"), ("mtr", "m"), ("mtrs", "m"), ("sm", "mi"), ("NM", "nmi"),
+    ("lightyear", "ly"), ("usft", "ftUS"), ("sqm", "m^2"), ("cc", "cm^3"), ("gal", "galUS"),
+    ("gallon", "galUS"), ("gallons", "galUS"), ("kts", "kt"), ("mps", "m/s"), ("kph", "km/h"),
+    ("kmh", "km/h"), ("kmph", "km/h"), ("fps", "ft/s"), ("fpm", "ft/min"), ("cumec", "m^3/s"),
+    ("cumecs", "m^3/s"), ("gm", "g"), ("gms", "g"), ("lbs", "lb"), ("ton", "t"), ("tons", "t"),
+    ("mb", "mbar"), ("mbs", "mbar"), ("degree", "deg"), ("degs", "deg"), ("degK", "K"), ("°K", "K"),
+    ("º", "deg"), ("ºC", "degC"), ("ºF", "degF"), ("celsius", "degC"), ("celcius", "degC"),
+    ("centigrade", "degC"), ("degrees_C", "degC"), ("fahrenheit", "degF"), ("degrees_F", "degF"),
+    ("rankine", "degR"), ("sievert", "J/kg"), ("amp", "A"), ("amps", "A"), ("percent", "%"),
+    ("pct", "%"), ("ppt", "permil"), ("psu", "g/kg"), ("PSU", "g/kg"),
 ];
 
 /// Prefixes that a guess may add; the others would make nearly any letter a unit.
@@ -30,13 +34,21 @@ pub(super) fn nearest(symbol: &str) -> Option<String> {
     written(symbol)
         .or_else(|| named(symbol))
         .or_else(|| with_exponent(symbol))
+        .or_else(|| plural(symbol))
         .or_else(|| alike(symbol))
 }
 
 fn written(symbol: &str) -> Option<String> {
+    let lower = symbol.to_lowercase();
     WRITTEN
         .iter()
         .find(|(word, _)| *word == symbol)
+        // A word in capitals too, but no mere letter or two, which may be anything.
+        .or_else(|| {
+            WRITTEN
+                .iter()
+                .find(|(word, _)| word.len() > 2 && *word == lower)
+        })
         .map(|(_, unit)| (*unit).to_owned())
 }
 
@@ -44,8 +56,8 @@ fn written(symbol: &str) -> Option<String> {
 fn named(symbol: &str) -> Option<String> {
     let word = symbol
         .to_lowercase()
-        .replace("metre", "meter")
-        .replace("litre", "liter")
+        .replace("meter", "metre")
+        .replace("liter", "litre")
         .replace('_', " ");
     units().iter().find_map(|unit| {
         if is_named(unit, &word) {
@@ -76,29 +88,21 @@ fn with_exponent(symbol: &str) -> Option<String> {
     (!exponent.is_empty() && table().find(unit).is_some()).then(|| format!("{unit}^{exponent}"))
 }
 
-/// The symbol that differs least: only in case, or by one slip (two in a long one).
-fn alike(symbol: &str) -> Option<String> {
-    let allowed = match symbol.chars().count() {
-        0..=2 => 0,
-        3..=4 => 1,
-        _ => 2,
-    };
-    let lower = symbol.to_lowercase();
-    candidates()
-        .filter_map(|candidate| {
-            let slips = if candidate.to_lowercase() == lower {
-                0
-            } else {
-                damerau_levenshtein(symbol, &candidate)
-            };
-            (slips <= allowed).then_some((slips, candidate))
-        })
-        // The first of the least: candidates come plain ones first.
-        .min_by_key(|(slips, _)| *slips)
-        .map(|(_, candidate)| candidate)
+/// A symbol with the s of a plural: `bars`, `kgs`.
+fn plural(symbol: &str) -> Option<String> {
+    let single = symbol.strip_suffix('s')?;
+    (single.len() > 1 && table().find(single).is_some()).then(|| single.to_owned())
 }
 
-fn candidates() -> impl Iterator<Item = String> {
+/// A symbol to compare with.
+struct Candidate {
+    symbol: String,
+    lower: String,
+    length: usize,
+}
+
+/// What a misspelt symbol may have been: every plain symbol, then the usual multiples.
+static CANDIDATES: LazyLock<Vec<Candidate>> = LazyLock::new(|| {
     let plain = units()
         .iter()
         .flat_map(|unit| unit.symbols.iter().map(|symbol| (*symbol).to_owned()));
@@ -106,7 +110,36 @@ fn candidates() -> impl Iterator<Item = String> {
         .iter()
         .filter(|unit| unit.takes_prefixes)
         .flat_map(|unit| USUAL_PREFIXES.map(|prefix| format!("{prefix}{}", unit.symbols[0])));
-    plain.chain(multiples)
+    plain
+        .chain(multiples)
+        .map(|symbol| Candidate {
+            lower: symbol.to_lowercase(),
+            length: symbol.chars().count(),
+            symbol,
+        })
+        .collect()
+});
+
+/// The symbol that differs least: only in case, or by one slip (two in a long one).
+fn alike(symbol: &str) -> Option<String> {
+    let lower = symbol.to_lowercase();
+    if let Some(same) = CANDIDATES.iter().find(|known| known.lower == lower) {
+        return Some(same.symbol.clone());
+    }
+    let length = symbol.chars().count();
+    let allowed = match length {
+        0..=2 => return None,
+        3..=4 => 1,
+        _ => 2,
+    };
+    CANDIDATES
+        .iter()
+        .filter(|known| known.length.abs_diff(length) <= allowed)
+        .map(|known| (damerau_levenshtein(symbol, &known.symbol), known))
+        .filter(|(slips, _)| *slips <= allowed)
+        // Of equals the first: plain symbols come before multiples.
+        .min_by_key(|(slips, _)| *slips)
+        .map(|(_, known)| known.symbol.clone())
 }
 
 #[cfg(test)]
@@ -134,6 +167,10 @@ mod tests {
             ("mbra", "mbar"),
             ("inhg", "inHg"),
             ("years", "yr"),
+            ("bars", "bar"),
+            ("kgs", "kg"),
+            ("Celsius", "degC"),
+            ("degC2", "degC^2"),
         ] {
             assert_eq!(nearest(symbol).as_deref(), Some(expected), "{symbol}");
         }

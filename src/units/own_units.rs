@@ -59,8 +59,8 @@ impl Definition {
             .expect("the factors of this table are far below the limits");
         UnitInfo {
             symbols: self.symbols.split(' ').collect(),
-            name: self.name,
-            plural: self.plural,
+            name: self.name.to_owned(),
+            plural: self.plural.to_owned(),
             dimension,
             factor,
             offset: self
@@ -153,7 +153,7 @@ pub(super) const DEFINITIONS: &[Definition] = &[
     unit("lbf", ("pound-force", "pounds-force"), (1, 1), "lb.g_n", NIST),
     unit("pdl", ("poundal", "poundals"), (1, 1), "lb.ft/s^2", NIST),
     unit("Torr", ("torr", "torr"), (1, 760), "atm", NIST).with_prefixes(),
-    unit("mmHg", ("millimeter of mercury", "millimeters of mercury"), (135_951, 10), "kg.g_n.mm/m^3", NIST),
+    unit("mmHg", ("millimetre of mercury", "millimetres of mercury"), (135_951, 10), "kg.g_n.mm/m^3", NIST),
     unit("inHg", ("inch of mercury", "inches of mercury"), (135_951, 10), "kg.g_n.inch/m^3", NIST),
     unit("inH2O", ("inch of water", "inches of water"), (1_000, 1), "kg.g_n.inch/m^3", NIST),
     unit("psi", ("pound-force per square inch", "pounds-force per square inch"), (1, 1), "lbf/inch^2", NIST),

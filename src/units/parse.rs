@@ -130,10 +130,20 @@ impl Unit {
         } else {
             self.dimension = self.dimension.times(&dimension.power(exponent)?)?;
         }
-        // Coherent SI units need no arithmetic on their factors.
-        if !factor.is_one() {
-            self.factor = self.factor.times(&factor.power(exponent)?)?;
+        // Most factors are 1, and nearly all stand to the power 1: no arithmetic for those.
+        if factor.is_one() {
+            return Ok(());
         }
+        let power = if exponent == Exponent::ONE {
+            factor.clone()
+        } else {
+            factor.power(exponent)?
+        };
+        self.factor = if self.factor.is_one() {
+            power
+        } else {
+            self.factor.times(&power)?
+        };
         Ok(())
     }
 }

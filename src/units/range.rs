@@ -260,6 +260,7 @@ fn positive_power(value: f64, exponent: Exponent) -> f64 {
 #[cfg(test)]
 mod tests {
     use super::*;
+    use proptest::prelude::*;
 
     fn range(low: f64, nominal: f64, high: f64) -> Range {
         Range::new(low, nominal, high).unwrap()
@@ -341,5 +342,41 @@ mod tests {
     fn amounts_of_a_range_across_zero_begin_at_zero() {
         assert_eq!(range(-3.0, -1.0, 2.0).abs(), range(0.0, 1.0, 3.0));
         assert_eq!(range(-3.0, -2.0, -1.0).abs(), range(1.0, 2.0, 3.0));
+    }
+
+    /// A range, and a value inside it.
+    fn ranges() -> impl Strategy<Value = (Range, f64)> {
+        (-9.0..9.0, 0.0..9.0, 0.0..=1.0, 0.0..=1.0).prop_map(|(low, width, nominal, inside)| {
+            let range = Range::new(low, low + width * nominal, low + width).unwrap();
+            (range, low + width * inside)
+        })
+    }
+
+    /// Whether a result, if there is one, holds the value at a point, but for rounding.
+    fn holds(result: Result<Range, RangeError>, value: f64) -> bool {
+        let slack = 1e-12 * value.abs().max(1.0);
+        result.is_ok_and(|range| range.low - slack <= value && value <= range.high + slack)
+    }
+
+    proptest! {
+        #[test]
+        fn results_hold_the_values_at_all_points((a, x) in ranges(), (b, y) in ranges()) {
+            prop_assert!(holds(a.plus(&b), x + y));
+            prop_assert!(holds(a.minus(&b), x - y));
+            prop_assert!(holds(a.times(&b), x * y));
+            prop_assert!(holds(Ok(a.min(&b)), x.min(y)) && holds(Ok(a.max(&b)), x.max(y)));
+            prop_assert!(holds(Ok(a.abs()), x.abs()));
+            prop_assert_eq!(holds(a.over(&b), x / y), !b.contains(0.0));
+            prop_assert!(holds(a.abs().power_of_range(&b.abs()), x.abs().powf(y.abs())));
+        }
+
+        #[test]
+        fn powers_hold_the_values_at_all_points((a, x) in ranges(), power in -4_i32..=4) {
+            let exponent = Exponent::whole(power.into()).unwrap();
+            let is_defined = power >= 0 || !a.contains(0.0);
+            prop_assert_eq!(holds(a.power(exponent), x.powi(power)), is_defined);
+            prop_assert!(holds(a.power(Exponent::ratio(1, 3)), x.cbrt()));
+            prop_assert!(holds(a.power(Exponent::ratio(2, 3)), x.cbrt().powi(2)));
+        }
     }
 }

@@ -28,6 +28,11 @@ pub(super) struct Spelling<'t> {
 
 /// Reads a unit.
 pub(super) fn read(text: &str) -> Result<Spelling<'_>, UnitError> {
+    if text.len() > limits::UNIT_BYTES {
+        return Err(UnitError::TooLarge {
+            range: 0..text.len(),
+        });
+    }
     let mut reader = Reader::new(text);
     reader.read_unit()?;
     Ok(Spelling {
@@ -161,7 +166,12 @@ impl<'t> Reader<'t> {
 
     /// Keeps the first fault, but for a product that a second solidus follows.
     fn fault(&mut self, found: Solidus) {
-        if matches!(self.solidus, Solidus::Alone | Solidus::BeforeProduct(_)) {
+        let is_worse = match self.solidus {
+            Solidus::Alone => true,
+            Solidus::BeforeProduct(_) => !matches!(found, Solidus::BeforeProduct(_)),
+            Solidus::Again(_) | Solidus::InBrackets(_) => false,
+        };
+        if is_worse {
             self.solidus = found;
         }
     }
@@ -176,6 +186,9 @@ impl<'t> Reader<'t> {
         }
         let start = self.at;
         let exponent = self.read_exponent()?;
+        if exponent == Exponent::ONE {
+            return Ok(());
+        }
         for factor in &mut self.factors[first..] {
             let product = factor.exponent.times(exponent);
             factor.exponent = product.map_err(|TooLarge| UnitError::TooLarge {

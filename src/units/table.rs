@@ -25,9 +25,9 @@ pub struct UnitInfo {
     /// Its symbols; the first is the usual one.
     pub symbols: Vec<&'static str>,
     /// Its name in words.
-    pub name: &'static str,
+    pub name: String,
     /// Its name in words, for more than one.
-    pub plural: &'static str,
+    pub plural: String,
     /// What it measures.
     pub dimension: Dimension,
     /// How many SI units it is, exactly.
@@ -84,7 +84,7 @@ pub fn symbols() -> impl Iterator<Item = String> {
 /// The name of a symbol in words: `hectopascal` for `hPa`.
 pub fn display_name(symbol: &str) -> Option<String> {
     let (unit, prefix) = find_unit(symbol)?;
-    Some(prefix.map_or(String::new(), |prefix| prefix.name.to_owned()) + unit.name)
+    Some(prefix.map_or(String::new(), |prefix| prefix.name.to_owned()) + &unit.name)
 }
 
 /// The table, for the rest of the room.
@@ -201,6 +201,8 @@ mod tests {
     fn a_symbol_has_its_name_in_words() {
         assert_eq!(display_name("hPa").as_deref(), Some("hectopascal"));
         assert_eq!(display_name("kt").as_deref(), Some("knot"));
+        assert_eq!(display_name("km").as_deref(), Some("kilometre"));
+        assert_eq!(display_name("Mt").as_deref(), Some("megatonne"));
         assert_eq!(display_name("kkt"), None);
     }
 }

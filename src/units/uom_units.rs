@@ -132,14 +132,23 @@ where
     let constant = decimal(N::constant(ConstantOp::Add));
     UnitInfo {
         symbols: symbols.split(' ').collect(),
-        name: N::singular(),
-        plural: N::plural(),
+        name: respelt(N::singular()),
+        plural: respelt(N::plural()),
         dimension: dimension_of::<D>(),
         factor: Number::rational(decimal(N::coefficient())),
         // `uom` adds its constant before the factor; all that have one have the factor 1.
         offset: (!constant.is_zero()).then_some(constant),
         takes_prefixes,
         source: SOURCE,
+    }
+}
+
+/// A unit's name as the SI Brochure spells it.
+fn respelt(name: &str) -> String {
+    match name {
+        "ton" => "tonne".to_owned(),
+        "tons" => "tonnes".to_owned(),
+        name => name.replace("meter", "metre").replace("liter", "litre"),
     }
 }
 

@@ -1,0 +1,4 @@
+//! Tests against sources outside the project.
+
+mod standard_atmosphere;
+mod units;
