@@ -3,6 +3,7 @@
 use crate::diagnostic::Diagnostic;
 use crate::limits;
 use crate::source::Span;
+use crate::syntax::forms::form;
 use crate::syntax::token::{Kind, Kinds, RESERVED};
 
 /// A fault in the form of a script.
@@ -39,6 +40,8 @@ pub enum SyntaxError {
         behind: String,
         /// What could stand there.
         expected: Kinds,
+        /// The keyword of the statement.
+        keyword: Kind,
         /// Whether it is the last of the script, so that more text could finish it.
         is_last: bool,
     },
@@ -162,12 +165,22 @@ pub enum Mend {
     None,
     /// A reserved word nearly spelt so.
     Word(&'static str),
-    /// A product sign before it: the two factors as written.
+    /// A product sign between two factors, which are as written.
     Product(String, String),
     /// `show` before it.
     Show,
-    /// Another text in its place.
-    Instead(&'static str),
+    /// A digit before a decimal point.
+    Digit,
+    /// A function in place of `∇·` or `∇²`.
+    Functions,
+    /// A closing bracket that closes nothing.
+    NothingOpen,
+    /// A bracket of coordinates behind the last field alone.
+    OneBracket,
+    /// A plain name as a part of a split.
+    PlainPart,
+    /// The form of the statement that begins with this keyword.
+    Form(Kind),
 }
 
 impl SyntaxError {
@@ -227,11 +240,16 @@ impl SyntaxError {
                 mended(Diagnostic::error("unexpected-word", at, message), mend)
             }
             SyntaxError::Unfinished {
-                behind, expected, ..
+                behind,
+                expected,
+                keyword,
+                ..
             } => {
                 let expected = list(*expected);
                 let message = format!("expected {expected} behind {}", quoted(behind));
-                Diagnostic::error("unfinished", at, message).with_label("the statement ends here")
+                let error = Diagnostic::error("unfinished", at, message)
+                    .with_label("the statement ends here");
+                mended(error, &Mend::Form(*keyword))
             }
             SyntaxError::NoStatement { found, mend, .. } => {
                 let message = format!("expected a statement, found {}", quoted(found));
@@ -371,7 +389,7 @@ fn instead_of(found: char) -> Option<&'static str> {
         '%' => "`%` right behind a number",
         '\u{B0}' => "`deg` behind a number",
         ';' => "nothing: a statement ends where the next one begins",
-        '[' | ']' => "`(` and `)`",
+        '[' | ']' => "a unit without brackets, and an expression in `(` and `)`",
         '\u{221A}' => "`sqrt(...)`",
         '\u{2192}' => "`->`",
         _ => return None,
@@ -379,15 +397,27 @@ fn instead_of(found: char) -> Option<&'static str> {
 }
 
 fn mended(error: Diagnostic, mend: &Mend) -> Diagnostic {
-    match mend {
-        Mend::None => error,
-        Mend::Word(word) => error.with_help(format!("did you mean `{word}`?")),
-        Mend::Product(left, right) => {
-            error.with_help(format!("write `{left}*{right}` for a product"))
-        }
-        Mend::Show => error.with_help("write `show` before an expression to see its value"),
-        Mend::Instead(text) => error.with_help(format!("write {text}")),
+    match help(mend) {
+        None => error,
+        Some(help) => error.with_help(help),
     }
+}
+
+fn help(mend: &Mend) -> Option<String> {
+    Some(match mend {
+        Mend::None => return None,
+        Mend::Word(word) => format!("did you mean `{word}`?"),
+        Mend::Product(left, right) => format!("write `{left}*{right}` for a product"),
+        Mend::Show => "write `show` before an expression to see its value".to_owned(),
+        Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
+        Mend::Functions => "write `grad(q)`, `div(V)` or `laplacian(q)`".to_owned(),
+        Mend::NothingOpen => "leave it out: nothing is open that it could close".to_owned(),
+        Mend::OneBracket => {
+            "write one bracket behind the last name, for all, or a statement each".to_owned()
+        }
+        Mend::PlainPart => "give the part a name of its own: a part is a plain name".to_owned(),
+        Mend::Form(keyword) => format!("write `{}`", form(*keyword)?),
+    })
 }
 
 /// A word of the script in backticks, a long one cut.

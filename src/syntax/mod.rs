@@ -3,7 +3,12 @@
 
 pub mod ast;
 pub mod errors;
+pub mod forms;
 pub mod names;
 pub mod parser;
+pub mod print;
+mod print_expression;
+mod print_statement;
+pub mod structure;
 pub mod token;
 mod unit_run;

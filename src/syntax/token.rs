@@ -325,21 +325,38 @@ impl<'s> Reader<'s> {
         });
     }
 
-    /// A character that no script has; several side by side are one fault.
+    /// A character that no script has. Several side by side are one fault, and so is a
+    /// pair of brackets or quotes.
     fn unknown(&mut self) {
         let span = self.span(self.lexer.slice().len());
-        if let Some(SyntaxError::UnexpectedCharacter { span: before, .. }) =
-            self.out.errors.last_mut()
-            && before.end == span.start
-        {
-            *before = before.to(span);
-            return;
-        }
         let found = self.lexer.slice().chars().next().unwrap_or_default();
+        let last_token = self.out.tokens.last().map_or(0, |token| token.span.end);
+        if let Some(SyntaxError::UnexpectedCharacter {
+            span: before,
+            found: opening,
+        }) = self.out.errors.last_mut()
+        {
+            let between = &self.lexer.source()[before.end as usize..span.start as usize];
+            if last_token <= before.start && !between.contains('\n') {
+                *before = before.to(span);
+                return;
+            }
+            if closes(*opening, found) {
+                return;
+            }
+        }
         self.out
             .errors
             .push(SyntaxError::UnexpectedCharacter { span, found });
     }
+}
+
+/// Whether a character closes another, so that the two are one fault.
+fn closes(opening: char, closing: char) -> bool {
+    matches!(
+        (opening, closing),
+        ('[', ']') | ('\u{201C}' | '\u{201E}', '\u{201D}' | '\u{201C}') | ('\u{AB}', '\u{BB}')
+    )
 }
 
 /// How much of the text behind `10` belongs to the number: `^-4`, or superscripts.

@@ -14,8 +14,8 @@ use crate::syntax::ast::{
 use crate::syntax::parser::expression::{Expressions, sign, spanned};
 use crate::syntax::parser::literal::{proportion, unit};
 use crate::syntax::parser::rule::{
-    Extra, Input, Rule, end_of_statement, name, names, notes, opt_rest, opt_source, opt_title,
-    skip_to_equals, span_of, text, token, word,
+    Extra, Input, Rule, end_of_statement, followed_by, name, names, notes, opt_rest, opt_source,
+    opt_title, skip_to, span_of, text, token, word,
 };
 use crate::syntax::token::Kind;
 
@@ -320,21 +320,30 @@ fn equation<'t, 's: 't>(parts: &Expressions<'t, 's>) -> Statement<'t, 's> {
         .boxed()
 }
 
-/// `: left = right`. A fault on the left passes over the text up to `=`, so that the
-/// right side is still read.
+/// `: left = right`. A fault in one side passes over this side alone.
 fn written<'t, 's: 't>(parts: &Expressions<'t, 's>) -> impl Rule<'t, 's, EquationBody> {
-    let expression = parts.expression.clone();
-    let left = expression
-        .clone()
-        .then_ignore(token(Kind::Equals).rewind())
-        .recover_with(via_parser(
-            skip_to_equals().map_with(|(), extra| error(span_of(extra))),
-        ));
+    let left = side(parts, &[Kind::Equals], false);
+    let right = side(parts, &[Kind::Using, Kind::From], true);
     token(Kind::Colon)
         .ignore_then(left)
         .then_ignore(token(Kind::Equals))
-        .then(expression)
+        .then(right)
         .map(|(left, right)| EquationBody::Written { left, right })
+}
+
+/// A side of an equation, with what may stand behind it.
+fn side<'t, 's: 't>(
+    parts: &Expressions<'t, 's>,
+    ends: &'static [Kind],
+    may_be_last: bool,
+) -> impl Rule<'t, 's, Expr> {
+    parts
+        .expression
+        .clone()
+        .then_ignore(followed_by(ends, may_be_last))
+        .recover_with(via_parser(
+            skip_to(ends, may_be_last).map_with(|(), extra| error(span_of(extra))),
+        ))
 }
 
 /// `from d_x(y_momentum)`.

@@ -56,6 +56,7 @@ fn unfinished(expected: Kinds, place: &Place<'_, '_>) -> SyntaxError {
         span,
         behind,
         expected,
+        keyword: place.tokens.first().map_or(Kind::Show, |first| first.kind),
         is_last: place.is_last,
     }
 }
@@ -107,7 +108,9 @@ fn unit_apart(at: usize, place: &Place<'_, '_>) -> Option<SyntaxError> {
 }
 
 fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller) -> Mend {
-    let found = &place.tokens[at];
+    let tokens = place.tokens;
+    let found = &tokens[at];
+    let keyword = tokens[0].kind;
     if found.kind == Kind::Name
         && let Some((_, word)) = speller.nearest(found.text, |kind| {
             expected.has(kind) || expected.has_end() && kind.begins_statement()
@@ -115,23 +118,41 @@ fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller
     {
         return Mend::Word(word);
     }
-    if found.kind == Kind::Dot && place.tokens.get(at + 1).is_some_and(is_number) {
-        return Mend::Instead("a digit before the point, as in `0.5`");
-    }
-    if at == 0 {
-        return Mend::None;
-    }
-    let before = &place.tokens[at - 1];
-    if before.kind == Kind::Nabla {
-        return Mend::Instead("`grad(q)`, `div(V)` or `laplacian(q)`");
-    }
-    if expected.has(Kind::Star) && begins_operand(found) && ends_operand(before) {
-        return match begins_line(place.tokens, at, place.text) {
+    let before = at.checked_sub(1).map(|before| &tokens[before]);
+    if expected.has(Kind::Star) && begins_operand(found) && before.is_some_and(ends_operand) {
+        return match begins_line(tokens, at, place.text) {
             true => Mend::Show,
             false => product(at, place),
         };
     }
-    Mend::None
+    match (keyword, found.kind) {
+        (_, Kind::Dot) if tokens.get(at + 1).is_some_and(is_number) => Mend::Digit,
+        (_, Kind::RightBracket | Kind::RightBrace) if is_unopened(&tokens[..=at]) => {
+            Mend::NothingOpen
+        }
+        (Kind::Field | Kind::Fluctuation, Kind::Comma) if expected.has(Kind::Tilde) => {
+            Mend::OneBracket
+        }
+        (Kind::Field, _) if expected.has(Kind::Plus) && !expected.has(Kind::Star) => {
+            Mend::PlainPart
+        }
+        _ if before.is_some_and(|before| before.kind == Kind::Nabla) => Mend::Functions,
+        _ if keyword.begins_statement() => Mend::Form(keyword),
+        _ => Mend::None,
+    }
+}
+
+/// Whether the last of some tokens closes a bracket that none of them opens.
+fn is_unopened(tokens: &[Token<'_>]) -> bool {
+    let mut depth = 0_isize;
+    for token in tokens {
+        match token.kind {
+            Kind::LeftBracket | Kind::LeftBrace => depth += 1,
+            Kind::RightBracket | Kind::RightBrace => depth -= 1,
+            _ => {}
+        }
+    }
+    depth < 0
 }
 
 /// The product of what stands before a token and the token; `2 sin(phi)` reads as a

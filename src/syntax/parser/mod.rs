@@ -223,7 +223,7 @@ impl<'t, 's: 't> Parsing<'t, 's> {
         }
     }
 
-    /// Whether the lexer could not read something right before a token.
+    /// Whether the lexer could not read something of a token or right before it.
     fn is_beside_unread(&self, at: usize) -> bool {
         let start = match at {
             0 => 0,
@@ -232,9 +232,9 @@ impl<'t, 's: 't> Parsing<'t, 's> {
         let end = self
             .tokens
             .get(at)
-            .map_or(self.text.len() as u32, |token| token.span.start);
+            .map_or(self.text.len() as u32 + 1, |token| token.span.end);
         let first = self.unread.partition_point(|span| span.start < start);
-        self.unread.get(first).is_some_and(|span| span.end <= end)
+        self.unread.get(first).is_some_and(|span| span.start < end)
     }
 }
 

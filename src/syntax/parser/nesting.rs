@@ -9,11 +9,11 @@ use crate::syntax::token::{Kind, Token};
 
 /// The limit that a statement breaks.
 pub(super) fn broken_limit(tokens: &[Token<'_>]) -> Option<SyntaxError> {
-    if tokens.len() > limits::STATEMENT_TOKENS {
-        let span = tokens[0].span;
-        return Some(SyntaxError::LongStatement { span });
+    if let Some(span) = too_deep(tokens) {
+        return Some(SyntaxError::TooDeep { span });
     }
-    too_deep(tokens).map(|span| SyntaxError::TooDeep { span })
+    let span = tokens.first()?.span;
+    (tokens.len() > limits::STATEMENT_TOKENS).then_some(SyntaxError::LongStatement { span })
 }
 
 /// What is known of the expression in one pair of brackets.

@@ -80,13 +80,15 @@ impl Fault {
 
 impl<'t, 's> chumsky::error::Error<'t, Input<'t, 's>> for Fault {
     fn merge(self, other: Fault) -> Fault {
-        match (self.kind, other.kind) {
-            (FaultKind::Expected(one), FaultKind::Expected(two)) => Fault {
-                kind: FaultKind::Expected(one.and(two)),
-                ..self
-            },
-            (FaultKind::Expected(_), _) => other,
-            _ => self,
+        let FaultKind::Expected(one) = self.kind else {
+            return self;
+        };
+        let FaultKind::Expected(two) = other.kind else {
+            return other;
+        };
+        Fault {
+            kind: FaultKind::Expected(one.and(two)),
+            ..self
         }
     }
 }
@@ -213,15 +215,46 @@ pub(super) fn notes<'t, 's: 't>() -> impl Rule<'t, 's, Notes> {
         .map(|(title, source)| Notes { title, source })
 }
 
-/// Passes over tokens up to an `=` that stands outside brackets.
-pub(super) fn skip_to_equals<'t, 's: 't>() -> impl Rule<'t, 's, ()> + Copy {
-    custom(|input: &mut InputRef<Input<'t, 's>, Extra>| {
+/// Nothing, where one of some kinds of token comes next, or the end if that may be.
+pub(super) fn followed_by<'t, 's: 't>(
+    kinds: &'static [Kind],
+    may_be_last: bool,
+) -> impl Rule<'t, 's, ()> + Copy {
+    custom(move |input: &mut InputRef<Input<'t, 's>, Extra>| {
+        let at = *input.cursor().inner();
+        let is_next = match input.peek_ref() {
+            None => may_be_last,
+            Some(found) => kinds.contains(&found.kind),
+        };
+        if is_next {
+            return Ok(());
+        }
+        let end = if may_be_last {
+            Kinds::END
+        } else {
+            Kinds::default()
+        };
+        let expected = kinds
+            .iter()
+            .fold(end, |all, kind| all.and(Kinds::one(*kind)));
+        Err(Fault::expected(at, expected))
+    })
+}
+
+/// Passes over tokens up to one of some kinds that stands outside brackets, or up to the
+/// end if that may be.
+pub(super) fn skip_to<'t, 's: 't>(
+    kinds: &'static [Kind],
+    may_be_last: bool,
+) -> impl Rule<'t, 's, ()> + Copy {
+    custom(move |input: &mut InputRef<Input<'t, 's>, Extra>| {
         let mut depth = 0_usize;
         loop {
             let at = *input.cursor().inner();
             match input.peek_ref().map(|token| token.kind) {
-                None => return Err(Fault::expected(at, Kinds::one(Kind::Equals))),
-                Some(Kind::Equals) if depth == 0 => return Ok(()),
+                None if may_be_last => return Ok(()),
+                None => return Err(Fault::expected(at, Kinds::default())),
+                Some(kind) if depth == 0 && kinds.contains(&kind) => return Ok(()),
                 Some(Kind::LeftBracket) => depth += 1,
                 Some(Kind::RightBracket) => depth = depth.saturating_sub(1),
                 Some(_) => {}

@@ -17,7 +17,7 @@ pub(super) struct Speller {
 impl Speller {
     /// One that has not looked yet.
     pub(super) fn new() -> Speller {
-        Speller { looks_left: 200 }
+        Speller { looks_left: LOOKS }
     }
 
     /// The reserved word nearest to a name among those that pass; none if it is far off.
@@ -32,13 +32,19 @@ impl Speller {
         self.looks_left -= 1;
         RESERVED
             .iter()
-            .filter(|(kind, _)| passes(*kind))
+            .filter(|(kind, word)| word.len() >= SHORTEST_SUGGESTED && passes(*kind))
             .map(|&(kind, word)| (damerau_levenshtein(written, word), kind, word))
             .filter(|(distance, _, word)| *distance <= (word.len() / 3).clamp(1, 2))
             .min_by_key(|(distance, _, _)| *distance)
             .map(|(_, kind, word)| (kind, word))
     }
 }
+
+/// How many words are looked at.
+const LOOKS: usize = 200;
+
+/// Shorter words are near to too much.
+const SHORTEST_SUGGESTED: usize = 4;
 
 const LONGEST_LOOKED_AT: usize = 24;
 
@@ -72,9 +78,10 @@ pub(super) fn mend_words(
 }
 
 /// Whether a reserved word is used as a name: a sign stands behind it that follows names
-/// and never a keyword, or `as` stands before it.
+/// and never a keyword, or `as` stands before it. At the beginning of a statement it is
+/// a keyword all the same, whose name is missing.
 fn is_reserved_name(tokens: &[Token<'_>], at: usize, text: &str) -> bool {
-    if !tokens[at].kind.is_reserved() {
+    if at == 0 || !tokens[at].kind.is_reserved() || begins_line(tokens, at, text) {
         return false;
     }
     let sign_behind = tokens.get(at + 1).is_some_and(|next| {
@@ -90,11 +97,25 @@ fn is_reserved_name(tokens: &[Token<'_>], at: usize, text: &str) -> bool {
                 | Kind::Slash
                 | Kind::Caret
                 | Kind::Superscript
-                | Kind::Dot
         )
     });
-    let as_before = at > 0 && tokens[at - 1].kind == Kind::As && !begins_line(tokens, at, text);
-    sign_behind || as_before
+    let before = tokens[at - 1].kind;
+    before == Kind::As || sign_behind && !may_end_statement(before)
+}
+
+/// Whether a statement may end with a kind of token.
+fn may_end_statement(kind: Kind) -> bool {
+    matches!(
+        kind,
+        Kind::Name
+            | Kind::Number
+            | Kind::Unit
+            | Kind::Text
+            | Kind::Superscript
+            | Kind::RightBracket
+            | Kind::LeftBrace
+            | Kind::RightBrace
+    )
 }
 
 /// Whether a name may be a misspelt keyword: it begins a line (or a body) and a name or a
