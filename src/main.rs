@@ -1,1 +1,321 @@
-fn main() {}
+//! The command line: words to library calls, nothing else.
+
+use std::fs;
+use std::io::{self, IsTerminal as _, Read as _, Write as _};
+use std::path::{Path, PathBuf};
+use std::process::ExitCode;
+
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use scalewright::diagnostic::Diagnostic;
+use scalewright::model::errors::ModelError;
+use scalewright::model::library;
+use scalewright::model::modules::Files;
+use scalewright::model::names;
+use scalewright::report;
+use scalewright::{Outcome, Session, Status};
+
+/// Decide, for one phenomenon, which terms of the governing equations matter.
+#[derive(Parser)]
+#[command(version, arg_required_else_help = true)]
+struct Words {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Subcommand)]
+enum Command {
+    /// Answer scripts: files, bundled modules, or - for standard input
+    Run {
+        #[command(flatten)]
+        scripts: Scripts,
+        /// The form of the answers
+        #[arg(long, value_enum, default_value_t = Format::Text)]
+        format: Format,
+        /// Write the answers to this file instead of standard output
+        #[arg(long, value_name = "FILE")]
+        output: Option<PathBuf>,
+    },
+    /// Read and check scripts without answering them
+    Check {
+        #[command(flatten)]
+        scripts: Scripts,
+    },
+    /// List the bundled modules, or show one
+    Library {
+        /// The module, as atmosphere.momentum
+        name: Option<String>,
+    },
+}
+
+#[derive(Args)]
+struct Scripts {
+    /// A file (it holds a / or ends in .scl), a bundled module, or -
+    #[arg(required = true, value_name = "FILE")]
+    names: Vec<String>,
+    /// Take warnings for errors
+    #[arg(long)]
+    strict: bool,
+    /// Let scripts use files below this folder
+    #[arg(long, value_name = "DIR")]
+    root: Option<PathBuf>,
+}
+
+#[derive(Clone, Copy, PartialEq, Eq, ValueEnum)]
+enum Format {
+    /// For reading at a terminal
+    Text,
+    /// For other programs
+    Json,
+}
+
+/// The files of this machine.
+struct Disk;
+
+impl Files for Disk {
+    fn canonical(&self, path: &Path) -> Result<PathBuf, String> {
+        let path = if path.as_os_str().is_empty() { Path::new(".") } else { path };
+        fs::canonicalize(path).map_err(|error| reason(&error))
+    }
+
+    fn read(&self, path: &Path) -> Result<Vec<u8>, String> {
+        fs::read(path).map_err(|error| reason(&error))
+    }
+}
+
+fn reason(error: &io::Error) -> String {
+    match error.kind() {
+        io::ErrorKind::NotFound => "there is no such file".to_owned(),
+        io::ErrorKind::PermissionDenied => "reading it is not allowed".to_owned(),
+        io::ErrorKind::IsADirectory => "it is a folder".to_owned(),
+        _ => error.to_string(),
+    }
+}
+
+fn main() -> ExitCode {
+    let words = Words::parse();
+    let done = match &words.command {
+        Command::Run { scripts, format, output } => run(scripts, *format, output.as_deref()),
+        Command::Check { scripts } => check(scripts),
+        Command::Library { name } => show_library(name.as_deref()),
+    };
+    match done {
+        Ok(code) => code,
+        // Whoever read the answers has gone; that is no fault.
+        Err(error) if error.kind() == io::ErrorKind::BrokenPipe => ExitCode::SUCCESS,
+        Err(error) => {
+            let _ = writeln!(io::stderr(), "cannot-write: {error}");
+            ExitCode::from(2)
+        }
+    }
+}
+
+fn exit_code(status: Status) -> ExitCode {
+    ExitCode::from(match status {
+        Status::Ok => 0,
+        Status::Unmet => 1,
+        Status::Invalid => 2,
+    })
+}
+
+// Reading -------------------------------------------------------------------------------------
+
+/// A script as it was named on the command line.
+struct Input {
+    name: String,
+    path: Option<PathBuf>,
+    folder: PathBuf,
+    text: Result<String, Box<ModelError>>,
+}
+
+fn read(name: &str) -> Input {
+    if name == "-" {
+        return read_standard_input();
+    }
+    if !name.contains('/') && !name.ends_with(".scl") {
+        let text = library::find(name).map(|module| module.text.to_owned());
+        let known = library::MODULES.iter().map(|module| module.name);
+        return Input {
+            name: name.to_owned(),
+            path: None,
+            folder: PathBuf::new(),
+            text: text.ok_or_else(|| {
+                Box::new(ModelError::UnknownModule {
+                    name: name.to_owned(),
+                    span: None,
+                    nearest: names::nearest(name, known),
+                })
+            }),
+        };
+    }
+    let path = PathBuf::from(name);
+    let bytes = fs::read(&path).map_err(|error| {
+        Box::new(ModelError::UnreadableFile {
+            path: name.to_owned(),
+            reason: reason(&error),
+            span: None,
+        })
+    });
+    Input {
+        name: name.to_owned(),
+        folder: path.parent().map(Path::to_owned).unwrap_or_default(),
+        path: Some(path),
+        text: bytes.and_then(|bytes| utf8(name, bytes)),
+    }
+}
+
+fn read_standard_input() -> Input {
+    let mut bytes = Vec::new();
+    let read = io::stdin().lock().read_to_end(&mut bytes);
+    let name = "standard input";
+    Input {
+        name: name.to_owned(),
+        path: None,
+        folder: PathBuf::new(),
+        text: match read {
+            Ok(_) => utf8(name, bytes),
+            Err(error) => Err(Box::new(ModelError::UnreadableFile {
+                path: name.to_owned(),
+                reason: reason(&error),
+                span: None,
+            })),
+        },
+    }
+}
+
+fn utf8(name: &str, bytes: Vec<u8>) -> Result<String, Box<ModelError>> {
+    String::from_utf8(bytes).map_err(|error| {
+        Box::new(ModelError::NotUtf8 {
+            path: name.to_owned(),
+            offset: error.utf8_error().valid_up_to(),
+            span: None,
+        })
+    })
+}
+
+/// Takes each named script through the session.
+fn outcomes(scripts: &Scripts, take: impl Fn(&Session<'_>, &Input, &str) -> Outcome) -> Vec<Outcome> {
+    scripts
+        .names
+        .iter()
+        .map(|name| {
+            let input = read(name);
+            let session = Session::new()
+                .with_files(&Disk, input.folder.clone())
+                .with_root(scripts.root.clone())
+                .with_strictness(scripts.strict);
+            match &input.text {
+                Ok(text) => take(&session, &input, text),
+                Err(error) => Outcome {
+                    script: input.name.clone(),
+                    diagnostics: vec![error.diagnostic()],
+                    ..Outcome::default()
+                },
+            }
+        })
+        .collect()
+}
+
+// Answering -----------------------------------------------------------------------------------
+
+fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<ExitCode> {
+    let outcomes = outcomes(scripts, |session, input, text| {
+        session.run(&input.name, text, input.path.as_deref())
+    });
+    let colour = output.is_none() && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never;
+    let text = match format {
+        Format::Text => text_report(&outcomes, colour),
+        Format::Json => json_report(&outcomes),
+    };
+    // What a report says already is not drawn a second time beside it.
+    draw_diagnostics(&outcomes, |found| found.is_error() || !report::words::is_in_report(found.code))?;
+    match output {
+        None => io::stdout().lock().write_all(text.as_bytes())?,
+        Some(path) => write_whole(path, &text)?,
+    }
+    Ok(exit_code(worst(&outcomes)))
+}
+
+fn worst(outcomes: &[Outcome]) -> Status {
+    outcomes.iter().map(Outcome::status).max().unwrap_or(Status::Ok)
+}
+
+fn text_report(outcomes: &[Outcome], colour: bool) -> String {
+    let mut out = String::new();
+    for outcome in outcomes {
+        if outcomes.len() > 1 {
+            out.push_str(&format!("{}\n\n", outcome.script));
+        }
+        out.push_str(&report::text::report(outcome, colour));
+        if outcomes.len() > 1 {
+            out.push('\n');
+        }
+    }
+    out
+}
+
+fn json_report(outcomes: &[Outcome]) -> String {
+    let mut values: Vec<serde_json::Value> = outcomes.iter().map(report::json::outcome).collect();
+    let value = match values.len() {
+        1 => values.swap_remove(0),
+        _ => serde_json::Value::Array(values),
+    };
+    format!("{value:#}\n")
+}
+
+fn draw_diagnostics(outcomes: &[Outcome], wanted: impl Fn(&Diagnostic) -> bool) -> io::Result<()> {
+    let colour = io::stderr().is_terminal() && anstream::AutoStream::choice(&io::stderr()) != anstream::ColorChoice::Never;
+    let mut stderr = io::stderr().lock();
+    for outcome in outcomes {
+        stderr.write_all(outcome.drawn(colour, &wanted).as_bytes())?;
+    }
+    Ok(())
+}
+
+/// Writes a file whole or not at all: beside its place first, then under its name.
+fn write_whole(path: &Path, text: &str) -> io::Result<()> {
+    let mut beside = path.as_os_str().to_owned();
+    beside.push(".part");
+    let beside = PathBuf::from(beside);
+    let written = fs::write(&beside, text).and_then(|()| fs::rename(&beside, path));
+    written.map_err(|error| {
+        let _ = fs::remove_file(&beside);
+        io::Error::other(format!("`{}`: {}", path.display(), reason(&error)))
+    })
+}
+
+fn check(scripts: &Scripts) -> io::Result<ExitCode> {
+    let outcomes = outcomes(scripts, |session, input, text| {
+        session.check(&input.name, text, input.path.as_deref())
+    });
+    draw_diagnostics(&outcomes, |_| true)?;
+    let mut stdout = io::stdout().lock();
+    for outcome in outcomes.iter().filter(|outcome| outcome.status() == Status::Ok) {
+        writeln!(stdout, "{}: no errors", outcome.script)?;
+    }
+    Ok(exit_code(worst(&outcomes)))
+}
+
+fn show_library(name: Option<&str>) -> io::Result<ExitCode> {
+    let mut stdout = io::stdout().lock();
+    let Some(name) = name else {
+        let widest = library::MODULES.iter().map(|module| module.name.len()).max().unwrap_or(0);
+        for module in library::MODULES {
+            let headline = report::layout::cut(&library::headline(module), report::layout::WIDTH - widest - 2);
+            writeln!(stdout, "{:widest$}  {headline}", module.name)?;
+        }
+        return Ok(ExitCode::SUCCESS);
+    };
+    match read(name).text {
+        Ok(text) => stdout.write_all(text.as_bytes())?,
+        Err(error) => {
+            drop(stdout);
+            let outcome = Outcome {
+                diagnostics: vec![error.diagnostic()],
+                ..Outcome::default()
+            };
+            draw_diagnostics(&[outcome], |_| true)?;
+            return Ok(ExitCode::from(2));
+        }
+    }
+    Ok(ExitCode::SUCCESS)
+}

@@ -1,0 +1,141 @@
+//! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
+//! and names, never prose.
+
+pub mod claims;
+pub mod names;
+pub mod rank;
+pub mod reduce;
+pub mod show;
+pub mod sizes;
+
+use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
+use crate::model::settings::{self, Setting};
+use crate::model::terms::{self, EquationTerms};
+use crate::model::{Model, errors::ModelError};
+use crate::number::{Exponent, Number};
+
+/// One phenomenon with everything that answers need: its setting and its equations.
+#[derive(Debug)]
+pub struct Case {
+    /// Values, ranges, sizes.
+    pub setting: Setting,
+    /// All equations of the model, in order.
+    pub equations: Vec<EquationTerms>,
+}
+
+/// Works out all phenomena of a model, or the script itself where it has none.
+/// Errors make the script invalid; notes do not.
+pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
+    let phenomena: Vec<Option<usize>> = if model.phenomena.is_empty() {
+        vec![None]
+    } else {
+        (0..model.phenomena.len()).map(Some).collect()
+    };
+    let mut errors = Vec::new();
+    let mut cases = Vec::new();
+    for phenomenon in phenomena {
+        let (case, found) = case(model, phenomenon);
+        cases.extend(case);
+        errors.extend(found);
+    }
+    (cases, errors)
+}
+
+/// Works out one phenomenon.
+pub fn case(model: &Model, phenomenon: Option<usize>) -> (Option<Case>, Vec<ModelError>) {
+    let (setting, mut errors) = settings::build(model, phenomenon);
+    let Some(setting) = setting else {
+        return (None, errors);
+    };
+    let mut equations = Vec::with_capacity(model.equations.len());
+    for idx in 0..model.equations.len() {
+        let (made, found) = terms::terms(model, &setting, idx);
+        equations.push(made);
+        errors.extend(found);
+    }
+    (Some(Case { setting, equations }), errors)
+}
+
+impl Case {
+    /// The open names in an equation's sizes, in order of declaration.
+    pub fn open_in(&self, equation: &EquationTerms) -> Vec<String> {
+        let mut open: Vec<SymbolId> = equation
+            .terms
+            .iter()
+            .filter_map(|term| self.setting.monomial_range(&term.size.resolved).err())
+            .flatten()
+            .collect();
+        open.sort_unstable();
+        open.dedup();
+        open.iter().map(|id| self.setting.names[id.idx()].clone()).collect()
+    }
+
+    /// A symbol's name.
+    pub fn symbol_name(&self, symbol: &Symbol) -> String {
+        match symbol {
+            Symbol::Declared(id) => self.setting.names[id.idx()].clone(),
+            Symbol::Function(function) => function.text.clone(),
+        }
+    }
+
+    /// A monomial as answers carry it.
+    pub fn factors(&self, monomial: &Monomial) -> Factors {
+        Factors {
+            number: monomial.number.clone(),
+            exponents: monomial
+                .powers()
+                .iter()
+                .map(|(symbol, power)| (self.symbol_name(symbol), *power))
+                .collect(),
+        }
+    }
+}
+
+/// Names to exact exponents, in order.
+pub type Exponents = Vec<(String, Exponent)>;
+
+/// The number and exponents of a monomial, as answers carry it.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Factors {
+    /// The exact number.
+    pub number: Number,
+    /// Names to exponents.
+    pub exponents: Exponents,
+}
+
+/// An equation that a request left out, with the names that are open in it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct LeftOut {
+    /// The equation.
+    pub equation: String,
+    /// The open names.
+    pub open: Vec<String>,
+}
+
+/// An answer to one request for one phenomenon.
+#[derive(Debug, Clone)]
+pub struct Answer {
+    /// The request's keyword.
+    pub request: &'static str,
+    /// The phenomenon.
+    pub phenomenon: Option<String>,
+    /// Its title.
+    pub title: Option<String>,
+    /// The request as written.
+    pub text: String,
+    /// What was left out.
+    pub left_out: Vec<LeftOut>,
+    /// What was found.
+    pub body: Body,
+}
+
+/// The contents of an answer, by request.
+#[derive(Debug, Clone)]
+pub enum Body {
+    /// `show`.
+    Show(show::Shown),
+    /// `rank`.
+    Rank(Vec<rank::RankedEquation>),
+    /// `reduce`.
+    Reduce(reduce::Reduction),
+}

@@ -1,0 +1,1001 @@
+//! Checks names, units and dimensions of everything declared and asked.
+//!
+//! Every expression is walked once in its place; what may be named there depends on the
+//! [`Place`]. A dimension travels with the span that settled it, so that a mismatch
+//! points at both terms.
+
+use crate::algebra::monomial::SymbolId;
+use crate::model::errors::{Alike, Clash, ModelError, Unavailable};
+use crate::model::names::{self, Call, Function};
+use crate::model::{Level, Meaning, Model, declarations, is_given};
+use crate::number::{Exponent, TooLarge};
+use crate::source::Span;
+use crate::syntax::ast::{self, ExprKind};
+use crate::units::{self, Dimension, StandardAtmosphere};
+
+/// Where an expression stands, which decides what it may name.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Place {
+    /// The value of a constant: scales, constants, any function.
+    Constant,
+    /// The value of a scale, the size of a field: the same.
+    Size,
+    /// The formula of a group: groups too.
+    Group,
+    /// An equation: fields, coordinates and derivatives too.
+    Equation,
+    /// A request: scales, constants, groups, processes.
+    Request,
+}
+
+/// What is known of an expression's dimension.
+#[derive(Debug, Clone, Copy)]
+pub enum Dim {
+    /// The number 0, which goes with any dimension.
+    Any,
+    /// This one, settled at this place.
+    Known(Dimension, Span),
+    /// An error was reported.
+    Faulty,
+}
+
+impl Dim {
+    /// The dimension, if it is known.
+    pub fn known(self) -> Option<Dimension> {
+        match self {
+            Dim::Known(dimension, _) => Some(dimension),
+            Dim::Any | Dim::Faulty => None,
+        }
+    }
+}
+
+/// Checks the whole model and fills in the dimensions of its names.
+pub fn check(model: &mut Model) -> Vec<ModelError> {
+    let mut errors = Vec::new();
+    symbols(model, &mut errors);
+    coordinates_and_fields(model, &mut errors);
+    velocity(model, &mut errors);
+    groups(model, &mut errors);
+    derivative_clashes(model, &mut errors);
+    equations(model, &mut errors);
+    balances(model, &mut errors);
+    errors
+}
+
+/// The dimension of an expression in its place.
+pub fn dimension(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>, place: Place, errors: &mut Vec<ModelError>) -> Dim {
+    let mut walker = Walker {
+        model,
+        phenomenon,
+        place,
+        errors,
+    };
+    walker.dimension(expr)
+}
+
+// Declarations --------------------------------------------------------------------------
+
+fn symbols(model: &mut Model, errors: &mut Vec<ModelError>) {
+    let defining: Vec<Vec<usize>> = (0..model.symbols.len())
+        .map(|idx| {
+            let info = &model.symbols[idx];
+            match defining_entry(&info.entries).value {
+                ast::Value::Given { ref nominal, .. } => names::symbols_in(nominal, model, info.local_to)
+                    .into_iter()
+                    .map(SymbolId::idx)
+                    .collect(),
+                ast::Value::Open(_) => Vec::new(),
+            }
+        })
+        .collect();
+    match order(&defining) {
+        Ok(order) => order.into_iter().for_each(|idx| {
+            model.symbols[idx].dimension = symbol_dimension(model, idx, errors);
+        }),
+        Err(ring) => errors.push(circular(model, &ring)),
+    }
+    other_entries(model, errors);
+}
+
+/// The declaration that settles the dimension: the one that opens a name, else the first.
+fn defining_entry(entries: &[(Level, ast::ValueDecl)]) -> &ast::ValueDecl {
+    let open = entries.iter().find(|(_, decl)| !is_given(decl));
+    let (_, decl) = open
+        .or(entries.first())
+        .expect("a symbol is made from its first declaration");
+    decl
+}
+
+/// A ring of symbols that need one another, with the places of their names.
+pub fn circular(model: &Model, ring: &[usize]) -> ModelError {
+    let decl = |idx: &usize| &model.symbols[*idx].entries[0].1.name;
+    ModelError::Circular {
+        names: ring.iter().map(|idx| decl(idx).text.clone()).collect(),
+        spans: ring.iter().map(|idx| decl(idx).span).collect(),
+    }
+}
+
+fn symbol_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Option<Dimension> {
+    let info = &model.symbols[idx];
+    value_dimension(model, defining_entry(&info.entries), info.local_to, errors).known()
+}
+
+fn value_dimension(model: &Model, decl: &ast::ValueDecl, phenomenon: Option<usize>, errors: &mut Vec<ModelError>) -> Dim {
+    let place = match decl.kind {
+        ast::ValueKind::Scale => Place::Size,
+        ast::ValueKind::Constant => Place::Constant,
+    };
+    match &decl.value {
+        ast::Value::Open(text) => match names::unit(text) {
+            Ok(unit) => Dim::Known(unit.dimension, text.span),
+            Err(error) => {
+                errors.push(error);
+                Dim::Faulty
+            }
+        },
+        ast::Value::Given { nominal, spread } => {
+            let may_be_reading = decl.kind == ast::ValueKind::Constant && matches!(spread, ast::Spread::None);
+            let found = match reading(nominal) {
+                Some(span) if may_be_reading && is_offset(nominal) => Dim::Known(Dimension::temperature(), span),
+                Some(_) | None => dimension(nominal, model, phenomenon, place, errors),
+            };
+            spread_dimension(model, spread, found, phenomenon, place, errors);
+            found
+        }
+    }
+}
+
+/// The span of a plain literal, with or without a sign.
+fn reading(expr: &ast::Expr) -> Option<Span> {
+    match &expr.kind {
+        ExprKind::Number(_) => Some(expr.span),
+        ExprKind::Negate(inside) => matches!(inside.kind, ExprKind::Number(_)).then_some(expr.span),
+        _ => None,
+    }
+}
+
+/// Whether a plain literal is a reading on a scale with an offset.
+pub fn is_offset(expr: &ast::Expr) -> bool {
+    match &expr.kind {
+        ExprKind::Number(number) => number
+            .unit
+            .as_ref()
+            .and_then(|text| names::unit(text).ok())
+            .is_some_and(|unit| unit.offset.is_some()),
+        ExprKind::Negate(inside) => is_offset(inside),
+        _ => false,
+    }
+}
+
+fn spread_dimension(
+    model: &Model,
+    spread: &ast::Spread,
+    nominal: Dim,
+    phenomenon: Option<usize>,
+    place: Place,
+    errors: &mut Vec<ModelError>,
+) {
+    let end = match spread {
+        ast::Spread::None => return,
+        ast::Spread::Within(proportion) => {
+            if let Err(error) = declarations::share(proportion) {
+                errors.push(error);
+            }
+            return;
+        }
+        ast::Spread::To(end) | ast::Spread::Margin(end) => end,
+    };
+    if let (ast::Spread::Margin(_), Some(text)) = (spread, percentage(end)) {
+        errors.push(ModelError::ShareAsMargin { span: end.span, text });
+        return;
+    }
+    let found = dimension(end, model, phenomenon, place, errors);
+    if borrows_unit(spread, nominal) {
+        return;
+    }
+    alike(nominal, found, Alike::Range, errors);
+}
+
+/// A literal in per cent, as written.
+fn percentage(expr: &ast::Expr) -> Option<String> {
+    match &expr.kind {
+        ExprKind::Number(number) if number.unit.as_ref()?.text == "%" => Some(format!("{} %", number.text)),
+        _ => None,
+    }
+}
+
+/// Whether a bare number takes the unit of the end behind it: `5 .. 20 m/s`.
+fn borrows_unit(spread: &ast::Spread, nominal: Dim) -> bool {
+    let end = match spread {
+        ast::Spread::To(end) | ast::Spread::Margin(end) => end,
+        ast::Spread::None | ast::Spread::Within(_) => return false,
+    };
+    matches!(nominal, Dim::Any) || nominal.known().is_some_and(|dim| dim.is_one()) && literal_unit(end).is_some()
+}
+
+/// The unit of a literal, with or without a sign.
+pub fn literal_unit(expr: &ast::Expr) -> Option<&ast::UnitText> {
+    match &expr.kind {
+        ExprKind::Number(number) => number.unit.as_ref(),
+        ExprKind::Negate(inside) => literal_unit(inside),
+        _ => None,
+    }
+}
+
+/// Compares two dimensions, and reports a difference.
+fn alike(expected: Dim, found: Dim, what: Alike, errors: &mut Vec<ModelError>) {
+    if let (Dim::Known(expected, expected_at), Dim::Known(found, found_at)) = (expected, found)
+        && expected != found
+    {
+        errors.push(ModelError::UnlikeDimensions {
+            expected,
+            expected_at,
+            found,
+            found_at,
+            what,
+        });
+    }
+}
+
+/// All declarations of a name but the one that settled its dimension.
+fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
+    for info in &model.symbols {
+        let defining = defining_entry(&info.entries);
+        let Some(expected) = effective_dimension(info.dimension, defining) else {
+            continue;
+        };
+        for (_, decl) in &info.entries {
+            if !std::ptr::eq(decl, defining) {
+                let found = value_dimension(model, decl, info.local_to, errors);
+                alike(expected, whole_value(found, decl), Alike::Value(info.name.clone()), errors);
+            }
+        }
+    }
+    for (idx, phenomenon) in model.phenomena.iter().enumerate() {
+        for (id, decl) in &phenomenon.values {
+            let info = &model.symbols[id.idx()];
+            let defining = defining_entry(&info.entries);
+            if info.local_to.is_some() && defining.name.span == decl.name.span {
+                continue;
+            }
+            let found = value_dimension(model, decl, Some(idx), errors);
+            if let Some(expected) = effective_dimension(info.dimension, defining) {
+                alike(expected, whole_value(found, decl), Alike::Value(info.name.clone()), errors);
+            }
+        }
+    }
+}
+
+/// A range such as `5 .. 20 m/s` has the dimension of its end.
+fn whole_value(found: Dim, decl: &ast::ValueDecl) -> Dim {
+    let ast::Value::Given { spread, .. } = &decl.value else {
+        return found;
+    };
+    let end = match spread {
+        ast::Spread::To(end) | ast::Spread::Margin(end) => end,
+        ast::Spread::None | ast::Spread::Within(_) => return found,
+    };
+    match literal_unit(end).map(names::unit) {
+        Some(Ok(unit)) if borrows_unit(spread, found) => Dim::Known(unit.dimension, end.span),
+        Some(_) | None => found,
+    }
+}
+
+fn effective_dimension(dimension: Option<Dimension>, defining: &ast::ValueDecl) -> Option<Dim> {
+    dimension.map(|dimension| Dim::Known(dimension, defining.name.span))
+}
+
+fn coordinates_and_fields(model: &mut Model, errors: &mut Vec<ModelError>) {
+    for idx in 0..model.coordinates.len() {
+        let info = &model.coordinates[idx];
+        let found = dimension(&info.size, model, None, Place::Size, errors);
+        if let Some(about) = &info.about {
+            let origin = dimension(about, model, None, Place::Size, errors);
+            alike(found, origin, Alike::Size, errors);
+        }
+        model.coordinates[idx].dimension = found.known();
+    }
+    for idx in 0..model.fields.len() {
+        let found = field_dimension(model, idx, errors);
+        model.fields[idx].dimension = found;
+    }
+}
+
+fn field_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Option<Dimension> {
+    let info = &model.fields[idx];
+    let size = if is_offset(&info.size) {
+        Dim::Known(Dimension::temperature(), info.size.span)
+    } else {
+        dimension(&info.size, model, None, Place::Size, errors)
+    };
+    if let Some(varying) = &info.varying {
+        let found = dimension(varying, model, None, Place::Size, errors);
+        alike(size, found, Alike::Size, errors);
+    }
+    for (place, dependence) in info.coordinates.iter().enumerate() {
+        let name = &dependence.coordinate;
+        let length = dependence
+            .length
+            .as_ref()
+            .map(|length| dimension(length, model, None, Place::Size, errors));
+        let varying = dependence
+            .varying
+            .as_ref()
+            .map(|varying| dimension(varying, model, None, Place::Size, errors));
+        if let Some(varying) = varying {
+            alike(size, varying, Alike::Size, errors);
+        }
+        let repeated = info.coordinates[..place]
+            .iter()
+            .find(|earlier| earlier.coordinate.text == name.text);
+        if let Some(first) = repeated {
+            errors.push(ModelError::SecondValue {
+                name: name.text.clone(),
+                span: name.span,
+                first: first.coordinate.span,
+            });
+        }
+        match coordinate(name, model, errors) {
+            Some(found) => {
+                let expected = found.1.map(|dimension| Dim::Known(dimension, found.0));
+                if let (Some(expected), Some(length)) = (expected, length) {
+                    alike(expected, length, Alike::Size, errors);
+                }
+            }
+            None => continue,
+        }
+    }
+    size.known()
+}
+
+/// The declaration of a coordinate by its name, with its dimension.
+fn coordinate(name: &ast::Name, model: &Model, errors: &mut Vec<ModelError>) -> Option<(Span, Option<Dimension>)> {
+    match model.meaning(&name.text, None) {
+        Some(Meaning::Coordinate(id)) => {
+            let info = &model.coordinates[id.0 as usize];
+            Some((info.name.span, info.dimension))
+        }
+        Some(other) => {
+            errors.push(out_of_place(&name.text, name.span, other, model, "a coordinate"));
+            None
+        }
+        None => {
+            let known = model.coordinates.iter().map(|info| info.name.text.as_str());
+            errors.push(ModelError::UnknownName {
+                name: name.text.clone(),
+                span: name.span,
+                nearest: names::nearest(&name.text, known),
+            });
+            None
+        }
+    }
+}
+
+fn out_of_place(name: &str, span: Span, meaning: Meaning, model: &Model, wanted: &'static str) -> ModelError {
+    let kind = match meaning {
+        Meaning::Symbol(id) => match model.symbols[id.idx()].kind {
+            ast::ValueKind::Scale => "scale",
+            ast::ValueKind::Constant => "constant",
+        },
+        Meaning::Coordinate(_) => "coordinate",
+        Meaning::Field(_) => "field",
+        Meaning::Group(_) => "group",
+    };
+    ModelError::OutOfPlace {
+        name: name.to_owned(),
+        kind,
+        wanted,
+        span,
+    }
+}
+
+/// All components must carry along their coordinates at one rate, that of the time.
+fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
+    let Some(info) = &model.velocity else { return };
+    let mut rate = match model.meaning("t", None) {
+        Some(Meaning::Coordinate(id)) => {
+            let time = &model.coordinates[id.0 as usize];
+            let inverse = time.dimension.and_then(|dim| dim.power(Exponent::ONE.negated()).ok());
+            inverse.map_or(Dim::Any, |dim| Dim::Known(dim, time.name.span))
+        }
+        Some(_) | None => Dim::Any,
+    };
+    for (field, along) in &info.components {
+        let place = coordinate(along, model, errors);
+        let meaning = model.meaning(&field.text, None);
+        let Some(Meaning::Field(id)) = meaning else {
+            errors.push(match meaning {
+                Some(other) => out_of_place(&field.text, field.span, other, model, "a field"),
+                None => unknown(&field.text, field.span, model, None),
+            });
+            continue;
+        };
+        let (Some((_, Some(length))), Some(speed)) = (place, model.fields[id.0 as usize].dimension) else {
+            continue;
+        };
+        if let Ok(found) = speed.over(&length) {
+            let found = Dim::Known(found, field.span);
+            alike(rate, found, Alike::Terms, errors);
+            if matches!(rate, Dim::Any) {
+                rate = found;
+            }
+        }
+    }
+}
+
+fn unknown(name: &str, span: Span, model: &Model, phenomenon: Option<usize>) -> ModelError {
+    ModelError::UnknownName {
+        name: name.to_owned(),
+        span,
+        nearest: names::nearest(name, model.visible_names(phenomenon)),
+    }
+}
+
+fn groups(model: &Model, errors: &mut Vec<ModelError>) {
+    for info in &model.groups {
+        if let Dim::Known(dimension, span) = dimension(&info.value, model, None, Place::Group, errors)
+            && !dimension.is_one()
+        {
+            errors.push(ModelError::NotDimensionless {
+                dimension,
+                span,
+                what: "a group",
+            });
+        }
+    }
+    let uses: Vec<Vec<usize>> = model.groups.iter().map(|info| groups_in(&info.value, model)).collect();
+    if let Err(ring) = order(&uses) {
+        let name = |idx: &usize| &model.groups[*idx].name;
+        errors.push(ModelError::Circular {
+            names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
+            spans: ring.iter().map(|idx| name(idx).span).collect(),
+        });
+    }
+}
+
+fn groups_in(expr: &ast::Expr, model: &Model) -> Vec<usize> {
+    let mut found = Vec::new();
+    names::visit_names(expr, &mut |name, _| {
+        if let Some(Meaning::Group(id)) = model.meaning(name, None) {
+            found.push(id.0 as usize);
+        }
+    });
+    found
+}
+
+/// A name `d_x` beside a coordinate `x` would spell a derivative.
+fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
+    for coordinate in &model.coordinates {
+        let spelt = format!("d_{}", coordinate.name.text);
+        let span = match model.meaning(&spelt, None) {
+            Some(Meaning::Symbol(id)) => model.symbols[id.idx()].entries[0].1.name.span,
+            Some(Meaning::Coordinate(id)) => model.coordinates[id.0 as usize].name.span,
+            Some(Meaning::Field(id)) => model.fields[id.0 as usize].name.span,
+            Some(Meaning::Group(id)) => model.groups[id.0 as usize].name.span,
+            None => continue,
+        };
+        errors.push(ModelError::NameClash {
+            name: spelt,
+            span,
+            first: Some(coordinate.name.span),
+            what: Clash::Derivative,
+        });
+    }
+}
+
+fn equations(model: &mut Model, errors: &mut Vec<ModelError>) {
+    let dimensions = model
+        .equations
+        .iter()
+        .map(|equation| match &equation.body {
+            ast::EquationBody::Written { left, right } => {
+                let left = dimension(left, model, None, Place::Equation, errors);
+                let right = dimension(right, model, None, Place::Equation, errors);
+                alike(left, right, Alike::Sides, errors);
+                left.known().or(right.known())
+            }
+            ast::EquationBody::Made(_) => None,
+        })
+        .collect();
+    model.equation_dimensions = dimensions;
+}
+
+fn balances(model: &Model, errors: &mut Vec<ModelError>) {
+    for balance in &model.balances {
+        for part in &balance.parts {
+            if let Err(error) = equation(model, &part.equation) {
+                errors.push(error);
+            }
+        }
+    }
+}
+
+/// The index of an equation by its name.
+///
+/// # Errors
+/// [`ModelError::UnknownEquation`].
+pub fn equation(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
+    model.equation(&name.text).ok_or_else(|| ModelError::UnknownEquation {
+        name: name.text.clone(),
+        span: name.span,
+        nearest: names::nearest(&name.text, model.equations.iter().map(|found| found.name.text.as_str())),
+    })
+}
+
+// Order -----------------------------------------------------------------------------------
+
+/// An order in which everything comes after what it needs, or a ring.
+///
+/// # Errors
+/// The members of a ring, in order.
+pub fn order(needs: &[Vec<usize>]) -> Result<Vec<usize>, Vec<usize>> {
+    #[derive(Clone, Copy, PartialEq)]
+    enum Mark {
+        New,
+        Open,
+        Done,
+    }
+    let mut marks = vec![Mark::New; needs.len()];
+    let mut order = Vec::with_capacity(needs.len());
+    // A stack of its own, since chains of definitions may be as long as a script.
+    let mut stack: Vec<(usize, usize)> = Vec::new();
+    for start in 0..needs.len() {
+        if marks[start] != Mark::New {
+            continue;
+        }
+        marks[start] = Mark::Open;
+        stack.push((start, 0));
+        while let Some((idx, next)) = stack.last_mut() {
+            let idx = *idx;
+            match needs[idx].get(*next).copied() {
+                None => {
+                    marks[idx] = Mark::Done;
+                    order.push(idx);
+                    stack.pop();
+                }
+                Some(needed) => {
+                    *next += 1;
+                    match marks[needed] {
+                        Mark::Done => {}
+                        Mark::New => {
+                            marks[needed] = Mark::Open;
+                            stack.push((needed, 0));
+                        }
+                        Mark::Open => {
+                            let path = stack.iter().map(|(idx, _)| *idx);
+                            return Err(path.skip_while(|idx| *idx != needed).collect());
+                        }
+                    }
+                }
+            }
+        }
+    }
+    Ok(order)
+}
+
+// Expressions -----------------------------------------------------------------------------
+
+struct Walker<'a> {
+    model: &'a Model,
+    phenomenon: Option<usize>,
+    place: Place,
+    errors: &'a mut Vec<ModelError>,
+}
+
+impl Walker<'_> {
+    fn fault(&mut self, error: ModelError) -> Dim {
+        self.errors.push(error);
+        Dim::Faulty
+    }
+
+    fn bounded(&mut self, found: Result<Dimension, TooLarge>, span: Span) -> Dim {
+        match found {
+            Ok(dimension) => Dim::Known(dimension, span),
+            Err(TooLarge) => self.fault(ModelError::TooLarge { span }),
+        }
+    }
+
+    fn dimension(&mut self, expr: &ast::Expr) -> Dim {
+        let span = expr.span;
+        match &expr.kind {
+            ExprKind::Number(number) => self.number(number, span),
+            ExprKind::Name(name) => self.name(name, span),
+            ExprKind::Process { equation, process } => self.process(equation, process, span),
+            ExprKind::Sum(terms) => {
+                let terms: Vec<&ast::Expr> = terms.iter().map(|(_, term)| term).collect();
+                self.alike_all(&terms, &Alike::Terms)
+            }
+            ExprKind::Product(factors) => self.product(factors, span),
+            ExprKind::Negate(inside) | ExprKind::Bracket(inside) => self.dimension(inside),
+            ExprKind::As { expr, .. } if self.place == Place::Equation => self.dimension(expr),
+            ExprKind::As { process, .. } => self.fault(ModelError::WrongForm {
+                found: "a process name",
+                wanted: "no `as` outside an equation",
+                span: process.span,
+            }),
+            ExprKind::Power { base, exponent } => self.power(base, exponent, span),
+            ExprKind::Call { function, order, arguments } => self.call(&function.text, *order, arguments, span),
+            ExprKind::Derivative { operand, by } => self.derivative(operand, by, span),
+            ExprKind::Tuple(_) => self.fault(ModelError::NotAvailable {
+                what: Unavailable::Frames,
+                span,
+            }),
+            ExprKind::Sized { expr, size } => self.sized(expr, size, span),
+            ExprKind::Error => Dim::Faulty,
+        }
+    }
+
+    fn number(&mut self, number: &ast::Number, span: Span) -> Dim {
+        match names::literal(number, span, false) {
+            Ok((value, unit)) => {
+                self.warn_of_unit(number);
+                if value.is_zero() && number.unit.is_none() {
+                    Dim::Any
+                } else {
+                    Dim::Known(unit.dimension, span)
+                }
+            }
+            Err(ModelError::Unit { error, text, span, .. }) => {
+                let mend = self.symbol_mend(number, &text);
+                self.fault(ModelError::Unit { error, text, span, mend })
+            }
+            Err(error) => self.fault(error),
+        }
+    }
+
+    /// Where an unknown unit holds declared symbols: the product or the quotient meant.
+    fn symbol_mend(&self, number: &ast::Number, text: &str) -> Option<String> {
+        let is_declared = |name: &str| self.model.meaning(name, self.phenomenon).is_some();
+        if is_declared(text) {
+            return Some(format!("write `{}*{text}`", number.text));
+        }
+        let (unit, symbol) = text.rsplit_once('/')?;
+        let is_unit = unit == "1" || units::parse_unit(unit).is_ok();
+        (is_unit && is_declared(symbol)).then(|| format!("write `{} {unit} / {symbol}`", number.text))
+    }
+
+    /// A unit that consists of declared names only may have been meant as a product.
+    fn warn_of_unit(&mut self, number: &ast::Number) {
+        let Some(text) = &number.unit else { return };
+        let mut n_names = 0;
+        let all_declared = text
+            .text
+            .split(|c: char| !(c.is_alphabetic() || c == '_'))
+            .filter(|name| !name.is_empty())
+            .inspect(|_| n_names += 1)
+            .all(|name| matches!(self.model.meaning(name, self.phenomenon), Some(Meaning::Symbol(_))));
+        if n_names > 0 && all_declared {
+            let factors = text.text.replace(['.', '·'], "*");
+            let product = match factors.strip_prefix("1/") {
+                Some(rest) => format!("{}/{rest}", number.text),
+                None => format!("{}*{factors}", number.text),
+            };
+            self.errors.push(ModelError::UnitOrSymbol {
+                number: number.text.clone(),
+                unit: text.text.clone(),
+                product,
+                span: text.span,
+            });
+        }
+    }
+
+    fn name(&mut self, name: &str, span: Span) -> Dim {
+        let Some(meaning) = self.model.meaning(name, self.phenomenon) else {
+            if names::is_pi(name) {
+                return Dim::Known(Dimension::one(), span);
+            }
+            return self.fault(unknown(name, span, self.model, self.phenomenon));
+        };
+        let may_vary = self.place == Place::Equation;
+        let may_be_group = matches!(self.place, Place::Group | Place::Equation | Place::Request);
+        let found = match meaning {
+            Meaning::Symbol(id) => self.model.symbols[id.idx()].dimension,
+            Meaning::Group(_) if may_be_group => Some(Dimension::one()),
+            Meaning::Coordinate(id) if may_vary => self.model.coordinates[id.0 as usize].dimension,
+            Meaning::Field(id) if may_vary => self.model.fields[id.0 as usize].dimension,
+            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) => {
+                let wanted = if may_be_group {
+                    "a scale, a constant or a group"
+                } else {
+                    "a scale or a constant"
+                };
+                return self.fault(out_of_place(name, span, meaning, self.model, wanted));
+            }
+        };
+        // Without a dimension an error was reported at the declaration.
+        found.map_or(Dim::Faulty, |dimension| Dim::Known(dimension, span))
+    }
+
+    fn process(&mut self, name: &ast::Name, process: &ast::ProcessName, span: Span) -> Dim {
+        if self.place != Place::Request {
+            return self.fault(ModelError::WrongForm {
+                found: "the size of a process",
+                wanted: "a scale, a constant or a number",
+                span: process.span,
+            });
+        }
+        match equation(self.model, name) {
+            Ok(idx) => match self.model.equation_dimensions.get(idx) {
+                Some(Some(dimension)) => Dim::Known(*dimension, span),
+                Some(None) | None => Dim::Faulty,
+            },
+            Err(error) => self.fault(error),
+        }
+    }
+
+    fn alike_all(&mut self, exprs: &[&ast::Expr], what: &Alike) -> Dim {
+        let mut settled = Dim::Any;
+        let mut is_faulty = false;
+        for expr in exprs {
+            let found = self.dimension(expr);
+            is_faulty |= matches!(found, Dim::Faulty);
+            alike(settled, found, what.clone(), self.errors);
+            if let (Dim::Any, Dim::Known(..)) = (settled, found) {
+                settled = found;
+            }
+        }
+        match settled {
+            Dim::Any if is_faulty => Dim::Faulty,
+            settled => settled,
+        }
+    }
+
+    fn product(&mut self, factors: &[(ast::Operator, ast::Expr)], span: Span) -> Dim {
+        let mut product = Dimension::one();
+        let mut is_faulty = false;
+        for (operator, factor) in factors {
+            let found = match self.dimension(factor) {
+                Dim::Known(found, _) => found,
+                // A product with 0 still has the dimension of the rest.
+                Dim::Any => Dimension::one(),
+                Dim::Faulty => {
+                    is_faulty = true;
+                    continue;
+                }
+            };
+            let next = match operator {
+                ast::Operator::Times => product.times(&found),
+                ast::Operator::Over => product.over(&found),
+            };
+            match next {
+                Ok(next) => product = next,
+                Err(TooLarge) => return self.fault(ModelError::TooLarge { span }),
+            }
+        }
+        if is_faulty { Dim::Faulty } else { Dim::Known(product, span) }
+    }
+
+    fn power(&mut self, base: &ast::Expr, exponent: &ast::Expr, span: Span) -> Dim {
+        let found = self.dimension(base);
+        if names::rational_exponent(exponent).is_some() {
+            return match names::exponent(exponent) {
+                Ok(exponent) => match found {
+                    Dim::Known(found, _) => self.bounded(found.power(exponent), span),
+                    Dim::Any | Dim::Faulty => found,
+                },
+                Err(error) => self.fault(error),
+            };
+        }
+        if !matches!(self.place, Place::Constant | Place::Request) {
+            return self.fault(ModelError::InexactExponent { span: exponent.span });
+        }
+        self.plain_number(exponent, "an exponent");
+        match found {
+            Dim::Known(dimension, _) if !dimension.is_one() => {
+                self.fault(ModelError::InexactExponent { span: exponent.span })
+            }
+            Dim::Known(..) | Dim::Any | Dim::Faulty => found,
+        }
+    }
+
+    /// Checks that an expression is a plain number.
+    fn plain_number(&mut self, expr: &ast::Expr, what: &'static str) {
+        if let Dim::Known(dimension, span) = self.dimension(expr)
+            && !dimension.is_one()
+        {
+            self.errors.push(ModelError::NotDimensionless { dimension, span, what });
+        }
+    }
+
+    fn call(&mut self, function: &str, order: Option<u32>, arguments: &[ast::Expr], span: Span) -> Dim {
+        let found = names::call(function, self.model);
+        match found {
+            Call::Unknown => {
+                let is_declared = self.model.meaning(function, self.phenomenon).is_some();
+                let known = names::FUNCTIONS.iter().map(|(name, _)| *name).chain(names::OPERATIONS);
+                let nearest = names::nearest(function, known);
+                self.fault(ModelError::NotAFunction {
+                    name: function.to_owned(),
+                    span,
+                    is_declared,
+                    nearest,
+                })
+            }
+            Call::Mean => self.fault(ModelError::NotAvailable {
+                what: Unavailable::Means,
+                span,
+            }),
+            Call::Vector => self.fault(ModelError::NotAvailable {
+                what: Unavailable::Frames,
+                span,
+            }),
+            Call::Function(found) => self.function(found, function, order, arguments, span),
+            Call::Derivative(id) => {
+                let Some(inside) = self.operand(function, arguments, span) else {
+                    return Dim::Faulty;
+                };
+                let along = self.model.coordinates[id.0 as usize].dimension;
+                self.quotient(inside, along, order.unwrap_or(1), span)
+            }
+            Call::Material => self.material(function, arguments, span),
+        }
+    }
+
+    /// The one argument of an operation that only an equation may hold.
+    fn operand(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Option<Dim> {
+        if self.place != Place::Equation {
+            self.fault(ModelError::WrongForm {
+                found: "a derivative",
+                wanted: "no derivative outside an equation",
+                span,
+            });
+            return None;
+        }
+        if !self.has_count(function, arguments, 1, span) {
+            return None;
+        }
+        Some(self.dimension(&arguments[0]))
+    }
+
+    fn has_count(&mut self, function: &str, arguments: &[ast::Expr], wanted: usize, span: Span) -> bool {
+        let fits = arguments.len() == wanted;
+        if !fits {
+            self.errors.push(ModelError::ArgumentCount {
+                function: function.to_owned(),
+                expected: "one argument",
+                found: arguments.len(),
+                span,
+            });
+        }
+        fits
+    }
+
+    fn quotient(&mut self, inside: Dim, along: Option<Dimension>, order: u32, span: Span) -> Dim {
+        match (inside, along) {
+            (Dim::Known(inside, _), Some(along)) => {
+                let quotient = Exponent::whole(i64::from(order))
+                    .and_then(|order| along.power(order))
+                    .and_then(|below| inside.over(&below));
+                self.bounded(quotient, span)
+            }
+            (Dim::Any, _) => Dim::Any,
+            (Dim::Faulty, _) | (_, None) => Dim::Faulty,
+        }
+    }
+
+    fn material(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Dim {
+        let Some(inside) = self.operand(function, arguments, span) else {
+            return Dim::Faulty;
+        };
+        let Some(velocity) = &self.model.velocity else {
+            return self.fault(ModelError::NoVelocity { span });
+        };
+        let rate = velocity.components.iter().find_map(|(field, along)| {
+            let meanings = (self.model.meaning(&field.text, None)?, self.model.meaning(&along.text, None)?);
+            let (Meaning::Field(field), Meaning::Coordinate(along)) = meanings else {
+                return None;
+            };
+            let speed = self.model.fields[field.0 as usize].dimension?;
+            let length = self.model.coordinates[along.0 as usize].dimension?;
+            length.over(&speed).ok()
+        });
+        self.quotient(inside, rate, 1, span)
+    }
+
+    fn function(
+        &mut self,
+        found: Function,
+        name: &str,
+        order: Option<u32>,
+        arguments: &[ast::Expr],
+        span: Span,
+    ) -> Dim {
+        let raised = |walker: &mut Self, dim: Dim| match (dim, order) {
+            (Dim::Known(dimension, _), Some(order)) => {
+                let power = Exponent::whole(i64::from(order)).and_then(|order| dimension.power(order));
+                walker.bounded(power, span)
+            }
+            (dim, _) => dim,
+        };
+        if let Function::Min | Function::Max = found {
+            let arguments: Vec<&ast::Expr> = arguments.iter().collect();
+            let dim = self.alike_all(&arguments, &Alike::Arguments);
+            return raised(self, dim);
+        }
+        if !self.has_count(name, arguments, 1, span) {
+            return Dim::Faulty;
+        }
+        let argument = &arguments[0];
+        let dim = match found {
+            Function::Abs => self.dimension(argument),
+            Function::Sqrt => match self.dimension(argument) {
+                Dim::Known(inside, _) => self.bounded(inside.power(Exponent::ratio(1, 2)), span),
+                dim => dim,
+            },
+            Function::Plain(_) => {
+                self.plain_number(argument, "the argument of a function");
+                Dim::Known(Dimension::one(), span)
+            }
+            Function::Standard(quantity) => self.standard(quantity, argument, span),
+            Function::Min | Function::Max => Dim::Faulty,
+        };
+        raised(self, dim)
+    }
+
+    fn standard(&mut self, quantity: StandardAtmosphere, height: &ast::Expr, span: Span) -> Dim {
+        let at = self.dimension(height);
+        alike(Dim::Known(Dimension::length(), span), at, Alike::Arguments, self.errors);
+        let unit = match quantity {
+            StandardAtmosphere::Temperature => "K",
+            StandardAtmosphere::Pressure => "Pa",
+            StandardAtmosphere::Density => "kg/m^3",
+        };
+        match units::parse_unit(unit) {
+            Ok(unit) => Dim::Known(unit.dimension, span),
+            Err(_) => Dim::Faulty,
+        }
+    }
+
+    fn derivative(&mut self, operand: &ast::Expr, by: &[(ast::Name, u32)], span: Span) -> Dim {
+        if self.place != Place::Equation {
+            return self.fault(ModelError::WrongForm {
+                found: "a derivative",
+                wanted: "no derivative outside an equation",
+                span,
+            });
+        }
+        let mut dim = self.dimension(operand);
+        for (name, order) in by {
+            let along = coordinate(name, self.model, self.errors).and_then(|(_, dimension)| dimension);
+            dim = self.quotient(dim, along, *order, span);
+        }
+        dim
+    }
+
+    fn sized(&mut self, expr: &ast::Expr, size: &ast::Expr, span: Span) -> Dim {
+        if self.place != Place::Equation {
+            return self.fault(ModelError::WrongForm {
+                found: "a size behind `~`",
+                wanted: "no `~` outside an equation",
+                span,
+            });
+        }
+        if let Some(process) = process_inside(expr) {
+            self.errors.push(ModelError::ProcessInside { span: process });
+        }
+        let inside = self.dimension(expr);
+        self.place = Place::Size;
+        let found = self.dimension(size);
+        self.place = Place::Equation;
+        alike(inside, found, Alike::Size, self.errors);
+        match (inside, found) {
+            (Dim::Known(dimension, _), _) | (_, Dim::Known(dimension, _)) => Dim::Known(dimension, span),
+            (Dim::Any, dim) | (dim, _) => dim,
+        }
+    }
+}
+
+/// The place of an `as` inside an expression.
+fn process_inside(expr: &ast::Expr) -> Option<Span> {
+    match &expr.kind {
+        ExprKind::As { process, .. } => Some(process.span),
+        ExprKind::Sum(terms) => terms.iter().find_map(|(_, term)| process_inside(term)),
+        ExprKind::Product(factors) => factors.iter().find_map(|(_, factor)| process_inside(factor)),
+        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => process_inside(inside),
+        ExprKind::Power { base, .. } => process_inside(base),
+        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => arguments.iter().find_map(process_inside),
+        ExprKind::Derivative { operand, .. } => process_inside(operand),
+        ExprKind::Sized { expr, .. } => process_inside(expr),
+        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => None,
+    }
+}

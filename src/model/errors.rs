@@ -1,0 +1,583 @@
+//! What can be wrong with a model, as data; one `match` turns it into diagnostics.
+
+use crate::diagnostic::Diagnostic;
+use crate::source::Span;
+use crate::units::{Dimension, UnitError};
+
+/// A fault of a model, or something worth saying about it.
+#[derive(Debug, Clone)]
+pub enum ModelError {
+    /// The language has it, this version does not answer it.
+    NotAvailable { what: Unavailable, span: Span },
+    /// A name that nothing declares.
+    UnknownName { name: String, span: Span, nearest: Option<String> },
+    /// A name with brackets behind it that is no function.
+    NotAFunction { name: String, span: Span, is_declared: bool, nearest: Option<String> },
+    /// A function with too few or too many arguments.
+    ArgumentCount { function: String, expected: &'static str, found: usize, span: Span },
+    /// A unit that cannot be read.
+    Unit { error: UnitError, text: String, span: Span, mend: Option<String> },
+    /// A unit that consists of declared names only.
+    UnitOrSymbol { number: String, unit: String, product: String, span: Span },
+    /// A reading on a scale with an offset where a difference or a product is meant.
+    OffsetUnit { unit: String, span: Span },
+    /// A name declared twice with two meanings.
+    NameClash { name: String, span: Span, first: Option<Span>, what: Clash },
+    /// A second value at one level.
+    SecondValue { name: String, span: Span, first: Span },
+    /// A value that replaces one of a lower level.
+    ValueOverridden { name: String, span: Span, first: Span, phenomenon: Option<String> },
+    /// Two process names that meet in one product.
+    TwoProcesses { first: (String, Span), second: (String, Span) },
+    /// An `as` inside an expression with a size of its own.
+    ProcessInside { span: Span },
+    /// Components and coordinates of a velocity that do not pair.
+    VelocityCount { n_fields: usize, n_coordinates: usize, span: Span },
+    /// A kind of name that has no place here.
+    OutOfPlace { name: String, kind: &'static str, wanted: &'static str, span: Span },
+    /// A kind of expression that has no place here.
+    WrongForm { found: &'static str, wanted: &'static str, span: Span },
+    /// Unlike dimensions of two things that must be alike.
+    UnlikeDimensions { expected: Dimension, expected_at: Span, found: Dimension, found_at: Span, what: Alike },
+    /// Something that must be a plain number and is not.
+    NotDimensionless { dimension: Dimension, span: Span, what: &'static str },
+    /// An exponent that is no exact rational number.
+    InexactExponent { span: Span },
+    /// A scale, or its lower end, at or below 0.
+    NotPositive { name: String, value: f64, unit: String, span: Span },
+    /// A tolerance of 1 or more.
+    ToleranceTooWide { span: Span },
+    /// A range whose lower end lies above its upper one, or a factor below 1.
+    RangeUpsideDown { span: Span, is_factor: bool },
+    /// A range of a constant that holds 0.
+    RangeHoldsZero { name: String, span: Span },
+    /// A margin that takes a scale to 0 or below.
+    MarginTooWide { name: String, span: Span },
+    /// A share behind `+-`.
+    ShareAsMargin { span: Span, text: String },
+    /// A range behind a value that follows others.
+    DerivedScale { name: String, span: Span },
+    /// Something that is no product of powers where one is needed.
+    NotAProduct { span: Span, what: Product },
+    /// A number or exponent beyond the limits.
+    TooLarge { span: Span },
+    /// A division by 0.
+    DividesByZero { span: Span },
+    /// A value outside the domain of a function, or not a real number.
+    OutOfDomain { span: Span, what: &'static str },
+    /// Declarations that need one another.
+    Circular { names: Vec<String>, spans: Vec<Span> },
+    /// A script with nothing to answer for.
+    NothingToRank { span: Span },
+    /// An equation written with one term.
+    OneTerm { equation: String, span: Span },
+    /// `D_t` without a velocity.
+    NoVelocity { span: Span },
+    /// Without a time coordinate `D_t` has no tendency.
+    NoTime { span: Span },
+    /// A function of something that varies.
+    NotSplit { span: Span, function: String },
+    /// A derivative along a coordinate on which its field does not depend.
+    ZeroDerivative { equation: String, texts: Vec<String>, span: Span },
+    /// A constant that is 0 takes its terms out.
+    ZeroConstant { equation: String, texts: Vec<String>, names: Vec<String>, phenomenon: Option<String>, span: Span },
+    /// An expression said to be larger than its parts.
+    CancelsUpwards { span: Span, size: f64, largest: f64, unit: String },
+    /// An equation that is not declared.
+    UnknownEquation { name: String, span: Span, nearest: Option<String> },
+    /// A process that an equation does not have.
+    UnknownProcess { name: String, equation: String, span: Span, known: Vec<String> },
+    /// A phenomenon that is not declared.
+    UnknownPhenomenon { name: String, span: Span, nearest: Option<String> },
+    /// A module that the library does not have.
+    UnknownModule { name: String, span: Option<Span>, nearest: Option<String> },
+    /// A file that cannot be read.
+    UnreadableFile { path: String, reason: String, span: Option<Span> },
+    /// A file that is no UTF-8.
+    NotUtf8 { path: String, offset: usize, span: Option<Span> },
+    /// Modules that use one another.
+    UseCycle { names: Vec<String>, spans: Vec<Span> },
+    /// More modules than the limit.
+    TooManyModules { span: Span },
+    /// A file outside the folder of the script.
+    OutsideFolder { path: String, span: Span },
+}
+
+/// What this version does not answer.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Unavailable {
+    /// `frame`, `vector`, `grad` and their like.
+    Frames,
+    /// `field p = p_0 + p'`.
+    Splits,
+    /// `fluctuation`, `mean`.
+    Means,
+    /// `coordinate ... about`.
+    Origins,
+    /// `equation ... from`, `using`.
+    MadeEquations,
+    /// A power of a sum that is not whole, in an equation.
+    PowersOfSums,
+    /// A request, by its keyword.
+    Request(&'static str),
+}
+
+/// What clashes.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Clash {
+    /// A name of the one space.
+    Name,
+    /// A scale with a constant of one name.
+    Kind,
+    /// A built-in function or number.
+    BuiltIn,
+    /// An equation.
+    Equation,
+    /// A balance.
+    Balance,
+    /// A phenomenon.
+    Phenomenon,
+    /// The derivative that a name would spell.
+    Derivative,
+}
+
+/// Which things must have one dimension.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub enum Alike {
+    /// Terms of a sum.
+    Terms,
+    /// Sides of an equation.
+    Sides,
+    /// Sides of a relation.
+    Relation,
+    /// A value and the declaration of its name.
+    Value(String),
+    /// A size and what it is the size of.
+    Size,
+    /// A quantity and the unit it is shown in.
+    Unit,
+    /// Arguments of one function.
+    Arguments,
+    /// The ends of a range.
+    Range,
+}
+
+/// What must be a product of powers.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Product {
+    /// The size of a field or coordinate.
+    Size,
+    /// A named group.
+    Group,
+    /// A term of an equation.
+    Term,
+    /// A limit.
+    Limit,
+}
+
+impl ModelError {
+    /// Puts it into words.
+    pub fn diagnostic(&self) -> Diagnostic {
+        use ModelError as E;
+        match self {
+            E::NotAvailable { what, span } => not_available(*what, *span),
+            E::UnknownName { name, span, nearest } => {
+                let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
+                with_nearest(found, nearest, "declare it, or check its spelling")
+            }
+            E::NotAFunction { name, span, is_declared, nearest } => {
+                not_a_function(name, *span, *is_declared, nearest.as_ref())
+            }
+            E::ArgumentCount { function, expected, found, span } => Diagnostic::error(
+                "unexpected-word",
+                *span,
+                format!("`{function}` takes {expected}, found {found}"),
+            ),
+            E::Unit { error, text, span, mend } => {
+                let found = error.diagnostic(text, *span);
+                match mend {
+                    Some(mend) => found.with_help(mend),
+                    None => found,
+                }
+            }
+            E::UnitOrSymbol { number, unit, product, span } => Diagnostic::warning(
+                "unit-or-symbol",
+                *span,
+                format!("`{number} {unit}` is read with the unit `{unit}`, though every name in it is declared"),
+            )
+            .with_label(format!("read as the unit `{unit}`"))
+            .with_help(format!("for the product of the symbols write `{product}`")),
+            E::OffsetUnit { unit, span } => Diagnostic::error(
+                "offset-unit",
+                *span,
+                format!("`{unit}` is a reading on a scale with an offset"),
+            )
+            .with_label("a difference or a product is needed here")
+            .with_help("write a difference in K; a reading may stand only as the plain value of a constant or the level of a field"),
+            E::NameClash { name, span, first, what } => name_clash(name, *span, *first, *what),
+            E::SecondValue { name, span, first } => {
+                Diagnostic::error("second-value", *span, format!("`{name}` is given a second time"))
+                    .with_label("given again here")
+                    .with_related(*first, "given here first")
+                    .with_help("keep one of the two; a phenomenon may override a value of the script")
+            }
+            E::ValueOverridden { name, span, first, phenomenon } => {
+                let whose = match phenomenon {
+                    Some(phenomenon) => format!("phenomenon `{phenomenon}`"),
+                    None => "the script".to_owned(),
+                };
+                Diagnostic::note("value-overridden", *span, format!("{whose} overrides the value of `{name}`"))
+                    .with_related(*first, "the value it replaces")
+            }
+            E::TwoProcesses { first, second } => Diagnostic::error(
+                "name-clash",
+                second.1,
+                format!("one product would belong to two processes, `{}` and `{}`", first.0, second.0),
+            )
+            .with_label(format!("`{}`", second.0))
+            .with_related(first.1, format!("`{}`", first.0))
+            .with_help("name the whole product instead: `(...) as NAME`"),
+            E::ProcessInside { span } => Diagnostic::error(
+                "unexpected-word",
+                *span,
+                "expected no `as` inside an expression with a size of its own",
+            )
+            .with_help("name the whole expression: `(A + B ~ D) as NAME`"),
+            E::VelocityCount { n_fields, n_coordinates, span } => Diagnostic::error(
+                "unexpected-word",
+                *span,
+                format!("expected as many coordinates as components, found {n_coordinates} for {n_fields}"),
+            ),
+            E::OutOfPlace { name, kind, wanted, span } => Diagnostic::error(
+                "unexpected-word",
+                *span,
+                format!("expected {wanted}, found the {kind} `{name}`"),
+            ),
+            E::WrongForm { found, wanted, span } => {
+                Diagnostic::error("unexpected-word", *span, format!("expected {wanted}, found {found}"))
+            }
+            E::UnlikeDimensions { .. } | E::NotDimensionless { .. } => self.dimension_diagnostic(),
+            E::InexactExponent { span } => Diagnostic::error(
+                "not-a-product",
+                *span,
+                "expected an exact rational number as exponent",
+            )
+            .with_help("write it as a number, `^(2/3)`"),
+            E::NotPositive { .. }
+            | E::ToleranceTooWide { .. }
+            | E::RangeUpsideDown { .. }
+            | E::RangeHoldsZero { .. }
+            | E::MarginTooWide { .. }
+            | E::ShareAsMargin { .. }
+            | E::DerivedScale { .. } => self.value_diagnostic(),
+            E::NotAProduct { span, what } => not_a_product(*span, *what),
+            E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
+                .with_help(format!(
+                    "exponents go up to {}, exact numbers up to {} binary digits",
+                    crate::limits::EXPONENT,
+                    crate::limits::NUMBER_BITS
+                )),
+            E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
+            E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
+            E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),
+            E::NothingToRank { span } => Diagnostic::error("nothing-to-rank", *span, "there is no equation and no request here")
+                .with_help("declare an `equation`, or ask for something with `show` or `groups`"),
+            E::OneTerm { equation, span } => Diagnostic::error(
+                "one-term",
+                *span,
+                format!("`{equation}` is written with one term, which nothing can balance"),
+            )
+            .with_help("write the terms that balance it"),
+            E::NoVelocity { span } => Diagnostic::error("no-velocity", *span, "`D_t` needs to know what carries")
+                .with_help("declare `velocity (u, v, w) along (x, y, z)`"),
+            E::NoTime { span } => Diagnostic::note(
+                "zero-derivative",
+                *span,
+                "there is no coordinate `t`, so `D_t` has no tendency here",
+            ),
+            E::NotSplit { span, function } => Diagnostic::error(
+                "not-split",
+                *span,
+                format!("`{function}` of something that varies has no size by itself"),
+            )
+            .with_help("give the expression a size of its own, `(... ~ SIZE)`, or name a constant level"),
+            E::ZeroDerivative { equation, texts, span } => Diagnostic::note(
+                "zero-derivative",
+                *span,
+                format!("{} in `{equation}` {}: the field does not depend on the coordinate", listed(texts), vanish(texts)),
+            ),
+            E::ZeroConstant { equation, texts, names, phenomenon, span } => Diagnostic::note(
+                "zero-constant",
+                *span,
+                format!(
+                    "{} in `{equation}` {}{}: {} is 0",
+                    listed(texts),
+                    vanish(texts),
+                    phenomenon.as_ref().map(|name| format!(" for {name}")).unwrap_or_default(),
+                    listed(names)
+                ),
+            ),
+            E::CancelsUpwards { span, size, largest, unit } => Diagnostic::error(
+                "cancels-upwards",
+                *span,
+                format!("its size {size:.3e} {unit} is above its largest part, {largest:.3e} {unit}"),
+            )
+            .with_help("the size of a sum whose terms nearly cancel lies below its parts"),
+            E::UnknownEquation { .. }
+            | E::UnknownProcess { .. }
+            | E::UnknownPhenomenon { .. }
+            | E::UnknownModule { .. }
+            | E::UnreadableFile { .. }
+            | E::NotUtf8 { .. }
+            | E::UseCycle { .. }
+            | E::TooManyModules { .. }
+            | E::OutsideFolder { .. } => self.lookup_diagnostic(),
+        }
+    }
+
+    fn dimension_diagnostic(&self) -> Diagnostic {
+        match self {
+            ModelError::UnlikeDimensions { expected, expected_at, found, found_at, what } => {
+                let message = match what {
+                    Alike::Terms => "terms of a sum have unlike dimensions".to_owned(),
+                    Alike::Sides => "the sides of the equation have unlike dimensions".to_owned(),
+                    Alike::Relation => "the sides of the relation have unlike dimensions".to_owned(),
+                    Alike::Value(name) => format!("the value of `{name}` has another dimension than its declaration"),
+                    Alike::Size => "the size has another dimension than what it stands for".to_owned(),
+                    Alike::Unit => "the unit has another dimension than what is shown".to_owned(),
+                    Alike::Arguments => "the arguments have unlike dimensions".to_owned(),
+                    Alike::Range => "the ends of the range have unlike dimensions".to_owned(),
+                };
+                Diagnostic::error(
+                    "unlike-dimensions",
+                    *found_at,
+                    format!("{message}: {} and {}", described(expected), described(found)),
+                )
+                .with_label(described(found))
+                .with_related(*expected_at, described(expected))
+            }
+            ModelError::NotDimensionless { dimension, span, what } => Diagnostic::error(
+                "not-dimensionless",
+                *span,
+                format!("{what} must be a plain number, found {}", described(dimension)),
+            )
+            .with_label(described(dimension)),
+            other => unreachable_words(other),
+        }
+    }
+
+    fn value_diagnostic(&self) -> Diagnostic {
+        use ModelError as E;
+        match self {
+            E::NotPositive { name, value, unit, span } => Diagnostic::error(
+                "not-positive",
+                *span,
+                format!("`{name}` must be positive, found {value} {unit}").trim_end().to_owned(),
+            )
+            .with_help(if name == "tolerance" {
+                "write a share such as `tolerance 10 %`"
+            } else {
+                "a scale is an amount; a number with a sign is a `constant`"
+            }),
+            E::ToleranceTooWide { span } => Diagnostic::error(
+                "too-large",
+                *span,
+                "a tolerance of 100 % or more would drop every term",
+            )
+            .with_help("write a share such as `tolerance 10 %`"),
+            E::RangeUpsideDown { span, is_factor } => {
+                let (message, help) = if *is_factor {
+                    ("a factor below 1 turns the range upside down", "write a factor above 1: `within 2`, `within 20 %`")
+                } else {
+                    ("the lower end lies above the upper one", "write the smaller number first")
+                };
+                Diagnostic::error("range-upside-down", *span, message).with_help(help)
+            }
+            E::RangeHoldsZero { name, span } => Diagnostic::error(
+                "range-holds-zero",
+                *span,
+                format!("the range of `{name}` holds 0, so its size has no lower end"),
+            )
+            .with_help("take a range on one side of 0"),
+            E::MarginTooWide { name, span } => Diagnostic::error(
+                "margin-too-wide",
+                *span,
+                format!("the margin takes `{name}` to 0 or below"),
+            )
+            .with_help("take a smaller margin, or a factor: `within 2`"),
+            E::ShareAsMargin { span, text } => Diagnostic::error(
+                "unlike-dimensions",
+                *span,
+                "a margin behind `+-` has the unit of its value, found a share",
+            )
+            .with_help(format!("write `within {text}`")),
+            E::DerivedScale { name, span } => Diagnostic::error(
+                "derived-scale",
+                *span,
+                format!("`{name}` follows the names in its formula and takes no range of its own"),
+            )
+            .with_help("put the range on a factor: `scale k = 1 within 3`, then `k*...`"),
+            other => unreachable_words(other),
+        }
+    }
+
+    fn lookup_diagnostic(&self) -> Diagnostic {
+        use ModelError as E;
+        let place = |code, span: &Option<Span>, message: String| match span {
+            Some(span) => Diagnostic::error(code, *span, message),
+            None => Diagnostic::without_place(code, message),
+        };
+        match self {
+            E::UnknownEquation { name, span, nearest } => {
+                let found = Diagnostic::error("unknown-equation", *span, format!("there is no equation `{name}`"));
+                with_nearest(found, nearest, "declare it, or check its spelling")
+            }
+            E::UnknownProcess { name, equation, span, known } => Diagnostic::error(
+                "unknown-process",
+                *span,
+                format!("`{equation}` has no process `{name}`"),
+            )
+            .with_help(format!("its processes are {}", listed(known))),
+            E::UnknownPhenomenon { name, span, nearest } => {
+                let found = Diagnostic::error("unknown-phenomenon", *span, format!("there is no phenomenon `{name}`"));
+                with_nearest(found, nearest, "declare it, or check its spelling")
+            }
+            E::UnknownModule { name, span, nearest } => {
+                let found = place("unknown-module", span, format!("the library has no module `{name}`"));
+                with_nearest(found, nearest, "`scalewright library` lists the modules; a file ends in `.scl` or holds a `/`")
+            }
+            E::UnreadableFile { path, reason, span } => {
+                place("unreadable-file", span, format!("cannot read `{path}`: {reason}"))
+            }
+            E::NotUtf8 { path, offset, span } => place(
+                "not-utf8",
+                span,
+                format!("`{path}` is no UTF-8 text: byte {} cannot be read", offset + 1),
+            )
+            .with_help("save it as UTF-8"),
+            E::UseCycle { names, spans } => circular("use-cycle", "these modules use one another", names, spans),
+            E::TooManyModules { span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!("more than {} modules are used", crate::limits::MODULES),
+            ),
+            E::OutsideFolder { path, span } => Diagnostic::error(
+                "outside-folder",
+                *span,
+                format!("`{path}` lies outside the folder of the script"),
+            )
+            .with_help("name a folder that holds both with `--root DIR`"),
+            other => unreachable_words(other),
+        }
+    }
+}
+
+/// For an error that another `match` already put into words.
+fn unreachable_words(error: &ModelError) -> Diagnostic {
+    Diagnostic::without_place("not-available", format!("{error:?}"))
+}
+
+fn not_available(what: Unavailable, span: Span) -> Diagnostic {
+    let subject = match what {
+        Unavailable::Frames => "vectors and frames are",
+        Unavailable::Splits => "split fields are",
+        Unavailable::Means => "fluctuations and means are",
+        Unavailable::Origins => "a coordinate about an origin is",
+        Unavailable::MadeEquations => "equations made of others are",
+        Unavailable::PowersOfSums => "the expansion of a power of a sum is",
+        Unavailable::Request(word) => {
+            return Diagnostic::error(
+                "not-available",
+                span,
+                format!("`{word}` is read, but not answered by this version"),
+            );
+        }
+    };
+    Diagnostic::error("not-available", span, format!("{subject} read, but not answered by this version"))
+}
+
+fn not_a_function(name: &str, span: Span, is_declared: bool, nearest: Option<&String>) -> Diagnostic {
+    let found = Diagnostic::error("unknown-name", span, format!("there is no function `{name}`"));
+    match nearest {
+        _ if is_declared => found.with_help(format!("for a product write `{name}*(...)`")),
+        Some(nearest) => found.with_help(format!("did you mean `{nearest}`?")),
+        None if name.starts_with("d_") => found.with_help("a derivative needs a declared coordinate"),
+        None => found.with_help("for a product write `*` before the bracket"),
+    }
+}
+
+fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagnostic {
+    let message = match what {
+        Clash::Name => format!("`{name}` is declared twice, with two meanings"),
+        Clash::Kind => format!("`{name}` is declared as a scale and as a constant"),
+        Clash::BuiltIn => format!("`{name}` is built in and cannot be declared"),
+        Clash::Equation => format!("there are two equations `{name}`"),
+        Clash::Balance => format!("there are two balances `{name}`"),
+        Clash::Phenomenon => format!("there are two phenomena `{name}`"),
+        Clash::Derivative => format!("`{name}` would also spell a derivative along a declared coordinate"),
+    };
+    let found = Diagnostic::error("name-clash", span, message).with_help("choose another name");
+    match first {
+        Some(first) => found.with_label("declared again here").with_related(first, "declared here first"),
+        None => found,
+    }
+}
+
+fn not_a_product(span: Span, what: Product) -> Diagnostic {
+    let (message, help) = match what {
+        Product::Size => (
+            "a size must be a product of powers of scales and constants",
+            "give the sum a name first: `scale V = U_1 + U_2`",
+        ),
+        Product::Group => (
+            "a group must be a product of powers of scales and constants",
+            "give a sum a name first: `constant g_r = g*(rho_2 - rho_1)/rho_2`",
+        ),
+        Product::Term => (
+            "a term must be a product of powers",
+            "give the expression a size of its own, `(... ~ SIZE)`, or name a constant",
+        ),
+        Product::Limit => ("a limit must be a product of powers of named groups", "write `Ro`, or `Re^-1`"),
+    };
+    Diagnostic::error("not-a-product", span, message).with_help(help)
+}
+
+fn circular(code: &'static str, message: &str, names: &[String], spans: &[Span]) -> Diagnostic {
+    let ring: Vec<&str> = names.iter().chain(names.first()).map(String::as_str).collect();
+    let message = format!("{message}: {}", ring.join(" → "));
+    let Some((&first, others)) = spans.split_first() else {
+        return Diagnostic::without_place(code, message);
+    };
+    let mut found = Diagnostic::error(code, first, message);
+    for (span, name) in others.iter().zip(names.iter().skip(1)) {
+        found = found.with_related(*span, format!("`{name}`"));
+    }
+    found
+}
+
+fn with_nearest(found: Diagnostic, nearest: &Option<String>, otherwise: &str) -> Diagnostic {
+    match nearest {
+        Some(nearest) => found.with_help(format!("did you mean `{nearest}`?")),
+        None => found.with_help(otherwise),
+    }
+}
+
+/// A dimension by name and in base units: `acceleration (m s⁻²)`.
+fn described(dimension: &Dimension) -> String {
+    if dimension.is_one() {
+        return "a number".to_owned();
+    }
+    match dimension.name() {
+        Some(name) => format!("{name} ({})", dimension.base_units()),
+        None => dimension.base_units(),
+    }
+}
+
+fn listed(texts: &[String]) -> String {
+    let quoted: Vec<String> = texts.iter().map(|text| format!("`{text}`")).collect();
+    quoted.join(", ")
+}
+
+fn vanish(texts: &[String]) -> &'static str {
+    if texts.len() == 1 { "vanishes" } else { "vanish" }
+}

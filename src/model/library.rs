@@ -1,0 +1,116 @@
+//! The bundled library: the modules of `stdlib/`, embedded in the program.
+
+/// A bundled module.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Module {
+    /// Its name, `atmosphere.momentum`.
+    pub name: &'static str,
+    /// Its text.
+    pub text: &'static str,
+}
+
+macro_rules! modules {
+    ($($name:literal: $file:literal;)+) => {
+        &[$(Module { name: $name, text: include_str!(concat!("../../stdlib/", $file)) }),+]
+    };
+}
+
+/// All bundled modules, sorted by name.
+pub const MODULES: &[Module] = modules! {
+    "atmosphere.air": "atmosphere/air.scl";
+    "atmosphere.boundary_layer": "atmosphere/boundary_layer.scl";
+    "atmosphere.continuity": "atmosphere/continuity.scl";
+    "atmosphere.gravity_waves": "atmosphere/gravity_waves.scl";
+    "atmosphere.momentum": "atmosphere/momentum.scl";
+    "atmosphere.primitive_pressure": "atmosphere/primitive_pressure.scl";
+    "atmosphere.sea_breeze": "atmosphere/sea_breeze.scl";
+    "atmosphere.thermodynamic": "atmosphere/thermodynamic.scl";
+    "atmosphere.vortex": "atmosphere/vortex.scl";
+    "atmosphere.vorticity": "atmosphere/vorticity.scl";
+    "base.axes": "base/axes.scl";
+    "base.flow_numbers": "base/flow_numbers.scl";
+    "base.gravity": "base/gravity.scl";
+    "base.latitude": "base/latitude.scl";
+    "base.plane": "base/plane.scl";
+    "base.planet": "base/planet.scl";
+    "base.pressure": "base/pressure.scl";
+    "base.rotation_numbers": "base/rotation_numbers.scl";
+    "base.stratification_numbers": "base/stratification_numbers.scl";
+    "constants": "constants.scl";
+    "demo.boundary_current": "demo/boundary_current.scl";
+    "demo.coastal_current": "demo/coastal_current.scl";
+    "demo.harbour_surge": "demo/harbour_surge.scl";
+    "demo.oil_drift": "demo/oil_drift.scl";
+    "demo.ridge_wind": "demo/ridge_wind.scl";
+    "demo.sea_breeze": "demo/sea_breeze.scl";
+    "demo.squall_vortex": "demo/squall_vortex.scl";
+    "demo.tank_eddy": "demo/tank_eddy.scl";
+    "demo.winter_low": "demo/winter_low.scl";
+    "fluid.creeping": "fluid/creeping.scl";
+    "fluid.lubrication": "fluid/lubrication.scl";
+    "fluid.natural_convection": "fluid/natural_convection.scl";
+    "fluid.navier_stokes": "fluid/navier_stokes.scl";
+    "fluid.prandtl_layer": "fluid/prandtl_layer.scl";
+    "fluid.rotating_tank": "fluid/rotating_tank.scl";
+    "named_groups": "named_groups.scl";
+    "ocean.boussinesq": "ocean/boussinesq.scl";
+    "ocean.continuity": "ocean/continuity.scl";
+    "ocean.ekman": "ocean/ekman.scl";
+    "ocean.equatorial": "ocean/equatorial.scl";
+    "ocean.gyre": "ocean/gyre.scl";
+    "ocean.internal_waves": "ocean/internal_waves.scl";
+    "ocean.momentum": "ocean/momentum.scl";
+    "ocean.shallow_water": "ocean/shallow_water.scl";
+    "ocean.surface": "ocean/surface.scl";
+    "ocean.tracer": "ocean/tracer.scl";
+    "ocean.water": "ocean/water.scl";
+};
+
+/// The module of this name.
+pub fn find(name: &str) -> Option<&'static Module> {
+    MODULES.iter().find(|module| module.name == name)
+}
+
+/// The first sentence of a module's head comment.
+pub fn headline(module: &Module) -> String {
+    let head: Vec<&str> = module
+        .text
+        .lines()
+        .map_while(|line| line.strip_prefix('#'))
+        .map(str::trim)
+        .take_while(|line| !line.is_empty())
+        .collect();
+    let head = head.join(" ");
+    let end = head.find([':', '.', '?']).unwrap_or(head.len());
+    head[..end].to_owned()
+}
+
+#[cfg(test)]
+mod tests {
+    use std::fs;
+    use std::path::Path;
+
+    use super::*;
+
+    fn files(folder: &Path, prefix: &str, found: &mut Vec<String>) {
+        for entry in fs::read_dir(folder).unwrap() {
+            let path = entry.unwrap().path();
+            let name = path.file_stem().unwrap().to_str().unwrap().to_owned();
+            if path.is_dir() {
+                files(&path, &format!("{prefix}{name}."), found);
+            } else {
+                found.push(format!("{prefix}{name}"));
+            }
+        }
+    }
+
+    #[test]
+    fn every_file_of_the_library_is_embedded() {
+        let mut found = Vec::new();
+        files(Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/stdlib")), "", &mut found);
+        found.sort();
+        let embedded: Vec<&str> = MODULES.iter().map(|module| module.name).collect();
+        assert_eq!(embedded, found);
+        assert!(MODULES.iter().all(|module| !headline(module).is_empty()));
+    }
+}

@@ -1,0 +1,351 @@
+//! Checks requests and claims: that what they name is there and that their expressions
+//! have fitting dimensions; and finds the phenomena that a request answers for.
+
+use crate::analysis::Case;
+use crate::model::dimensions::{self, Dim, Place};
+use crate::model::errors::{Alike, ModelError, Unavailable};
+use crate::model::{Model, declarations, names, terms};
+use crate::source::Span;
+use crate::syntax::ast::{self, Claim, ExprKind, ProcessRef, RequestKind};
+
+/// The phenomena for which a request answers, by their places; `[None]` for a script
+/// without any.
+pub fn targets(model: &Model, own: Option<usize>, request: &ast::Request) -> Vec<Option<usize>> {
+    if let Some(idx) = own {
+        return vec![Some(idx)];
+    }
+    if model.phenomena.is_empty() {
+        return vec![None];
+    }
+    (0..model.phenomena.len())
+        .filter(|idx| {
+            let name = &model.phenomena[*idx].name.text;
+            request.phenomena.is_empty() || request.phenomena.iter().any(|wanted| wanted.text == *name)
+        })
+        .map(Some)
+        .collect()
+}
+
+/// Checks all requests.
+pub fn check(model: &Model) -> Vec<ModelError> {
+    let mut errors = Vec::new();
+    for (own, request) in &model.requests {
+        let before = errors.len();
+        for name in &request.phenomena {
+            if let Err(error) = phenomenon(model, name) {
+                errors.push(error);
+            }
+        }
+        let mut found: Vec<Vec<ModelError>> = Vec::new();
+        for target in targets(model, *own, request) {
+            let mut own_errors = Vec::new();
+            Checker {
+                model,
+                phenomenon: target,
+                errors: &mut own_errors,
+            }
+            .request(request);
+            found.push(own_errors);
+        }
+        // The phenomena mostly find the same.
+        for error in found.into_iter().flatten() {
+            let is_new = errors[before..]
+                .iter()
+                .all(|known| known.diagnostic() != error.diagnostic());
+            if is_new {
+                errors.push(error);
+            }
+        }
+    }
+    errors
+}
+
+fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
+    model.phenomenon(&name.text).ok_or_else(|| ModelError::UnknownPhenomenon {
+        name: name.text.clone(),
+        span: name.span,
+        nearest: names::nearest(&name.text, model.phenomena.iter().map(|found| found.name.text.as_str())),
+    })
+}
+
+struct Checker<'a> {
+    model: &'a Model,
+    phenomenon: Option<usize>,
+    errors: &'a mut Vec<ModelError>,
+}
+
+impl Checker<'_> {
+    fn dimension(&mut self, expr: &ast::Expr) -> Dim {
+        dimensions::dimension(expr, self.model, self.phenomenon, Place::Request, self.errors)
+    }
+
+    fn request(&mut self, request: &ast::Request) {
+        match &request.kind {
+            RequestKind::Show { expr, unit } => self.show(expr, unit.as_ref()),
+            RequestKind::Rank { equations } => self.equations(equations),
+            RequestKind::Reduce { equations, within, save } => {
+                self.equations(equations);
+                if let Some(within) = within
+                    && let Err(error) = declarations::tolerance_value(within)
+                {
+                    self.errors.push(error);
+                }
+                if let Some(save) = save {
+                    self.unavailable("save", save.span);
+                }
+            }
+            RequestKind::Claim(claim) => self.claim(claim),
+            RequestKind::Nondimensionalize { .. } => self.unavailable("nondimensionalize", request.span),
+            RequestKind::Bounds { .. } => self.unavailable("bounds", request.span),
+            RequestKind::Find { .. } => self.unavailable("find", request.span),
+            RequestKind::Layers => self.unavailable("layers", request.span),
+            RequestKind::Groups => self.unavailable("groups", request.span),
+            RequestKind::Limit { .. } => self.unavailable("limit", request.span),
+            RequestKind::Expand { .. } => self.unavailable("expand", request.span),
+            RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
+            RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
+            RequestKind::Compare { .. } => self.unavailable("compare", request.span),
+        }
+    }
+
+    fn unavailable(&mut self, word: &'static str, span: Span) {
+        self.errors.push(ModelError::NotAvailable {
+            what: Unavailable::Request(word),
+            span,
+        });
+    }
+
+    fn equations(&mut self, equations: &[ast::Name]) {
+        for name in equations {
+            if let Err(error) = dimensions::equation(self.model, name) {
+                self.errors.push(error);
+            }
+        }
+    }
+
+    fn show(&mut self, expr: &ast::Expr, unit: Option<&ast::UnitText>) {
+        let found = self.dimension(expr);
+        let Some(text) = unit else { return };
+        match names::unit(text) {
+            Ok(unit) => {
+                let is_level = is_level(expr, self.model, self.phenomenon);
+                if unit.offset.is_some() && !is_level {
+                    self.errors.push(ModelError::OffsetUnit {
+                        unit: text.text.clone(),
+                        span: text.span,
+                    });
+                }
+                if let Dim::Known(expected, expected_at) = found
+                    && expected != unit.dimension
+                {
+                    self.errors.push(ModelError::UnlikeDimensions {
+                        expected,
+                        expected_at,
+                        found: unit.dimension,
+                        found_at: text.span,
+                        what: Alike::Unit,
+                    });
+                }
+            }
+            Err(error) => self.errors.push(error),
+        }
+    }
+
+    fn claim(&mut self, claim: &Claim) {
+        match claim {
+            Claim::Verdict { equation, .. } => self.equations(std::slice::from_ref(equation)),
+            Claim::Relation { left, relation, right, within } => {
+                let left = self.dimension(left);
+                let right = self.dimension(right);
+                if let (Dim::Known(expected, expected_at), Dim::Known(found, found_at)) = (left, right)
+                    && expected != found
+                {
+                    self.errors.push(ModelError::UnlikeDimensions {
+                        expected,
+                        expected_at,
+                        found,
+                        found_at,
+                        what: Alike::Relation,
+                    });
+                }
+                if let Some(within) = within {
+                    self.margin(*relation, within);
+                }
+            }
+        }
+    }
+
+    fn margin(&mut self, relation: ast::Relation, within: &ast::Proportion) {
+        use ast::Relation as R;
+        let result = match relation {
+            R::MuchLess | R::MuchGreater => declarations::tolerance_value(within).map(|_| ()),
+            R::Similar => crate::model::settings::factor(within).map(|_| ()),
+            R::Equal => declarations::share(within).map(|_| ()),
+            R::Less | R::Greater => Err(ModelError::WrongForm {
+                found: "`within`",
+                wanted: "no margin behind a comparison",
+                span: within.span,
+            }),
+        };
+        if let Err(error) = result {
+            self.errors.push(error);
+        }
+    }
+}
+
+/// Calls `visit` for every expression of a request.
+pub fn visit_expressions<'a>(request: &'a ast::Request, visit: &mut impl FnMut(&'a ast::Expr)) {
+    match &request.kind {
+        RequestKind::Show { expr, .. } => visit(expr),
+        RequestKind::Claim(Claim::Relation { left, right, .. }) => {
+            visit(left);
+            visit(right);
+        }
+        RequestKind::Limit { small, .. } => visit(small),
+        RequestKind::Sweep(axis) => {
+            visit(&axis.from);
+            visit(&axis.to);
+        }
+        RequestKind::Regimes(x, y) => [x, y].into_iter().for_each(|axis| {
+            visit(&axis.from);
+            visit(&axis.to);
+        }),
+        RequestKind::Claim(Claim::Verdict { .. })
+        | RequestKind::Rank { .. }
+        | RequestKind::Nondimensionalize { .. }
+        | RequestKind::Reduce { .. }
+        | RequestKind::Bounds { .. }
+        | RequestKind::Find { .. }
+        | RequestKind::Layers
+        | RequestKind::Groups
+        | RequestKind::Expand { .. }
+        | RequestKind::Compare { .. } => {}
+    }
+}
+
+/// Whether an expression is a constant given as a reading on a scale with an offset.
+pub fn is_level(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) -> bool {
+    let ExprKind::Name(name) = &expr.kind else { return false };
+    let Some(crate::model::Meaning::Symbol(id)) = model.meaning(name, phenomenon) else {
+        return false;
+    };
+    match &model.effective(id, phenomenon).1.value {
+        ast::Value::Given { nominal, .. } => dimensions::is_offset(nominal),
+        ast::Value::Open(_) => false,
+    }
+}
+
+/// Checks that the processes named in balances and claims are there.
+pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
+    let mut errors = Vec::new();
+    for part in model.balances.iter().flat_map(|balance| &balance.parts) {
+        let Some(idx) = model.equation(&part.equation.text) else { continue };
+        for process in &part.processes {
+            errors.extend(process_label(model, case, idx, process).err());
+        }
+    }
+    for (_, request) in &model.requests {
+        match &request.kind {
+            RequestKind::Claim(Claim::Verdict { equation, processes, .. }) => {
+                let Some(idx) = model.equation(&equation.text) else { continue };
+                for process in processes {
+                    errors.extend(process_label(model, case, idx, process).err());
+                }
+            }
+            RequestKind::Claim(Claim::Relation { left, right, .. }) => {
+                named_processes(model, case, left, &mut errors);
+                named_processes(model, case, right, &mut errors);
+            }
+            RequestKind::Show { expr, .. } => named_processes(model, case, expr, &mut errors),
+            RequestKind::Nondimensionalize { equations, by: Some(by) } => {
+                for idx in equations.iter().filter_map(|name| model.equation(&name.text)) {
+                    errors.extend(process_label(model, case, idx, by).err());
+                }
+            }
+            _ => {}
+        }
+    }
+    errors
+}
+
+/// Checks the processes in an expression, `x_momentum.coriolis`.
+fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Vec<ModelError>) {
+    match &expr.kind {
+        ExprKind::Process { equation, process } => {
+            if let Some(idx) = model.equation(&equation.text) {
+                errors.extend(known_process(case, idx, &process.text, process.span).err());
+            }
+        }
+        ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| named_processes(model, case, term, errors)),
+        ExprKind::Product(factors) => {
+            factors.iter().for_each(|(_, factor)| named_processes(model, case, factor, errors));
+        }
+        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => named_processes(model, case, inside, errors),
+        ExprKind::Power { base, exponent } => {
+            named_processes(model, case, base, errors);
+            named_processes(model, case, exponent, errors);
+        }
+        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
+            arguments.iter().for_each(|argument| named_processes(model, case, argument, errors));
+        }
+        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => named_processes(model, case, expr, errors),
+        ExprKind::Derivative { operand, .. } => named_processes(model, case, operand, errors),
+        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Error => {}
+    }
+}
+
+/// A process by its name.
+///
+/// # Errors
+/// [`ModelError::UnknownProcess`].
+pub fn known_process(case: &Case, idx: usize, name: &str, span: Span) -> Result<String, ModelError> {
+    let equation = &case.equations[idx];
+    let is_there = equation.terms.iter().any(|term| term.label() == name)
+        || equation.process_names.iter().any(|found| found == name);
+    if is_there {
+        return Ok(name.to_owned());
+    }
+    let mut known: Vec<String> = Vec::new();
+    for label in equation.terms.iter().map(terms::Term::label) {
+        if !known.iter().any(|found| found == label) {
+            known.push(label.to_owned());
+        }
+    }
+    Err(ModelError::UnknownProcess {
+        name: name.to_owned(),
+        equation: equation.name.clone(),
+        span,
+        known,
+    })
+}
+
+/// The label of a process as it is named: a name, a text, or the term itself, matched by
+/// what it comes to.
+///
+/// # Errors
+/// [`ModelError::UnknownProcess`].
+pub fn process_label(model: &Model, case: &Case, idx: usize, process: &ProcessRef) -> Result<String, ModelError> {
+    let expr = match process {
+        ProcessRef::Text(text) => return known_process(case, idx, &text.text, text.span),
+        ProcessRef::Term(expr) => expr,
+    };
+    let by_name = match &expr.kind {
+        ExprKind::Name(name) => Some(known_process(case, idx, name, expr.span)),
+        _ => None,
+    };
+    if let Some(Ok(label)) = by_name {
+        return Ok(label);
+    }
+    let wanted = terms::products(model, &case.setting, idx, expr);
+    let found = match wanted.as_slice() {
+        [wanted] => case.equations[idx].terms.iter().find(|term| {
+            term.product.is_like(wanted) && term.product.number.abs() == wanted.number.abs()
+        }),
+        _ => None,
+    };
+    match (found, by_name) {
+        (Some(term), _) => Ok(term.label().to_owned()),
+        (None, Some(unknown)) => unknown,
+        (None, None) => known_process(case, idx, &crate::syntax::print::expression(expr), expr.span),
+    }
+}

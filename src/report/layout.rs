@@ -1,0 +1,191 @@
+//! Numbers, columns and wrapped lines.
+
+use unicode_width::UnicodeWidthStr;
+
+use crate::units::Range;
+
+/// The width of a terminal that every report fits.
+pub const WIDTH: usize = 80;
+
+/// A number with three significant digits, as people write it.
+pub fn number(value: f64) -> String {
+    significant(value, 3)
+}
+
+/// A number with so many significant digits; a power of ten only where it is shorter.
+pub fn significant(value: f64, digits: usize) -> String {
+    if value == 0.0 {
+        return "0".to_owned();
+    }
+    if !value.is_finite() {
+        return if value.is_nan() { "?" } else { "∞" }.to_owned();
+    }
+    let exponential = format!("{value:.*e}", digits - 1);
+    let (mantissa, exponent) = exponential.split_once('e').unwrap_or((&exponential, "0"));
+    let exponent: i32 = exponent.parse().unwrap_or(0);
+    if (-3..6).contains(&exponent) {
+        let decimals = (digits as i32 - 1 - exponent).max(0) as usize;
+        trimmed(&format!("{value:.decimals$}")).to_owned()
+    } else {
+        format!("{}e{exponent}", trimmed(mantissa))
+    }
+}
+
+/// Without zeros behind the point.
+fn trimmed(text: &str) -> &str {
+    if text.contains('.') {
+        text.trim_end_matches('0').trim_end_matches('.')
+    } else {
+        text
+    }
+}
+
+/// A range: one number, or low, nominal and high.
+pub fn range(range: &Range) -> String {
+    if range.is_exact() {
+        number(range.nominal)
+    } else {
+        format!("{} .. {} .. {}", number(range.low), number(range.nominal), number(range.high))
+    }
+}
+
+/// A share in per cent.
+pub fn percent(share: f64) -> String {
+    let percent = 100.0 * share;
+    if percent != 0.0 && percent.abs() < 1e-3 {
+        return format!("{percent:.0e} %");
+    }
+    format!("{} %", significant(percent, if percent >= 10.0 { 3 } else { 2 }))
+}
+
+/// The width of a text in columns.
+pub fn width(text: &str) -> usize {
+    UnicodeWidthStr::width(text)
+}
+
+/// Filled up with blanks to a width.
+pub fn padded(text: &str, columns: usize) -> String {
+    format!("{text}{}", " ".repeat(columns.saturating_sub(width(text))))
+}
+
+/// Filled up with blanks before it.
+pub fn right(text: &str, columns: usize) -> String {
+    format!("{}{text}", " ".repeat(columns.saturating_sub(width(text))))
+}
+
+/// Cut to a width, with `…` where something went.
+pub fn cut(text: &str, columns: usize) -> String {
+    if width(text) <= columns {
+        return text.to_owned();
+    }
+    let mut kept = String::new();
+    for c in text.chars() {
+        kept.push(c);
+        if width(&kept) + 1 > columns {
+            kept.pop();
+            break;
+        }
+    }
+    kept.push('…');
+    kept
+}
+
+/// A paragraph behind a label, wrapped to the width of a terminal; later lines begin
+/// under the first word. A word that fits no line stands alone.
+pub fn wrapped(label: &str, text: &str) -> String {
+    let indent = width(label);
+    let mut out = String::from(label);
+    let mut column = indent;
+    let mut is_first = true;
+    for word in text.split(' ').filter(|word| !word.is_empty()) {
+        let needed = width(word);
+        if !is_first && column + 1 + needed > WIDTH {
+            out.push('\n');
+            out.push_str(&" ".repeat(indent));
+            column = indent;
+            is_first = true;
+        }
+        if !is_first {
+            out.push(' ');
+            column += 1;
+        }
+        out.push_str(word);
+        column += needed;
+        is_first = false;
+    }
+    out.push('\n');
+    out
+}
+
+/// An SI unit as people write it: `m/s²`.
+pub fn unit(unit: &str) -> String {
+    if unit == "1" {
+        return String::new();
+    }
+    let mut out = String::new();
+    let mut is_power = false;
+    for c in unit.chars() {
+        let raised = match c {
+            '^' => {
+                is_power = true;
+                continue;
+            }
+            '0' => '⁰',
+            '1' => '¹',
+            '2' => '²',
+            '3' => '³',
+            '4' => '⁴',
+            '5' => '⁵',
+            '6' => '⁶',
+            '7' => '⁷',
+            '8' => '⁸',
+            '9' => '⁹',
+            '-' => '⁻',
+            // A rational exponent stays as it is written.
+            '(' if is_power => return unit.to_owned(),
+            '.' => '·',
+            other => other,
+        };
+        let is_digit = c.is_ascii_digit() || c == '-';
+        if is_digit && !is_power {
+            out.push(c);
+        } else {
+            out.push(raised);
+        }
+        is_power &= is_digit;
+    }
+    out
+}
+
+/// A value with its unit.
+pub fn quantity(value: &Range, unit_text: &str) -> String {
+    format!("{} {}", range(value), unit(unit_text)).trim_end().to_owned()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn numbers_have_three_digits() {
+        assert_eq!(number(0.0946317), "0.0946");
+        assert_eq!(number(9.759e-5), "9.76e-5");
+        assert_eq!(number(1024.695), "1025");
+        assert_eq!(number(100.0), "100");
+        assert_eq!(percent(0.0304406), "3 %");
+        assert_eq!(percent(1.0), "100 %");
+    }
+
+    #[test]
+    fn units_are_set_with_raised_powers() {
+        assert_eq!(unit("kg/(m^2.s^2)"), "kg/(m²·s²)");
+        assert_eq!(unit("1/s"), "1/s");
+    }
+
+    #[test]
+    fn paragraphs_hang_and_fit() {
+        let text = wrapped("  label  ", &"word ".repeat(40));
+        assert!(text.lines().all(|line| width(line) <= WIDTH));
+        assert!(text.lines().skip(1).all(|line| line.starts_with("         w")));
+    }
+}

@@ -1,0 +1,199 @@
+//! The sentences that all report forms share.
+
+use crate::analysis::claims::{Held, Measured};
+use crate::analysis::reduce::{Inequality, LostDerivative, Lone, ReducedEquation, ReducedTerm};
+use crate::analysis::{Exponents, Factors};
+use crate::diagnostic::Severity;
+use crate::number::{Exponent, Number};
+use crate::report::layout::{number, percent, quantity, range};
+use crate::syntax::ast::{ClaimWord, Relation};
+use crate::units::Range;
+
+/// A warning or note of one equation.
+#[derive(Debug, Clone)]
+pub struct Warning {
+    /// Its code.
+    pub code: &'static str,
+    /// Its weight.
+    pub severity: Severity,
+    /// What it says.
+    pub message: String,
+    /// Scales that mend it, each with its factor.
+    pub mends: Vec<(String, f64)>,
+}
+
+/// A number times powers of names: `2*Ro/Bu`, `rho*U^2/dP`.
+pub fn product(factor: &Number, exponents: &Exponents) -> String {
+    let powers = |wanted: bool| {
+        exponents
+            .iter()
+            .filter(move |(_, power)| power.is_negative() != wanted)
+            .map(|(name, power)| raised(name, if power.is_negative() { power.negated() } else { *power }))
+    };
+    let mut above: Vec<String> = powers(true).collect();
+    if !factor.is_one() || above.is_empty() {
+        above.insert(0, factor.to_string());
+    }
+    powers(false).fold(above.join("*"), |text, part| format!("{text}/{part}"))
+}
+
+fn raised(name: &str, power: Exponent) -> String {
+    if power == Exponent::ONE {
+        name.to_owned()
+    } else if power.is_whole() {
+        format!("{name}^{power}")
+    } else {
+        format!("{name}^({power})")
+    }
+}
+
+/// A number and exponents as a product.
+pub fn factors(factors: &Factors) -> String {
+    product(&factors.number, &factors.exponents)
+}
+
+/// `Ro <= 0.1`.
+pub fn inequality(condition: &Inequality) -> String {
+    let left = match &condition.groups {
+        Some((rest, groups)) => product(rest, groups),
+        None => factors(&condition.factors),
+    };
+    format!("{left} <= {}", number(condition.limit))
+}
+
+/// The conditions under which a term may go, any of which is enough.
+pub fn condition(term: &ReducedTerm) -> Option<String> {
+    let texts: Vec<String> = term.conditions.iter().map(inequality).collect();
+    (!texts.is_empty()).then(|| texts.join(" or "))
+}
+
+/// The same with present values: `Ro <= 0.1 (now 0.03 .. 0.09 .. 0.28)`.
+pub fn condition_with_values(term: &ReducedTerm) -> String {
+    let texts: Vec<String> = term
+        .conditions
+        .iter()
+        .map(|condition| format!("{} (now {})", inequality(condition), range(&condition.value)))
+        .collect();
+    texts.join(" or ")
+}
+
+/// Scales with the factors that they would have to take.
+pub fn mends(mends: &[(String, f64)]) -> String {
+    let texts: Vec<String> = mends
+        .iter()
+        .map(|(scale, factor)| {
+            if *factor >= 1.0 {
+                format!("{scale} × {}", number(*factor))
+            } else {
+                format!("{scale} ÷ {}", number(1.0 / factor))
+            }
+        })
+        .collect();
+    texts.join(", ")
+}
+
+fn ordinal(order: u32) -> String {
+    match order {
+        1 => "first".to_owned(),
+        2 => "second".to_owned(),
+        3 => "third".to_owned(),
+        4 => "fourth".to_owned(),
+        order => format!("{order}th"),
+    }
+}
+
+/// What a lost derivative means.
+pub fn lost(lost: &LostDerivative) -> String {
+    let condition = if lost.coordinate == "t" {
+        "an initial condition"
+    } else {
+        "a boundary condition"
+    };
+    format!(
+        "the {} derivative of {} along {} is lost, and with it {condition}; `layers` looks for where it comes back",
+        ordinal(lost.order),
+        lost.field,
+        lost.coordinate
+    )
+}
+
+/// The warnings and notes of a reduced equation.
+pub fn warnings(equation: &ReducedEquation) -> Vec<Warning> {
+    let mut found = Vec::new();
+    match &equation.lone {
+        Some(Lone::Term { term, is_derivative, mends: scales }) => {
+            let mut message = format!("`{}` is left with `{term}` alone, which nothing balances", equation.name);
+            if *is_derivative {
+                message.push_str(": it vanishes to leading order");
+            }
+            if !scales.is_empty() {
+                message.push_str(&format!("; a second process would be as large with {}", mends(scales)));
+            }
+            found.push(Warning {
+                code: "lone-leading-term",
+                severity: Severity::Warning,
+                message,
+                mends: scales.clone(),
+            });
+        }
+        Some(Lone::Process { process }) => found.push(Warning {
+            code: "lone-process",
+            severity: Severity::Note,
+            message: format!("the terms of `{process}` are left alone in `{}` and must cancel one another", equation.name),
+            mends: Vec::new(),
+        }),
+        None => {}
+    }
+    found.extend(equation.lost.iter().map(|derivative| Warning {
+        code: "lost-derivative",
+        severity: Severity::Note,
+        message: format!("in `{}` {}", equation.name, lost(derivative)),
+        mends: Vec::new(),
+    }));
+    found
+}
+
+/// What an undetermined field means.
+pub fn undetermined(fields: &[String]) -> String {
+    let verb = if fields.len() == 1 { "is" } else { "are" };
+    format!(
+        "{} {verb} determined by the full equations, but no longer by the reduced ones",
+        fields.join(", ")
+    )
+}
+
+/// What was measured for a claim.
+pub fn measured(held: &Held) -> String {
+    match &held.measured {
+        Measured::Ratio { value, limit, relation } => {
+            let side = match relation {
+                Relation::MuchLess => format!("at most {} is asked for", number(*limit)),
+                Relation::MuchGreater => format!("at least {} is asked for", number(1.0 / limit)),
+                _ => format!("within a factor {} of 1 at the nominal values is asked for", number(*limit)),
+            };
+            format!("ratio {}; {side}", range(value))
+        }
+        Measured::Value { left, right, unit, relation, is_bound } => {
+            let bound = if *is_bound { ", at most so far apart" } else { "" };
+            let (left, right) = match relation {
+                Relation::Equal => (Range::exact(left.nominal), Range::exact(right.nominal)),
+                _ => (*left, *right),
+            };
+            format!("{} against {}{bound}", quantity(&left, unit), quantity(&right, unit))
+        }
+        Measured::Processes { word, found, share } => {
+            let listed = if found.is_empty() { "nothing".to_owned() } else { found.join(", ") };
+            match (word, share) {
+                (ClaimWord::Leading, _) => format!("{listed} leads"),
+                (ClaimWord::Kept, _) => format!("{listed} is kept"),
+                (ClaimWord::Dropped, Some(share)) => format!("{listed} stays, at up to {}", percent(*share)),
+                (ClaimWord::Dropped, None) => "all of it drops".to_owned(),
+            }
+        }
+    }
+}
+
+/// Whether the reports say in their own place what a diagnostic of this code says.
+pub fn is_in_report(code: &str) -> bool {
+    matches!(code, "lone-leading-term" | "lone-process" | "lost-derivative" | "undetermined-field")
+}

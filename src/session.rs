@@ -1,0 +1,472 @@
+//! A session: takes a script, checks it, answers it. The command line and embedders go
+//! through here.
+
+use std::path::{Path, PathBuf};
+
+use crate::analysis::claims::{self, Held};
+use crate::analysis::names::Namer;
+use crate::analysis::show::{self, CaseNames};
+use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::audit::{self, AuditRow};
+use crate::diagnostic::{self, Diagnostic, Severity};
+use crate::model::dimensions::{self, Dim, Place};
+use crate::model::errors::{ModelError, Product};
+use crate::model::modules::{self, Files, Main, NoFiles};
+use crate::model::values::Fault;
+use crate::model::{Model, declarations, requests};
+use crate::number::rational_to_f64;
+use crate::source::{Sources, Span};
+use crate::syntax::ast::{self, Claim, RequestKind};
+
+/// What came of a script.
+#[derive(Debug, Default)]
+pub struct Outcome {
+    /// The name of the script.
+    pub script: String,
+    /// All texts that were read, for drawing diagnostics.
+    pub sources: Sources,
+    /// Errors, warnings and notes in order of place.
+    pub diagnostics: Vec<Diagnostic>,
+    /// Every symbol with its value and source.
+    pub symbols: Vec<AuditRow>,
+    /// The answers in order of the requests.
+    pub answers: Vec<Answer>,
+    /// The claims in order.
+    pub claims: Vec<Held>,
+}
+
+/// How a script ended.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Status {
+    /// All well.
+    Ok,
+    /// A claim is not met.
+    Unmet,
+    /// The script, or one request of it, is invalid.
+    Invalid,
+}
+
+impl Outcome {
+    /// How it ended.
+    pub fn status(&self) -> Status {
+        if self.diagnostics.iter().any(Diagnostic::is_error) {
+            Status::Invalid
+        } else if self.claims.iter().any(|claim| !claim.met) {
+            Status::Unmet
+        } else {
+            Status::Ok
+        }
+    }
+
+    /// The diagnostics drawn against their texts.
+    pub fn drawn(&self, colour: bool, wanted: impl Fn(&Diagnostic) -> bool) -> String {
+        let wanted: Vec<Diagnostic> = self.diagnostics.iter().filter(|found| wanted(found)).cloned().collect();
+        diagnostic::draw(&wanted, &self.sources, colour)
+    }
+}
+
+/// Reads and answers scripts.
+pub struct Session<'f> {
+    files: &'f dyn Files,
+    folder: PathBuf,
+    root: Option<PathBuf>,
+    is_strict: bool,
+}
+
+impl Default for Session<'_> {
+    fn default() -> Self {
+        Session::new()
+    }
+}
+
+impl<'f> Session<'f> {
+    /// A session that reads no files but the bundled library.
+    pub fn new() -> Session<'f> {
+        Session {
+            files: &NoFiles,
+            folder: PathBuf::new(),
+            root: None,
+            is_strict: false,
+        }
+    }
+
+    /// Lets scripts use files, found from this folder.
+    #[must_use]
+    pub fn with_files(mut self, files: &'f dyn Files, folder: impl Into<PathBuf>) -> Session<'f> {
+        self.files = files;
+        self.folder = folder.into();
+        self
+    }
+
+    /// Lets scripts use files from a wider folder.
+    #[must_use]
+    pub fn with_root(mut self, root: Option<PathBuf>) -> Session<'f> {
+        self.root = root;
+        self
+    }
+
+    /// Makes warnings errors.
+    #[must_use]
+    pub fn with_strictness(mut self, is_strict: bool) -> Session<'f> {
+        self.is_strict = is_strict;
+        self
+    }
+
+    /// Reads and checks a script, without answering it.
+    pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
+        let (mut outcome, _) = self.checked(name, text, path);
+        self.finish(&mut outcome);
+        outcome
+    }
+
+    /// Reads, checks and answers a script.
+    pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
+        let (mut outcome, checked) = self.checked(name, text, path);
+        if let Some(checked) = checked {
+            Answering {
+                model: &checked.model,
+                cases: &checked.cases,
+                outcome: &mut outcome,
+            }
+            .all();
+        }
+        self.finish(&mut outcome);
+        outcome
+    }
+
+    fn finish(&self, outcome: &mut Outcome) {
+        if self.is_strict {
+            for found in &mut outcome.diagnostics {
+                if found.severity == Severity::Warning {
+                    found.severity = Severity::Error;
+                }
+            }
+        }
+        diagnostic::sort(&mut outcome.diagnostics);
+    }
+
+    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+        let mut outcome = Outcome {
+            script: name.to_owned(),
+            ..Outcome::default()
+        };
+        let main = Main {
+            name: name.to_owned(),
+            text: text.to_owned(),
+            path: path.map(Path::to_owned),
+            folder: self.folder.clone(),
+            root: self.root.clone().unwrap_or_else(|| self.folder.clone()),
+        };
+        let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
+        let main_span = main_span(&outcome.sources);
+        let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let has_form = errors.iter().all(|found| !found.is_error());
+        outcome.diagnostics.extend(errors);
+        let (model, errors) = declarations::gather(scripts);
+        let (checked, errors) = check_model(model, errors, main_span, has_form);
+        outcome
+            .diagnostics
+            .extend(errors.iter().filter(|error| !is_echo(error, &unreadable)).map(ModelError::diagnostic));
+        let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
+        let checked = checked.filter(|_| is_sound);
+        if let Some(checked) = &checked {
+            outcome.symbols = audit::rows(&checked.model, &checked.cases);
+        }
+        (outcome, checked)
+    }
+}
+
+struct Checked {
+    model: Model,
+    cases: Vec<Case>,
+}
+
+fn main_span(sources: &Sources) -> Span {
+    let first = sources.iter().next().map(|(file, _)| file);
+    Span::new(first.unwrap_or_default(), 0, 0)
+}
+
+fn check_model(
+    mut model: Model,
+    mut errors: Vec<ModelError>,
+    main_span: Span,
+    has_form: bool,
+) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(dimensions::check(&mut model));
+    errors.extend(requests::check(&model));
+    if model.equations.is_empty() && model.requests.is_empty() && has_form {
+        errors.push(ModelError::NothingToRank { span: main_span });
+    }
+    if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
+        return (None, errors);
+    }
+    let (cases, found) = analysis::cases(&model);
+    errors.extend(found);
+    for case in &cases {
+        errors.extend(requests::check_processes(&model, case));
+    }
+    (Some(Checked { model, cases }), errors)
+}
+
+/// Names that stand in statements which could not be read: to call their uses unknown too
+/// would repeat the fault.
+fn unreadable_names(scripts: &[(crate::model::Level, ast::Script)], errors: &[Diagnostic], sources: &Sources) -> Vec<String> {
+    let faulty = scripts
+        .iter()
+        .flat_map(|(_, script)| &script.statements)
+        .filter(|statement| {
+            matches!(statement.kind, ast::StatementKind::Error)
+                || errors.iter().filter_map(|error| error.span).any(|span| {
+                    span.file == statement.span.file
+                        && statement.span.start <= span.start
+                        && span.start <= statement.span.end
+                })
+        });
+    faulty
+        .flat_map(|statement| sources.slice(statement.span).split(|c: char| !(c.is_alphanumeric() || c == '_' || c == '\'')))
+        .filter(|word| !word.is_empty())
+        .map(str::to_owned)
+        .collect()
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+    match error {
+        ModelError::UnknownName { name, .. }
+        | ModelError::UnknownEquation { name, .. }
+        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        _ => false,
+    }
+}
+
+// Answering -----------------------------------------------------------------------------------
+
+struct Answering<'a> {
+    model: &'a Model,
+    cases: &'a [Case],
+    outcome: &'a mut Outcome,
+}
+
+impl Answering<'_> {
+    fn all(&mut self) {
+        let model = self.model;
+        if model.requests.is_empty() {
+            let whole = main_span(&self.outcome.sources);
+            let plain = |kind| ast::Request {
+                kind,
+                phenomena: Vec::new(),
+                span: whole,
+            };
+            let rank = plain(RequestKind::Rank { equations: Vec::new() });
+            let reduce = plain(RequestKind::Reduce {
+                equations: Vec::new(),
+                within: None,
+                save: None,
+            });
+            self.request(None, &rank, "rank");
+            self.request(None, &reduce, "reduce");
+        }
+        for (own, request) in &model.requests {
+            let text = words(self.outcome.sources.slice(request.span));
+            self.request(*own, request, &text);
+        }
+    }
+
+    fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        for target in requests::targets(self.model, own, request) {
+            let cases = self.cases;
+            if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
+                self.answer(case, request, text);
+            }
+        }
+    }
+
+    fn answer(&mut self, case: &Case, request: &ast::Request, text: &str) {
+        let names = CaseNames { model: self.model, case };
+        let answer = |request, left_out, body| Answer {
+            request,
+            phenomenon: case.setting.name.clone(),
+            title: case.setting.title.clone(),
+            text: text.to_owned(),
+            left_out,
+            body,
+        };
+        match &request.kind {
+            RequestKind::Show { expr, unit } => {
+                let si_unit = self.unit_of(expr, case);
+                match show::show(expr, unit.as_ref(), si_unit, &names) {
+                    Ok(shown) => self.outcome.answers.push(answer("show", Vec::new(), Body::Show(shown))),
+                    Err(fault) => self.fault(fault, case, request.span),
+                }
+            }
+            RequestKind::Rank { equations } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let namer = Namer::new(case);
+                    let ranked = wanted
+                        .iter()
+                        .filter_map(|idx| rank::rank(case, &case.equations[*idx], &namer))
+                        .collect();
+                    self.outcome.answers.push(answer("rank", left_out, Body::Rank(ranked)));
+                }
+            }
+            RequestKind::Reduce { equations, within, .. } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let tolerance = within
+                        .as_ref()
+                        .and_then(|within| declarations::tolerance_value(within).ok())
+                        .map_or(case.setting.tolerance(), |info| rational_to_f64(&info.value));
+                    let reduction = reduce::reduce(self.model, case, &wanted, tolerance);
+                    self.warn(case, &reduction);
+                    self.outcome.answers.push(answer("reduce", left_out, Body::Reduce(reduction)));
+                }
+            }
+            RequestKind::Claim(claim) => {
+                let unit = match claim {
+                    Claim::Relation { left, .. } => self.unit_of(left, case),
+                    Claim::Verdict { .. } => String::new(),
+                };
+                match claims::hold(claim, text, request.span, unit, &names) {
+                    Ok(held) => self.outcome.claims.push(held),
+                    Err(fault) => self.fault(fault, case, request.span),
+                }
+            }
+            // The check refused these.
+            RequestKind::Nondimensionalize { .. }
+            | RequestKind::Bounds { .. }
+            | RequestKind::Find { .. }
+            | RequestKind::Layers
+            | RequestKind::Groups
+            | RequestKind::Limit { .. }
+            | RequestKind::Expand { .. }
+            | RequestKind::Sweep(_)
+            | RequestKind::Regimes(..)
+            | RequestKind::Compare { .. } => {}
+        }
+    }
+
+    /// The SI unit of an expression; that of a 0 is 1.
+    fn unit_of(&self, expr: &ast::Expr, case: &Case) -> String {
+        let dim = dimensions::dimension(expr, self.model, case.setting.phenomenon, Place::Request, &mut Vec::new());
+        match dim {
+            Dim::Known(dimension, _) => dimension.unit_text(),
+            Dim::Any | Dim::Faulty => "1".to_owned(),
+        }
+    }
+
+    /// The equations of a request whose scales are known, and those left out; none, with
+    /// an error, if a named one is open or nothing is left.
+    fn equations(&mut self, case: &Case, named: &[ast::Name], span: Span) -> Option<(Vec<usize>, Vec<LeftOut>)> {
+        let mut known = Vec::new();
+        let mut left_out = Vec::new();
+        let indices: Vec<(usize, Span)> = if named.is_empty() {
+            (0..case.equations.len()).map(|idx| (idx, span)).collect()
+        } else {
+            named
+                .iter()
+                .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
+                .collect()
+        };
+        let mut is_open = false;
+        for (idx, place) in indices {
+            let open = case.open_in(&case.equations[idx]);
+            if open.is_empty() {
+                known.push(idx);
+                continue;
+            }
+            let equation = case.equations[idx].name.clone();
+            if !named.is_empty() {
+                is_open = true;
+                self.open_scale(case, Some(&equation), &open, place);
+            }
+            left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && !is_open {
+            is_open = true;
+            let mut open: Vec<String> = Vec::new();
+            for name in left_out.iter().flat_map(|left| &left.open) {
+                if !open.contains(name) {
+                    open.push(name.clone());
+                }
+            }
+            match case.equations.is_empty() {
+                true => self.outcome.diagnostics.push(
+                    Diagnostic::error("nothing-to-rank", span, "there is no equation to answer for")
+                        .with_help("declare an `equation`, or `use` a module that has one"),
+                ),
+                false => self.open_scale(case, None, &open, span),
+            }
+        }
+        (!is_open).then_some((known, left_out))
+    }
+
+    fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
+        let subject = match equation {
+            Some(equation) => format!("`{equation}` needs"),
+            None => "every equation needs".to_owned(),
+        };
+        let whose = case.setting.name.as_ref().map(|name| format!(" for {name}")).unwrap_or_default();
+        let listed: Vec<String> = open.iter().map(|name| format!("`{name}`")).collect();
+        let help = open.first().map(|name| self.value_form(name)).unwrap_or_default();
+        self.outcome.diagnostics.push(
+            Diagnostic::error("open-scale", span, format!("{subject} a value of {}{whose}", listed.join(", ")))
+                .with_help(format!("give it one: {help}")),
+        );
+    }
+
+    /// How a value is given to an open name.
+    fn value_form(&self, name: &str) -> String {
+        let info = self.model.symbols.iter().find(|info| info.name == name);
+        let keyword = match info.map(|info| info.kind) {
+            Some(ast::ValueKind::Constant) => "constant",
+            Some(ast::ValueKind::Scale) | None => "scale",
+        };
+        let unit = info
+            .and_then(|info| info.dimension)
+            .map(|dimension| dimension.unit_text())
+            .filter(|unit| unit != "1")
+            .map(|unit| format!(" {unit}"))
+            .unwrap_or_default();
+        format!("`{keyword} {name} = NUMBER{unit}`")
+    }
+
+    fn fault(&mut self, fault: Fault, case: &Case, span: Span) {
+        match fault {
+            Fault::Open(mut open) => {
+                open.sort_unstable();
+                open.dedup();
+                let names: Vec<String> = open.iter().map(|id| case.setting.names[id.idx()].clone()).collect();
+                self.open_scale(case, Some("this"), &names, span);
+            }
+            fault => self
+                .outcome
+                .diagnostics
+                .extend(fault.error(Product::Term).map(|error| error.diagnostic())),
+        }
+    }
+
+    /// What a reduction warns of, at the equations.
+    fn warn(&mut self, case: &Case, reduction: &reduce::Reduction) {
+        for equation in &reduction.equations {
+            let span = case
+                .equations
+                .iter()
+                .find(|found| found.name == equation.name)
+                .map_or(Span::default(), |found| found.span);
+            for warning in crate::report::words::warnings(equation) {
+                let message = match &case.setting.name {
+                    Some(name) => format!("{name}: {}", warning.message),
+                    None => warning.message,
+                };
+                let mut found = Diagnostic::note(warning.code, span, message);
+                found.severity = warning.severity;
+                self.outcome.diagnostics.push(found);
+            }
+        }
+    }
+}
+
+/// A request as written, with its blanks and line breaks made single blanks.
+fn words(text: &str) -> String {
+    let lines = text.lines().map(|line| line.split('#').next().unwrap_or(""));
+    let joined: Vec<&str> = lines.flat_map(str::split_whitespace).collect();
+    joined.join(" ")
+}
