@@ -5,6 +5,7 @@ use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::{self, Case};
 use crate::model::settings::{Setting, Variable};
 use crate::model::{Model, names, requests};
+use crate::source::Span;
 use crate::syntax::{ast, print};
 use crate::units::{self, Dimension, Range};
 
@@ -31,6 +32,8 @@ pub struct AuditRow {
     pub formula: Option<String>,
     /// Whether a term, a request or something used rests on it.
     pub is_used: bool,
+    /// Where its value is declared.
+    pub place: Span,
 }
 
 impl AuditRow {
@@ -172,6 +175,7 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
         },
         formula,
         is_used,
+        place: decl.name.span,
     })
 }
 
@@ -203,6 +207,7 @@ fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditR
         value: size(setting, &setting.quantities.coordinates.get(idx)?.size.resolved),
         formula: Some(print::expression(&info.size)),
         is_used: true,
+        place: info.name.span,
     })
 }
 
@@ -219,6 +224,7 @@ fn field_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
         value: size(setting, &setting.quantities.fields.get(idx)?.size.resolved),
         formula: Some(print::expression(&info.size)),
         is_used: true,
+        place: info.name.span,
     })
 }
 
@@ -236,5 +242,6 @@ fn group_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
         value: size(setting, &group.size.resolved),
         formula: Some(print::expression(&info.value)),
         is_used: true,
+        place: info.name.span,
     })
 }

@@ -382,26 +382,62 @@ impl Speller<'_> {
         }
     }
 
-    /// A monomial of scales as the language writes it: `rho*f*U*L`, `U^2/L`.
+    /// A monomial of scales as the language writes it: `rho*f*U*L`, `dP/(rho*L)`.
     pub fn monomial(&self, monomial: &Monomial) -> String {
-        let factors = monomial
-            .powers()
-            .iter()
-            .map(|(symbol, power)| Factor {
-                base: Base::Symbol(symbol.clone()),
-                power: *power,
-            })
-            .collect();
-        let text = self.product(&Product {
-            number: monomial.number.clone(),
-            factors,
-        });
-        if monomial.number.is_negative() {
-            format!("-{text}")
-        } else {
-            text
+        self.quotient(&monomial.number, &symbol_factors(monomial))
+    }
+
+    /// The size of a product in the user's own scales, in the order of its factors:
+    /// `f*U` for `f*v`.
+    ///
+    /// # Errors
+    /// [`TooLarge`] beyond the limits.
+    pub fn scale(&self, product: &Product) -> Result<String, TooLarge> {
+        let mut scales = Product::number(product.number.abs());
+        for factor in &product.factors {
+            let size = factors_size(std::slice::from_ref(factor), self.quantities)?.written;
+            scales = scales.times(&Product {
+                number: size.number.abs(),
+                factors: symbol_factors(&size),
+            })?;
+        }
+        Ok(self.quotient(&scales.number, &scales.factors))
+    }
+
+    /// A number times factors, those below the line together.
+    fn quotient(&self, number: &Number, factors: &[Factor]) -> String {
+        let side = |is_below: bool| {
+            factors
+                .iter()
+                .filter(move |factor| factor.power.is_negative() == is_below)
+                .map(move |factor| {
+                    let power = if is_below { factor.power.negated() } else { factor.power };
+                    self.factor(&factor.base, power)
+                })
+        };
+        let mut above: Vec<String> = side(false).collect();
+        let below: Vec<String> = side(true).collect();
+        if !number.is_one() || above.is_empty() {
+            above.insert(0, number.to_string());
+        }
+        let above = above.join("*");
+        match below.as_slice() {
+            [] => above,
+            [single] => format!("{above}/{single}"),
+            several => format!("{above}/({})", several.join("*")),
         }
     }
+}
+
+fn symbol_factors(monomial: &Monomial) -> Vec<Factor> {
+    monomial
+        .powers()
+        .iter()
+        .map(|(symbol, power)| Factor {
+            base: Base::Symbol(symbol.clone()),
+            power: *power,
+        })
+        .collect()
 }
 
 /// An order as superscript; nothing for 1.

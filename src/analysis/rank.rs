@@ -102,7 +102,8 @@ fn ranked_term(case: &Case, equation: &EquationTerms, idx: usize, shares: &Share
         text: term.text.clone(),
         process: term.process.clone(),
         side: term.side,
-        scale: speller(&case.setting, equation).monomial(&term.size.written),
+        // It was computed before, so it is within the limits.
+        scale: speller(&case.setting, equation).scale(&term.product).unwrap_or_default(),
         factors: case.factors(&term.size.resolved),
         size: shares.sizes[idx],
         order: order_of_magnitude(shares.sizes[idx].nominal),

@@ -305,10 +305,16 @@ impl<'a> Maker<'a> {
                     self.flatten(term, is_negative != (*sign == Sign::Minus), tag, side);
                 }
             }
+            ExprKind::Product(factors) => match leading_minus(factors) {
+                Some(factors) => {
+                    let kind = ExprKind::Product(factors);
+                    self.flatten(&ast::Expr { kind, span: expr.span }, !is_negative, tag, side);
+                }
+                None => self.summand(expr, is_negative, tag, side),
+            },
             ExprKind::Number(_)
             | ExprKind::Name(_)
             | ExprKind::Process { .. }
-            | ExprKind::Product(_)
             | ExprKind::Power { .. }
             | ExprKind::Call { .. }
             | ExprKind::Derivative { .. }
@@ -760,6 +766,17 @@ impl<'a> Maker<'a> {
         }
         shortest
     }
+}
+
+/// The factors of a product without the minus before the first, if there is one.
+fn leading_minus(factors: &[(Operator, ast::Expr)]) -> Option<Vec<(Operator, ast::Expr)>> {
+    let (operator, first) = factors.first()?;
+    let ExprKind::Negate(inside) = &first.kind else {
+        return None;
+    };
+    let mut factors = factors.to_vec();
+    factors[0] = (*operator, (**inside).clone());
+    Some(factors)
 }
 
 fn not_a_term(span: Span) -> ModelError {

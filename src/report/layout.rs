@@ -14,21 +14,36 @@ pub fn number(value: f64) -> String {
 
 /// A number with so many significant digits; a power of ten only where it is shorter.
 pub fn significant(value: f64, digits: usize) -> String {
-    if value == 0.0 {
-        return "0".to_owned();
+    if is_plain(value) {
+        plain(value, digits)
+    } else {
+        scientific(value, digits)
     }
+}
+
+/// Whether a number reads well without a power of ten.
+fn is_plain(value: f64) -> bool {
+    value == 0.0 || (1e-3..1e6).contains(&value.abs())
+}
+
+fn scientific(value: f64, digits: usize) -> String {
     if !value.is_finite() {
         return if value.is_nan() { "?" } else { "∞" }.to_owned();
     }
-    let exponential = format!("{value:.*e}", digits - 1);
-    let (mantissa, exponent) = exponential.split_once('e').unwrap_or((&exponential, "0"));
-    let exponent: i32 = exponent.parse().unwrap_or(0);
-    if (-3..6).contains(&exponent) {
-        let decimals = (digits as i32 - 1 - exponent).max(0) as usize;
-        trimmed(&format!("{value:.decimals$}")).to_owned()
-    } else {
-        format!("{}e{exponent}", trimmed(mantissa))
+    let text = format!("{value:.*e}", digits - 1);
+    match text.split_once('e') {
+        Some((mantissa, exponent)) => format!("{}e{exponent}", trimmed(mantissa)),
+        None => text,
     }
+}
+
+fn plain(value: f64, digits: usize) -> String {
+    if value == 0.0 {
+        return "0".to_owned();
+    }
+    let exponent = value.abs().log10().floor() as i32;
+    let decimals = (digits as i32 - 1 - exponent).max(0) as usize;
+    trimmed(&format!("{value:.decimals$}")).to_owned()
 }
 
 /// Without zeros behind the point.
@@ -40,22 +55,29 @@ fn trimmed(text: &str) -> &str {
     }
 }
 
-/// A range: one number, or low, nominal and high.
+/// A range: one number, or low, nominal and high, all written alike.
 pub fn range(range: &Range) -> String {
     if range.is_exact() {
-        number(range.nominal)
-    } else {
-        format!("{} .. {} .. {}", number(range.low), number(range.nominal), number(range.high))
+        return number(range.nominal);
     }
+    let ends = [range.low, range.nominal, range.high];
+    let texts = if ends.iter().all(|end| is_plain(*end)) {
+        ends.map(|end| plain(end, 3))
+    } else {
+        ends.map(|end| scientific(end, 3))
+    };
+    texts.join(" .. ")
 }
 
-/// A share in per cent.
+/// A share in per cent: two digits, three of large ones, one of small ones.
 pub fn percent(share: f64) -> String {
     let percent = 100.0 * share;
-    if percent != 0.0 && percent.abs() < 1e-3 {
-        return format!("{percent:.0e} %");
-    }
-    format!("{} %", significant(percent, if percent >= 10.0 { 3 } else { 2 }))
+    let digits = match percent.abs() {
+        amount if amount >= 10.0 => 3,
+        amount if amount >= 0.1 => 2,
+        _ => 1,
+    };
+    format!("{} %", significant(percent, digits))
 }
 
 /// The width of a text in columns.
@@ -157,9 +179,19 @@ pub fn unit(unit: &str) -> String {
     out
 }
 
+/// SI units that have a name of their own.
+const NAMED: [(&str, &str); 4] = [
+    ("kg/(m.s^2)", "Pa"),
+    ("kg.m/s^2", "N"),
+    ("kg.m^2/s^2", "J"),
+    ("kg.m^2/s^3", "W"),
+];
+
 /// A value with its unit.
 pub fn quantity(value: &Range, unit_text: &str) -> String {
-    format!("{} {}", range(value), unit(unit_text)).trim_end().to_owned()
+    let named = NAMED.iter().find(|(long, _)| *long == unit_text);
+    let text = named.map_or_else(|| unit(unit_text), |(_, short)| (*short).to_owned());
+    format!("{} {text}", range(value)).trim_end().to_owned()
 }
 
 #[cfg(test)]
@@ -170,6 +202,9 @@ mod tests {
     fn numbers_have_three_digits() {
         assert_eq!(number(0.0946317), "0.0946");
         assert_eq!(number(9.759e-5), "9.76e-5");
+        assert_eq!(number(0.00412504), "0.00413");
+        let mixed = Range { low: 5.16e-4, nominal: 1.03e-3, high: 2.06e-3 };
+        assert_eq!(range(&mixed), "5.16e-4 .. 1.03e-3 .. 2.06e-3");
         assert_eq!(number(1024.695), "1025");
         assert_eq!(number(100.0), "100");
         assert_eq!(percent(0.0304406), "3 %");

@@ -92,7 +92,10 @@ fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
             None => "given".to_owned(),
         };
         let _ = writeln!(out, "{}", pen.head(&title));
-        for row in shown.iter().filter(|row| row.phenomenon.as_deref() == phenomenon) {
+        let mut own: Vec<&&AuditRow> = shown.iter().filter(|row| row.phenomenon.as_deref() == phenomenon).collect();
+        // As they were declared; what follows from them comes behind.
+        own.sort_by_key(|row| (row.formula.is_some() && phenomenon.is_some(), row.place));
+        for row in own {
             let label = format!("  {}  ", padded(&row.name, names.min(24)));
             out.push_str(&wrapped(&label, &audit_words(row)));
         }
@@ -182,7 +185,7 @@ fn equation_head(name: &str, title: Option<&String>, unit_text: &str, tolerance:
 }
 
 const VERDICT_WIDTH: usize = 7;
-const SHARE_WIDTH: usize = 8;
+const SHARE_WIDTH: usize = 9;
 
 fn ranked(equation: &RankedEquation, pen: &Pen, out: &mut String) {
     equation_head(&equation.name, equation.title.as_ref(), &equation.unit, equation.tolerance, pen, out);
@@ -198,10 +201,10 @@ fn ranked(equation: &RankedEquation, pen: &Pen, out: &mut String) {
     let room = WIDTH - left - SHARE_WIDTH - 2 - VERDICT_WIDTH;
     let sizes: Vec<Range> = equation.terms.iter().map(|term| term.size).collect();
     let ruler = Ruler::over(&sizes, room);
-    let head = padded(&ruler.head(), ruler.width());
-    let head = format!("{}{head}", " ".repeat(left));
-    let shares = left + ruler.width() + SHARE_WIDTH;
-    let _ = writeln!(out, "{}", padded(&head, shares - 5) + &right("share", 5 + shares.saturating_sub(shares.max(width(&head)))));
+    let head = format!("{}{}", " ".repeat(left), ruler.head());
+    let share_end = left + ruler.width() + SHARE_WIDTH;
+    let share = right("share", share_end.saturating_sub(width(&head)));
+    let _ = writeln!(out, "{head}{share}");
     for idx in &order {
         let term = &equation.terms[*idx];
         let process = if processes > 0 {
@@ -276,7 +279,7 @@ fn reduce(reduction: &Reduction, pen: &Pen, out: &mut String) {
     }
     if !reduction.undetermined.is_empty() {
         let text = words::undetermined(&reduction.undetermined);
-        out.push_str(&wrapped(&pen.alarm("warning   "), &text));
+        out.push_str(&wrapped("warning   ", &text));
         out.push('\n');
     }
 }

@@ -22,19 +22,25 @@ pub struct Warning {
     pub mends: Vec<(String, f64)>,
 }
 
-/// A number times powers of names: `2*Ro/Bu`, `rho*U^2/dP`.
+/// A number times powers of names: `2*Ro/Bu`, `dP/(rho*L)`.
 pub fn product(factor: &Number, exponents: &Exponents) -> String {
-    let powers = |wanted: bool| {
+    let powers = |is_below: bool| {
         exponents
             .iter()
-            .filter(move |(_, power)| power.is_negative() != wanted)
-            .map(|(name, power)| raised(name, if power.is_negative() { power.negated() } else { *power }))
+            .filter(move |(_, power)| power.is_negative() == is_below)
+            .map(move |(name, power)| raised(name, if is_below { power.negated() } else { *power }))
     };
-    let mut above: Vec<String> = powers(true).collect();
+    let mut above: Vec<String> = powers(false).collect();
+    let below: Vec<String> = powers(true).collect();
     if !factor.is_one() || above.is_empty() {
         above.insert(0, factor.to_string());
     }
-    powers(false).fold(above.join("*"), |text, part| format!("{text}/{part}"))
+    let above = above.join("*");
+    match below.as_slice() {
+        [] => above,
+        [single] => format!("{above}/{single}"),
+        several => format!("{above}/({})", several.join("*")),
+    }
 }
 
 fn raised(name: &str, power: Exponent) -> String {
@@ -102,19 +108,27 @@ fn ordinal(order: u32) -> String {
     }
 }
 
-/// What a lost derivative means.
-pub fn lost(lost: &LostDerivative) -> String {
-    let condition = if lost.coordinate == "t" {
-        "an initial condition"
-    } else {
-        "a boundary condition"
+/// What the lost derivatives of an equation mean, in one sentence.
+pub fn lost(lost: &[LostDerivative]) -> String {
+    let derivatives: Vec<String> = lost
+        .iter()
+        .map(|lost| format!("the {} derivative of {} along {}", ordinal(lost.order), lost.field, lost.coordinate))
+        .collect();
+    let in_time = lost.iter().any(|lost| lost.coordinate == "t");
+    let in_space = lost.iter().any(|lost| lost.coordinate != "t");
+    let conditions = match (in_space, in_time) {
+        (true, true) => "boundary and initial conditions",
+        (false, true) => "an initial condition",
+        (true, false) if lost.len() == 1 => "a boundary condition",
+        (true, false) | (false, false) => "boundary conditions",
     };
+    let (verb, them) = if lost.len() == 1 { ("is", "it") } else { ("are", "they") };
     format!(
-        "the {} derivative of {} along {} is lost, and with it {condition}; `layers` looks for where it comes back",
-        ordinal(lost.order),
-        lost.field,
-        lost.coordinate
+        "{} {verb} lost, and with {} {conditions}; `layers` looks for where {them} matter again",
+        derivatives.join(", "),
+        if lost.len() == 1 { "it" } else { "them" },
     )
+    .replace("where it matter again", "where it matters again")
 }
 
 /// The warnings and notes of a reduced equation.
@@ -144,12 +158,14 @@ pub fn warnings(equation: &ReducedEquation) -> Vec<Warning> {
         }),
         None => {}
     }
-    found.extend(equation.lost.iter().map(|derivative| Warning {
-        code: "lost-derivative",
-        severity: Severity::Note,
-        message: format!("in `{}` {}", equation.name, lost(derivative)),
-        mends: Vec::new(),
-    }));
+    if !equation.lost.is_empty() {
+        found.push(Warning {
+            code: "lost-derivative",
+            severity: Severity::Note,
+            message: format!("in `{}` {}", equation.name, lost(&equation.lost)),
+            mends: Vec::new(),
+        });
+    }
     found
 }
 
