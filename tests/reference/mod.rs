@@ -1,0 +1,1 @@
+//! Values made by outside libraries, with the scripts that made them.
