@@ -2,6 +2,7 @@
 //! compared, and how a run is counted and reported. The values stand beside the tests that
 //! use them.
 
+use std::collections::BTreeMap;
 use std::fs;
 use std::io::Write;
 use std::path::PathBuf;
@@ -43,6 +44,11 @@ pub(crate) fn entry<'a>(entries: &'a Value, key: &str, text: &str) -> &'a Value 
 /// The elements of a JSON list; none of anything else.
 pub(crate) fn list(value: &Value) -> &[Value] {
     value.as_array().map_or(&[], Vec::as_slice)
+}
+
+/// A JSON object in the order of its keys.
+pub(crate) fn sorted_map(value: &Value) -> BTreeMap<&String, &Value> {
+    value.as_object().into_iter().flatten().collect()
 }
 
 /// The texts of a JSON list, sorted.

@@ -6,7 +6,7 @@ use std::collections::BTreeMap;
 use serde_json::Value;
 
 use super::requests;
-use crate::harness::{Tally, answers_to, entry, list, sorted_texts, text};
+use crate::harness::{Tally, answers_to, entry, list, sorted_map, sorted_texts, text};
 
 /// The checks of a case and the program's output for its script.
 pub(crate) struct Case<'a> {
@@ -225,11 +225,6 @@ fn process_of(term: &Value) -> String {
     } else {
         text(&term["process"])
     }
-}
-
-/// A JSON object in the order of its keys.
-pub(crate) fn sorted_map(value: &Value) -> BTreeMap<&String, &Value> {
-    value.as_object().into_iter().flatten().collect()
 }
 
 /// The relative margin of a check.

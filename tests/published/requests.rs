@@ -3,9 +3,9 @@
 
 use serde_json::Value;
 
-use super::checks::{Case, sorted_map, within};
+use super::checks::{Case, within};
 use super::span::{Vector, rank, vectors};
-use crate::harness::{Tally, answers_to, entry, list, sorted_texts, text};
+use crate::harness::{Tally, answers_to, entry, list, sorted_map, sorted_texts, text};
 
 /// The `show` answers that a value names, each against the value and the printed number.
 pub(crate) fn compare_value(tally: &mut Tally, case: &Case, check: &Value) {

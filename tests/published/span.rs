@@ -6,8 +6,7 @@ use num_rational::Rational64;
 use num_traits::Zero;
 use serde_json::Value;
 
-use super::checks::sorted_map;
-use crate::harness::{list, text};
+use crate::harness::{list, sorted_map, text};
 
 /// The exponents of a product of powers, by symbol, without zeros.
 pub(crate) type Vector = BTreeMap<String, Rational64>;
