@@ -1,4 +1,6 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
+mod harness;
 mod polyhedra;
 mod published;
+mod reference;

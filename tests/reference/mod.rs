@@ -1,0 +1,12 @@
+//! Values made by outside libraries (SymPy, SciPy, NumPy), against what the program answers.
+//!
+//! The scripts that made them stand here too; `python NAME.py --check` makes the values anew
+//! and compares them with the stored ones (Python 3.11, `requirements.txt`):
+//!
+//! - `nondimensional.py`: random equations, scaled by the rules of `scaling.py` with SymPy;
+//! - `shares.py`: shares over boxes of scales, by linear programs;
+//! - `bounds.py`: intervals over which reduced systems stand, by scanning.
+
+mod bounds;
+mod nondimensional;
+mod shares;
