@@ -4,7 +4,7 @@
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::{self, Case};
 use crate::model::settings::{Setting, Variable};
-use crate::model::{Model, names, requests};
+use crate::model::{FieldInfo, Model, names, requests};
 use crate::source::Span;
 use crate::syntax::{ast, print};
 use crate::units::{self, Dimension, Range};
@@ -75,7 +75,8 @@ pub fn rows(model: &Model, cases: &[Case]) -> Vec<AuditRow> {
                 })
             })
             .collect();
-        let is_told = common.as_ref().is_some_and(|row| row.value.is_none()) && own.len() == cases.len();
+        let is_told =
+            common.as_ref().is_some_and(|row| row.value.is_none()) && own.len() == cases.len();
         rows.extend(common.filter(|_| !is_told));
         rows.extend(own);
     };
@@ -120,7 +121,14 @@ fn used(model: &Model, cases: &[Case]) -> Vec<bool> {
         }
         let levels = std::iter::once(None).chain(cases.iter().map(|case| case.setting.phenomenon));
         for phenomenon in levels {
-            if let (_, ast::ValueDecl { value: ast::Value::Given { nominal, .. }, .. }) = model.effective(id, phenomenon) {
+            if let (
+                _,
+                ast::ValueDecl {
+                    value: ast::Value::Given { nominal, .. },
+                    ..
+                },
+            ) = model.effective(id, phenomenon)
+            {
                 waiting.extend(names::symbols_in(nominal, model, phenomenon));
             }
         }
@@ -143,7 +151,10 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
     }
     let (_, decl) = model.effective(id, setting.phenomenon);
     // A value without a text keeps the one of the declaration that opened the name.
-    let opened = info.entries.iter().find_map(|(_, entry)| entry.notes.title.as_ref());
+    let opened = info
+        .entries
+        .iter()
+        .find_map(|(_, entry)| entry.notes.title.as_ref());
     let (formula, written_unit) = match &decl.value {
         ast::Value::Given { nominal, spread } => {
             let formula = names::has_names(nominal).then(|| print::expression(nominal));
@@ -152,10 +163,13 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
         ast::Value::Open(unit) => (None, Some(unit.text.clone())),
     };
     let written_unit = written_unit.or_else(|| {
-        let open = info.entries.iter().find_map(|(_, entry)| match &entry.value {
-            ast::Value::Open(unit) => Some(unit.text.clone()),
-            ast::Value::Given { .. } => None,
-        });
+        let open = info
+            .entries
+            .iter()
+            .find_map(|(_, entry)| match &entry.value {
+                ast::Value::Open(unit) => Some(unit.text.clone()),
+                ast::Value::Given { .. } => None,
+            });
         open.filter(|unit| unit != "1")
     });
     Some(AuditRow {
@@ -191,7 +205,10 @@ fn display_unit(nominal: &ast::Expr, spread: &ast::Spread) -> Option<String> {
 }
 
 fn size(setting: &Setting, monomial: &Monomial) -> Option<Range> {
-    setting.monomial_range(monomial).ok().filter(|range| range.nominal.is_finite())
+    setting
+        .monomial_range(monomial)
+        .ok()
+        .filter(|range| range.nominal.is_finite())
 }
 
 fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
@@ -204,7 +221,10 @@ fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditR
         unit: unit(info.dimension),
         written_unit: None,
         phenomenon: None,
-        value: size(setting, &setting.quantities.coordinates.get(idx)?.size.resolved),
+        value: size(
+            setting,
+            &setting.quantities.coordinates.get(idx)?.size.resolved,
+        ),
         formula: Some(print::expression(&info.size)),
         is_used: true,
         place: info.name.span,
@@ -221,16 +241,35 @@ fn field_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
         unit: unit(info.dimension),
         written_unit: None,
         phenomenon: None,
-        value: size(setting, &setting.quantities.fields.get(idx)?.size.resolved),
-        formula: Some(print::expression(&info.size)),
+        value: match info.parts.is_empty() {
+            true => size(setting, &setting.quantities.fields.get(idx)?.size.resolved),
+            false => None,
+        },
+        formula: Some(field_formula(info)),
         is_used: true,
         place: info.name.span,
     })
 }
 
+/// The size of a field, or the parts that it is split into.
+fn field_formula(info: &FieldInfo) -> String {
+    if info.parts.is_empty() {
+        return print::expression(&info.size);
+    }
+    let parts: Vec<(bool, &str)> = info
+        .parts
+        .iter()
+        .map(|(sign, part)| (*sign == ast::Sign::Minus, part.text.as_str()))
+        .collect();
+    analysis::reduce::joined(&parts)
+}
+
 fn group_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
     let info = &model.groups[idx];
-    let group = setting.groups.iter().find(|group| group.name == info.name.text)?;
+    let group = setting
+        .groups
+        .iter()
+        .find(|group| group.name == info.name.text)?;
     Some(AuditRow {
         name: info.name.text.clone(),
         kind: "group",

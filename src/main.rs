@@ -73,7 +73,11 @@ struct Disk;
 
 impl Files for Disk {
     fn canonical(&self, path: &Path) -> Result<PathBuf, String> {
-        let path = if path.as_os_str().is_empty() { Path::new(".") } else { path };
+        let path = if path.as_os_str().is_empty() {
+            Path::new(".")
+        } else {
+            path
+        };
         fs::canonicalize(path).map_err(|error| reason(&error))
     }
 
@@ -94,7 +98,11 @@ fn reason(error: &io::Error) -> String {
 fn main() -> ExitCode {
     let words = Words::parse();
     let done = match &words.command {
-        Command::Run { scripts, format, output } => run(scripts, *format, output.as_deref()),
+        Command::Run {
+            scripts,
+            format,
+            output,
+        } => run(scripts, *format, output.as_deref()),
         Command::Check { scripts } => check(scripts),
         Command::Library { name } => show_library(name.as_deref()),
     };
@@ -193,7 +201,10 @@ fn utf8(name: &str, bytes: Vec<u8>) -> Result<String, Box<ModelError>> {
 }
 
 /// Takes each named script through the session.
-fn outcomes(scripts: &Scripts, take: impl Fn(&Session<'_>, &Input, &str) -> Outcome) -> Vec<Outcome> {
+fn outcomes(
+    scripts: &Scripts,
+    take: impl Fn(&Session<'_>, &Input, &str) -> Outcome,
+) -> Vec<Outcome> {
     scripts
         .names
         .iter()
@@ -221,13 +232,16 @@ fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<E
     let outcomes = outcomes(scripts, |session, input, text| {
         session.run(&input.name, text, input.path.as_deref())
     });
-    let colour = output.is_none() && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never;
+    let colour = output.is_none()
+        && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never;
     let text = match format {
         Format::Text => text_report(&outcomes, colour),
         Format::Json => json_report(&outcomes),
     };
     // What a report says already is not drawn a second time beside it.
-    draw_diagnostics(&outcomes, |found| found.is_error() || !report::words::is_in_report(found.code))?;
+    draw_diagnostics(&outcomes, |found| {
+        found.is_error() || !report::words::is_in_report(found.code)
+    })?;
     match output {
         None => io::stdout().lock().write_all(text.as_bytes())?,
         Some(path) => write_whole(path, &text)?,
@@ -236,7 +250,11 @@ fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<E
 }
 
 fn worst(outcomes: &[Outcome]) -> Status {
-    outcomes.iter().map(Outcome::status).max().unwrap_or(Status::Ok)
+    outcomes
+        .iter()
+        .map(Outcome::status)
+        .max()
+        .unwrap_or(Status::Ok)
 }
 
 fn text_report(outcomes: &[Outcome], colour: bool) -> String {
@@ -263,7 +281,8 @@ fn json_report(outcomes: &[Outcome]) -> String {
 }
 
 fn draw_diagnostics(outcomes: &[Outcome], wanted: impl Fn(&Diagnostic) -> bool) -> io::Result<()> {
-    let colour = io::stderr().is_terminal() && anstream::AutoStream::choice(&io::stderr()) != anstream::ColorChoice::Never;
+    let colour = io::stderr().is_terminal()
+        && anstream::AutoStream::choice(&io::stderr()) != anstream::ColorChoice::Never;
     let mut stderr = io::stderr().lock();
     for outcome in outcomes {
         stderr.write_all(outcome.drawn(colour, &wanted).as_bytes())?;
@@ -289,7 +308,10 @@ fn check(scripts: &Scripts) -> io::Result<ExitCode> {
     });
     draw_diagnostics(&outcomes, |_| true)?;
     let mut stdout = io::stdout().lock();
-    for outcome in outcomes.iter().filter(|outcome| outcome.status() == Status::Ok) {
+    for outcome in outcomes
+        .iter()
+        .filter(|outcome| outcome.status() == Status::Ok)
+    {
         writeln!(stdout, "{}: no errors", outcome.script)?;
     }
     Ok(exit_code(worst(&outcomes)))
@@ -298,9 +320,16 @@ fn check(scripts: &Scripts) -> io::Result<ExitCode> {
 fn show_library(name: Option<&str>) -> io::Result<ExitCode> {
     let mut stdout = io::stdout().lock();
     let Some(name) = name else {
-        let widest = library::MODULES.iter().map(|module| module.name.len()).max().unwrap_or(0);
+        let widest = library::MODULES
+            .iter()
+            .map(|module| module.name.len())
+            .max()
+            .unwrap_or(0);
         for module in library::MODULES {
-            let headline = report::layout::cut(&library::headline(module), report::layout::WIDTH - widest - 2);
+            let headline = report::layout::cut(
+                &library::headline(module),
+                report::layout::WIDTH - widest - 2,
+            );
             writeln!(stdout, "{:widest$}  {headline}", module.name)?;
         }
         return Ok(ExitCode::SUCCESS);

@@ -60,7 +60,12 @@ impl Outcome {
 
     /// The diagnostics drawn against their texts.
     pub fn drawn(&self, colour: bool, wanted: impl Fn(&Diagnostic) -> bool) -> String {
-        let wanted: Vec<Diagnostic> = self.diagnostics.iter().filter(|found| wanted(found)).cloned().collect();
+        let wanted: Vec<Diagnostic> = self
+            .diagnostics
+            .iter()
+            .filter(|found| wanted(found))
+            .cloned()
+            .collect();
         diagnostic::draw(&wanted, &self.sources, colour)
     }
 }
@@ -164,9 +169,12 @@ impl<'f> Session<'f> {
         outcome.diagnostics.extend(errors);
         let (model, errors) = declarations::gather(scripts);
         let (checked, errors) = check_model(model, errors, main_span, has_form);
-        outcome
-            .diagnostics
-            .extend(errors.iter().filter(|error| !is_echo(error, &unreadable)).map(ModelError::diagnostic));
+        outcome.diagnostics.extend(
+            errors
+                .iter()
+                .filter(|error| !is_echo(error, &unreadable))
+                .map(ModelError::diagnostic),
+        );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
         let checked = checked.filter(|_| is_sound);
         if let Some(checked) = &checked {
@@ -210,7 +218,11 @@ fn check_model(
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
 /// would repeat the fault.
-fn unreadable_names(scripts: &[(crate::model::Level, ast::Script)], errors: &[Diagnostic], sources: &Sources) -> Vec<String> {
+fn unreadable_names(
+    scripts: &[(crate::model::Level, ast::Script)],
+    errors: &[Diagnostic],
+    sources: &Sources,
+) -> Vec<String> {
     let faulty = scripts
         .iter()
         .flat_map(|(_, script)| &script.statements)
@@ -223,7 +235,11 @@ fn unreadable_names(scripts: &[(crate::model::Level, ast::Script)], errors: &[Di
                 })
         });
     faulty
-        .flat_map(|statement| sources.slice(statement.span).split(|c: char| !(c.is_alphanumeric() || c == '_' || c == '\'')))
+        .flat_map(|statement| {
+            sources
+                .slice(statement.span)
+                .split(|c: char| !(c.is_alphanumeric() || c == '_' || c == '\''))
+        })
         .filter(|word| !word.is_empty())
         .map(str::to_owned)
         .collect()
@@ -256,7 +272,9 @@ impl Answering<'_> {
                 phenomena: Vec::new(),
                 span: whole,
             };
-            let rank = plain(RequestKind::Rank { equations: Vec::new() });
+            let rank = plain(RequestKind::Rank {
+                equations: Vec::new(),
+            });
             let reduce = plain(RequestKind::Reduce {
                 equations: Vec::new(),
                 within: None,
@@ -281,7 +299,10 @@ impl Answering<'_> {
     }
 
     fn answer(&mut self, case: &Case, request: &ast::Request, text: &str) {
-        let names = CaseNames { model: self.model, case };
+        let names = CaseNames {
+            model: self.model,
+            case,
+        };
         let answer = |request, left_out, body| Answer {
             request,
             phenomenon: case.setting.name.clone(),
@@ -294,7 +315,11 @@ impl Answering<'_> {
             RequestKind::Show { expr, unit } => {
                 let si_unit = self.unit_of(expr, case);
                 match show::show(expr, unit.as_ref(), si_unit, &names) {
-                    Ok(shown) => self.outcome.answers.push(answer("show", Vec::new(), Body::Show(shown))),
+                    Ok(shown) => {
+                        self.outcome
+                            .answers
+                            .push(answer("show", Vec::new(), Body::Show(shown)))
+                    }
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
@@ -305,18 +330,26 @@ impl Answering<'_> {
                         .iter()
                         .filter_map(|idx| rank::rank(case, &case.equations[*idx], &namer))
                         .collect();
-                    self.outcome.answers.push(answer("rank", left_out, Body::Rank(ranked)));
+                    self.outcome
+                        .answers
+                        .push(answer("rank", left_out, Body::Rank(ranked)));
                 }
             }
-            RequestKind::Reduce { equations, within, .. } => {
+            RequestKind::Reduce {
+                equations, within, ..
+            } => {
                 if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
                     let tolerance = within
                         .as_ref()
                         .and_then(|within| declarations::tolerance_value(within).ok())
-                        .map_or(case.setting.tolerance(), |info| rational_to_f64(&info.value));
+                        .map_or(case.setting.tolerance(), |info| {
+                            rational_to_f64(&info.value)
+                        });
                     let reduction = reduce::reduce(self.model, case, &wanted, tolerance);
                     self.warn(case, &reduction);
-                    self.outcome.answers.push(answer("reduce", left_out, Body::Reduce(reduction)));
+                    self.outcome
+                        .answers
+                        .push(answer("reduce", left_out, Body::Reduce(reduction)));
                 }
             }
             RequestKind::Claim(claim) => {
@@ -345,7 +378,13 @@ impl Answering<'_> {
 
     /// The SI unit of an expression; that of a 0 is 1.
     fn unit_of(&self, expr: &ast::Expr, case: &Case) -> String {
-        let dim = dimensions::dimension(expr, self.model, case.setting.phenomenon, Place::Request, &mut Vec::new());
+        let dim = dimensions::dimension(
+            expr,
+            self.model,
+            case.setting.phenomenon,
+            Place::Request,
+            &mut Vec::new(),
+        );
         match dim {
             Dim::Known(dimension, _) => dimension.unit_text(),
             Dim::Any | Dim::Faulty => "1".to_owned(),
@@ -354,7 +393,12 @@ impl Answering<'_> {
 
     /// The equations of a request whose scales are known, and those left out; none, with
     /// an error, if a named one is open or nothing is left.
-    fn equations(&mut self, case: &Case, named: &[ast::Name], span: Span) -> Option<(Vec<usize>, Vec<LeftOut>)> {
+    fn equations(
+        &mut self,
+        case: &Case,
+        named: &[ast::Name],
+        span: Span,
+    ) -> Option<(Vec<usize>, Vec<LeftOut>)> {
         let mut known = Vec::new();
         let mut left_out = Vec::new();
         let indices: Vec<(usize, Span)> = if named.is_empty() {
@@ -389,8 +433,12 @@ impl Answering<'_> {
             }
             match case.equations.is_empty() {
                 true => self.outcome.diagnostics.push(
-                    Diagnostic::error("nothing-to-rank", span, "there is no equation to answer for")
-                        .with_help("declare an `equation`, or `use` a module that has one"),
+                    Diagnostic::error(
+                        "nothing-to-rank",
+                        span,
+                        "there is no equation to answer for",
+                    )
+                    .with_help("declare an `equation`, or `use` a module that has one"),
                 ),
                 false => self.open_scale(case, None, &open, span),
             }
@@ -403,12 +451,24 @@ impl Answering<'_> {
             Some(equation) => format!("`{equation}` needs"),
             None => "every equation needs".to_owned(),
         };
-        let whose = case.setting.name.as_ref().map(|name| format!(" for {name}")).unwrap_or_default();
+        let whose = case
+            .setting
+            .name
+            .as_ref()
+            .map(|name| format!(" for {name}"))
+            .unwrap_or_default();
         let listed: Vec<String> = open.iter().map(|name| format!("`{name}`")).collect();
-        let help = open.first().map(|name| self.value_form(name)).unwrap_or_default();
+        let help = open
+            .first()
+            .map(|name| self.value_form(name))
+            .unwrap_or_default();
         self.outcome.diagnostics.push(
-            Diagnostic::error("open-scale", span, format!("{subject} a value of {}{whose}", listed.join(", ")))
-                .with_help(format!("give it one: {help}")),
+            Diagnostic::error(
+                "open-scale",
+                span,
+                format!("{subject} a value of {}{whose}", listed.join(", ")),
+            )
+            .with_help(format!("give it one: {help}")),
         );
     }
 
@@ -433,7 +493,10 @@ impl Answering<'_> {
             Fault::Open(mut open) => {
                 open.sort_unstable();
                 open.dedup();
-                let names: Vec<String> = open.iter().map(|id| case.setting.names[id.idx()].clone()).collect();
+                let names: Vec<String> = open
+                    .iter()
+                    .map(|id| case.setting.names[id.idx()].clone())
+                    .collect();
                 self.open_scale(case, Some("this"), &names, span);
             }
             fault => self
@@ -466,7 +529,9 @@ impl Answering<'_> {
 
 /// A request as written, with its blanks and line breaks made single blanks.
 fn words(text: &str) -> String {
-    let lines = text.lines().map(|line| line.split('#').next().unwrap_or(""));
+    let lines = text
+        .lines()
+        .map(|line| line.split('#').next().unwrap_or(""));
     let joined: Vec<&str> = lines.flat_map(str::split_whitespace).collect();
     joined.join(" ")
 }

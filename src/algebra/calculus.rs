@@ -31,7 +31,9 @@ pub fn differentiate(
     };
     let sum = match inside.as_slice() {
         [] => return Ok(Vec::new()),
-        [factor] if factor.power == Exponent::ONE => base_derivative(&factor.base, along, quantities)?,
+        [factor] if factor.power == Exponent::ONE => {
+            base_derivative(&factor.base, along, quantities)?
+        }
         factors if stays_whole(factors, along, quantities) => vec![whole(factors, along)],
         factors => product_rule(factors, along, quantities)?,
     };
@@ -74,10 +76,12 @@ fn differentiate_again(
             Some((_, order)) => *order += 1,
             None => by.push((along, 1)),
         }
-        return Ok(vec![Product::base(Base::Derivative(Box::new(Derivative {
-            operand: operand.clone(),
-            by,
-        })))]);
+        return Ok(vec![Product::base(Base::Derivative(Box::new(
+            Derivative {
+                operand: operand.clone(),
+                by,
+            },
+        )))]);
     }
     let inside = Product {
         number: Number::one(),
@@ -190,9 +194,8 @@ fn common_length<'a>(
     along: CoordinateId,
     quantities: &'a Quantities,
 ) -> Option<&'a Size> {
-    let plain = |variation: &'a Variation| {
-        (!variation.has_own_amplitude).then_some(&variation.length)
-    };
+    let plain =
+        |variation: &'a Variation| (!variation.has_own_amplitude).then_some(&variation.length);
     match base {
         Base::Symbol(_) => None,
         Base::Coordinate(id) => quantities.coordinate(*id).along(along).and_then(plain),
@@ -257,7 +260,9 @@ fn single_amplitude(
             }
             factors => return factors_size(factors, quantities),
         },
-        Base::Symbol(_) | Base::Derivative(_) => return factors_size(&derivative.operand, quantities),
+        Base::Symbol(_) | Base::Derivative(_) => {
+            return factors_size(&derivative.operand, quantities);
+        }
     };
     let mut smallest: Option<&Variation> = None;
     // Outermost first, as they are written.
@@ -268,7 +273,9 @@ fn single_amplitude(
         else {
             continue;
         };
-        if smallest.is_none_or(|best| found.nominal_amplitude < best.nominal_amplitude * (1.0 - 1e-12)) {
+        if smallest
+            .is_none_or(|best| found.nominal_amplitude < best.nominal_amplitude * (1.0 - 1e-12))
+        {
             smallest = Some(found);
         }
     }
@@ -292,7 +299,11 @@ fn length_along(factors: &[Factor], along: CoordinateId, quantities: &Quantities
         .unwrap_or_else(one)
 }
 
-fn any_length<'a>(base: &'a Base, along: CoordinateId, quantities: &'a Quantities) -> Option<&'a Size> {
+fn any_length<'a>(
+    base: &'a Base,
+    along: CoordinateId,
+    quantities: &'a Quantities,
+) -> Option<&'a Size> {
     let of = |variations: &'a [Variation]| {
         variations
             .iter()

@@ -203,7 +203,11 @@ impl Monomial {
         &self,
         replacement: impl Fn(&Symbol) -> Option<&'a Monomial>,
     ) -> Result<Monomial, TooLarge> {
-        if self.powers.iter().all(|(symbol, _)| replacement(symbol).is_none()) {
+        if self
+            .powers
+            .iter()
+            .all(|(symbol, _)| replacement(symbol).is_none())
+        {
             return Ok(self.clone());
         }
         let mut result = Monomial::number(self.number.clone());

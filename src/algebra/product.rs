@@ -411,7 +411,11 @@ impl Speller<'_> {
                 .iter()
                 .filter(move |factor| factor.power.is_negative() == is_below)
                 .map(move |factor| {
-                    let power = if is_below { factor.power.negated() } else { factor.power };
+                    let power = if is_below {
+                        factor.power.negated()
+                    } else {
+                        factor.power
+                    };
                     self.factor(&factor.base, power)
                 })
         };

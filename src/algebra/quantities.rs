@@ -49,7 +49,8 @@ pub struct Quantity {
 impl Quantity {
     /// The length of a coordinate along itself; its size stands in where it has none.
     pub fn length(&self, along: CoordinateId) -> &Size {
-        self.along(along).map_or(&self.size, |variation| &variation.length)
+        self.along(along)
+            .map_or(&self.size, |variation| &variation.length)
     }
 
     /// How it varies along a coordinate, if it does.

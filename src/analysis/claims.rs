@@ -73,7 +73,13 @@ pub enum Measured {
 ///
 /// # Errors
 /// Open names and faults of evaluation.
-pub fn hold(claim: &Claim, text: &str, span: Span, unit: String, names: &CaseNames<'_>) -> Result<Held, Fault> {
+pub fn hold(
+    claim: &Claim,
+    text: &str,
+    span: Span,
+    unit: String,
+    names: &CaseNames<'_>,
+) -> Result<Held, Fault> {
     let held = Held {
         text: text.to_owned(),
         phenomenon: names.case.setting.name.clone(),
@@ -88,8 +94,17 @@ pub fn hold(claim: &Claim, text: &str, span: Span, unit: String, names: &CaseNam
         span,
     };
     match claim {
-        Claim::Verdict { word, equation, processes } => verdict(*word, equation, processes, held, names),
-        Claim::Relation { left, relation, right, within } => match relation {
+        Claim::Verdict {
+            word,
+            equation,
+            processes,
+        } => verdict(*word, equation, processes, held, names),
+        Claim::Relation {
+            left,
+            relation,
+            right,
+            within,
+        } => match relation {
             Relation::MuchLess | Relation::MuchGreater | Relation::Similar => {
                 ratio(left, *relation, right, within.as_ref(), held, names)
             }
@@ -118,7 +133,13 @@ fn verdict(
     let Some(kept) = Kept::of(case, terms, tolerance) else {
         let mut open = Vec::new();
         for term in &terms.terms {
-            open.extend(case.setting.monomial_range(&term.size.resolved).err().into_iter().flatten());
+            open.extend(
+                case.setting
+                    .monomial_range(&term.size.resolved)
+                    .err()
+                    .into_iter()
+                    .flatten(),
+            );
         }
         return Err(Fault::Open(open));
     };
@@ -127,7 +148,10 @@ fn verdict(
         .map(|process| requests::process_label(names.model, case, idx, process))
         .collect::<Result<_, ModelError>>()?;
     let labels = |found: Vec<&crate::analysis::rank::RankedProcess>| -> Vec<String> {
-        found.into_iter().map(|process| process.process.clone()).collect()
+        found
+            .into_iter()
+            .map(|process| process.process.clone())
+            .collect()
     };
     Ok(match word {
         ClaimWord::Leading => exactly(word, &wanted, labels(kept.leading()), held),
@@ -137,7 +161,8 @@ fn verdict(
 }
 
 fn exactly(word: ClaimWord, wanted: &[String], found: Vec<String>, held: Held) -> Held {
-    let met = wanted.iter().all(|process| found.contains(process)) && found.iter().all(|process| wanted.contains(process));
+    let met = wanted.iter().all(|process| found.contains(process))
+        && found.iter().all(|process| wanted.contains(process));
     Held {
         met,
         measured: Measured::Processes {
@@ -149,10 +174,20 @@ fn exactly(word: ClaimWord, wanted: &[String], found: Vec<String>, held: Held) -
     }
 }
 
-fn dropped(wanted: &[String], kept: &Kept<'_>, tolerance: f64, held: Held, names: &CaseNames<'_>) -> Held {
+fn dropped(
+    wanted: &[String],
+    kept: &Kept<'_>,
+    tolerance: f64,
+    held: Held,
+    names: &CaseNames<'_>,
+) -> Held {
     let stays: Vec<usize> = (0..kept.verdicts.len())
         .filter(|idx| kept.verdicts[*idx] != Verdict::Drops)
-        .filter(|idx| wanted.iter().any(|process| process == kept.equation.terms[*idx].label()))
+        .filter(|idx| {
+            wanted
+                .iter()
+                .any(|process| process == kept.equation.terms[*idx].label())
+        })
         .collect();
     let mut found: Vec<String> = Vec::new();
     for idx in &stays {
@@ -161,11 +196,17 @@ fn dropped(wanted: &[String], kept: &Kept<'_>, tolerance: f64, held: Held, names
             found.push(label.to_owned());
         }
     }
-    let share = stays.iter().map(|idx| kept.shares.shares[*idx].high).reduce(f64::max);
+    let share = stays
+        .iter()
+        .map(|idx| kept.shares.shares[*idx].high)
+        .reduce(f64::max);
     let size = |idx: usize| kept.equation.terms[idx].size.resolved.clone();
     let quotient = Quotient {
         above: stays.iter().map(|idx| size(*idx)).collect(),
-        below: (0..kept.verdicts.len()).filter(|idx| !stays.contains(idx)).map(size).collect(),
+        below: (0..kept.verdicts.len())
+            .filter(|idx| !stays.contains(idx))
+            .map(size)
+            .collect(),
     };
     let mends = if stays.is_empty() || quotient.below.is_empty() {
         Vec::new()
@@ -222,7 +263,11 @@ fn ratio(
         met,
         miss: (!met && miss.is_finite()).then_some(miss),
         mends,
-        measured: Measured::Ratio { value, limit, relation },
+        measured: Measured::Ratio {
+            value,
+            limit,
+            relation,
+        },
         ..held
     })
 }
@@ -236,7 +281,11 @@ fn inverse(quotient: Quotient) -> Quotient {
 
 /// The ratio of two amounts over the box: exact for products and processes, else by
 /// interval arithmetic.
-fn quotient_of(left: &ast::Expr, right: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, Option<Quotient>), Fault> {
+fn quotient_of(
+    left: &ast::Expr,
+    right: &ast::Expr,
+    names: &CaseNames<'_>,
+) -> Result<(Range, Option<Quotient>), Fault> {
     let found = (show::quotient(left, names), show::quotient(right, names));
     if let (Ok(above), Ok(below)) = &found
         && !above.above.is_empty()
@@ -268,7 +317,9 @@ fn quotient_of(left: &ast::Expr, right: &ast::Expr, names: &CaseNames<'_>) -> Re
 }
 
 fn products(left: &[Monomial], right: &[Monomial]) -> Vec<Monomial> {
-    let pairs = left.iter().flat_map(|a| right.iter().map(move |b| a.times(b)));
+    let pairs = left
+        .iter()
+        .flat_map(|a| right.iter().map(move |b| a.times(b)));
     pairs.flatten().collect()
 }
 
@@ -296,7 +347,9 @@ fn comparison(
     let (met, miss, limits) = match relation {
         Relation::Less if are_amounts => (is_less(&ratio, &one), ratio.high, (1.0, f64::INFINITY)),
         Relation::Less => (is_less(&a, &b), f64::NAN, (1.0, f64::INFINITY)),
-        Relation::Greater if are_amounts => (is_less(&one, &ratio), 1.0 / ratio.low, (1.0, f64::INFINITY)),
+        Relation::Greater if are_amounts => {
+            (is_less(&one, &ratio), 1.0 / ratio.low, (1.0, f64::INFINITY))
+        }
         Relation::Greater => (is_less(&b, &a), f64::NAN, (1.0, f64::INFINITY)),
         _ => {
             let margin = match within {
@@ -305,7 +358,11 @@ fn comparison(
             };
             let off = (a.nominal - b.nominal).abs();
             let allowed = margin * b.nominal.abs();
-            (at_most(off, allowed), off / allowed, (1.0 + margin, 1.0 / (1.0 - margin)))
+            (
+                at_most(off, allowed),
+                off / allowed,
+                (1.0 + margin, 1.0 / (1.0 - margin)),
+            )
         }
     };
     let mends = match quotient.filter(|_| !met) {
@@ -341,9 +398,8 @@ const MEND_STEP: f64 = 0.25;
 /// The scales that alone bring the highest value of a ratio to the limit, each with its
 /// factor (the whole range of the scale moves), nearest first.
 fn mends(quotient: &Quotient, limit: f64, names: &CaseNames<'_>) -> Vec<(String, f64)> {
-    let highest = |shifted: &Quotient| {
-        sizes::ratio(&names.case.setting, &shifted.above, &shifted.below).high
-    };
+    let highest =
+        |shifted: &Quotient| sizes::ratio(&names.case.setting, &shifted.above, &shifted.below).high;
     nearest_mends(quotient, names, &|shifted| highest(shifted) / limit)
 }
 
@@ -361,9 +417,18 @@ fn similar_mends(quotient: &Quotient, limit: f64, names: &CaseNames<'_>) -> Vec<
 }
 
 /// `excess` is above 1 where the claim fails.
-fn nearest_mends(quotient: &Quotient, names: &CaseNames<'_>, excess: &dyn Fn(&Quotient) -> f64) -> Vec<(String, f64)> {
+fn nearest_mends(
+    quotient: &Quotient,
+    names: &CaseNames<'_>,
+    excess: &dyn Fn(&Quotient) -> f64,
+) -> Vec<(String, f64)> {
     let mut symbols: Vec<Symbol> = Vec::new();
-    for (symbol, _) in quotient.above.iter().chain(&quotient.below).flat_map(Monomial::powers) {
+    for (symbol, _) in quotient
+        .above
+        .iter()
+        .chain(&quotient.below)
+        .flat_map(Monomial::powers)
+    {
         let is_scale = match symbol {
             Symbol::Declared(id) => names.model.symbols[id.idx()].kind == ast::ValueKind::Scale,
             Symbol::Function(_) => false,

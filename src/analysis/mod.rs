@@ -67,7 +67,9 @@ impl Case {
             .collect();
         open.sort_unstable();
         open.dedup();
-        open.iter().map(|id| self.setting.names[id.idx()].clone()).collect()
+        open.iter()
+            .map(|id| self.setting.names[id.idx()].clone())
+            .collect()
     }
 
     /// A symbol's name.

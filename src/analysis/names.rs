@@ -88,7 +88,10 @@ impl<'c> Namer<'c> {
         let columns = self.columns(ratio);
         let symbols = symbols_of(ratio, &columns);
         let row = |monomial: &Monomial| -> Vec<BigRational> {
-            symbols.iter().map(|symbol| power_of(monomial, symbol)).collect()
+            symbols
+                .iter()
+                .map(|symbol| power_of(monomial, symbol))
+                .collect()
         };
         let matrix: Vec<Vec<BigRational>> = columns.iter().map(|(_, group)| row(group)).collect();
         shortest(&matrix, &row(ratio))?
@@ -108,7 +111,10 @@ impl<'c> Namer<'c> {
             let all = columns.clone();
             columns.retain(|(idx, group)| {
                 group.powers().iter().all(|(symbol, _)| {
-                    holds(ratio, symbol) || all.iter().any(|(other, found)| other != idx && holds(found, symbol))
+                    holds(ratio, symbol)
+                        || all
+                            .iter()
+                            .any(|(other, found)| other != idx && holds(found, symbol))
                 })
             });
             if columns.len() == all.len() {
@@ -170,7 +176,10 @@ pub fn shortest(columns: &[Vec<BigRational>], target: &[BigRational]) -> Option<
 }
 
 /// The smallest sum of amounts, and one combination that has it.
-fn smallest_length(columns: &[Vec<BigRational>], target: &[BigRational]) -> Option<(BigRational, Combination)> {
+fn smallest_length(
+    columns: &[Vec<BigRational>],
+    target: &[BigRational],
+) -> Option<(BigRational, Combination)> {
     let n = columns.len();
     // Each column stands twice, with either sign and an amount of at least 0.
     let conditions = (0..target.len())
@@ -192,7 +201,10 @@ fn smallest_length(columns: &[Vec<BigRational>], target: &[BigRational]) -> Opti
     match polyhedra::maximise(&program) {
         Outcome::Optimal { value, point } => {
             let powers = (0..n).map(|idx| (idx, &point[idx] - &point[n + idx]));
-            Some((-value, powers.filter(|(_, power)| !power.is_zero()).collect()))
+            Some((
+                -value,
+                powers.filter(|(_, power)| !power.is_zero()).collect(),
+            ))
         }
         Outcome::Infeasible | Outcome::Unbounded => None,
     }
@@ -215,7 +227,11 @@ pub fn next_set(set: &mut [usize], n: usize) -> bool {
 
 /// The exponents with which these columns alone give the target; `None` if they do not,
 /// or not in one way only.
-fn combination(columns: &[Vec<BigRational>], set: &[usize], target: &[BigRational]) -> Option<Vec<BigRational>> {
+fn combination(
+    columns: &[Vec<BigRational>],
+    set: &[usize],
+    target: &[BigRational],
+) -> Option<Vec<BigRational>> {
     let n = set.len();
     let rows = (0..target.len())
         .map(|row| {
@@ -225,11 +241,19 @@ fn combination(columns: &[Vec<BigRational>], set: &[usize], target: &[BigRationa
         .collect();
     let (rows, pivots) = row_echelon(rows, n);
     let is_solvable = rows.iter().skip(pivots.len()).all(|row| row[n].is_zero());
-    (is_solvable && pivots.len() == n).then(|| rows.into_iter().take(n).map(|mut row| row.swap_remove(n)).collect())
+    (is_solvable && pivots.len() == n).then(|| {
+        rows.into_iter()
+            .take(n)
+            .map(|mut row| row.swap_remove(n))
+            .collect()
+    })
 }
 
 /// Reduced row echelon form over the first `n` columns, with the pivot columns.
-pub fn row_echelon(mut rows: Vec<Vec<BigRational>>, n: usize) -> (Vec<Vec<BigRational>>, Vec<usize>) {
+pub fn row_echelon(
+    mut rows: Vec<Vec<BigRational>>,
+    n: usize,
+) -> (Vec<Vec<BigRational>>, Vec<usize>) {
     let mut pivots = Vec::new();
     for column in 0..n {
         let start = pivots.len();

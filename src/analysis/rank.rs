@@ -91,9 +91,18 @@ pub fn speller<'a>(setting: &'a Setting, equation: &EquationTerms) -> Speller<'a
     }
 }
 
-fn ranked_term(case: &Case, equation: &EquationTerms, idx: usize, shares: &Shares, namer: &Namer<'_>) -> RankedTerm {
+fn ranked_term(
+    case: &Case,
+    equation: &EquationTerms,
+    idx: usize,
+    shares: &Shares,
+    namer: &Namer<'_>,
+) -> RankedTerm {
     let term = &equation.terms[idx];
-    let ratio = term.size.resolved.over(&equation.terms[shares.largest].size.resolved);
+    let ratio = term
+        .size
+        .resolved
+        .over(&equation.terms[shares.largest].size.resolved);
     let groups = ratio
         .ok()
         .and_then(|ratio| namer.product(&ratio))
@@ -103,7 +112,9 @@ fn ranked_term(case: &Case, equation: &EquationTerms, idx: usize, shares: &Share
         process: term.process.clone(),
         side: term.side,
         // It was computed before, so it is within the limits.
-        scale: speller(&case.setting, equation).scale(&term.product).unwrap_or_default(),
+        scale: speller(&case.setting, equation)
+            .scale(&term.product)
+            .unwrap_or_default(),
         factors: case.factors(&term.size.resolved),
         size: shares.sizes[idx],
         order: order_of_magnitude(shares.sizes[idx].nominal),

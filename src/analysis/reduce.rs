@@ -209,7 +209,8 @@ fn reduced_equation(
     tolerance: f64,
     namer: &Namer<'_>,
 ) -> ReducedEquation {
-    let (stays, goes): (Vec<usize>, Vec<usize>) = (0..kept.verdicts.len()).partition(|idx| kept.is_kept(*idx));
+    let (stays, goes): (Vec<usize>, Vec<usize>) =
+        (0..kept.verdicts.len()).partition(|idx| kept.is_kept(*idx));
     let term = |idx: &usize| reduced_term(case, kept, *idx, tolerance, namer);
     let highest = |idx: &usize| kept.shares.shares[*idx].high;
     let leading = kept.leading();
@@ -222,17 +223,27 @@ fn reduced_equation(
         dropped: goes.iter().map(term).collect(),
         error: goes.iter().map(highest).fold(0.0, f64::max),
         error_sum: goes.iter().map(highest).sum(),
-        first_neglected: first_neglected(kept, &goes).map(|idx| kept.equation.terms[idx].text.clone()),
+        first_neglected: first_neglected(kept, &goes)
+            .map(|idx| kept.equation.terms[idx].text.clone()),
         balance: balance(model, case, kept.equation.idx, all),
         by_construction: by_construction(kept, &leading),
-        leading: leading.iter().map(|process| process.process.clone()).collect(),
+        leading: leading
+            .iter()
+            .map(|process| process.process.clone())
+            .collect(),
         kinds: kinds(case, kept, &stays),
         lost: lost_derivatives(case, kept, &stays),
         lone: lone(model, case, kept, &stays),
     }
 }
 
-fn reduced_term(case: &Case, kept: &Kept<'_>, idx: usize, tolerance: f64, namer: &Namer<'_>) -> ReducedTerm {
+fn reduced_term(
+    case: &Case,
+    kept: &Kept<'_>,
+    idx: usize,
+    tolerance: f64,
+    namer: &Namer<'_>,
+) -> ReducedTerm {
     let term = &kept.equation.terms[idx];
     let verdict = kept.verdicts[idx];
     ReducedTerm {
@@ -249,7 +260,13 @@ fn reduced_term(case: &Case, kept: &Kept<'_>, idx: usize, tolerance: f64, namer:
 
 /// The conditions under which a term may go: against the nominally largest term first,
 /// then against each other one that is the largest somewhere.
-fn conditions(case: &Case, kept: &Kept<'_>, idx: usize, tolerance: f64, namer: &Namer<'_>) -> Vec<Inequality> {
+fn conditions(
+    case: &Case,
+    kept: &Kept<'_>,
+    idx: usize,
+    tolerance: f64,
+    namer: &Namer<'_>,
+) -> Vec<Inequality> {
     let mut rivals = vec![kept.shares.largest];
     rivals.extend(kept.shares.largest_somewhere());
     let mut ratios: Vec<Monomial> = Vec::new();
@@ -277,7 +294,10 @@ pub fn inequality(case: &Case, ratio: &Monomial, limit: f64, namer: &Namer<'_>) 
     Inequality {
         factors: case.factors(ratio),
         groups,
-        value: case.setting.monomial_range(ratio).unwrap_or(Range::exact(f64::NAN)),
+        value: case
+            .setting
+            .monomial_range(ratio)
+            .unwrap_or(Range::exact(f64::NAN)),
         limit,
     }
 }
@@ -298,7 +318,11 @@ fn first_neglected(kept: &Kept<'_>, dropped: &[usize]) -> Option<usize> {
 // The text of the reduced equation ------------------------------------------------------------
 
 fn text(kept: &Kept<'_>) -> String {
-    format!("{} = {}", side_text(kept, Side::Left), side_text(kept, Side::Right))
+    format!(
+        "{} = {}",
+        side_text(kept, Side::Left),
+        side_text(kept, Side::Right)
+    )
 }
 
 fn side_text(kept: &Kept<'_>, side: Side) -> String {
@@ -335,7 +359,11 @@ pub fn joined(parts: &[(bool, &str)]) -> String {
         });
         text.push_str(part);
     }
-    if text.is_empty() { "0".to_owned() } else { text }
+    if text.is_empty() {
+        "0".to_owned()
+    } else {
+        text
+    }
 }
 
 // Balances ------------------------------------------------------------------------------------
@@ -349,7 +377,9 @@ fn balance(model: &Model, case: &Case, idx: usize, all: &[Option<Kept<'_>>]) -> 
                 return false;
             };
             holds_own |= found == idx;
-            all[found].as_ref().is_some_and(|kept| part_matches(model, case, part, kept))
+            all[found]
+                .as_ref()
+                .is_some_and(|kept| part_matches(model, case, part, kept))
         }) && holds_own
     };
     model
@@ -379,7 +409,11 @@ fn by_construction(kept: &Kept<'_>, leading: &[&RankedProcess]) -> bool {
     let largest = |process: &RankedProcess| {
         process.members.iter().copied().reduce(|best, idx| {
             let size = |idx: usize| kept.shares.sizes[idx].nominal;
-            if size(idx) > size(best) && !same(size(idx), size(best)) { idx } else { best }
+            if size(idx) > size(best) && !same(size(idx), size(best)) {
+                idx
+            } else {
+                best
+            }
         })
     };
     let sizes: Vec<&Monomial> = leading
@@ -514,7 +548,10 @@ fn lone(model: &Model, case: &Case, kept: &Kept<'_>, stays: &[usize]) -> Option<
     if let [single] = stays {
         let is_derivative = matches!(
             varying(&terms[*single].product.factors).as_slice(),
-            [Factor { base: Base::Derivative(_), .. }]
+            [Factor {
+                base: Base::Derivative(_),
+                ..
+            }]
         );
         return Some(Lone::Term {
             term: terms[*single].label().to_owned(),
@@ -540,15 +577,28 @@ fn varying(factors: &[Factor]) -> Vec<Factor> {
 
 /// For each scale alone the smallest factor, either way, by which a second process becomes
 /// as large as the lone term.
-fn restoring_scales(model: &Model, case: &Case, equation: &EquationTerms, lone: usize) -> Vec<(String, f64)> {
+fn restoring_scales(
+    model: &Model,
+    case: &Case,
+    equation: &EquationTerms,
+    lone: usize,
+) -> Vec<(String, f64)> {
     let lone_term = &equation.terms[lone];
     let top = &lone_term.size.resolved;
     let mut nearest: Vec<(SymbolId, f64)> = Vec::new();
-    for term in equation.terms.iter().filter(|term| term.label() != lone_term.label()) {
-        let Ok(ratio) = term.size.resolved.over(top) else { continue };
+    for term in equation
+        .terms
+        .iter()
+        .filter(|term| term.label() != lone_term.label())
+    {
+        let Ok(ratio) = term.size.resolved.over(top) else {
+            continue;
+        };
         let gap = -case.setting.nominal(&ratio).ln();
         for (symbol, power) in ratio.powers() {
-            let Symbol::Declared(id) = symbol else { continue };
+            let Symbol::Declared(id) = symbol else {
+                continue;
+            };
             if model.symbols[id.idx()].kind != ast::ValueKind::Scale {
                 continue;
             }

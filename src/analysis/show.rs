@@ -62,7 +62,10 @@ impl Names for CaseNames<'_> {
             return Ok(Range::exact(0.0));
         }
         for size in &sizes {
-            self.case.setting.monomial_range(size).map_err(Fault::Open)?;
+            self.case
+                .setting
+                .monomial_range(size)
+                .map_err(Fault::Open)?;
         }
         Ok(sizes::ratio(&self.case.setting, &sizes, &[Monomial::one()]))
     }
@@ -124,12 +127,22 @@ pub fn quotient(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<Quotient, Fau
             let exponent = names::exponent(exponent)?;
             let base = quotient(base, names)?;
             let raised = |sizes: &[Monomial]| -> Result<Vec<Monomial>, Fault> {
-                let amount = if exponent.is_negative() { exponent.negated() } else { exponent };
-                sizes.iter().map(|size| values::monomial_power(size, amount, span)).collect()
+                let amount = if exponent.is_negative() {
+                    exponent.negated()
+                } else {
+                    exponent
+                };
+                sizes
+                    .iter()
+                    .map(|size| values::monomial_power(size, amount, span))
+                    .collect()
             };
             let (above, below) = (raised(&base.above)?, raised(&base.below)?);
             Ok(if exponent.is_negative() {
-                Quotient { above: below, below: above }
+                Quotient {
+                    above: below,
+                    below: above,
+                }
             } else {
                 Quotient { above, below }
             })
@@ -153,11 +166,17 @@ fn resolved(written: &Monomial, names: &CaseNames<'_>, span: Span) -> Result<Mon
         .size(written.clone())
         .map_err(|_| Fault::Error(crate::model::errors::ModelError::TooLarge { span }))?;
     let is_zero = size.resolved.number.is_zero()
-        || size.resolved.powers().iter().any(|(symbol, _)| setting.is_zero(symbol));
+        || size
+            .resolved
+            .powers()
+            .iter()
+            .any(|(symbol, _)| setting.is_zero(symbol));
     if is_zero {
         return Err(Fault::NotAProduct(span));
     }
-    setting.monomial_range(&size.resolved).map_err(Fault::Open)?;
+    setting
+        .monomial_range(&size.resolved)
+        .map_err(Fault::Open)?;
     Ok(size.resolved)
 }
 
@@ -195,7 +214,9 @@ pub fn value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), F
     match quotient(expr, names) {
         Ok(found) => match (found.above.as_slice(), found.below.as_slice()) {
             ([], _) => Ok((Range::exact(0.0), false)),
-            (_, []) => Err(Fault::Error(crate::model::errors::ModelError::DividesByZero { span: expr.span })),
+            (_, []) => Err(Fault::Error(
+                crate::model::errors::ModelError::DividesByZero { span: expr.span },
+            )),
             // Alone, a monomial keeps its sign.
             ([above], [below]) => {
                 let single = above
@@ -274,4 +295,3 @@ fn group<'c>(
     let monomial = monomial.filter(|monomial| !monomial.is_number())?;
     groups.iter().find(|group| group.size.resolved == *monomial)
 }
-

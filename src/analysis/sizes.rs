@@ -83,7 +83,9 @@ impl Space {
             let Ok(value) = setting.symbol_value(symbol) else {
                 continue;
             };
-            if value.low < value.high && let Err(place) = symbols.binary_search(symbol) {
+            if value.low < value.high
+                && let Err(place) = symbols.binary_search(symbol)
+            {
                 let amount = value.abs();
                 symbols.insert(place, symbol.clone());
                 bounds.insert(place, (amount.low.ln(), amount.high.ln()));
@@ -133,10 +135,19 @@ impl Shares {
     /// Works out an equation all of whose scales are known; `None` if it has no term or a
     /// scale is open.
     pub fn of(setting: &Setting, equation: &EquationTerms) -> Option<Shares> {
-        let monomials: Vec<&Monomial> = equation.terms.iter().map(|term| &term.size.resolved).collect();
+        let monomials: Vec<&Monomial> = equation
+            .terms
+            .iter()
+            .map(|term| &term.size.resolved)
+            .collect();
         let sizes: Vec<Range> = monomials
             .iter()
-            .map(|monomial| setting.monomial_range(monomial).ok().map(|range| range.abs()))
+            .map(|monomial| {
+                setting
+                    .monomial_range(monomial)
+                    .ok()
+                    .map(|range| range.abs())
+            })
             .collect::<Option<_>>()?;
         let largest = largest(sizes.iter().map(|size| size.nominal))?;
         let space = Space::of(setting, monomials.iter().copied());
@@ -151,7 +162,9 @@ impl Shares {
             space,
             forms,
         };
-        found.shares = (0..found.sizes.len()).map(|idx| found.of_process(&[idx])).collect();
+        found.shares = (0..found.sizes.len())
+            .map(|idx| found.of_process(&[idx]))
+            .collect();
         Some(found)
     }
 
@@ -163,7 +176,10 @@ impl Shares {
         {
             return *known;
         }
-        let own = members.iter().map(|idx| self.sizes[*idx].nominal).fold(0.0, f64::max);
+        let own = members
+            .iter()
+            .map(|idx| self.sizes[*idx].nominal)
+            .fold(0.0, f64::max);
         let nominal = snapped(own / self.sizes[self.largest].nominal);
         if self.space.is_point() {
             return Range::exact(nominal);
@@ -213,7 +229,8 @@ pub fn ratio(setting: &Setting, above: &[Monomial], below: &[Monomial]) -> Range
         .chain(below)
         .map(|monomial| space.affine(setting, monomial))
         .collect();
-    let (own, rivals): (Vec<usize>, Vec<usize>) = (0..forms.len()).partition(|idx| *idx < above.len());
+    let (own, rivals): (Vec<usize>, Vec<usize>) =
+        (0..forms.len()).partition(|idx| *idx < above.len());
     let nominal = |monomials: &[Monomial]| {
         let sizes = monomials.iter().map(|monomial| setting.nominal(monomial));
         sizes.fold(0.0, f64::max)

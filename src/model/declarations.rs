@@ -10,8 +10,8 @@ use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::model::errors::{Clash, ModelError, Unavailable};
 use crate::model::{
-    CoordinateInfo, FieldInfo, GroupId, GroupInfo, Level, Meaning, Model, PhenomenonInfo, SymbolInfo,
-    ToleranceInfo, VelocityInfo, is_given, names,
+    CoordinateInfo, FieldInfo, GroupId, GroupInfo, Level, Meaning, Model, PhenomenonInfo,
+    SymbolInfo, ToleranceInfo, VelocityInfo, is_given, names,
 };
 use crate::source::Span;
 use crate::syntax::ast;
@@ -57,12 +57,9 @@ impl Gatherer {
             Kind::Frame(_) => self.unavailable(Unavailable::Frames, span),
             Kind::Vector(decl) => {
                 self.unavailable(Unavailable::Frames, span);
-                self.unreadable_field(decl.name);
+                self.sizeless_field(decl.name, Vec::new(), decl.notes);
             }
-            Kind::Split(decl) => {
-                self.unavailable(Unavailable::Splits, span);
-                self.unreadable_field(decl.name);
-            }
+            Kind::Split(decl) => self.sizeless_field(decl.name, decl.parts, decl.notes),
             Kind::Tolerance(decl) if level == Level::Script => self.tolerance(&decl),
             Kind::Phenomenon(decl) if level == Level::Script => self.phenomenon(decl),
             Kind::Request(request) if level == Level::Script => {
@@ -193,6 +190,7 @@ impl Gatherer {
                     size: decl.size.clone(),
                     varying: decl.varying.clone(),
                     coordinates: decl.coordinates.clone(),
+                    parts: Vec::new(),
                     notes: decl.notes.clone(),
                     dimension: None,
                 });
@@ -200,8 +198,14 @@ impl Gatherer {
         }
     }
 
-    /// Takes up a name whose declaration was refused, so that its uses are not refused too.
-    fn unreadable_field(&mut self, name: ast::Name) {
+    /// A field without a size of its own: split into others, or one whose declaration was
+    /// refused, so that its uses are not refused too.
+    fn sizeless_field(
+        &mut self,
+        name: ast::Name,
+        parts: Vec<(ast::Sign, ast::Name)>,
+        notes: ast::Notes,
+    ) {
         let id = FieldId(self.model.fields.len() as u32);
         let size = ast::Expr {
             kind: ast::ExprKind::Error,
@@ -213,7 +217,8 @@ impl Gatherer {
                 size,
                 varying: None,
                 coordinates: Vec::new(),
-                notes: ast::Notes::default(),
+                parts,
+                notes,
                 dimension: None,
             });
         }
@@ -222,7 +227,11 @@ impl Gatherer {
     fn velocity(&mut self, decl: ast::VelocityDecl, span: Span) {
         match decl {
             ast::VelocityDecl::Vector { .. } => self.unavailable(Unavailable::Frames, span),
-            ast::VelocityDecl::Components { fields, coordinates, .. } => {
+            ast::VelocityDecl::Components {
+                fields,
+                coordinates,
+                ..
+            } => {
                 if let Some(first) = &self.model.velocity {
                     let first = first.span;
                     self.errors.push(ModelError::SecondValue {
@@ -257,7 +266,9 @@ impl Gatherer {
             return;
         }
         let idx = self.model.equations.len();
-        self.model.equation_names.insert(decl.name.text.clone(), idx);
+        self.model
+            .equation_names
+            .insert(decl.name.text.clone(), idx);
         self.model.equations.push(decl);
     }
 
@@ -276,7 +287,8 @@ impl Gatherer {
         match self.balance_places.get(&decl.name.text) {
             Some(&first) => self.clash(&decl.name, first, Clash::Balance),
             None => {
-                self.balance_places.insert(decl.name.text.clone(), decl.name.span);
+                self.balance_places
+                    .insert(decl.name.text.clone(), decl.name.span);
                 self.model.balances.push(decl);
             }
         }
@@ -314,7 +326,9 @@ impl Gatherer {
         for statement in decl.body {
             match statement.kind {
                 // Requests keep their order among those of the script.
-                ast::StatementKind::Request(request) => self.model.requests.push((Some(idx), request)),
+                ast::StatementKind::Request(request) => {
+                    self.model.requests.push((Some(idx), request))
+                }
                 _ => body.push(statement),
             }
         }

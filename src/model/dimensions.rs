@@ -63,11 +63,21 @@ pub fn check(model: &mut Model) -> Vec<ModelError> {
 }
 
 /// The dimension of an expression in its place.
-pub fn dimension(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>, place: Place, errors: &mut Vec<ModelError>) -> Dim {
+pub fn dimension(
+    expr: &ast::Expr,
+    model: &Model,
+    phenomenon: Option<usize>,
+    place: Place,
+    errors: &mut Vec<ModelError>,
+) -> Dim {
     let mut walker = Walker {
         model,
         phenomenon,
         place,
+        whole: match place {
+            Place::Constant | Place::Size => Some(expr.span),
+            Place::Group | Place::Equation | Place::Request => None,
+        },
         errors,
     };
     walker.dimension(expr)
@@ -80,10 +90,12 @@ fn symbols(model: &mut Model, errors: &mut Vec<ModelError>) {
         .map(|idx| {
             let info = &model.symbols[idx];
             match defining_entry(&info.entries).value {
-                ast::Value::Given { ref nominal, .. } => names::symbols_in(nominal, model, info.local_to)
-                    .into_iter()
-                    .map(SymbolId::idx)
-                    .collect(),
+                ast::Value::Given { ref nominal, .. } => {
+                    names::symbols_in(nominal, model, info.local_to)
+                        .into_iter()
+                        .map(SymbolId::idx)
+                        .collect()
+                }
                 ast::Value::Open(_) => Vec::new(),
             }
         })
@@ -120,7 +132,12 @@ fn symbol_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> 
     value_dimension(model, defining_entry(&info.entries), info.local_to, errors).known()
 }
 
-fn value_dimension(model: &Model, decl: &ast::ValueDecl, phenomenon: Option<usize>, errors: &mut Vec<ModelError>) -> Dim {
+fn value_dimension(
+    model: &Model,
+    decl: &ast::ValueDecl,
+    phenomenon: Option<usize>,
+    errors: &mut Vec<ModelError>,
+) -> Dim {
     let place = match decl.kind {
         ast::ValueKind::Scale => Place::Size,
         ast::ValueKind::Constant => Place::Constant,
@@ -134,9 +151,12 @@ fn value_dimension(model: &Model, decl: &ast::ValueDecl, phenomenon: Option<usiz
             }
         },
         ast::Value::Given { nominal, spread } => {
-            let may_be_reading = decl.kind == ast::ValueKind::Constant && matches!(spread, ast::Spread::None);
+            let may_be_reading =
+                decl.kind == ast::ValueKind::Constant && matches!(spread, ast::Spread::None);
             let found = match reading(nominal) {
-                Some(span) if may_be_reading && is_offset(nominal) => Dim::Known(Dimension::temperature(), span),
+                Some(span) if may_be_reading && is_offset(nominal) => {
+                    Dim::Known(Dimension::temperature(), span)
+                }
                 Some(_) | None => dimension(nominal, model, phenomenon, place, errors),
             };
             spread_dimension(model, spread, found, phenomenon, place, errors);
@@ -186,7 +206,10 @@ fn spread_dimension(
         ast::Spread::To(end) | ast::Spread::Margin(end) => end,
     };
     if let (ast::Spread::Margin(_), Some(text)) = (spread, percentage(end)) {
-        errors.push(ModelError::ShareAsMargin { span: end.span, text });
+        errors.push(ModelError::ShareAsMargin {
+            span: end.span,
+            text,
+        });
         return;
     }
     let found = dimension(end, model, phenomenon, place, errors);
@@ -199,7 +222,9 @@ fn spread_dimension(
 /// A literal in per cent, as written.
 fn percentage(expr: &ast::Expr) -> Option<String> {
     match &expr.kind {
-        ExprKind::Number(number) if number.unit.as_ref()?.text == "%" => Some(format!("{} %", number.text)),
+        ExprKind::Number(number) if number.unit.as_ref()?.text == "%" => {
+            Some(format!("{} %", number.text))
+        }
         _ => None,
     }
 }
@@ -210,7 +235,8 @@ fn borrows_unit(spread: &ast::Spread, nominal: Dim) -> bool {
         ast::Spread::To(end) | ast::Spread::Margin(end) => end,
         ast::Spread::None | ast::Spread::Within(_) => return false,
     };
-    matches!(nominal, Dim::Any) || nominal.known().is_some_and(|dim| dim.is_one()) && literal_unit(end).is_some()
+    matches!(nominal, Dim::Any)
+        || nominal.known().is_some_and(|dim| dim.is_one()) && literal_unit(end).is_some()
 }
 
 /// The unit of a literal, with or without a sign.
@@ -247,7 +273,12 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
         for (_, decl) in &info.entries {
             if !std::ptr::eq(decl, defining) {
                 let found = value_dimension(model, decl, info.local_to, errors);
-                alike(expected, whole_value(found, decl), Alike::Value(info.name.clone()), errors);
+                alike(
+                    expected,
+                    whole_value(found, decl),
+                    Alike::Value(info.name.clone()),
+                    errors,
+                );
             }
         }
     }
@@ -260,7 +291,12 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
             }
             let found = value_dimension(model, decl, Some(idx), errors);
             if let Some(expected) = effective_dimension(info.dimension, defining) {
-                alike(expected, whole_value(found, decl), Alike::Value(info.name.clone()), errors);
+                alike(
+                    expected,
+                    whole_value(found, decl),
+                    Alike::Value(info.name.clone()),
+                    errors,
+                );
             }
         }
     }
@@ -296,9 +332,79 @@ fn coordinates_and_fields(model: &mut Model, errors: &mut Vec<ModelError>) {
         model.coordinates[idx].dimension = found.known();
     }
     for idx in 0..model.fields.len() {
-        let found = field_dimension(model, idx, errors);
-        model.fields[idx].dimension = found;
+        if model.fields[idx].parts.is_empty() {
+            let found = field_dimension(model, idx, errors);
+            model.fields[idx].dimension = found;
+        }
     }
+    splits(model, errors);
+}
+
+/// Fields that are split have the dimension of their parts.
+fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
+    let needs: Vec<Vec<usize>> = model
+        .fields
+        .iter()
+        .map(|info| {
+            let parts = info
+                .parts
+                .iter()
+                .filter_map(|(_, part)| model.meaning(&part.text, None));
+            let fields = parts.filter_map(|meaning| match meaning {
+                Meaning::Field(id) => Some(id.0 as usize),
+                Meaning::Symbol(_) | Meaning::Coordinate(_) | Meaning::Group(_) => None,
+            });
+            fields.collect()
+        })
+        .collect();
+    match order(&needs) {
+        Ok(order) => order.into_iter().for_each(|idx| {
+            if !model.fields[idx].parts.is_empty() {
+                model.fields[idx].dimension = split_dimension(model, idx, errors);
+            }
+        }),
+        Err(ring) => {
+            let name = |idx: &usize| &model.fields[*idx].name;
+            errors.push(ModelError::Circular {
+                names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
+                spans: ring.iter().map(|idx| name(idx).span).collect(),
+            });
+        }
+    }
+}
+
+fn split_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Option<Dimension> {
+    let mut settled = Dim::Any;
+    for (_, part) in &model.fields[idx].parts {
+        let found = match model.meaning(&part.text, None) {
+            Some(Meaning::Field(id)) => model.fields[id.0 as usize].dimension,
+            Some(Meaning::Symbol(id))
+                if model.symbols[id.idx()].kind == ast::ValueKind::Constant =>
+            {
+                model.symbols[id.idx()].dimension
+            }
+            Some(other) => {
+                errors.push(out_of_place(
+                    &part.text,
+                    part.span,
+                    other,
+                    model,
+                    "a field or a constant",
+                ));
+                None
+            }
+            None => {
+                errors.push(unknown(&part.text, part.span, model, None));
+                None
+            }
+        };
+        let found = found.map_or(Dim::Faulty, |dimension| Dim::Known(dimension, part.span));
+        alike(settled, found, Alike::Terms, errors);
+        if let (Dim::Any, Dim::Known(..)) = (settled, found) {
+            settled = found;
+        }
+    }
+    settled.known()
 }
 
 fn field_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Option<Dimension> {
@@ -349,14 +455,24 @@ fn field_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> O
 }
 
 /// The declaration of a coordinate by its name, with its dimension.
-fn coordinate(name: &ast::Name, model: &Model, errors: &mut Vec<ModelError>) -> Option<(Span, Option<Dimension>)> {
+fn coordinate(
+    name: &ast::Name,
+    model: &Model,
+    errors: &mut Vec<ModelError>,
+) -> Option<(Span, Option<Dimension>)> {
     match model.meaning(&name.text, None) {
         Some(Meaning::Coordinate(id)) => {
             let info = &model.coordinates[id.0 as usize];
             Some((info.name.span, info.dimension))
         }
         Some(other) => {
-            errors.push(out_of_place(&name.text, name.span, other, model, "a coordinate"));
+            errors.push(out_of_place(
+                &name.text,
+                name.span,
+                other,
+                model,
+                "a coordinate",
+            ));
             None
         }
         None => {
@@ -371,7 +487,13 @@ fn coordinate(name: &ast::Name, model: &Model, errors: &mut Vec<ModelError>) -> 
     }
 }
 
-fn out_of_place(name: &str, span: Span, meaning: Meaning, model: &Model, wanted: &'static str) -> ModelError {
+fn out_of_place(
+    name: &str,
+    span: Span,
+    meaning: Meaning,
+    model: &Model,
+    wanted: &'static str,
+) -> ModelError {
     let kind = match meaning {
         Meaning::Symbol(id) => match model.symbols[id.idx()].kind {
             ast::ValueKind::Scale => "scale",
@@ -395,7 +517,9 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
     let mut rate = match model.meaning("t", None) {
         Some(Meaning::Coordinate(id)) => {
             let time = &model.coordinates[id.0 as usize];
-            let inverse = time.dimension.and_then(|dim| dim.power(Exponent::ONE.negated()).ok());
+            let inverse = time
+                .dimension
+                .and_then(|dim| dim.power(Exponent::ONE.negated()).ok());
             inverse.map_or(Dim::Any, |dim| Dim::Known(dim, time.name.span))
         }
         Some(_) | None => Dim::Any,
@@ -410,7 +534,8 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
             });
             continue;
         };
-        let (Some((_, Some(length))), Some(speed)) = (place, model.fields[id.0 as usize].dimension) else {
+        let (Some((_, Some(length))), Some(speed)) = (place, model.fields[id.0 as usize].dimension)
+        else {
             continue;
         };
         if let Ok(found) = speed.over(&length) {
@@ -433,7 +558,8 @@ fn unknown(name: &str, span: Span, model: &Model, phenomenon: Option<usize>) -> 
 
 fn groups(model: &Model, errors: &mut Vec<ModelError>) {
     for info in &model.groups {
-        if let Dim::Known(dimension, span) = dimension(&info.value, model, None, Place::Group, errors)
+        if let Dim::Known(dimension, span) =
+            dimension(&info.value, model, None, Place::Group, errors)
             && !dimension.is_one()
         {
             errors.push(ModelError::NotDimensionless {
@@ -443,7 +569,11 @@ fn groups(model: &Model, errors: &mut Vec<ModelError>) {
             });
         }
     }
-    let uses: Vec<Vec<usize>> = model.groups.iter().map(|info| groups_in(&info.value, model)).collect();
+    let uses: Vec<Vec<usize>> = model
+        .groups
+        .iter()
+        .map(|info| groups_in(&info.value, model))
+        .collect();
     if let Err(ring) = order(&uses) {
         let name = |idx: &usize| &model.groups[*idx].name;
         errors.push(ModelError::Circular {
@@ -515,11 +645,16 @@ fn balances(model: &Model, errors: &mut Vec<ModelError>) {
 /// # Errors
 /// [`ModelError::UnknownEquation`].
 pub fn equation(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
-    model.equation(&name.text).ok_or_else(|| ModelError::UnknownEquation {
-        name: name.text.clone(),
-        span: name.span,
-        nearest: names::nearest(&name.text, model.equations.iter().map(|found| found.name.text.as_str())),
-    })
+    model
+        .equation(&name.text)
+        .ok_or_else(|| ModelError::UnknownEquation {
+            name: name.text.clone(),
+            span: name.span,
+            nearest: names::nearest(
+                &name.text,
+                model.equations.iter().map(|found| found.name.text.as_str()),
+            ),
+        })
 }
 
 // Order -----------------------------------------------------------------------------------
@@ -579,6 +714,8 @@ struct Walker<'a> {
     model: &'a Model,
     phenomenon: Option<usize>,
     place: Place,
+    /// The whole expression, where it is the value of a declaration.
+    whole: Option<Span>,
     errors: &'a mut Vec<ModelError>,
 }
 
@@ -614,7 +751,11 @@ impl Walker<'_> {
                 span: process.span,
             }),
             ExprKind::Power { base, exponent } => self.power(base, exponent, span),
-            ExprKind::Call { function, order, arguments } => self.call(&function.text, *order, arguments, span),
+            ExprKind::Call {
+                function,
+                order,
+                arguments,
+            } => self.call(&function.text, *order, arguments, span),
             ExprKind::Derivative { operand, by } => self.derivative(operand, by, span),
             ExprKind::Tuple(_) => self.fault(ModelError::NotAvailable {
                 what: Unavailable::Frames,
@@ -628,19 +769,38 @@ impl Walker<'_> {
     fn number(&mut self, number: &ast::Number, span: Span) -> Dim {
         match names::literal(number, span, false) {
             Ok((value, unit)) => {
-                self.warn_of_unit(number);
+                if !self.is_plain_value(number, span) {
+                    self.warn_of_unit(number);
+                }
                 if value.is_zero() && number.unit.is_none() {
                     Dim::Any
                 } else {
                     Dim::Known(unit.dimension, span)
                 }
             }
-            Err(ModelError::Unit { error, text, span, .. }) => {
+            Err(ModelError::Unit {
+                error, text, span, ..
+            }) => {
                 let mend = self.symbol_mend(number, &text);
-                self.fault(ModelError::Unit { error, text, span, mend })
+                self.fault(ModelError::Unit {
+                    error,
+                    text,
+                    span,
+                    mend,
+                })
             }
             Err(error) => self.fault(error),
         }
+    }
+
+    /// Whether a literal is the whole value of a declaration, with a single plain unit, as in
+    /// `constant T_0 = 280 K`: nobody reads a product into that.
+    fn is_plain_value(&self, number: &ast::Number, span: Span) -> bool {
+        let is_single = number
+            .unit
+            .as_ref()
+            .is_some_and(|text| text.text.chars().all(|c| c.is_alphabetic() || c == '_'));
+        is_single && self.whole == Some(span)
     }
 
     /// Where an unknown unit holds declared symbols: the product or the quotient meant.
@@ -651,7 +811,8 @@ impl Walker<'_> {
         }
         let (unit, symbol) = text.rsplit_once('/')?;
         let is_unit = unit == "1" || units::parse_unit(unit).is_ok();
-        (is_unit && is_declared(symbol)).then(|| format!("write `{} {unit} / {symbol}`", number.text))
+        (is_unit && is_declared(symbol))
+            .then(|| format!("write `{} {unit} / {symbol}`", number.text))
     }
 
     /// A unit that consists of declared names only may have been meant as a product.
@@ -663,7 +824,12 @@ impl Walker<'_> {
             .split(|c: char| !(c.is_alphabetic() || c == '_'))
             .filter(|name| !name.is_empty())
             .inspect(|_| n_names += 1)
-            .all(|name| matches!(self.model.meaning(name, self.phenomenon), Some(Meaning::Symbol(_))));
+            .all(|name| {
+                matches!(
+                    self.model.meaning(name, self.phenomenon),
+                    Some(Meaning::Symbol(_))
+                )
+            });
         if n_names > 0 && all_declared {
             let factors = text.text.replace(['.', '·'], "*");
             let product = match factors.strip_prefix("1/") {
@@ -762,7 +928,11 @@ impl Walker<'_> {
                 Err(TooLarge) => return self.fault(ModelError::TooLarge { span }),
             }
         }
-        if is_faulty { Dim::Faulty } else { Dim::Known(product, span) }
+        if is_faulty {
+            Dim::Faulty
+        } else {
+            Dim::Known(product, span)
+        }
     }
 
     fn power(&mut self, base: &ast::Expr, exponent: &ast::Expr, span: Span) -> Dim {
@@ -777,12 +947,16 @@ impl Walker<'_> {
             };
         }
         if !matches!(self.place, Place::Constant | Place::Request) {
-            return self.fault(ModelError::InexactExponent { span: exponent.span });
+            return self.fault(ModelError::InexactExponent {
+                span: exponent.span,
+            });
         }
         self.plain_number(exponent, "an exponent");
         match found {
             Dim::Known(dimension, _) if !dimension.is_one() => {
-                self.fault(ModelError::InexactExponent { span: exponent.span })
+                self.fault(ModelError::InexactExponent {
+                    span: exponent.span,
+                })
             }
             Dim::Known(..) | Dim::Any | Dim::Faulty => found,
         }
@@ -793,16 +967,29 @@ impl Walker<'_> {
         if let Dim::Known(dimension, span) = self.dimension(expr)
             && !dimension.is_one()
         {
-            self.errors.push(ModelError::NotDimensionless { dimension, span, what });
+            self.errors.push(ModelError::NotDimensionless {
+                dimension,
+                span,
+                what,
+            });
         }
     }
 
-    fn call(&mut self, function: &str, order: Option<u32>, arguments: &[ast::Expr], span: Span) -> Dim {
+    fn call(
+        &mut self,
+        function: &str,
+        order: Option<u32>,
+        arguments: &[ast::Expr],
+        span: Span,
+    ) -> Dim {
         let found = names::call(function, self.model);
         match found {
             Call::Unknown => {
                 let is_declared = self.model.meaning(function, self.phenomenon).is_some();
-                let known = names::FUNCTIONS.iter().map(|(name, _)| *name).chain(names::OPERATIONS);
+                let known = names::FUNCTIONS
+                    .iter()
+                    .map(|(name, _)| *name)
+                    .chain(names::OPERATIONS);
                 let nearest = names::nearest(function, known);
                 self.fault(ModelError::NotAFunction {
                     name: function.to_owned(),
@@ -847,7 +1034,13 @@ impl Walker<'_> {
         Some(self.dimension(&arguments[0]))
     }
 
-    fn has_count(&mut self, function: &str, arguments: &[ast::Expr], wanted: usize, span: Span) -> bool {
+    fn has_count(
+        &mut self,
+        function: &str,
+        arguments: &[ast::Expr],
+        wanted: usize,
+        span: Span,
+    ) -> bool {
         let fits = arguments.len() == wanted;
         if !fits {
             self.errors.push(ModelError::ArgumentCount {
@@ -881,7 +1074,10 @@ impl Walker<'_> {
             return self.fault(ModelError::NoVelocity { span });
         };
         let rate = velocity.components.iter().find_map(|(field, along)| {
-            let meanings = (self.model.meaning(&field.text, None)?, self.model.meaning(&along.text, None)?);
+            let meanings = (
+                self.model.meaning(&field.text, None)?,
+                self.model.meaning(&along.text, None)?,
+            );
             let (Meaning::Field(field), Meaning::Coordinate(along)) = meanings else {
                 return None;
             };
@@ -902,7 +1098,8 @@ impl Walker<'_> {
     ) -> Dim {
         let raised = |walker: &mut Self, dim: Dim| match (dim, order) {
             (Dim::Known(dimension, _), Some(order)) => {
-                let power = Exponent::whole(i64::from(order)).and_then(|order| dimension.power(order));
+                let power =
+                    Exponent::whole(i64::from(order)).and_then(|order| dimension.power(order));
                 walker.bounded(power, span)
             }
             (dim, _) => dim,
@@ -934,7 +1131,12 @@ impl Walker<'_> {
 
     fn standard(&mut self, quantity: StandardAtmosphere, height: &ast::Expr, span: Span) -> Dim {
         let at = self.dimension(height);
-        alike(Dim::Known(Dimension::length(), span), at, Alike::Arguments, self.errors);
+        alike(
+            Dim::Known(Dimension::length(), span),
+            at,
+            Alike::Arguments,
+            self.errors,
+        );
         let unit = match quantity {
             StandardAtmosphere::Temperature => "K",
             StandardAtmosphere::Pressure => "Pa",
@@ -956,7 +1158,8 @@ impl Walker<'_> {
         }
         let mut dim = self.dimension(operand);
         for (name, order) in by {
-            let along = coordinate(name, self.model, self.errors).and_then(|(_, dimension)| dimension);
+            let along =
+                coordinate(name, self.model, self.errors).and_then(|(_, dimension)| dimension);
             dim = self.quotient(dim, along, *order, span);
         }
         dim
@@ -971,7 +1174,8 @@ impl Walker<'_> {
             });
         }
         if let Some(process) = process_inside(expr) {
-            self.errors.push(ModelError::ProcessInside { span: process });
+            self.errors
+                .push(ModelError::ProcessInside { span: process });
         }
         let inside = self.dimension(expr);
         self.place = Place::Size;
@@ -979,7 +1183,9 @@ impl Walker<'_> {
         self.place = Place::Equation;
         alike(inside, found, Alike::Size, self.errors);
         match (inside, found) {
-            (Dim::Known(dimension, _), _) | (_, Dim::Known(dimension, _)) => Dim::Known(dimension, span),
+            (Dim::Known(dimension, _), _) | (_, Dim::Known(dimension, _)) => {
+                Dim::Known(dimension, span)
+            }
             (Dim::Any, dim) | (dim, _) => dim,
         }
     }
@@ -990,12 +1196,18 @@ fn process_inside(expr: &ast::Expr) -> Option<Span> {
     match &expr.kind {
         ExprKind::As { process, .. } => Some(process.span),
         ExprKind::Sum(terms) => terms.iter().find_map(|(_, term)| process_inside(term)),
-        ExprKind::Product(factors) => factors.iter().find_map(|(_, factor)| process_inside(factor)),
+        ExprKind::Product(factors) => factors
+            .iter()
+            .find_map(|(_, factor)| process_inside(factor)),
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => process_inside(inside),
         ExprKind::Power { base, .. } => process_inside(base),
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => arguments.iter().find_map(process_inside),
+        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
+            arguments.iter().find_map(process_inside)
+        }
         ExprKind::Derivative { operand, .. } => process_inside(operand),
         ExprKind::Sized { expr, .. } => process_inside(expr),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => None,
+        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
+            None
+        }
     }
 }

@@ -4,47 +4,121 @@ use crate::diagnostic::Diagnostic;
 use crate::source::Span;
 use crate::units::{Dimension, UnitError};
 
-/// A fault of a model, or something worth saying about it.
+/// A fault of a model, or something worth saying about it. Fields are named for what they
+/// hold: spans for places, names and texts as written, dimensions and numbers as found.
+#[expect(
+    missing_docs,
+    reason = "the comment on the enum says what its fields are"
+)]
 #[derive(Debug, Clone)]
 pub enum ModelError {
     /// The language has it, this version does not answer it.
     NotAvailable { what: Unavailable, span: Span },
     /// A name that nothing declares.
-    UnknownName { name: String, span: Span, nearest: Option<String> },
+    UnknownName {
+        name: String,
+        span: Span,
+        nearest: Option<String>,
+    },
     /// A name with brackets behind it that is no function.
-    NotAFunction { name: String, span: Span, is_declared: bool, nearest: Option<String> },
+    NotAFunction {
+        name: String,
+        span: Span,
+        is_declared: bool,
+        nearest: Option<String>,
+    },
     /// A function with too few or too many arguments.
-    ArgumentCount { function: String, expected: &'static str, found: usize, span: Span },
+    ArgumentCount {
+        function: String,
+        expected: &'static str,
+        found: usize,
+        span: Span,
+    },
     /// A unit that cannot be read.
-    Unit { error: UnitError, text: String, span: Span, mend: Option<String> },
+    Unit {
+        error: UnitError,
+        text: String,
+        span: Span,
+        mend: Option<String>,
+    },
     /// A unit that consists of declared names only.
-    UnitOrSymbol { number: String, unit: String, product: String, span: Span },
+    UnitOrSymbol {
+        number: String,
+        unit: String,
+        product: String,
+        span: Span,
+    },
     /// A reading on a scale with an offset where a difference or a product is meant.
     OffsetUnit { unit: String, span: Span },
     /// A name declared twice with two meanings.
-    NameClash { name: String, span: Span, first: Option<Span>, what: Clash },
+    NameClash {
+        name: String,
+        span: Span,
+        first: Option<Span>,
+        what: Clash,
+    },
     /// A second value at one level.
-    SecondValue { name: String, span: Span, first: Span },
+    SecondValue {
+        name: String,
+        span: Span,
+        first: Span,
+    },
     /// A value that replaces one of a lower level.
-    ValueOverridden { name: String, span: Span, first: Span, phenomenon: Option<String> },
+    ValueOverridden {
+        name: String,
+        span: Span,
+        first: Span,
+        phenomenon: Option<String>,
+    },
     /// Two process names that meet in one product.
-    TwoProcesses { first: (String, Span), second: (String, Span) },
+    TwoProcesses {
+        first: (String, Span),
+        second: (String, Span),
+    },
     /// An `as` inside an expression with a size of its own.
     ProcessInside { span: Span },
     /// Components and coordinates of a velocity that do not pair.
-    VelocityCount { n_fields: usize, n_coordinates: usize, span: Span },
+    VelocityCount {
+        n_fields: usize,
+        n_coordinates: usize,
+        span: Span,
+    },
     /// A kind of name that has no place here.
-    OutOfPlace { name: String, kind: &'static str, wanted: &'static str, span: Span },
+    OutOfPlace {
+        name: String,
+        kind: &'static str,
+        wanted: &'static str,
+        span: Span,
+    },
     /// A kind of expression that has no place here.
-    WrongForm { found: &'static str, wanted: &'static str, span: Span },
+    WrongForm {
+        found: &'static str,
+        wanted: &'static str,
+        span: Span,
+    },
     /// Unlike dimensions of two things that must be alike.
-    UnlikeDimensions { expected: Dimension, expected_at: Span, found: Dimension, found_at: Span, what: Alike },
+    UnlikeDimensions {
+        expected: Dimension,
+        expected_at: Span,
+        found: Dimension,
+        found_at: Span,
+        what: Alike,
+    },
     /// Something that must be a plain number and is not.
-    NotDimensionless { dimension: Dimension, span: Span, what: &'static str },
+    NotDimensionless {
+        dimension: Dimension,
+        span: Span,
+        what: &'static str,
+    },
     /// An exponent that is no exact rational number.
     InexactExponent { span: Span },
     /// A scale, or its lower end, at or below 0.
-    NotPositive { name: String, value: f64, unit: String, span: Span },
+    NotPositive {
+        name: String,
+        value: f64,
+        unit: String,
+        span: Span,
+    },
     /// A tolerance of 1 or more.
     ToleranceTooWide { span: Span },
     /// A range whose lower end lies above its upper one, or a factor below 1.
@@ -66,7 +140,10 @@ pub enum ModelError {
     /// A value outside the domain of a function, or not a real number.
     OutOfDomain { span: Span, what: &'static str },
     /// Declarations that need one another.
-    Circular { names: Vec<String>, spans: Vec<Span> },
+    Circular {
+        names: Vec<String>,
+        spans: Vec<Span>,
+    },
     /// A script with nothing to answer for.
     NothingToRank { span: Span },
     /// An equation written with one term.
@@ -78,25 +155,68 @@ pub enum ModelError {
     /// A function of something that varies.
     NotSplit { span: Span, function: String },
     /// A derivative along a coordinate on which its field does not depend.
-    ZeroDerivative { equation: String, texts: Vec<String>, span: Span },
+    ZeroDerivative {
+        equation: String,
+        texts: Vec<String>,
+        span: Span,
+    },
     /// A constant that is 0 takes its terms out.
-    ZeroConstant { equation: String, texts: Vec<String>, names: Vec<String>, phenomenon: Option<String>, span: Span },
+    ZeroConstant {
+        equation: String,
+        texts: Vec<String>,
+        names: Vec<String>,
+        phenomenon: Option<String>,
+        span: Span,
+    },
     /// An expression said to be larger than its parts.
-    CancelsUpwards { span: Span, size: f64, largest: f64, unit: String },
+    CancelsUpwards {
+        span: Span,
+        size: f64,
+        largest: f64,
+        unit: String,
+    },
     /// An equation that is not declared.
-    UnknownEquation { name: String, span: Span, nearest: Option<String> },
+    UnknownEquation {
+        name: String,
+        span: Span,
+        nearest: Option<String>,
+    },
     /// A process that an equation does not have.
-    UnknownProcess { name: String, equation: String, span: Span, known: Vec<String> },
+    UnknownProcess {
+        name: String,
+        equation: String,
+        span: Span,
+        known: Vec<String>,
+    },
     /// A phenomenon that is not declared.
-    UnknownPhenomenon { name: String, span: Span, nearest: Option<String> },
+    UnknownPhenomenon {
+        name: String,
+        span: Span,
+        nearest: Option<String>,
+    },
     /// A module that the library does not have.
-    UnknownModule { name: String, span: Option<Span>, nearest: Option<String> },
+    UnknownModule {
+        name: String,
+        span: Option<Span>,
+        nearest: Option<String>,
+    },
     /// A file that cannot be read.
-    UnreadableFile { path: String, reason: String, span: Option<Span> },
+    UnreadableFile {
+        path: String,
+        reason: String,
+        span: Option<Span>,
+    },
     /// A file that is no UTF-8.
-    NotUtf8 { path: String, offset: usize, span: Option<Span> },
+    NotUtf8 {
+        path: String,
+        offset: usize,
+        span: Option<Span>,
+    },
     /// Modules that use one another.
-    UseCycle { names: Vec<String>, spans: Vec<Span> },
+    UseCycle {
+        names: Vec<String>,
+        spans: Vec<Span>,
+    },
     /// More modules than the limit.
     TooManyModules { span: Span },
     /// A file outside the folder of the script.
@@ -108,8 +228,6 @@ pub enum ModelError {
 pub enum Unavailable {
     /// `frame`, `vector`, `grad` and their like.
     Frames,
-    /// `field p = p_0 + p'`.
-    Splits,
     /// `fluctuation`, `mean`.
     Means,
     /// `coordinate ... about`.
@@ -337,13 +455,25 @@ impl ModelError {
 
     fn dimension_diagnostic(&self) -> Diagnostic {
         match self {
-            ModelError::UnlikeDimensions { expected, expected_at, found, found_at, what } => {
+            ModelError::UnlikeDimensions {
+                expected,
+                expected_at,
+                found,
+                found_at,
+                what,
+            } => {
                 let message = match what {
                     Alike::Terms => "terms of a sum have unlike dimensions".to_owned(),
                     Alike::Sides => "the sides of the equation have unlike dimensions".to_owned(),
-                    Alike::Relation => "the sides of the relation have unlike dimensions".to_owned(),
-                    Alike::Value(name) => format!("the value of `{name}` has another dimension than its declaration"),
-                    Alike::Size => "the size has another dimension than what it stands for".to_owned(),
+                    Alike::Relation => {
+                        "the sides of the relation have unlike dimensions".to_owned()
+                    }
+                    Alike::Value(name) => {
+                        format!("the value of `{name}` has another dimension than its declaration")
+                    }
+                    Alike::Size => {
+                        "the size has another dimension than what it stands for".to_owned()
+                    }
                     Alike::Unit => "the unit has another dimension than what is shown".to_owned(),
                     Alike::Arguments => "the arguments have unlike dimensions".to_owned(),
                     Alike::Range => "the ends of the range have unlike dimensions".to_owned(),
@@ -351,15 +481,26 @@ impl ModelError {
                 Diagnostic::error(
                     "unlike-dimensions",
                     *found_at,
-                    format!("{message}: {} and {}", described(expected), described(found)),
+                    format!(
+                        "{message}: {} and {}",
+                        described(expected),
+                        described(found)
+                    ),
                 )
                 .with_label(described(found))
                 .with_related(*expected_at, described(expected))
             }
-            ModelError::NotDimensionless { dimension, span, what } => Diagnostic::error(
+            ModelError::NotDimensionless {
+                dimension,
+                span,
+                what,
+            } => Diagnostic::error(
                 "not-dimensionless",
                 *span,
-                format!("{what} must be a plain number, found {}", described(dimension)),
+                format!(
+                    "{what} must be a plain number, found {}",
+                    described(dimension)
+                ),
             )
             .with_label(described(dimension)),
             other => unreachable_words(other),
@@ -369,10 +510,17 @@ impl ModelError {
     fn value_diagnostic(&self) -> Diagnostic {
         use ModelError as E;
         match self {
-            E::NotPositive { name, value, unit, span } => Diagnostic::error(
+            E::NotPositive {
+                name,
+                value,
+                unit,
+                span,
+            } => Diagnostic::error(
                 "not-positive",
                 *span,
-                format!("`{name}` must be positive, found {value} {unit}").trim_end().to_owned(),
+                format!("`{name}` must be positive, found {value} {unit}")
+                    .trim_end()
+                    .to_owned(),
             )
             .with_help(if name == "tolerance" {
                 "write a share such as `tolerance 10 %`"
@@ -387,9 +535,15 @@ impl ModelError {
             .with_help("write a share such as `tolerance 10 %`"),
             E::RangeUpsideDown { span, is_factor } => {
                 let (message, help) = if *is_factor {
-                    ("a factor below 1 turns the range upside down", "write a factor above 1: `within 2`, `within 20 %`")
+                    (
+                        "a factor below 1 turns the range upside down",
+                        "write a factor above 1: `within 2`, `within 20 %`",
+                    )
                 } else {
-                    ("the lower end lies above the upper one", "write the smaller number first")
+                    (
+                        "the lower end lies above the upper one",
+                        "write the smaller number first",
+                    )
                 };
                 Diagnostic::error("range-upside-down", *span, message).with_help(help)
             }
@@ -428,34 +582,74 @@ impl ModelError {
             None => Diagnostic::without_place(code, message),
         };
         match self {
-            E::UnknownEquation { name, span, nearest } => {
-                let found = Diagnostic::error("unknown-equation", *span, format!("there is no equation `{name}`"));
+            E::UnknownEquation {
+                name,
+                span,
+                nearest,
+            } => {
+                let found = Diagnostic::error(
+                    "unknown-equation",
+                    *span,
+                    format!("there is no equation `{name}`"),
+                );
                 with_nearest(found, nearest, "declare it, or check its spelling")
             }
-            E::UnknownProcess { name, equation, span, known } => Diagnostic::error(
+            E::UnknownProcess {
+                name,
+                equation,
+                span,
+                known,
+            } => Diagnostic::error(
                 "unknown-process",
                 *span,
                 format!("`{equation}` has no process `{name}`"),
             )
             .with_help(format!("its processes are {}", listed(known))),
-            E::UnknownPhenomenon { name, span, nearest } => {
-                let found = Diagnostic::error("unknown-phenomenon", *span, format!("there is no phenomenon `{name}`"));
+            E::UnknownPhenomenon {
+                name,
+                span,
+                nearest,
+            } => {
+                let found = Diagnostic::error(
+                    "unknown-phenomenon",
+                    *span,
+                    format!("there is no phenomenon `{name}`"),
+                );
                 with_nearest(found, nearest, "declare it, or check its spelling")
             }
-            E::UnknownModule { name, span, nearest } => {
-                let found = place("unknown-module", span, format!("the library has no module `{name}`"));
-                with_nearest(found, nearest, "`scalewright library` lists the modules; a file ends in `.scl` or holds a `/`")
+            E::UnknownModule {
+                name,
+                span,
+                nearest,
+            } => {
+                let found = place(
+                    "unknown-module",
+                    span,
+                    format!("the library has no module `{name}`"),
+                );
+                with_nearest(
+                    found,
+                    nearest,
+                    "`scalewright library` lists the modules; a file ends in `.scl` or holds a `/`",
+                )
             }
-            E::UnreadableFile { path, reason, span } => {
-                place("unreadable-file", span, format!("cannot read `{path}`: {reason}"))
-            }
+            E::UnreadableFile { path, reason, span } => place(
+                "unreadable-file",
+                span,
+                format!("cannot read `{path}`: {reason}"),
+            ),
             E::NotUtf8 { path, offset, span } => place(
                 "not-utf8",
                 span,
-                format!("`{path}` is no UTF-8 text: byte {} cannot be read", offset + 1),
+                format!(
+                    "`{path}` is no UTF-8 text: byte {} cannot be read",
+                    offset + 1
+                ),
             )
             .with_help("save it as UTF-8"),
-            E::UseCycle { names, spans } => circular("use-cycle", "these modules use one another", names, spans),
+            E::UseCycle { names, spans } => {
+                circular("use-cycle", "these modules use one another", names, spans)
+            }
             E::TooManyModules { span } => Diagnostic::error(
                 "too-large",
                 *span,
@@ -480,7 +674,6 @@ fn unreachable_words(error: &ModelError) -> Diagnostic {
 fn not_available(what: Unavailable, span: Span) -> Diagnostic {
     let subject = match what {
         Unavailable::Frames => "vectors and frames are",
-        Unavailable::Splits => "split fields are",
         Unavailable::Means => "fluctuations and means are",
         Unavailable::Origins => "a coordinate about an origin is",
         Unavailable::MadeEquations => "equations made of others are",
@@ -493,15 +686,30 @@ fn not_available(what: Unavailable, span: Span) -> Diagnostic {
             );
         }
     };
-    Diagnostic::error("not-available", span, format!("{subject} read, but not answered by this version"))
+    Diagnostic::error(
+        "not-available",
+        span,
+        format!("{subject} read, but not answered by this version"),
+    )
 }
 
-fn not_a_function(name: &str, span: Span, is_declared: bool, nearest: Option<&String>) -> Diagnostic {
-    let found = Diagnostic::error("unknown-name", span, format!("there is no function `{name}`"));
+fn not_a_function(
+    name: &str,
+    span: Span,
+    is_declared: bool,
+    nearest: Option<&String>,
+) -> Diagnostic {
+    let found = Diagnostic::error(
+        "unknown-name",
+        span,
+        format!("there is no function `{name}`"),
+    );
     match nearest {
         _ if is_declared => found.with_help(format!("for a product write `{name}*(...)`")),
         Some(nearest) => found.with_help(format!("did you mean `{nearest}`?")),
-        None if name.starts_with("d_") => found.with_help("a derivative needs a declared coordinate"),
+        None if name.starts_with("d_") => {
+            found.with_help("a derivative needs a declared coordinate")
+        }
         None => found.with_help("for a product write `*` before the bracket"),
     }
 }
@@ -514,11 +722,15 @@ fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagn
         Clash::Equation => format!("there are two equations `{name}`"),
         Clash::Balance => format!("there are two balances `{name}`"),
         Clash::Phenomenon => format!("there are two phenomena `{name}`"),
-        Clash::Derivative => format!("`{name}` would also spell a derivative along a declared coordinate"),
+        Clash::Derivative => {
+            format!("`{name}` would also spell a derivative along a declared coordinate")
+        }
     };
     let found = Diagnostic::error("name-clash", span, message).with_help("choose another name");
     match first {
-        Some(first) => found.with_label("declared again here").with_related(first, "declared here first"),
+        Some(first) => found
+            .with_label("declared again here")
+            .with_related(first, "declared here first"),
         None => found,
     }
 }
@@ -537,13 +749,20 @@ fn not_a_product(span: Span, what: Product) -> Diagnostic {
             "a term must be a product of powers",
             "give the expression a size of its own, `(... ~ SIZE)`, or name a constant",
         ),
-        Product::Limit => ("a limit must be a product of powers of named groups", "write `Ro`, or `Re^-1`"),
+        Product::Limit => (
+            "a limit must be a product of powers of named groups",
+            "write `Ro`, or `Re^-1`",
+        ),
     };
     Diagnostic::error("not-a-product", span, message).with_help(help)
 }
 
 fn circular(code: &'static str, message: &str, names: &[String], spans: &[Span]) -> Diagnostic {
-    let ring: Vec<&str> = names.iter().chain(names.first()).map(String::as_str).collect();
+    let ring: Vec<&str> = names
+        .iter()
+        .chain(names.first())
+        .map(String::as_str)
+        .collect();
     let message = format!("{message}: {}", ring.join(" → "));
     let Some((&first, others)) = spans.split_first() else {
         return Diagnostic::without_place(code, message);
@@ -579,5 +798,9 @@ fn listed(texts: &[String]) -> String {
 }
 
 fn vanish(texts: &[String]) -> &'static str {
-    if texts.len() == 1 { "vanishes" } else { "vanish" }
+    if texts.len() == 1 {
+        "vanishes"
+    } else {
+        "vanish"
+    }
 }

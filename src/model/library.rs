@@ -107,7 +107,11 @@ mod tests {
     #[test]
     fn every_file_of_the_library_is_embedded() {
         let mut found = Vec::new();
-        files(Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/stdlib")), "", &mut found);
+        files(
+            Path::new(concat!(env!("CARGO_MANIFEST_DIR"), "/stdlib")),
+            "",
+            &mut found,
+        );
         found.sort();
         let embedded: Vec<&str> = MODULES.iter().map(|module| module.name).collect();
         assert_eq!(embedded, found);

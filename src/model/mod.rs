@@ -129,6 +129,8 @@ pub struct FieldInfo {
     pub varying: Option<ast::Expr>,
     /// What it depends on.
     pub coordinates: Vec<ast::Dependence>,
+    /// The parts that it is split into, with their signs; empty if it is not split.
+    pub parts: Vec<(ast::Sign, ast::Name)>,
     /// Title and source.
     pub notes: ast::Notes,
     /// Its dimension; `None` if an error was reported instead.
@@ -196,7 +198,9 @@ impl Model {
 
     /// The index of a phenomenon.
     pub fn phenomenon(&self, name: &str) -> Option<usize> {
-        self.phenomena.iter().position(|found| found.name.text == name)
+        self.phenomena
+            .iter()
+            .position(|found| found.name.text == name)
     }
 
     /// The declaration that holds for a symbol in a phenomenon: the value of the highest
@@ -224,7 +228,12 @@ impl Model {
     pub fn visible_names(&self, phenomenon: Option<usize>) -> Vec<&str> {
         let mut names: Vec<&str> = Vec::new();
         let seen = |info: &SymbolInfo| info.local_to.is_none() || info.local_to == phenomenon;
-        names.extend(self.symbols.iter().filter(|info| seen(info)).map(|info| info.name.as_str()));
+        names.extend(
+            self.symbols
+                .iter()
+                .filter(|info| seen(info))
+                .map(|info| info.name.as_str()),
+        );
         names.extend(self.coordinates.iter().map(|info| info.name.text.as_str()));
         names.extend(self.fields.iter().map(|info| info.name.text.as_str()));
         names.extend(self.groups.iter().map(|info| info.name.text.as_str()));

@@ -55,7 +55,11 @@ pub struct Main {
 }
 
 /// Reads a script and everything it uses: modules first, the script last.
-pub fn load(main: &Main, files: &dyn Files, sources: &mut Sources) -> (Vec<(Level, ast::Script)>, Vec<Diagnostic>) {
+pub fn load(
+    main: &Main,
+    files: &dyn Files,
+    sources: &mut Sources,
+) -> (Vec<(Level, ast::Script)>, Vec<Diagnostic>) {
     let mut loader = Loader {
         main,
         files,
@@ -70,7 +74,9 @@ pub fn load(main: &Main, files: &dyn Files, sources: &mut Sources) -> (Vec<(Leve
         None => Identity::Module(main.name.clone()),
     };
     let file = loader.sources.add(main.name.clone(), main.text.clone());
-    loader.open.push((identity, Span::new(file, 0, 0), main.name.clone()));
+    loader
+        .open
+        .push((identity, Span::new(file, 0, 0), main.name.clone()));
     loader.script(file, &main.text, &main.folder, Level::Script);
     (loader.scripts, loader.errors)
 }
@@ -100,7 +106,8 @@ impl Loader<'_> {
 
     fn script(&mut self, file: FileId, text: &str, folder: &Path, level: Level) {
         let (script, errors) = parser::parse(text, file);
-        self.errors.extend(errors.iter().map(|error| error.diagnostic()));
+        self.errors
+            .extend(errors.iter().map(|error| error.diagnostic()));
         for statement in &script.statements {
             if let StatementKind::Use(used) = &statement.kind {
                 match used {
@@ -141,7 +148,10 @@ impl Loader<'_> {
             path: path.text.clone(),
             span: path.span,
         };
-        let root = self.files.canonical(&self.main.root).unwrap_or_else(|_| self.main.root.clone());
+        let root = self
+            .files
+            .canonical(&self.main.root)
+            .unwrap_or_else(|_| self.main.root.clone());
         // A path that climbs out is refused before anything is looked for.
         if !plain(&wanted).starts_with(plain(&self.main.root)) {
             self.fault(&outside());
@@ -210,7 +220,10 @@ fn plain(path: &Path) -> PathBuf {
             Component::ParentDir if plain.file_name().is_some() => {
                 plain.pop();
             }
-            Component::ParentDir | Component::Prefix(_) | Component::RootDir | Component::Normal(_) => {
+            Component::ParentDir
+            | Component::Prefix(_)
+            | Component::RootDir
+            | Component::Normal(_) => {
                 plain.push(part);
             }
         }

@@ -48,13 +48,31 @@ pub const FUNCTIONS: [(&str, Function); 19] = [
     ("tanh", Function::Plain(units::Function::Tanh)),
     ("min", Function::Min),
     ("max", Function::Max),
-    ("standard_temperature", Function::Standard(units::StandardAtmosphere::Temperature)),
-    ("standard_pressure", Function::Standard(units::StandardAtmosphere::Pressure)),
-    ("standard_density", Function::Standard(units::StandardAtmosphere::Density)),
+    (
+        "standard_temperature",
+        Function::Standard(units::StandardAtmosphere::Temperature),
+    ),
+    (
+        "standard_pressure",
+        Function::Standard(units::StandardAtmosphere::Pressure),
+    ),
+    (
+        "standard_density",
+        Function::Standard(units::StandardAtmosphere::Density),
+    ),
 ];
 
 /// Operations on fields and vectors, which are no functions of numbers.
-pub const OPERATIONS: [&str; 8] = ["D_t", "mean", "grad", "div", "curl", "laplacian", "cross", "dot"];
+pub const OPERATIONS: [&str; 8] = [
+    "D_t",
+    "mean",
+    "grad",
+    "div",
+    "curl",
+    "laplacian",
+    "cross",
+    "dot",
+];
 
 /// Whether a name is built in, so that nothing may be declared under it.
 pub fn is_reserved_function(name: &str) -> bool {
@@ -108,7 +126,11 @@ pub fn call(function: &str, model: &Model) -> Call {
 /// # Errors
 /// A unit that cannot be read, a value beyond the limits, a unit with an offset unless
 /// `may_be_reading`.
-pub fn literal(number: &ast::Number, span: Span, may_be_reading: bool) -> Result<(Number, Unit), ModelError> {
+pub fn literal(
+    number: &ast::Number,
+    span: Span,
+    may_be_reading: bool,
+) -> Result<(Number, Unit), ModelError> {
     let Some(text) = &number.unit else {
         return Ok((Number::rational(number.value.clone()), Unit::one()));
     };
@@ -144,13 +166,17 @@ pub fn rational_exponent(expr: &ast::Expr) -> Option<BigRational> {
         ExprKind::Number(number) if number.unit.is_none() => Some(number.value.clone()),
         ExprKind::Bracket(inside) => rational_exponent(inside),
         ExprKind::Negate(inside) => rational_exponent(inside).map(|value| -value),
-        ExprKind::Sum(terms) => terms.iter().try_fold(BigRational::default(), |sum, (sign, term)| {
-            let value = rational_exponent(term)?;
-            Some(match sign {
-                ast::Sign::Plus => sum + value,
-                ast::Sign::Minus => sum - value,
-            })
-        }),
+        ExprKind::Sum(terms) => {
+            terms
+                .iter()
+                .try_fold(BigRational::default(), |sum, (sign, term)| {
+                    let value = rational_exponent(term)?;
+                    Some(match sign {
+                        ast::Sign::Plus => sum + value,
+                        ast::Sign::Minus => sum - value,
+                    })
+                })
+        }
         ExprKind::Product(factors) => {
             let mut product = BigRational::from_integer(1.into());
             for (operator, factor) in factors {
@@ -196,7 +222,9 @@ pub fn visit_names<'a>(expr: &'a ast::Expr, visit: &mut impl FnMut(&'a str, Span
         ExprKind::Name(name) => visit(name, expr.span),
         ExprKind::Number(_) | ExprKind::Process { .. } | ExprKind::Error => {}
         ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| visit_names(term, visit)),
-        ExprKind::Product(factors) => factors.iter().for_each(|(_, factor)| visit_names(factor, visit)),
+        ExprKind::Product(factors) => factors
+            .iter()
+            .for_each(|(_, factor)| visit_names(factor, visit)),
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => visit_names(inside, visit),
         ExprKind::As { expr, .. } => visit_names(expr, visit),
         ExprKind::Power { base, exponent } => {
@@ -204,7 +232,9 @@ pub fn visit_names<'a>(expr: &'a ast::Expr, visit: &mut impl FnMut(&'a str, Span
             visit_names(exponent, visit);
         }
         ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments.iter().for_each(|argument| visit_names(argument, visit));
+            arguments
+                .iter()
+                .for_each(|argument| visit_names(argument, visit));
         }
         ExprKind::Derivative { operand, .. } => visit_names(operand, visit),
         ExprKind::Sized { expr, size } => {
@@ -246,7 +276,9 @@ pub fn nearest<'a>(name: &str, candidates: impl IntoIterator<Item = &'a str>) ->
         .into_iter()
         .filter(|candidate| *candidate != name)
         .map(|candidate| (strsim::damerau_levenshtein(name, candidate), candidate))
-        .filter(|(distance, candidate)| *distance <= allowed && *distance < candidate.chars().count())
+        .filter(|(distance, candidate)| {
+            *distance <= allowed && *distance < candidate.chars().count()
+        })
         .min()
         .map(|(_, candidate)| candidate.to_owned())
 }

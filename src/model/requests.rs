@@ -20,7 +20,8 @@ pub fn targets(model: &Model, own: Option<usize>, request: &ast::Request) -> Vec
     (0..model.phenomena.len())
         .filter(|idx| {
             let name = &model.phenomena[*idx].name.text;
-            request.phenomena.is_empty() || request.phenomena.iter().any(|wanted| wanted.text == *name)
+            request.phenomena.is_empty()
+                || request.phenomena.iter().any(|wanted| wanted.text == *name)
         })
         .map(Some)
         .collect()
@@ -61,11 +62,16 @@ pub fn check(model: &Model) -> Vec<ModelError> {
 }
 
 fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
-    model.phenomenon(&name.text).ok_or_else(|| ModelError::UnknownPhenomenon {
-        name: name.text.clone(),
-        span: name.span,
-        nearest: names::nearest(&name.text, model.phenomena.iter().map(|found| found.name.text.as_str())),
-    })
+    model
+        .phenomenon(&name.text)
+        .ok_or_else(|| ModelError::UnknownPhenomenon {
+            name: name.text.clone(),
+            span: name.span,
+            nearest: names::nearest(
+                &name.text,
+                model.phenomena.iter().map(|found| found.name.text.as_str()),
+            ),
+        })
 }
 
 struct Checker<'a> {
@@ -76,14 +82,24 @@ struct Checker<'a> {
 
 impl Checker<'_> {
     fn dimension(&mut self, expr: &ast::Expr) -> Dim {
-        dimensions::dimension(expr, self.model, self.phenomenon, Place::Request, self.errors)
+        dimensions::dimension(
+            expr,
+            self.model,
+            self.phenomenon,
+            Place::Request,
+            self.errors,
+        )
     }
 
     fn request(&mut self, request: &ast::Request) {
         match &request.kind {
             RequestKind::Show { expr, unit } => self.show(expr, unit.as_ref()),
             RequestKind::Rank { equations } => self.equations(equations),
-            RequestKind::Reduce { equations, within, save } => {
+            RequestKind::Reduce {
+                equations,
+                within,
+                save,
+            } => {
                 self.equations(equations);
                 if let Some(within) = within
                     && let Err(error) = declarations::tolerance_value(within)
@@ -95,7 +111,9 @@ impl Checker<'_> {
                 }
             }
             RequestKind::Claim(claim) => self.claim(claim),
-            RequestKind::Nondimensionalize { .. } => self.unavailable("nondimensionalize", request.span),
+            RequestKind::Nondimensionalize { .. } => {
+                self.unavailable("nondimensionalize", request.span)
+            }
             RequestKind::Bounds { .. } => self.unavailable("bounds", request.span),
             RequestKind::Find { .. } => self.unavailable("find", request.span),
             RequestKind::Layers => self.unavailable("layers", request.span),
@@ -154,10 +172,16 @@ impl Checker<'_> {
     fn claim(&mut self, claim: &Claim) {
         match claim {
             Claim::Verdict { equation, .. } => self.equations(std::slice::from_ref(equation)),
-            Claim::Relation { left, relation, right, within } => {
+            Claim::Relation {
+                left,
+                relation,
+                right,
+                within,
+            } => {
                 let left = self.dimension(left);
                 let right = self.dimension(right);
-                if let (Dim::Known(expected, expected_at), Dim::Known(found, found_at)) = (left, right)
+                if let (Dim::Known(expected, expected_at), Dim::Known(found, found_at)) =
+                    (left, right)
                     && expected != found
                 {
                     self.errors.push(ModelError::UnlikeDimensions {
@@ -225,7 +249,9 @@ pub fn visit_expressions<'a>(request: &'a ast::Request, visit: &mut impl FnMut(&
 
 /// Whether an expression is a constant given as a reading on a scale with an offset.
 pub fn is_level(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) -> bool {
-    let ExprKind::Name(name) = &expr.kind else { return false };
+    let ExprKind::Name(name) = &expr.kind else {
+        return false;
+    };
     let Some(crate::model::Meaning::Symbol(id)) = model.meaning(name, phenomenon) else {
         return false;
     };
@@ -239,15 +265,23 @@ pub fn is_level(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) -> b
 pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
     let mut errors = Vec::new();
     for part in model.balances.iter().flat_map(|balance| &balance.parts) {
-        let Some(idx) = model.equation(&part.equation.text) else { continue };
+        let Some(idx) = model.equation(&part.equation.text) else {
+            continue;
+        };
         for process in &part.processes {
             errors.extend(process_label(model, case, idx, process).err());
         }
     }
     for (_, request) in &model.requests {
         match &request.kind {
-            RequestKind::Claim(Claim::Verdict { equation, processes, .. }) => {
-                let Some(idx) = model.equation(&equation.text) else { continue };
+            RequestKind::Claim(Claim::Verdict {
+                equation,
+                processes,
+                ..
+            }) => {
+                let Some(idx) = model.equation(&equation.text) else {
+                    continue;
+                };
                 for process in processes {
                     errors.extend(process_label(model, case, idx, process).err());
                 }
@@ -257,8 +291,14 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
                 named_processes(model, case, right, &mut errors);
             }
             RequestKind::Show { expr, .. } => named_processes(model, case, expr, &mut errors),
-            RequestKind::Nondimensionalize { equations, by: Some(by) } => {
-                for idx in equations.iter().filter_map(|name| model.equation(&name.text)) {
+            RequestKind::Nondimensionalize {
+                equations,
+                by: Some(by),
+            } => {
+                for idx in equations
+                    .iter()
+                    .filter_map(|name| model.equation(&name.text))
+                {
                     errors.extend(process_label(model, case, idx, by).err());
                 }
             }
@@ -276,19 +316,29 @@ fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Ve
                 errors.extend(known_process(case, idx, &process.text, process.span).err());
             }
         }
-        ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| named_processes(model, case, term, errors)),
+        ExprKind::Sum(terms) => terms
+            .iter()
+            .for_each(|(_, term)| named_processes(model, case, term, errors)),
         ExprKind::Product(factors) => {
-            factors.iter().for_each(|(_, factor)| named_processes(model, case, factor, errors));
+            factors
+                .iter()
+                .for_each(|(_, factor)| named_processes(model, case, factor, errors));
         }
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => named_processes(model, case, inside, errors),
+        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => {
+            named_processes(model, case, inside, errors)
+        }
         ExprKind::Power { base, exponent } => {
             named_processes(model, case, base, errors);
             named_processes(model, case, exponent, errors);
         }
         ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments.iter().for_each(|argument| named_processes(model, case, argument, errors));
+            arguments
+                .iter()
+                .for_each(|argument| named_processes(model, case, argument, errors));
         }
-        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => named_processes(model, case, expr, errors),
+        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => {
+            named_processes(model, case, expr, errors)
+        }
         ExprKind::Derivative { operand, .. } => named_processes(model, case, operand, errors),
         ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Error => {}
     }
@@ -298,7 +348,12 @@ fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Ve
 ///
 /// # Errors
 /// [`ModelError::UnknownProcess`].
-pub fn known_process(case: &Case, idx: usize, name: &str, span: Span) -> Result<String, ModelError> {
+pub fn known_process(
+    case: &Case,
+    idx: usize,
+    name: &str,
+    span: Span,
+) -> Result<String, ModelError> {
     let equation = &case.equations[idx];
     let is_there = equation.terms.iter().any(|term| term.label() == name)
         || equation.process_names.iter().any(|found| found == name);
@@ -324,7 +379,12 @@ pub fn known_process(case: &Case, idx: usize, name: &str, span: Span) -> Result<
 ///
 /// # Errors
 /// [`ModelError::UnknownProcess`].
-pub fn process_label(model: &Model, case: &Case, idx: usize, process: &ProcessRef) -> Result<String, ModelError> {
+pub fn process_label(
+    model: &Model,
+    case: &Case,
+    idx: usize,
+    process: &ProcessRef,
+) -> Result<String, ModelError> {
     let expr = match process {
         ProcessRef::Text(text) => return known_process(case, idx, &text.text, text.span),
         ProcessRef::Term(expr) => expr,
@@ -346,6 +406,11 @@ pub fn process_label(model: &Model, case: &Case, idx: usize, process: &ProcessRe
     match (found, by_name) {
         (Some(term), _) => Ok(term.label().to_owned()),
         (None, Some(unknown)) => unknown,
-        (None, None) => known_process(case, idx, &crate::syntax::print::expression(expr), expr.span),
+        (None, None) => known_process(
+            case,
+            idx,
+            &crate::syntax::print::expression(expr),
+            expr.span,
+        ),
     }
 }

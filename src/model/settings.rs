@@ -229,7 +229,9 @@ impl Builder<'_> {
                 if !self.is_seen(idx) {
                     return Vec::new();
                 }
-                let (_, decl) = self.model.effective(SymbolId(idx as u32), self.setting.phenomenon);
+                let (_, decl) = self
+                    .model
+                    .effective(SymbolId(idx as u32), self.setting.phenomenon);
                 match &decl.value {
                     ast::Value::Open(_) => Vec::new(),
                     ast::Value::Given { nominal, .. } => {
@@ -273,12 +275,22 @@ impl Builder<'_> {
     }
 
     /// A value written in numbers, with its range.
-    fn number(&self, decl: &ast::ValueDecl, nominal: &ast::Expr, spread: &ast::Spread) -> Result<Value, Fault> {
+    fn number(
+        &self,
+        decl: &ast::ValueDecl,
+        nominal: &ast::Expr,
+        spread: &ast::Spread,
+    ) -> Result<Value, Fault> {
         let value = match values::reading(nominal) {
             Some(reading) if decl.kind == ast::ValueKind::Constant => Value::exact(reading?),
             Some(_) | None => values::evaluate(nominal, self)?,
         };
-        let value = Spreading { decl, nominal, names: self }.spread(value, spread)?;
+        let value = Spreading {
+            decl,
+            nominal,
+            names: self,
+        }
+        .spread(value, spread)?;
         if decl.kind == ast::ValueKind::Scale && value.range.low <= 0.0 {
             return Err(not_positive(decl, nominal, value.range.low).into());
         }
@@ -302,13 +314,19 @@ impl Builder<'_> {
         }
         let is_scale = decl.kind == ast::ValueKind::Scale;
         match values::monomial(nominal, self) {
-            Ok(written) if is_scale || !holds_function(&written) => self.replaced(id, decl, nominal, written),
+            Ok(written) if is_scale || !holds_function(&written) => {
+                self.replaced(id, decl, nominal, written)
+            }
             Ok(_) | Err(Fault::NotAProduct(_)) => {
                 let value = values::evaluate(nominal, self)?;
                 if is_scale && value.range.low <= 0.0 {
                     return Err(not_positive(decl, nominal, value.range.low).into());
                 }
-                if !is_scale && value.range.low <= 0.0 && value.range.high >= 0.0 && !value.is_zero() {
+                if !is_scale
+                    && value.range.low <= 0.0
+                    && value.range.high >= 0.0
+                    && !value.is_zero()
+                {
                     return Err(Fault::Error(ModelError::RangeHoldsZero {
                         name: decl.name.text.clone(),
                         span: nominal.span,
@@ -320,7 +338,13 @@ impl Builder<'_> {
         }
     }
 
-    fn replaced(&mut self, id: SymbolId, decl: &ast::ValueDecl, nominal: &ast::Expr, written: Monomial) -> Result<Variable, Fault> {
+    fn replaced(
+        &mut self,
+        id: SymbolId,
+        decl: &ast::ValueDecl,
+        nominal: &ast::Expr,
+        written: Monomial,
+    ) -> Result<Variable, Fault> {
         let span = nominal.span;
         let size = self
             .setting
@@ -328,7 +352,11 @@ impl Builder<'_> {
             .size(written)
             .map_err(|_| ModelError::TooLarge { span })?;
         let zero = size.resolved.number.is_zero()
-            || size.resolved.powers().iter().any(|(symbol, _)| self.setting.is_zero(symbol));
+            || size
+                .resolved
+                .powers()
+                .iter()
+                .any(|(symbol, _)| self.setting.is_zero(symbol));
         if zero {
             // Still a number: evaluation tells a division by 0 from a product with 0.
             let value = values::evaluate(nominal, self)?;
@@ -346,7 +374,10 @@ impl Builder<'_> {
             Ok(range) if decl.kind == ast::ValueKind::Scale && range.nominal < 0.0 => {
                 return Err(not_positive(decl, nominal, range.nominal).into());
             }
-            Ok(range) => Variable::Known(Value { range, exact: self.exact(&size.resolved) }),
+            Ok(range) => Variable::Known(Value {
+                range,
+                exact: self.exact(&size.resolved),
+            }),
             Err(open) => Variable::Open(open),
         };
         self.setting.quantities.replacements[id.idx()] = Some(size.resolved);
@@ -357,7 +388,9 @@ impl Builder<'_> {
     fn exact(&self, monomial: &Monomial) -> Option<Number> {
         let mut product = monomial.number.clone();
         for (symbol, power) in monomial.powers() {
-            let Symbol::Declared(id) = symbol else { return None };
+            let Symbol::Declared(id) = symbol else {
+                return None;
+            };
             let Variable::Known(value) = &self.setting.variables[id.idx()] else {
                 return None;
             };
@@ -387,7 +420,12 @@ impl Builder<'_> {
                 }
             },
         };
-        if written.number.is_zero() || written.powers().iter().any(|(symbol, _)| self.setting.is_zero(symbol)) {
+        if written.number.is_zero()
+            || written
+                .powers()
+                .iter()
+                .any(|(symbol, _)| self.setting.is_zero(symbol))
+        {
             self.errors.push(ModelError::NotPositive {
                 name: crate::syntax::print::expression(expr),
                 value: 0.0,
@@ -407,7 +445,9 @@ impl Builder<'_> {
 
     fn coordinates(&mut self) {
         for (idx, info) in self.model.coordinates.iter().enumerate() {
-            let Some(size) = self.size(&info.size) else { continue };
+            let Some(size) = self.size(&info.size) else {
+                continue;
+            };
             let variation = Variation {
                 coordinate: CoordinateId(idx as u32),
                 length: size.clone(),
@@ -429,7 +469,13 @@ impl Builder<'_> {
             return;
         }
         for info in &self.model.fields {
-            let Some(size) = self.size(&info.size) else { continue };
+            if !info.parts.is_empty() {
+                self.split_field(info);
+                continue;
+            }
+            let Some(size) = self.size(&info.size) else {
+                continue;
+            };
             let varying = info.varying.as_ref().map(|expr| self.size(expr));
             let varying = match varying {
                 Some(None) => continue,
@@ -445,10 +491,30 @@ impl Builder<'_> {
         }
     }
 
-    fn variations(&mut self, info: &FieldInfo, size: &Size, varying: Option<&Size>) -> Vec<Variation> {
+    /// A split field is replaced by its parts wherever it stands; only its place is kept.
+    fn split_field(&mut self, info: &FieldInfo) {
+        let one = Size {
+            written: Monomial::one(),
+            resolved: Monomial::one(),
+        };
+        self.setting.quantities.fields.push(Quantity {
+            name: info.name.text.clone(),
+            size: one,
+            variations: Vec::new(),
+        });
+    }
+
+    fn variations(
+        &mut self,
+        info: &FieldInfo,
+        size: &Size,
+        varying: Option<&Size>,
+    ) -> Vec<Variation> {
         let mut variations = Vec::new();
         for dependence in &info.coordinates {
-            let Some(Meaning::Coordinate(id)) = self.model.meaning(&dependence.coordinate.text, None) else {
+            let Some(Meaning::Coordinate(id)) =
+                self.model.meaning(&dependence.coordinate.text, None)
+            else {
                 continue;
             };
             let length = match &dependence.length {
@@ -502,7 +568,9 @@ fn holds_function(monomial: &Monomial) -> bool {
 }
 
 fn not_positive(decl: &ast::ValueDecl, nominal: &ast::Expr, value: f64) -> ModelError {
-    let unit = literal_unit(nominal).map(|text| text.text.clone()).unwrap_or_default();
+    let unit = literal_unit(nominal)
+        .map(|text| text.text.clone())
+        .unwrap_or_default();
     let factor = literal_unit(nominal)
         .and_then(|text| names::unit(text).ok())
         .map_or(1.0, |unit| unit.factor.to_f64());
@@ -533,13 +601,17 @@ impl<N: Names> Spreading<'_, N> {
 
     /// The nominal number, with the unit behind the second one where it has none.
     fn borrowed(&self, value: Value, end: &ast::Expr) -> Result<Value, Fault> {
-        let is_bare = literal_unit(self.nominal).is_none() && !names::has_names(self.nominal) && is_literal(self.nominal);
+        let is_bare = literal_unit(self.nominal).is_none()
+            && !names::has_names(self.nominal)
+            && is_literal(self.nominal);
         match literal_unit(end) {
             Some(text) if is_bare => {
                 let unit = names::unit(text)?;
                 let number = value.exact.unwrap_or_else(Number::one);
                 let span = self.nominal.span;
-                let number = number.times(&unit.factor).map_err(|_| ModelError::TooLarge { span })?;
+                let number = number
+                    .times(&unit.factor)
+                    .map_err(|_| ModelError::TooLarge { span })?;
                 Ok(Value::exact(number))
             }
             Some(_) | None => Ok(value),
@@ -551,7 +623,10 @@ impl<N: Names> Spreading<'_, N> {
         let low = self.borrowed(value, end)?.range.nominal;
         let high = values::evaluate(end, self.names)?.range.nominal;
         if low > high {
-            return Err(Fault::Error(ModelError::RangeUpsideDown { span, is_factor: false }));
+            return Err(Fault::Error(ModelError::RangeUpsideDown {
+                span,
+                is_factor: false,
+            }));
         }
         if low <= 0.0 && self.decl.kind == ast::ValueKind::Scale {
             return Err(not_positive(self.decl, end, low).into());
@@ -577,7 +652,10 @@ impl<N: Names> Spreading<'_, N> {
         let margin_value = values::evaluate(margin, self.names)?.range.nominal;
         let span = margin.span;
         if margin_value < 0.0 {
-            return Err(Fault::Error(ModelError::RangeUpsideDown { span, is_factor: false }));
+            return Err(Fault::Error(ModelError::RangeUpsideDown {
+                span,
+                is_factor: false,
+            }));
         }
         let (low, high) = (nominal - margin_value, nominal + margin_value);
         let name = self.decl.name.text.clone();
@@ -605,7 +683,8 @@ fn within(value: &Value, proportion: &ast::Proportion) -> Result<Value, Fault> {
     let nominal = value.range.nominal;
     let (near, far) = (nominal / factor, nominal * factor);
     let span = proportion.span;
-    let range = Range::new(near.min(far), nominal, near.max(far)).map_err(|_| ModelError::TooLarge { span })?;
+    let range = Range::new(near.min(far), nominal, near.max(far))
+        .map_err(|_| ModelError::TooLarge { span })?;
     Ok(Value { range, exact: None })
 }
 
@@ -629,4 +708,3 @@ pub fn factor(proportion: &ast::Proportion) -> Result<BigRational, ModelError> {
     }
     Ok(factor)
 }
-

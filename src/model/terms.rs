@@ -120,8 +120,12 @@ fn has_partials(expr: &ast::Expr) -> bool {
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => has_partials(inside),
         ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => has_partials(expr),
         ExprKind::Power { base, .. } => has_partials(base),
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => arguments.iter().any(has_partials),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => false,
+        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
+            arguments.iter().any(has_partials)
+        }
+        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
+            false
+        }
     }
 }
 
@@ -137,15 +141,25 @@ fn process_names(expr: &ast::Expr, found: &mut Vec<String>) {
             add(&process.text);
             process_names(expr, found);
         }
-        ExprKind::Call { function, arguments, .. } => {
+        ExprKind::Call {
+            function,
+            arguments,
+            ..
+        } => {
             if function.text == "D_t" {
                 add("tendency");
                 add("advection");
             }
-            arguments.iter().for_each(|argument| process_names(argument, found));
+            arguments
+                .iter()
+                .for_each(|argument| process_names(argument, found));
         }
-        ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| process_names(term, found)),
-        ExprKind::Product(factors) => factors.iter().for_each(|(_, factor)| process_names(factor, found)),
+        ExprKind::Sum(terms) => terms
+            .iter()
+            .for_each(|(_, term)| process_names(term, found)),
+        ExprKind::Product(factors) => factors
+            .iter()
+            .for_each(|(_, factor)| process_names(factor, found)),
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => process_names(inside, found),
         ExprKind::Power { base, .. } => process_names(base, found),
         ExprKind::Derivative { operand, .. } => process_names(operand, found),
@@ -171,17 +185,29 @@ fn unnamed(expr: &ast::Expr) -> ast::Expr {
     let inside = |inside: &ast::Expr| Box::new(unnamed(inside));
     let kind = match &expr.kind {
         ExprKind::As { expr, .. } => return unnamed(expr),
-        ExprKind::Sum(terms) => ExprKind::Sum(terms.iter().map(|(sign, term)| (*sign, unnamed(term))).collect()),
-        ExprKind::Product(factors) => {
-            ExprKind::Product(factors.iter().map(|(operator, factor)| (*operator, unnamed(factor))).collect())
-        }
+        ExprKind::Sum(terms) => ExprKind::Sum(
+            terms
+                .iter()
+                .map(|(sign, term)| (*sign, unnamed(term)))
+                .collect(),
+        ),
+        ExprKind::Product(factors) => ExprKind::Product(
+            factors
+                .iter()
+                .map(|(operator, factor)| (*operator, unnamed(factor)))
+                .collect(),
+        ),
         ExprKind::Negate(operand) => ExprKind::Negate(inside(operand)),
         ExprKind::Bracket(operand) => ExprKind::Bracket(inside(operand)),
         ExprKind::Power { base, exponent } => ExprKind::Power {
             base: inside(base),
             exponent: exponent.clone(),
         },
-        ExprKind::Call { function, order, arguments } => ExprKind::Call {
+        ExprKind::Call {
+            function,
+            order,
+            arguments,
+        } => ExprKind::Call {
             function: function.clone(),
             order: *order,
             arguments: arguments.iter().map(unnamed).collect(),
@@ -197,7 +223,10 @@ fn unnamed(expr: &ast::Expr) -> ast::Expr {
         | ExprKind::Sized { .. }
         | ExprKind::Error => expr.kind.clone(),
     };
-    ast::Expr { kind, span: expr.span }
+    ast::Expr {
+        kind,
+        span: expr.span,
+    }
 }
 
 /// The process of a term on its way.
@@ -239,7 +268,10 @@ impl Names for Maker<'_> {
         None
     }
 
-    fn symbol(&self, id: crate::algebra::monomial::SymbolId) -> Result<Value, Vec<crate::algebra::monomial::SymbolId>> {
+    fn symbol(
+        &self,
+        id: crate::algebra::monomial::SymbolId,
+    ) -> Result<Value, Vec<crate::algebra::monomial::SymbolId>> {
         match &self.setting.variables[id.idx()] {
             crate::model::settings::Variable::Known(value) => Ok(value.clone()),
             crate::model::settings::Variable::Open(open) => Err(open.clone()),
@@ -308,7 +340,15 @@ impl<'a> Maker<'a> {
             ExprKind::Product(factors) => match leading_minus(factors) {
                 Some(factors) => {
                     let kind = ExprKind::Product(factors);
-                    self.flatten(&ast::Expr { kind, span: expr.span }, !is_negative, tag, side);
+                    self.flatten(
+                        &ast::Expr {
+                            kind,
+                            span: expr.span,
+                        },
+                        !is_negative,
+                        tag,
+                        side,
+                    );
                 }
                 None => self.summand(expr, is_negative, tag, side),
             },
@@ -354,7 +394,14 @@ impl<'a> Maker<'a> {
     }
 
     /// A term out of a piece; none if a 0 takes it out.
-    fn term(&mut self, piece: Piece, summand: &Summand, idx: usize, is_single: bool, span: Span) -> Option<Term> {
+    fn term(
+        &mut self,
+        piece: Piece,
+        summand: &Summand,
+        idx: usize,
+        is_single: bool,
+        span: Span,
+    ) -> Option<Term> {
         let Piece { product, tag } = piece;
         if product.number.is_zero() {
             return None;
@@ -396,7 +443,11 @@ impl<'a> Maker<'a> {
             }
             return None;
         }
-        let product = if summand.is_negative { product.negated() } else { product };
+        let product = if summand.is_negative {
+            product.negated()
+        } else {
+            product
+        };
         Some(Term {
             text,
             is_negative,
@@ -415,7 +466,10 @@ impl<'a> Maker<'a> {
     /// Notes and the check for a single term, once both sides are taken apart.
     fn close(&mut self, decl: &ast::EquationDecl) {
         let n_written = self.made.terms.len() + self.zeros.0.len() + self.vanished.len();
-        let has_errors = self.errors.iter().any(|error| error.diagnostic().is_error());
+        let has_errors = self
+            .errors
+            .iter()
+            .any(|error| error.diagnostic().is_error());
         if n_written <= 1 && !has_errors {
             self.errors.push(ModelError::OneTerm {
                 equation: decl.name.text.clone(),
@@ -469,13 +523,19 @@ impl<'a> Maker<'a> {
             ExprKind::Product(factors) => self.product(factors, span)?,
             ExprKind::Negate(inside) => self.expand(inside)?.into_iter().map(negated).collect(),
             ExprKind::Bracket(inside) => self.expand(inside)?,
-            ExprKind::As { expr, process } => named(self.expand(expr)?, Some(&written_tag(process))),
+            ExprKind::As { expr, process } => {
+                named(self.expand(expr)?, Some(&written_tag(process)))
+            }
             ExprKind::Power { base, exponent } => {
                 let exponent = names::exponent(exponent)?;
                 let pieces = self.expand(base)?;
                 power(&pieces, exponent, span)?
             }
-            ExprKind::Call { function, order, arguments } => self.call(expr, &function.text, *order, arguments)?,
+            ExprKind::Call {
+                function,
+                order,
+                arguments,
+            } => self.call(expr, &function.text, *order, arguments)?,
             ExprKind::Derivative { operand, by } => {
                 let mut pieces = self.expand(operand)?;
                 // As written, the last coordinate is the innermost.
@@ -488,7 +548,9 @@ impl<'a> Maker<'a> {
                 pieces
             }
             ExprKind::Sized { expr: inside, size } => vec![self.sized(expr, inside, size)?],
-            ExprKind::Process { .. } | ExprKind::Tuple(_) | ExprKind::Error => return Err(not_a_term(span)),
+            ExprKind::Process { .. } | ExprKind::Tuple(_) | ExprKind::Error => {
+                return Err(not_a_term(span));
+            }
         };
         if pieces.len() > limits::TERMS {
             return Err(ModelError::TooLarge { span });
@@ -497,6 +559,13 @@ impl<'a> Maker<'a> {
     }
 
     fn name(&self, expr: &ast::Expr, name: &str) -> Pieces {
+        if let Some(Meaning::Field(id)) = self.model.meaning(name, None)
+            && !self.model.fields[id.0 as usize].parts.is_empty()
+        {
+            let mut parts = Vec::new();
+            self.split(id, false, &mut parts);
+            return Ok(parts);
+        }
         let base = match self.model.meaning(name, None) {
             Some(Meaning::Symbol(id)) => Base::Symbol(Symbol::Declared(id)),
             Some(Meaning::Coordinate(id)) => Base::Coordinate(id),
@@ -506,12 +575,35 @@ impl<'a> Maker<'a> {
         Ok(vec![plain(Product::base(base))])
     }
 
+    /// The parts of a split field, those of split parts in their places.
+    fn split(&self, id: FieldId, is_negative: bool, found: &mut Vec<Piece>) {
+        for (sign, part) in &self.model.fields[id.0 as usize].parts {
+            let is_negative = is_negative != (*sign == Sign::Minus);
+            let base = match self.model.meaning(&part.text, None) {
+                Some(Meaning::Field(inner))
+                    if !self.model.fields[inner.0 as usize].parts.is_empty() =>
+                {
+                    self.split(inner, is_negative, found);
+                    continue;
+                }
+                Some(Meaning::Field(inner)) => Base::Field(inner),
+                Some(Meaning::Symbol(inner)) => Base::Symbol(Symbol::Declared(inner)),
+                Some(Meaning::Coordinate(_) | Meaning::Group(_)) | None => continue,
+            };
+            let piece = plain(Product::base(base));
+            found.push(if is_negative { negated(piece) } else { piece });
+        }
+    }
+
     /// A product of constants, a group or a function of constants.
     fn monomial(&self, expr: &ast::Expr) -> Pieces {
         let found = values::monomial(expr, self).map_err(|fault| {
             fault
                 .error(Wanted::Term)
-                .unwrap_or(ModelError::NotAProduct { span: expr.span, what: Wanted::Term })
+                .unwrap_or(ModelError::NotAProduct {
+                    span: expr.span,
+                    what: Wanted::Term,
+                })
         })?;
         let factors = found
             .powers()
@@ -539,7 +631,13 @@ impl<'a> Maker<'a> {
         Ok(pieces)
     }
 
-    fn call(&mut self, expr: &ast::Expr, function: &str, order: Option<u32>, arguments: &[ast::Expr]) -> Pieces {
+    fn call(
+        &mut self,
+        expr: &ast::Expr,
+        function: &str,
+        order: Option<u32>,
+        arguments: &[ast::Expr],
+    ) -> Pieces {
         let span = expr.span;
         let [argument] = arguments else {
             return self.constant_call(expr, function, arguments);
@@ -556,7 +654,10 @@ impl<'a> Maker<'a> {
             Call::Function(Function::Sqrt) => {
                 let half = Exponent::ratio(1, 2);
                 let exponent = half
-                    .times(Exponent::whole(i64::from(order.unwrap_or(1))).map_err(|_| ModelError::TooLarge { span })?)
+                    .times(
+                        Exponent::whole(i64::from(order.unwrap_or(1)))
+                            .map_err(|_| ModelError::TooLarge { span })?,
+                    )
                     .map_err(|_| ModelError::TooLarge { span })?;
                 match self.expand(argument)?.as_slice() {
                     [single] => power(std::slice::from_ref(single), exponent, span),
@@ -570,7 +671,12 @@ impl<'a> Maker<'a> {
                 };
                 let amount = vec![absolute(single)];
                 match order {
-                    Some(order) => power(&amount, Exponent::whole(i64::from(order)).map_err(|_| ModelError::TooLarge { span })?, span),
+                    Some(order) => power(
+                        &amount,
+                        Exponent::whole(i64::from(order))
+                            .map_err(|_| ModelError::TooLarge { span })?,
+                        span,
+                    ),
                     None => Ok(amount),
                 }
             }
@@ -601,7 +707,13 @@ impl<'a> Maker<'a> {
 
     // Derivatives -----------------------------------------------------------------------------
 
-    fn differentiated(&mut self, pieces: &[Piece], along: CoordinateId, order: u32, span: Span) -> Pieces {
+    fn differentiated(
+        &mut self,
+        pieces: &[Piece],
+        along: CoordinateId,
+        order: u32,
+        span: Span,
+    ) -> Pieces {
         let mut pieces = pieces.to_vec();
         for _ in 0..order {
             let mut next = Vec::new();
@@ -654,11 +766,14 @@ impl<'a> Maker<'a> {
             return Err(ModelError::NoVelocity { span });
         };
         for (field, along) in &velocity.components {
-            let meanings = (model.meaning(&field.text, None), model.meaning(&along.text, None));
-            let (Some(Meaning::Field(field)), Some(Meaning::Coordinate(along))) = meanings else {
+            let Some(Meaning::Coordinate(along)) = model.meaning(&along.text, None) else {
                 return Err(not_a_term(span));
             };
-            let carrier = [plain(Product::base(Base::Field(field)))];
+            let name = ast::Expr {
+                kind: ExprKind::Name(field.text.clone()),
+                span: field.span,
+            };
+            let carrier = self.name(&name, &field.text)?;
             let gradient = self.differentiated(pieces, along, 1, span)?;
             let carried = multiplied(&carrier, &gradient, span)?;
             sum.extend(named(carried, Some(&made_tag("advection", span))));
@@ -668,12 +783,20 @@ impl<'a> Maker<'a> {
 
     // Expressions with a size of their own ------------------------------------------------------
 
-    fn sized(&mut self, whole: &ast::Expr, inside: &ast::Expr, size: &ast::Expr) -> Result<Piece, ModelError> {
+    fn sized(
+        &mut self,
+        whole: &ast::Expr,
+        inside: &ast::Expr,
+        size: &ast::Expr,
+    ) -> Result<Piece, ModelError> {
         let span = size.span;
         let found = values::monomial(size, self).map_err(|fault| {
             fault
                 .error(Wanted::Size)
-                .unwrap_or(ModelError::NotAProduct { span, what: Wanted::Size })
+                .unwrap_or(ModelError::NotAProduct {
+                    span,
+                    what: Wanted::Size,
+                })
         })?;
         let found = self
             .setting
@@ -694,10 +817,16 @@ impl<'a> Maker<'a> {
     }
 
     /// The size must not lie above the largest part; how far below is kept for reports.
-    fn compare_with_parts(&mut self, size: &Size, inside: &ast::Expr, span: Span) -> Result<(), ModelError> {
+    fn compare_with_parts(
+        &mut self,
+        size: &Size,
+        inside: &ast::Expr,
+        span: Span,
+    ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
         let largest = self.largest_part(inside);
-        let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite()) else {
+        let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
+        else {
             return Ok(());
         };
         if nominal > largest * (1.0 + 1e-12) {
@@ -706,7 +835,11 @@ impl<'a> Maker<'a> {
                 span,
                 size: nominal,
                 largest,
-                unit: if dimension == "1" { String::new() } else { "(SI units)".to_owned() },
+                unit: if dimension == "1" {
+                    String::new()
+                } else {
+                    "(SI units)".to_owned()
+                },
             });
         }
         self.below_parts = Some(nominal / largest);
@@ -716,7 +849,11 @@ impl<'a> Maker<'a> {
     /// The nominal size of the largest part of an expression, where it can be told.
     fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
         let root = match &inside.kind {
-            ExprKind::Call { function, order: None, arguments } if function.text == "sqrt" => arguments.first(),
+            ExprKind::Call {
+                function,
+                order: None,
+                arguments,
+            } if function.text == "sqrt" => arguments.first(),
             ExprKind::Bracket(inside) => return self.largest_part(inside),
             _ => None,
         };
@@ -750,7 +887,10 @@ impl<'a> Maker<'a> {
     fn shortest_variations(&self, fields: &[FieldId], size: &Size) -> Vec<Variation> {
         let mut shortest: Vec<Variation> = Vec::new();
         let quantities = &self.setting.quantities;
-        for variation in fields.iter().flat_map(|id| &quantities.field(*id).variations) {
+        for variation in fields
+            .iter()
+            .flat_map(|id| &quantities.field(*id).variations)
+        {
             let length = self.setting.nominal(&variation.length.resolved);
             let own = Variation {
                 amplitude: size.clone(),
@@ -758,9 +898,14 @@ impl<'a> Maker<'a> {
                 has_own_amplitude: false,
                 ..variation.clone()
             };
-            match shortest.iter_mut().find(|found| found.coordinate == own.coordinate) {
+            match shortest
+                .iter_mut()
+                .find(|found| found.coordinate == own.coordinate)
+            {
                 None => shortest.push(own),
-                Some(found) if length < self.setting.nominal(&found.length.resolved) => *found = own,
+                Some(found) if length < self.setting.nominal(&found.length.resolved) => {
+                    *found = own
+                }
                 Some(_) => {}
             }
         }
@@ -780,7 +925,10 @@ fn leading_minus(factors: &[(Operator, ast::Expr)]) -> Option<Vec<(Operator, ast
 }
 
 fn not_a_term(span: Span) -> ModelError {
-    ModelError::NotAProduct { span, what: Wanted::Term }
+    ModelError::NotAProduct {
+        span,
+        what: Wanted::Term,
+    }
 }
 
 fn plain(product: Product) -> Piece {
@@ -819,7 +967,10 @@ fn named(pieces: Vec<Piece>, tag: Option<&Tag>) -> Vec<Piece> {
             None => false,
         };
         let tag = if keeps { piece.tag } else { Some(tag.clone()) };
-        Piece { product: piece.product, tag }
+        Piece {
+            product: piece.product,
+            tag,
+        }
     });
     pieces.collect()
 }
@@ -831,7 +982,10 @@ fn multiplied(left: &[Piece], right: &[Piece], span: Span) -> Pieces {
     let mut pieces = Vec::with_capacity(left.len() * right.len());
     for a in left {
         for b in right {
-            let product = a.product.times(&b.product).map_err(|_| ModelError::TooLarge { span })?;
+            let product = a
+                .product
+                .times(&b.product)
+                .map_err(|_| ModelError::TooLarge { span })?;
             pieces.push(Piece {
                 product,
                 tag: met(a.tag.as_ref(), b.tag.as_ref())?,
@@ -865,7 +1019,10 @@ fn power(pieces: &[Piece], exponent: Exponent, span: Span) -> Pieces {
                 what: "no root of a negative number",
             });
         }
-        let product = single.product.power(exponent).map_err(|_| ModelError::TooLarge { span })?;
+        let product = single
+            .product
+            .power(exponent)
+            .map_err(|_| ModelError::TooLarge { span })?;
         return Ok(vec![Piece {
             product,
             tag: single.tag.clone(),
@@ -915,7 +1072,9 @@ fn collected(pieces: Vec<Piece>) -> Vec<Piece> {
     for piece in pieces {
         let like = sum
             .iter_mut()
-            .filter(|found| name_of(&found.tag) == name_of(&piece.tag) && found.product.is_like(&piece.product))
+            .filter(|found| {
+                name_of(&found.tag) == name_of(&piece.tag) && found.product.is_like(&piece.product)
+            })
             .find_map(|found| {
                 let number = found.product.number.plus(&piece.product.number)?;
                 Some((found, number))

@@ -121,7 +121,9 @@ pub fn evaluate(expr: &ast::Expr, names: &impl Names) -> Result<Value, Fault> {
     match &expr.kind {
         ExprKind::Number(number) => Ok(Value::exact(names::literal(number, span, false)?.0)),
         ExprKind::Name(name) => evaluate_name(name, span, names),
-        ExprKind::Process { equation, process } => names.process(equation, process).map(Value::inexact),
+        ExprKind::Process { equation, process } => {
+            names.process(equation, process).map(Value::inexact)
+        }
         ExprKind::Sum(terms) => evaluate_sum(terms, names, span),
         ExprKind::Product(factors) => evaluate_product(factors, names),
         ExprKind::Negate(inside) => {
@@ -133,10 +135,18 @@ pub fn evaluate(expr: &ast::Expr, names: &impl Names) -> Result<Value, Fault> {
         }
         ExprKind::Bracket(inside) => evaluate(inside, names),
         ExprKind::Power { base, exponent } => evaluate_power(base, exponent, names, span),
-        ExprKind::Call { function, order, arguments } => {
+        ExprKind::Call {
+            function,
+            order,
+            arguments,
+        } => {
             let value = evaluate_call(&function.text, arguments, names, span)?;
             match order {
-                Some(order) => power(&value, Exponent::whole(i64::from(*order)).map_err(too_large(span))?, span),
+                Some(order) => power(
+                    &value,
+                    Exponent::whole(i64::from(*order)).map_err(too_large(span))?,
+                    span,
+                ),
                 None => Ok(value),
             }
         }
@@ -157,7 +167,11 @@ fn evaluate_name(name: &str, span: Span, names: &impl Names) -> Result<Value, Fa
     }
 }
 
-fn evaluate_sum(terms: &[(Sign, ast::Expr)], names: &impl Names, span: Span) -> Result<Value, Fault> {
+fn evaluate_sum(
+    terms: &[(Sign, ast::Expr)],
+    names: &impl Names,
+    span: Span,
+) -> Result<Value, Fault> {
     let mut sum = Value::exact(Number::whole(0));
     for (sign, term) in terms {
         let value = evaluate(term, names)?;
@@ -200,7 +214,12 @@ fn evaluate_product(factors: &[(Operator, ast::Expr)], names: &impl Names) -> Re
     Ok(product)
 }
 
-fn evaluate_power(base: &ast::Expr, exponent: &ast::Expr, names: &impl Names, span: Span) -> Result<Value, Fault> {
+fn evaluate_power(
+    base: &ast::Expr,
+    exponent: &ast::Expr,
+    names: &impl Names,
+    span: Span,
+) -> Result<Value, Fault> {
     let value = evaluate(base, names)?;
     if names::rational_exponent(exponent).is_some() {
         return power(&value, names::exponent(exponent)?, span);
@@ -232,7 +251,12 @@ fn power(value: &Value, exponent: Exponent, span: Span) -> Result<Value, Fault> 
     Ok(Value::inexact(ranged(value.range.power(exponent), span)?))
 }
 
-fn evaluate_call(function: &str, arguments: &[ast::Expr], names: &impl Names, span: Span) -> Result<Value, Fault> {
+fn evaluate_call(
+    function: &str,
+    arguments: &[ast::Expr],
+    names: &impl Names,
+    span: Span,
+) -> Result<Value, Fault> {
     let Call::Function(found) = names::call(function, names.model()) else {
         return Err(Fault::NotAProduct(span));
     };
@@ -276,7 +300,10 @@ fn plain_function(function: units::Function, argument: &Value, span: Span) -> Re
             ExactTrig::NotExact => {}
         }
     }
-    Ok(Value::inexact(ranged(function.over(&argument.range), span)?))
+    Ok(Value::inexact(ranged(
+        function.over(&argument.range),
+        span,
+    )?))
 }
 
 fn extreme(values: &[Value], pick: impl Fn(Range, Range) -> Range) -> Value {
@@ -314,14 +341,20 @@ pub fn monomial(expr: &ast::Expr, names: &impl Names) -> Result<Monomial, Fault>
         }
         ExprKind::Negate(inside) => {
             let minus = Monomial::number(Number::whole(-1));
-            monomial(inside, names)?.times(&minus).map_err(too_large(span))
+            monomial(inside, names)?
+                .times(&minus)
+                .map_err(too_large(span))
         }
         ExprKind::Bracket(inside) => monomial(inside, names),
         ExprKind::Power { base, exponent } => {
             let exponent = exact_exponent(exponent, names)?;
             monomial_power(&monomial(base, names)?, exponent, span)
         }
-        ExprKind::Call { function, order, arguments } => {
+        ExprKind::Call {
+            function,
+            order,
+            arguments,
+        } => {
             let found = monomial_call(expr, &function.text, arguments, names)?;
             match order {
                 Some(order) => {
@@ -398,7 +431,9 @@ fn monomial_call(
         _ => Err(Fault::NotAProduct(span)),
     };
     match (found, inside) {
-        (Function::Sqrt, Ok(inside)) => return monomial_power(&inside, Exponent::ratio(1, 2), span),
+        (Function::Sqrt, Ok(inside)) => {
+            return monomial_power(&inside, Exponent::ratio(1, 2), span);
+        }
         (Function::Abs, Ok(inside)) => return Ok(inside.abs()),
         (_, Err(Fault::Error(error))) => return Err(Fault::Error(error)),
         (_, Ok(_) | Err(Fault::Open(_) | Fault::NotAProduct(_))) => {}
@@ -419,16 +454,30 @@ fn function_symbol(
         if !holds_constants_only(argument, names) {
             return Err(Fault::NotAProduct(span));
         }
-        symbols.extend(names::symbols_in(argument, names.model(), names.phenomenon()));
+        symbols.extend(names::symbols_in(
+            argument,
+            names.model(),
+            names.phenomenon(),
+        ));
     }
     let value = match evaluate_call(function, arguments, names, span) {
         Ok(value) => value,
-        Err(Fault::Open(open)) => return Ok(function_under_text(function, arguments, None, open, symbols)),
+        Err(Fault::Open(open)) => {
+            return Ok(function_under_text(
+                function, arguments, None, open, symbols,
+            ));
+        }
         Err(fault) => return Err(fault),
     };
     match &value.exact {
         Some(number) if symbols.is_empty() => Ok(Monomial::number(number.clone())),
-        Some(_) | None => Ok(function_under_text(function, arguments, Some(&value), Vec::new(), symbols)),
+        Some(_) | None => Ok(function_under_text(
+            function,
+            arguments,
+            Some(&value),
+            Vec::new(),
+            symbols,
+        )),
     }
 }
 
@@ -471,7 +520,9 @@ pub fn reading(expr: &ast::Expr) -> Option<Result<Number, ModelError>> {
         return None;
     }
     match &expr.kind {
-        ExprKind::Number(number) => Some(names::literal(number, expr.span, true).map(|(value, _)| value)),
+        ExprKind::Number(number) => {
+            Some(names::literal(number, expr.span, true).map(|(value, _)| value))
+        }
         ExprKind::Negate(inside) => match &inside.kind {
             ExprKind::Number(number) => {
                 let negative = ast::Number {

@@ -203,7 +203,11 @@ mod tests {
         assert_eq!(number(0.0946317), "0.0946");
         assert_eq!(number(9.759e-5), "9.76e-5");
         assert_eq!(number(0.00412504), "0.00413");
-        let mixed = Range { low: 5.16e-4, nominal: 1.03e-3, high: 2.06e-3 };
+        let mixed = Range {
+            low: 5.16e-4,
+            nominal: 1.03e-3,
+            high: 2.06e-3,
+        };
         assert_eq!(range(&mixed), "5.16e-4 .. 1.03e-3 .. 2.06e-3");
         assert_eq!(number(1024.695), "1025");
         assert_eq!(number(100.0), "100");
@@ -221,6 +225,10 @@ mod tests {
     fn paragraphs_hang_and_fit() {
         let text = wrapped("  label  ", &"word ".repeat(40));
         assert!(text.lines().all(|line| width(line) <= WIDTH));
-        assert!(text.lines().skip(1).all(|line| line.starts_with("         w")));
+        assert!(
+            text.lines()
+                .skip(1)
+                .all(|line| line.starts_with("         w"))
+        );
     }
 }

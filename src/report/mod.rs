@@ -9,4 +9,5 @@ pub mod text;
 pub mod words;
 
 /// What every report ends with, since a result may bear on somebody's safety.
-pub const CAUTION: &str = "Order-of-magnitude estimates, not a design basis: local codes and licensed practice decide.";
+pub const CAUTION: &str =
+    "Order-of-magnitude estimates, not a design basis: local codes and licensed practice decide.";

@@ -20,14 +20,24 @@ impl Ruler {
     /// A ruler over sizes, in so many columns.
     pub fn over(sizes: &[Range], columns: usize) -> Ruler {
         let log = |value: f64| value.abs().max(f64::MIN_POSITIVE).log10();
-        let high = sizes.iter().map(|size| log(size.high)).fold(f64::NEG_INFINITY, f64::max);
-        let low = sizes.iter().map(|size| log(size.low)).fold(f64::INFINITY, f64::min);
+        let high = sizes
+            .iter()
+            .map(|size| log(size.high))
+            .fold(f64::NEG_INFINITY, f64::max);
+        let low = sizes
+            .iter()
+            .map(|size| log(size.low))
+            .fold(f64::INFINITY, f64::min);
         let top = high.ceil() as i32;
         let most = DECADES.min((columns as i32 - 1) / 2).max(1);
         let lowest = (low.floor() as i32).max(top - most).min(top - 1);
         let decades = top - lowest;
         let step = ((columns.saturating_sub(1)) / decades as usize).clamp(1, 10);
-        Ruler { lowest, decades, step }
+        Ruler {
+            lowest,
+            decades,
+            step,
+        }
     }
 
     /// The columns it takes.
@@ -36,7 +46,8 @@ impl Ruler {
     }
 
     fn column(&self, size: f64) -> Option<usize> {
-        let place = (size.abs().max(f64::MIN_POSITIVE).log10() - f64::from(self.lowest)) * self.step as f64;
+        let place =
+            (size.abs().max(f64::MIN_POSITIVE).log10() - f64::from(self.lowest)) * self.step as f64;
         // A hair below the edge is the edge.
         (place > -0.5).then(|| (place.round().max(0.0) as usize).min(self.width() - 1))
     }
@@ -45,7 +56,10 @@ impl Ruler {
     pub fn head(&self) -> String {
         let mut line = String::new();
         let label = |decade: i32| format!("1e{}", self.lowest + decade);
-        let widest = (0..=self.decades).map(|decade| layout::width(&label(decade))).max().unwrap_or(1);
+        let widest = (0..=self.decades)
+            .map(|decade| layout::width(&label(decade)))
+            .max()
+            .unwrap_or(1);
         let every = (widest + 1).div_ceil(self.step).max(1) as i32;
         let mut end = 0;
         for decade in (0..=self.decades).step_by(every as usize) {
@@ -94,7 +108,14 @@ mod tests {
 
     #[test]
     fn marks_stand_where_their_decades_do() {
-        let sizes = [Range { low: 1e-5, nominal: 1e-4, high: 1e-3 }, Range::exact(1e-7)];
+        let sizes = [
+            Range {
+                low: 1e-5,
+                nominal: 1e-4,
+                high: 1e-3,
+            },
+            Range::exact(1e-7),
+        ];
         let ruler = Ruler::over(&sizes, 41);
         assert_eq!(ruler.width(), 41);
         let line: Vec<char> = ruler.line(&sizes[0]).chars().collect();

@@ -1,7 +1,7 @@
 //! The sentences that all report forms share.
 
 use crate::analysis::claims::{Held, Measured};
-use crate::analysis::reduce::{Inequality, LostDerivative, Lone, ReducedEquation, ReducedTerm};
+use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation, ReducedTerm};
 use crate::analysis::{Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
@@ -78,7 +78,13 @@ pub fn condition_with_values(term: &ReducedTerm) -> String {
     let texts: Vec<String> = term
         .conditions
         .iter()
-        .map(|condition| format!("{} (now {})", inequality(condition), range(&condition.value)))
+        .map(|condition| {
+            format!(
+                "{} (now {})",
+                inequality(condition),
+                range(&condition.value)
+            )
+        })
         .collect();
     texts.join(" or ")
 }
@@ -112,7 +118,14 @@ fn ordinal(order: u32) -> String {
 pub fn lost(lost: &[LostDerivative]) -> String {
     let derivatives: Vec<String> = lost
         .iter()
-        .map(|lost| format!("the {} derivative of {} along {}", ordinal(lost.order), lost.field, lost.coordinate))
+        .map(|lost| {
+            format!(
+                "the {} derivative of {} along {}",
+                ordinal(lost.order),
+                lost.field,
+                lost.coordinate
+            )
+        })
         .collect();
     let in_time = lost.iter().any(|lost| lost.coordinate == "t");
     let in_space = lost.iter().any(|lost| lost.coordinate != "t");
@@ -122,7 +135,11 @@ pub fn lost(lost: &[LostDerivative]) -> String {
         (true, false) if lost.len() == 1 => "a boundary condition",
         (true, false) | (false, false) => "boundary conditions",
     };
-    let (verb, them) = if lost.len() == 1 { ("is", "it") } else { ("are", "they") };
+    let (verb, them) = if lost.len() == 1 {
+        ("is", "it")
+    } else {
+        ("are", "they")
+    };
     format!(
         "{} {verb} lost, and with {} {conditions}; `layers` looks for where {them} matter again",
         derivatives.join(", "),
@@ -135,13 +152,23 @@ pub fn lost(lost: &[LostDerivative]) -> String {
 pub fn warnings(equation: &ReducedEquation) -> Vec<Warning> {
     let mut found = Vec::new();
     match &equation.lone {
-        Some(Lone::Term { term, is_derivative, mends: scales }) => {
-            let mut message = format!("`{}` is left with `{term}` alone, which nothing balances", equation.name);
+        Some(Lone::Term {
+            term,
+            is_derivative,
+            mends: scales,
+        }) => {
+            let mut message = format!(
+                "`{}` is left with `{term}` alone, which nothing balances",
+                equation.name
+            );
             if *is_derivative {
                 message.push_str(": it vanishes to leading order");
             }
             if !scales.is_empty() {
-                message.push_str(&format!("; a second process would be as large with {}", mends(scales)));
+                message.push_str(&format!(
+                    "; a second process would be as large with {}",
+                    mends(scales)
+                ));
             }
             found.push(Warning {
                 code: "lone-leading-term",
@@ -153,7 +180,10 @@ pub fn warnings(equation: &ReducedEquation) -> Vec<Warning> {
         Some(Lone::Process { process }) => found.push(Warning {
             code: "lone-process",
             severity: Severity::Note,
-            message: format!("the terms of `{process}` are left alone in `{}` and must cancel one another", equation.name),
+            message: format!(
+                "the terms of `{process}` are left alone in `{}` and must cancel one another",
+                equation.name
+            ),
             mends: Vec::new(),
         }),
         None => {}
@@ -181,28 +211,55 @@ pub fn undetermined(fields: &[String]) -> String {
 /// What was measured for a claim.
 pub fn measured(held: &Held) -> String {
     match &held.measured {
-        Measured::Ratio { value, limit, relation } => {
+        Measured::Ratio {
+            value,
+            limit,
+            relation,
+        } => {
             let side = match relation {
                 Relation::MuchLess => format!("at most {} is asked for", number(*limit)),
                 Relation::MuchGreater => format!("at least {} is asked for", number(1.0 / limit)),
-                _ => format!("within a factor {} of 1 at the nominal values is asked for", number(*limit)),
+                _ => format!(
+                    "within a factor {} of 1 at the nominal values is asked for",
+                    number(*limit)
+                ),
             };
             format!("ratio {}; {side}", range(value))
         }
-        Measured::Value { left, right, unit, relation, is_bound } => {
-            let bound = if *is_bound { ", at most so far apart" } else { "" };
+        Measured::Value {
+            left,
+            right,
+            unit,
+            relation,
+            is_bound,
+        } => {
+            let bound = if *is_bound {
+                ", at most so far apart"
+            } else {
+                ""
+            };
             let (left, right) = match relation {
                 Relation::Equal => (Range::exact(left.nominal), Range::exact(right.nominal)),
                 _ => (*left, *right),
             };
-            format!("{} against {}{bound}", quantity(&left, unit), quantity(&right, unit))
+            format!(
+                "{} against {}{bound}",
+                quantity(&left, unit),
+                quantity(&right, unit)
+            )
         }
         Measured::Processes { word, found, share } => {
-            let listed = if found.is_empty() { "nothing".to_owned() } else { found.join(", ") };
+            let listed = if found.is_empty() {
+                "nothing".to_owned()
+            } else {
+                found.join(", ")
+            };
             match (word, share) {
                 (ClaimWord::Leading, _) => format!("{listed} leads"),
                 (ClaimWord::Kept, _) => format!("{listed} is kept"),
-                (ClaimWord::Dropped, Some(share)) => format!("{listed} stays, at up to {}", percent(*share)),
+                (ClaimWord::Dropped, Some(share)) => {
+                    format!("{listed} stays, at up to {}", percent(*share))
+                }
                 (ClaimWord::Dropped, None) => "all of it drops".to_owned(),
             }
         }
@@ -211,5 +268,8 @@ pub fn measured(held: &Held) -> String {
 
 /// Whether the reports say in their own place what a diagnostic of this code says.
 pub fn is_in_report(code: &str) -> bool {
-    matches!(code, "lone-leading-term" | "lone-process" | "lost-derivative" | "undetermined-field")
+    matches!(
+        code,
+        "lone-leading-term" | "lone-process" | "lost-derivative" | "undetermined-field"
+    )
 }

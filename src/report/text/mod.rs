@@ -1,0 +1,184 @@
+//! The report for a terminal: at most 80 columns, readable without colour. Here stand what
+//! all answers share and the audit of what was given; each request has a file of its own.
+
+mod claims;
+mod rank;
+mod reduce;
+mod show;
+
+use std::fmt::Write as _;
+
+use anstyle::{AnsiColor, Effects, Style};
+
+use crate::analysis::sizes::Verdict;
+use crate::analysis::{Answer, Body};
+use crate::audit::AuditRow;
+use crate::report::CAUTION;
+use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
+use crate::session::Outcome;
+
+/// Writes the whole report.
+pub fn report(outcome: &Outcome, colour: bool) -> String {
+    let pen = Pen { colour };
+    let mut out = String::new();
+    if !outcome.answers.is_empty() || !outcome.claims.is_empty() {
+        audit(&outcome.symbols, &pen, &mut out);
+    }
+    for answer in &outcome.answers {
+        write_answer(answer, &pen, &mut out);
+    }
+    claims::claims(&outcome.claims, &pen, &mut out);
+    if !out.is_empty() {
+        out.push('\n');
+        out.push_str(&wrapped("", CAUTION));
+    }
+    out
+}
+
+/// Colours, which only add.
+struct Pen {
+    colour: bool,
+}
+
+impl Pen {
+    fn styled(&self, text: &str, style: Style) -> String {
+        if self.colour {
+            format!("{style}{text}{style:#}")
+        } else {
+            text.to_owned()
+        }
+    }
+
+    fn head(&self, text: &str) -> String {
+        self.styled(text, Style::new().effects(Effects::BOLD))
+    }
+
+    fn verdict(&self, verdict: Verdict, text: &str) -> String {
+        let style = Style::new();
+        let style = match verdict {
+            Verdict::Leads => style.effects(Effects::BOLD),
+            Verdict::Depends => style.fg_color(Some(AnsiColor::Yellow.into())),
+            Verdict::Drops => style.effects(Effects::DIMMED),
+        };
+        self.styled(text, style)
+    }
+
+    fn alarm(&self, text: &str) -> String {
+        self.styled(
+            text,
+            Style::new()
+                .fg_color(Some(AnsiColor::Red.into()))
+                .effects(Effects::BOLD),
+        )
+    }
+}
+
+// What was given ------------------------------------------------------------------------------
+
+fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
+    let shown: Vec<&AuditRow> = rows
+        .iter()
+        .filter(|row| {
+            matches!(row.kind, "scale" | "constant") && row.value.is_some() && row.is_used
+        })
+        .collect();
+    if shown.is_empty() {
+        return;
+    }
+    let mut groups: Vec<Option<&str>> = Vec::new();
+    for row in &shown {
+        let phenomenon = row.phenomenon.as_deref();
+        if !groups.contains(&phenomenon) {
+            groups.push(phenomenon);
+        }
+    }
+    let names = shown.iter().map(|row| width(&row.name)).max().unwrap_or(0);
+    for phenomenon in groups {
+        let title = match phenomenon {
+            Some(name) => format!("given for {name}"),
+            None => "given".to_owned(),
+        };
+        let _ = writeln!(out, "{}", pen.head(&title));
+        let mut own: Vec<&&AuditRow> = shown
+            .iter()
+            .filter(|row| row.phenomenon.as_deref() == phenomenon)
+            .collect();
+        // As they were declared; what follows from them comes behind.
+        own.sort_by_key(|row| (row.formula.is_some() && phenomenon.is_some(), row.place));
+        for row in own {
+            let label = format!("  {}  ", padded(&row.name, names.min(24)));
+            out.push_str(&wrapped(&label, &audit_words(row)));
+        }
+        out.push('\n');
+    }
+}
+
+fn audit_words(row: &AuditRow) -> String {
+    let (value, unit_text) = row.shown_value();
+    let mut text = value
+        .map(|value| quantity(&value, &unit_text))
+        .unwrap_or_default();
+    if let Some(formula) = &row.formula {
+        let _ = write!(text, " = {formula}");
+    }
+    if let Some(title) = &row.title {
+        let _ = write!(text, ", {title}");
+    }
+    if let Some(source) = &row.source {
+        let _ = write!(text, " ({source})");
+    }
+    text
+}
+
+// Answers -------------------------------------------------------------------------------------
+
+fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
+    let title = match (&answer.phenomenon, &answer.title) {
+        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
+        (Some(name), None) => format!("{}, {name}", answer.text),
+        (None, _) => answer.text.clone(),
+    };
+    if let Body::Show(shown) = &answer.body {
+        show::show(&title, shown, pen, out);
+        return;
+    }
+    let title = cut(&title, WIDTH - 6);
+    let rule = "─".repeat(WIDTH.saturating_sub(width(&title) + 5));
+    let _ = writeln!(out, "── {} {rule}\n", pen.head(&title));
+    match &answer.body {
+        Body::Show(_) => {}
+        Body::Rank(equations) => equations
+            .iter()
+            .for_each(|equation| rank::ranked(equation, pen, out)),
+        Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+    }
+    for left in &answer.left_out {
+        let text = format!("{}: open {}", left.equation, left.open.join(", "));
+        out.push_str(&wrapped("left out  ", &text));
+    }
+    if !answer.left_out.is_empty() {
+        out.push('\n');
+    }
+}
+
+/// Name, title and unit on the left, the tolerance on the right.
+fn equation_head(
+    name: &str,
+    title: Option<&String>,
+    unit_text: &str,
+    tolerance: f64,
+    pen: &Pen,
+    out: &mut String,
+) {
+    let mut text = name.to_owned();
+    if let Some(title) = title {
+        let _ = write!(text, ", {title}");
+    }
+    if unit_text != "1" && !unit_text.is_empty() {
+        let _ = write!(text, ", {}", unit(unit_text));
+    }
+    let tolerance = format!("tolerance {}", percent(tolerance));
+    let room = WIDTH - width(&tolerance) - 2;
+    let text = padded(&cut(&text, room), room);
+    let _ = writeln!(out, "{}  {tolerance}", pen.head(&text));
+}
