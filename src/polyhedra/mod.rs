@@ -2,11 +2,20 @@
 //! nothing of scripts, equations or units: rational numbers in, rational numbers out.
 //!
 //! - `simplex`: linear programs;
-//! - `shares`: highest and lowest shares of terms over a box of ranges.
+//! - `shares`: highest and lowest shares of terms over a box of ranges;
+//! - `prevariety`: all dominant balances of a system, with `search`, `candidates` and
+//!   `contradictions`.
 //!
-//! Below them stand `whole`, whole numbers that are fast while small and never overflow,
-//! and `tableau`, the pivots.
+//! Below them stand `whole` (whole numbers that are fast while small and never
+//! overflow), `tableau` (the pivots), `cells` (polyhedra by corners and directions) and
+//! `echelon` (equations between unknowns).
 
+mod candidates;
+mod cells;
+mod contradictions;
+mod echelon;
+pub mod prevariety;
+mod search;
 mod shares;
 mod simplex;
 mod tableau;

@@ -1,5 +1,6 @@
 //! The exact polyhedra, held against other solvers, brute force and hand calculation.
 
+mod balances;
 mod shares;
 mod simplex;
 
