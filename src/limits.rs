@@ -38,4 +38,4 @@ pub const BALANCES: usize = 10_000;
 pub const CELLS: usize = 200_000;
 
 /// Most corners and directions of one cell in a search for balances.
-pub const CELL_RAYS: usize = 5_000;
+pub const CELL_RAYS: usize = 2_000;

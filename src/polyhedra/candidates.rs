@@ -5,9 +5,9 @@ use num_rational::BigRational;
 use num_traits::{One, Signed, Zero};
 
 use super::cells::{Cell, Ray, dot};
+use super::contests::{Attaining, Prepared};
 use super::echelon::Echelon;
 use super::prevariety::{System, Term};
-use super::search::{Attaining, Prepared};
 use super::whole::{self, Whole};
 
 /// Exponents times unknowns, plus the constant.

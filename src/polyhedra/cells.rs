@@ -7,6 +7,7 @@
 //! ray tells which rays are neighbours.
 
 use super::whole::{self, Whole};
+use crate::limits;
 
 /// A nonempty polyhedron.
 #[derive(Debug, Clone)]
@@ -18,6 +19,8 @@ pub(super) struct Cell {
     pub(super) rays: Vec<Ray>,
     /// How many conditions count, the one that w is not negative among them.
     n_conditions: usize,
+    /// At least so many rays are independent, up to the lines.
+    rank: usize,
 }
 
 /// A corner or a direction of a [`Cell`].
@@ -50,6 +53,8 @@ pub(super) enum Narrowed {
     Empty,
     /// It holds in a part.
     Part(Cell),
+    /// The part would have more than `limits::CELL_RAYS` rays.
+    TooLarge,
 }
 
 impl Cell {
@@ -67,6 +72,7 @@ impl Cell {
                 tight: Bits::default(),
             }],
             n_conditions: 1,
+            rank: 1,
         }
     }
 
@@ -117,6 +123,7 @@ impl Cell {
             lines: others.map(|(_, other)| moved(other)).collect(),
             rays: Vec::with_capacity(self.rays.len() + 1),
             n_conditions: self.n_conditions,
+            rank: self.rank,
         };
         for ray in &self.rays {
             let tight = ray.tight.clone();
@@ -132,6 +139,7 @@ impl Cell {
             let tight = Bits::first(self.n_conditions);
             cell.rays.push(Ray { at: line, tight });
             cell.n_conditions += 1;
+            cell.rank += 1;
         }
         cell
     }
@@ -174,15 +182,30 @@ impl Cell {
         if !rays.iter().any(Ray::is_corner) {
             return Narrowed::Empty;
         }
+        if rays.len() > limits::CELL_RAYS {
+            return Narrowed::TooLarge;
+        }
+        // A border that only touches the cell may leave any face of it.
+        let crosses = !above.is_empty() && !below.is_empty();
+        let rank = match compare {
+            Compare::AtLeast if crosses => self.rank,
+            Compare::Equal if crosses => self.rank.saturating_sub(1).max(1),
+            Compare::AtLeast | Compare::Equal => 1,
+        };
         Narrowed::Part(Cell {
             lines: self.lines.clone(),
             rays,
             n_conditions: self.n_conditions + usize::from(counts),
+            rank,
         })
     }
 
     /// Two rays span an edge if no third one lies on all conditions that they share.
     fn are_neighbours(&self, a: usize, b: usize, shared: &Bits) -> bool {
+        // On an edge all conditions but one are used up, so that two rays are left.
+        if shared.len() + 2 < self.rank {
+            return false;
+        }
         let third =
             |(index, ray): (usize, &Ray)| index != a && index != b && ray.tight.holds(shared);
         !self.rays.iter().enumerate().any(third)
@@ -249,6 +272,11 @@ impl Bits {
         }
     }
 
+    fn len(&self) -> usize {
+        let words = std::iter::once(&self.first).chain(&self.rest);
+        words.map(|word| word.count_ones() as usize).sum()
+    }
+
     /// Whether all of `other` is in it.
     fn holds(&self, other: &Bits) -> bool {
         other.first & !self.first == 0
@@ -269,7 +297,7 @@ mod tests {
         match cell.narrowed(&row(values), Compare::AtLeast) {
             Narrowed::Part(part) => part,
             Narrowed::Same => cell.clone(),
-            Narrowed::Empty => panic!("the part is not empty"),
+            Narrowed::Empty | Narrowed::TooLarge => panic!("the part is not empty"),
         }
     }
 

@@ -2,8 +2,9 @@
 
 use std::ops::ControlFlow;
 
+use super::contests::Prepared;
 use super::prevariety::{Ending, System};
-use super::search::{Prepared, Search};
+use super::search::Search;
 
 /// A smallest set of equations without a common balance, the first in their order.
 ///
@@ -15,11 +16,11 @@ pub(super) fn smallest(
 ) -> Option<Vec<usize>> {
     let prepared = Prepared::new(system);
     let n_contests = prepared.contests.len();
-    let mut compatible: Vec<Vec<usize>> = Vec::new();
+    let mut compatible: Vec<Vec<bool>> = Vec::new();
     for size in 1..=n_contests {
         let mut subset = Some((0..size).collect::<Vec<usize>>());
         while let Some(contests) = subset {
-            let known = |set: &Vec<usize>| contests.iter().all(|contest| set.contains(contest));
+            let known = |set: &Vec<bool>| contests.iter().all(|&contest| set[contest]);
             if !compatible.iter().any(known) {
                 match try_together(&prepared, &contests, watch) {
                     Trial::Together(set) => compatible.push(set),
@@ -37,8 +38,8 @@ pub(super) fn smallest(
 }
 
 enum Trial {
-    /// These and others have a balance in common: all that have one at that point.
-    Together(Vec<usize>),
+    /// These have a balance in common; for each contest, whether it has one there too.
+    Together(Vec<bool>),
     Apart,
     Ended,
 }

@@ -3,8 +3,8 @@
 //!
 //! - `simplex`: linear programs;
 //! - `shares`: highest and lowest shares of terms over a box of ranges;
-//! - `prevariety`: all dominant balances of a system, with `search`, `candidates` and
-//!   `contradictions`.
+//! - `prevariety`: all dominant balances of a system, with `contests`, `search`,
+//!   `candidates` and `contradictions`.
 //!
 //! Below them stand `whole` (whole numbers that are fast while small and never
 //! overflow), `tableau` (the pivots), `cells` (polyhedra by corners and directions) and
@@ -12,6 +12,7 @@
 
 mod candidates;
 mod cells;
+mod contests;
 mod contradictions;
 mod echelon;
 pub mod prevariety;

@@ -12,8 +12,9 @@ use std::ops::ControlFlow;
 use num_rational::BigRational;
 
 use super::candidates;
+use super::contests::Prepared;
 use super::contradictions;
-use super::search::{Prepared, Search};
+use super::search::Search;
 use crate::limits;
 use crate::number::Exponent;
 
@@ -37,6 +38,14 @@ pub struct Equation {
     pub terms: Vec<Term>,
     /// Processes that must be among the largest.
     pub required: Vec<usize>,
+}
+
+impl Equation {
+    /// Whether any of its terms depends on an unknown.
+    pub fn holds_unknown(&self) -> bool {
+        let mut exponents = self.terms.iter().flat_map(|term| &term.exponents);
+        exponents.any(|exponent| !exponent.is_zero())
+    }
 }
 
 /// One term: its log-size is the sum of exponents times unknowns, plus the constant.

@@ -13,6 +13,8 @@ use scalewright::polyhedra::prevariety::{
 };
 use serde_json::Value;
 
+use super::largest_at;
+
 /// A file of `tests/balances`.
 struct Case {
     name: String,
@@ -136,31 +138,6 @@ fn stated_names(balance: &Value) -> BTreeMap<String, Vec<String>> {
 fn sorted(mut forms: Vec<LinearForm>) -> Vec<LinearForm> {
     forms.sort_by(|a, b| (&a.exponents, &a.constant).cmp(&(&b.exponents, &b.constant)));
     forms
-}
-
-/// The terms that are the largest at a point, by the definition alone.
-fn largest_at(system: &System, point: &[BigRational]) -> Vec<Vec<usize>> {
-    let holds = |equation: &Equation| {
-        equation
-            .terms
-            .iter()
-            .flat_map(|t| &t.exponents)
-            .any(|e| !e.is_zero())
-    };
-    let size = |term: &Term| -> BigRational {
-        let products = term
-            .exponents
-            .iter()
-            .zip(point)
-            .map(|(e, x)| e.to_rational() * x);
-        products.sum::<BigRational>() + &term.constant
-    };
-    let largest = |equation: &Equation| {
-        let sizes: Vec<BigRational> = equation.terms.iter().map(size).collect();
-        let attains = |&index: &usize| holds(equation) && Some(&sizes[index]) == sizes.iter().max();
-        (0..sizes.len()).filter(attains).collect()
-    };
-    system.equations.iter().map(largest).collect()
 }
 
 fn check_candidate(case: &Case, found: &Candidate, stated: &Value) {

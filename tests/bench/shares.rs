@@ -1,0 +1,66 @@
+//! How long the shares of all terms over a box take: 20 scales, 30 terms.
+
+use std::hint::black_box;
+
+use criterion::{Criterion, criterion_group, criterion_main};
+use scalewright::number::Exponent;
+use scalewright::polyhedra::{Affine, highest, lowest_of_process};
+
+/// Numbers that only look random, the same in every run.
+struct Draw(u64);
+
+impl Draw {
+    /// A whole number from 0 up to, not including, `end`.
+    fn below(&mut self, end: u64) -> u64 {
+        self.0 = self
+            .0
+            .wrapping_mul(6_364_136_223_846_793_005)
+            .wrapping_add(1_442_695_040_888_963_407);
+        (self.0 >> 33) % end
+    }
+
+    fn exponent(&mut self) -> Exponent {
+        let numer = self.below(7) as i64 - 3;
+        match self.below(8) {
+            0 => Exponent::ratio(2 * numer + 1, 2),
+            1..3 => Exponent::whole(numer).unwrap_or(Exponent::ZERO),
+            _ => Exponent::ZERO,
+        }
+    }
+
+    fn float(&mut self, low: f64, high: f64) -> f64 {
+        low + (high - low) * self.below(1 << 30) as f64 / (1 << 30) as f64
+    }
+}
+
+fn shares(c: &mut Criterion) {
+    let mut draw = Draw(1);
+    let terms: Vec<Affine> = (0..30)
+        .map(|_| Affine {
+            slopes: (0..20).map(|_| draw.exponent()).collect(),
+            constant: draw.float(-3.0, 3.0),
+        })
+        .collect();
+    let bounds: Vec<(f64, f64)> = (0..20)
+        .map(|_| {
+            let low = draw.float(-10.0, 10.0);
+            (low, low + draw.float(0.1, 2.0))
+        })
+        .collect();
+    c.bench_function("highest shares, 20 scales, 30 terms", |b| {
+        b.iter(|| {
+            let all = (0..terms.len()).map(|of| highest(of, &terms, &bounds));
+            black_box(all.sum::<f64>())
+        });
+    });
+    let process: Vec<usize> = (0..4).collect();
+    c.bench_function(
+        "lowest share of a process of 4 terms, 20 scales, 30 terms",
+        |b| {
+            b.iter(|| black_box(lowest_of_process(&process, &terms, &bounds)));
+        },
+    );
+}
+
+criterion_group!(benches, shares);
+criterion_main!(benches);
