@@ -33,21 +33,34 @@ impl Draw {
     }
 }
 
+/// Thirty terms of about the same size in the middle of the box, so that most highest
+/// shares lie inside it and a linear program must find them.
+fn terms(draw: &mut Draw, bounds: &[(f64, f64)]) -> Vec<Affine> {
+    let middle: Vec<f64> = bounds
+        .iter()
+        .map(|(low, high)| (low + high) / 2.0)
+        .collect();
+    let term = |_| {
+        let slopes = bounds.iter().map(|_| draw.exponent()).collect();
+        let mut term = Affine {
+            slopes,
+            constant: 0.0,
+        };
+        term.constant = draw.float(-9.0, 9.0) - term.at(&middle);
+        term
+    };
+    (0..30).map(term).collect()
+}
+
 fn shares(c: &mut Criterion) {
     let mut draw = Draw(1);
-    let terms: Vec<Affine> = (0..30)
-        .map(|_| Affine {
-            slopes: (0..20).map(|_| draw.exponent()).collect(),
-            constant: draw.float(-3.0, 3.0),
-        })
-        .collect();
-    let bounds: Vec<(f64, f64)> = (0..20)
-        .map(|_| {
-            let low = draw.float(-10.0, 10.0);
-            (low, low + draw.float(0.1, 2.0))
-        })
-        .collect();
-    c.bench_function("highest shares, 20 scales, 30 terms", |b| {
+    let bound = |_| {
+        let low = draw.float(-10.0, 10.0);
+        (low, low + draw.float(0.1, 4.0))
+    };
+    let bounds: Vec<(f64, f64)> = (0..20).map(bound).collect();
+    let terms = terms(&mut draw, &bounds);
+    c.bench_function("highest shares of 30 terms over 20 scales", |b| {
         b.iter(|| {
             let all = (0..terms.len()).map(|of| highest(of, &terms, &bounds));
             black_box(all.sum::<f64>())
