@@ -6,26 +6,9 @@ use num_traits::{One, Signed, Zero};
 
 use super::cells::{Cell, Ray, dot};
 use super::contests::{Attaining, Prepared};
-use super::echelon::Echelon;
+use super::linear::{Echelon, LinearForm};
 use super::prevariety::{System, Term};
 use super::whole::{self, Whole};
-
-/// Exponents times unknowns, plus the constant.
-#[derive(Debug, Clone, PartialEq, Eq)]
-pub struct LinearForm {
-    /// One for each unknown.
-    pub exponents: Vec<BigRational>,
-    /// What is added.
-    pub constant: BigRational,
-}
-
-impl LinearForm {
-    /// The value at a point.
-    pub fn at(&self, point: &[BigRational]) -> BigRational {
-        let products = self.exponents.iter().zip(point).map(|(e, x)| e * x);
-        products.fold(self.constant.clone(), |sum, product| sum + product)
-    }
-}
 
 /// One dominant balance: a point, or a family.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -84,23 +67,24 @@ pub(super) fn describe(
     attaining: &Attaining,
     cell: &Cell,
 ) -> Candidate {
-    let tight = attaining.last().cloned().unwrap_or_default();
-    let writer = Writer {
-        system,
-        prepared,
-        attaining,
-        cell,
-        hull: hull(system, prepared, attaining, &tight),
-    };
-    let inequalities = writer.inequalities();
     let mut by_equation = vec![Vec::new(); system.equations.len()];
     for (contest, terms) in prepared.contests.iter().zip(attaining) {
         by_equation[contest.equation] = terms.clone();
     }
-    let free = writer.free();
+    let tight = attaining.last().cloned().unwrap_or_default();
+    let hull = hull(system, &by_equation, &tight);
+    let is_free = |unknown: &usize| !hull.dependent.contains(unknown);
+    let free: Vec<usize> = (0..system.n_unknowns).filter(is_free).collect();
+    let writer = Writer {
+        system,
+        prepared,
+        attaining: &by_equation,
+        cell,
+        hull: &hull,
+    };
+    let inequalities = writer.inequalities();
     Candidate {
         dimension: free.len(),
-        attaining: by_equation,
         tight,
         point: writer.point(&free, &inequalities),
         directions: free
@@ -110,20 +94,23 @@ pub(super) fn describe(
         ranges: (0..system.n_unknowns)
             .map(|unknown| writer.range(unknown))
             .collect(),
-        equalities: writer.hull.equations,
-        dependent: writer.hull.dependent,
+        attaining: by_equation,
+        equalities: hull.equations,
+        dependent: hull.dependent,
         free,
         inequalities,
     }
 }
 
 /// The equations that hold all over the cell.
-fn hull(system: &System, prepared: &Prepared, attaining: &Attaining, tight: &[usize]) -> Echelon {
+fn hull(system: &System, attaining: &[Vec<usize>], tight: &[usize]) -> Echelon {
     let mut hull = Echelon::default();
-    for (contest, terms) in prepared.contests.iter().zip(attaining) {
-        let term = |index: &usize| &system.equations[contest.equation].terms[*index];
-        for pair in terms.windows(2) {
-            hull.add(difference(term(&pair[0]), term(&pair[1])));
+    for (equation, largest) in system.equations.iter().zip(attaining) {
+        for pair in largest.windows(2) {
+            hull.add(difference(
+                &equation.terms[pair[0]],
+                &equation.terms[pair[1]],
+            ));
         }
     }
     for &bound in tight {
@@ -145,9 +132,10 @@ fn difference(a: &Term, b: &Term) -> LinearForm {
 struct Writer<'a> {
     system: &'a System,
     prepared: &'a Prepared,
-    attaining: &'a Attaining,
+    /// For each equation; a contest has attaining terms in every cell.
+    attaining: &'a [Vec<usize>],
     cell: &'a Cell,
-    hull: Echelon,
+    hull: &'a Echelon,
 }
 
 /// An inequality with the rays where it holds with equality.
@@ -157,47 +145,9 @@ struct Face {
 }
 
 impl Writer<'_> {
-    fn free(&self) -> Vec<usize> {
-        let is_free = |unknown: &usize| !self.hull.dependent.contains(unknown);
-        (0..self.system.n_unknowns).filter(is_free).collect()
-    }
-
     /// The conditions that belong to facets: those that are equalities at the most rays.
-    /// A condition that is none at any corner bounds nothing.
     fn inequalities(&self) -> Vec<Inequality> {
-        let mut faces: Vec<Face> = Vec::new();
-        for (source, row) in self.conditions() {
-            let on: Vec<bool> = self
-                .cell
-                .rays
-                .iter()
-                .map(|ray| dot(&row, &ray.at).is_zero())
-                .collect();
-            let touches = self
-                .cell
-                .rays
-                .iter()
-                .zip(&on)
-                .any(|(ray, &on)| on && ray.is_corner());
-            let everywhere = on.iter().all(|&on| on);
-            if !touches || everywhere {
-                continue;
-            }
-            let form = self.in_free_unknowns(source);
-            match faces
-                .iter_mut()
-                .find(|face| face.on == on && face.inequality.form == form)
-            {
-                Some(face) => face.inequality.sources.push(source),
-                None => faces.push(Face {
-                    inequality: Inequality {
-                        form,
-                        sources: vec![source],
-                    },
-                    on,
-                }),
-            }
-        }
+        let faces = self.faces();
         let smaller =
             |a: &Face, b: &Face| a.on != b.on && a.on.iter().zip(&b.on).all(|(a, b)| a <= b);
         let is_facet = |face: &&Face| !faces.iter().any(|other| smaller(face, other));
@@ -208,37 +158,59 @@ impl Writer<'_> {
             .collect()
     }
 
-    /// All that is at least 0 in the cell and not 0 all over it, in homogeneous
-    /// coordinates.
-    fn conditions(&self) -> Vec<(Source, Vec<Whole>)> {
-        let mut conditions = Vec::new();
-        for (contest, terms) in self.prepared.contests.iter().zip(self.attaining) {
-            let Some(largest) = terms.first().map(|&first| &contest.rows[first]) else {
+    /// All conditions that touch the cell, equal ones together.
+    fn faces(&self) -> Vec<Face> {
+        let mut faces: Vec<Face> = Vec::new();
+        for (source, row) in self.conditions() {
+            let rays = self.cell.rays.iter();
+            let on: Vec<bool> = rays.map(|ray| dot(&row, &ray.at).is_zero()).collect();
+            let everywhere = on.iter().all(|&on| on);
+            let mut corners = self
+                .cell
+                .rays
+                .iter()
+                .zip(&on)
+                .filter(|(ray, _)| ray.is_corner());
+            if everywhere || !corners.any(|(_, &on)| on) {
                 continue;
-            };
-            for (term, row) in contest.rows.iter().enumerate() {
-                if !terms.contains(&term) {
-                    let row = largest.iter().zip(row).map(|(a, b)| a.minus(b)).collect();
-                    let equation = contest.equation;
-                    conditions.push((Source::Term { equation, term }, row));
+            }
+            let form = self.in_free_unknowns(source);
+            match faces.iter_mut().find(|face| face.inequality.form == form) {
+                Some(face) => face.inequality.sources.push(source),
+                None => {
+                    let inequality = Inequality {
+                        form,
+                        sources: vec![source],
+                    };
+                    faces.push(Face { inequality, on });
                 }
             }
         }
-        for (bound, row) in self.prepared.bounds.iter().enumerate() {
-            conditions.push((Source::Bound(bound), row.clone()));
+        faces
+    }
+
+    /// All that is at least 0 in the cell, in homogeneous coordinates.
+    fn conditions(&self) -> Vec<(Source, Vec<Whole>)> {
+        let mut conditions = Vec::new();
+        for contest in &self.prepared.contests {
+            let equation = contest.equation;
+            let largest = &contest.rows[self.attaining[equation][0]];
+            for (term, row) in contest.rows.iter().enumerate() {
+                let row = largest.iter().zip(row).map(|(a, b)| a.minus(b)).collect();
+                conditions.push((Source::Term { equation, term }, row));
+            }
         }
+        let bounds = self.prepared.bounds.iter().enumerate();
+        conditions.extend(bounds.map(|(bound, row)| (Source::Bound(bound), row.clone())));
         conditions
     }
 
+    /// The condition in the free unknowns, its exponents whole and coprime.
     fn in_free_unknowns(&self, source: Source) -> LinearForm {
         let mut form = match source {
             Source::Term { equation, term } => {
                 let terms = &self.system.equations[equation].terms;
-                let contests = self.prepared.contests.iter().zip(self.attaining);
-                let first = contests
-                    .filter(|(contest, _)| contest.equation == equation)
-                    .find_map(|(_, terms)| terms.first());
-                difference(&terms[*first.unwrap_or(&term)], &terms[term])
+                difference(&terms[self.attaining[equation][0]], &terms[term])
             }
             Source::Bound(bound) => self.system.within[bound].clone(),
         };

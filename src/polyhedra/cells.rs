@@ -144,60 +144,69 @@ impl Cell {
         cell
     }
 
-    /// The border runs between the rays: neighbours on its two sides give new ones.
+    /// The border runs between the rays: those on the right side stay, and neighbours on
+    /// its two sides give new ones.
     fn across_rays(&self, values: &[Whole], compare: Compare) -> Narrowed {
-        let mut rays = Vec::with_capacity(self.rays.len());
-        let above: Vec<usize> = (0..values.len())
-            .filter(|&i| values[i].sign() > 0)
-            .collect();
-        let below: Vec<usize> = (0..values.len())
-            .filter(|&i| values[i].sign() < 0)
-            .collect();
-        // If no ray is above, all that is left holds with equality, as an equation.
-        let counts = compare == Compare::AtLeast && !above.is_empty();
-        for (ray, value) in self.rays.iter().zip(values) {
-            let kept = value.is_zero() || compare == Compare::AtLeast && value.sign() > 0;
-            if kept {
-                rays.push(ray.clone());
-                if counts && value.is_zero() {
-                    let last = rays.len() - 1;
-                    rays[last].tight.set(self.n_conditions);
-                }
-            }
-        }
-        for &high in &above {
-            for &low in &below {
-                let (over, under) = (&self.rays[high], &self.rays[low]);
-                let mut tight = over.tight.and(&under.tight);
-                if !self.are_neighbours(high, low, &tight) {
-                    continue;
-                }
-                if counts {
-                    tight.set(self.n_conditions);
-                }
-                let at = combined(&over.at, &values[low].negated(), &under.at, &values[high]);
-                rays.push(Ray { at, tight });
-            }
-        }
+        let is_above = values.iter().any(|value| value.sign() > 0);
+        let is_below = values.iter().any(|value| value.sign() < 0);
+        // A border that leaves one side alone may take any face of the cell; on it the
+        // condition holds with equality all over, so that it does not count.
+        let (counted, rank) = match compare {
+            Compare::AtLeast if is_above => (Some(self.n_conditions), self.rank),
+            Compare::Equal if is_above && is_below => (None, self.rank.saturating_sub(1)),
+            Compare::AtLeast | Compare::Equal => (None, 1),
+        };
+        let mut rays = self.rays_kept(values, compare, counted);
+        self.add_rays_between(&mut rays, values, counted);
         if !rays.iter().any(Ray::is_corner) {
             return Narrowed::Empty;
         }
         if rays.len() > limits::CELL_RAYS {
             return Narrowed::TooLarge;
         }
-        // A border that only touches the cell may leave any face of it.
-        let crosses = !above.is_empty() && !below.is_empty();
-        let rank = match compare {
-            Compare::AtLeast if crosses => self.rank,
-            Compare::Equal if crosses => self.rank.saturating_sub(1).max(1),
-            Compare::AtLeast | Compare::Equal => 1,
-        };
         Narrowed::Part(Cell {
             lines: self.lines.clone(),
             rays,
-            n_conditions: self.n_conditions + usize::from(counts),
+            n_conditions: self.n_conditions + usize::from(counted.is_some()),
             rank,
         })
+    }
+
+    /// The rays on the right side; those on the border get the number of the condition.
+    fn rays_kept(&self, values: &[Whole], compare: Compare, counted: Option<usize>) -> Vec<Ray> {
+        let mut rays = Vec::with_capacity(self.rays.len());
+        for (ray, value) in self.rays.iter().zip(values) {
+            if !value.is_zero() && (compare == Compare::Equal || value.sign() < 0) {
+                continue;
+            }
+            let mut ray = ray.clone();
+            match counted {
+                Some(condition) if value.is_zero() => ray.tight.set(condition),
+                Some(_) | None => {}
+            }
+            rays.push(ray);
+        }
+        rays
+    }
+
+    /// Where the edges between the two sides meet the border.
+    fn add_rays_between(&self, rays: &mut Vec<Ray>, values: &[Whole], counted: Option<usize>) {
+        let with_sign =
+            |sign: i32| (0..values.len()).filter(move |&ray| values[ray].sign() == sign);
+        for high in with_sign(1) {
+            for low in with_sign(-1) {
+                let (over, under) = (&self.rays[high], &self.rays[low]);
+                let mut tight = over.tight.and(&under.tight);
+                if !self.are_neighbours(high, low, &tight) {
+                    continue;
+                }
+                if let Some(condition) = counted {
+                    tight.set(condition);
+                }
+                let at = combined(&over.at, &values[low].negated(), &under.at, &values[high]);
+                rays.push(Ray { at, tight });
+            }
+        }
     }
 
     /// Two rays span an edge if no third one lies on all conditions that they share.

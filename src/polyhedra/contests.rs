@@ -167,37 +167,35 @@ impl Contest {
     /// The smallest sets of these terms that are a balance when they are the largest:
     /// two terms of different processes, or one of each required process.
     pub(super) fn ways(&self, terms: &[usize]) -> Vec<Vec<usize>> {
-        let apart = |a: usize, b: usize| self.processes[a] != self.processes[b];
         let of = |process: usize| {
-            terms
+            let all = terms.iter().copied();
+            all.filter(move |&term| self.processes[term] == process)
+        };
+        let with_other = |a: usize, others: &[usize]| -> Vec<Vec<usize>> {
+            let apart = |b: &usize| self.processes[*b] != self.processes[a];
+            others
                 .iter()
                 .copied()
-                .filter(move |&t| self.processes[t] == process)
+                .filter(apart)
+                .map(|b| vec![a, b])
+                .collect()
         };
         match self.required[..] {
             [] => {
-                let pairs = terms
-                    .iter()
-                    .flat_map(|&a| terms.iter().map(move |&b| (a, b)));
-                pairs
-                    .filter(|&(a, b)| a < b && apart(a, b))
-                    .map(|(a, b)| vec![a, b])
+                let numbered = terms.iter().enumerate();
+                numbered
+                    .flat_map(|(index, &a)| with_other(a, &terms[index + 1..]))
                     .collect()
             }
-            [process] => {
-                let pairs = of(process).flat_map(|a| terms.iter().map(move |&b| (a, b)));
-                pairs
-                    .filter(|&(a, b)| apart(a, b))
-                    .map(|(a, b)| vec![a, b])
-                    .collect()
-            }
+            [process] => of(process).flat_map(|a| with_other(a, terms)).collect(),
             [..] => self
                 .required
                 .iter()
                 .fold(vec![Vec::new()], |ways, &process| {
-                    let longer = |way: &Vec<usize>| {
-                        let way = way.clone();
-                        of(process).map(move |term| [&way[..], &[term]].concat())
+                    let longer = |way: &Vec<usize>| -> Vec<Vec<usize>> {
+                        of(process)
+                            .map(|term| [&way[..], &[term]].concat())
+                            .collect()
                     };
                     ways.iter().flat_map(longer).collect()
                 }),

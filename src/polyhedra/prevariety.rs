@@ -18,7 +18,8 @@ use super::search::Search;
 use crate::limits;
 use crate::number::Exponent;
 
-pub use super::candidates::{Candidate, Inequality, LinearForm, Source};
+pub use super::candidates::{Candidate, Inequality, Source};
+pub use super::linear::LinearForm;
 
 /// The sizes of the terms of several equations, in logarithms.
 #[derive(Debug, Clone, Default)]
@@ -28,6 +29,12 @@ pub struct System {
     /// The equations; one that holds no unknown constrains nothing.
     pub equations: Vec<Equation>,
     /// Where the unknowns may lie: all these are at least 0.
+    ///
+    /// A known scale with a range may stand as one more unknown, after the open ones,
+    /// within its bounds. A candidate that is tight nowhere, and whose dependent unknowns
+    /// are open ones, then holds over a part of the ranges that has an inside, and its
+    /// inequalities say which. (The corners of the box double with each such scale: up
+    /// to eight are quick.)
     pub within: Vec<LinearForm>,
 }
 

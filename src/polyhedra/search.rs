@@ -69,12 +69,12 @@ impl<'a> Search<'a> {
             ControlFlow::Break(ending) => return ending,
         };
         let contests = &self.prepared.contests;
+        let all_terms = contests
+            .iter()
+            .map(|contest| (0..contest.rows.len()).collect());
         let node = Node {
             cell,
-            terms: contests
-                .iter()
-                .map(|contest| (0..contest.rows.len()).collect())
-                .collect(),
+            terms: all_terms.collect(),
             open: (0..contests.len()).collect(),
         };
         match self.explore(node, visit) {
@@ -83,6 +83,7 @@ impl<'a> Search<'a> {
         }
     }
 
+    /// Looks at a node and all below it.
     fn explore(&mut self, mut node: Node, visit: &mut Visit) -> ControlFlow<Ending> {
         if (self.watch)(self.n_found).is_break() {
             return ControlFlow::Break(Ending::Stopped);
@@ -90,28 +91,16 @@ impl<'a> Search<'a> {
         if self.seen.len() > limits::CELLS {
             return ControlFlow::Break(Ending::TooLarge);
         }
-        let prepared = self.prepared;
-        let attaining = prepared.attaining(&node);
+        let attaining = self.prepared.attaining(&node);
         if !self.seen.insert(attaining.clone()) {
             return ControlFlow::Continue(());
         }
-        let mut fewest: Option<(usize, Vec<Vec<usize>>)> = None;
-        for &index in &node.open {
-            let contest = &prepared.contests[index];
-            contest.strike_out(&node.cell, &mut node.terms[index]);
-            let ways = contest.ways(&node.terms[index]);
-            if fewest
-                .as_ref()
-                .is_none_or(|(_, fewest)| ways.len() < fewest.len())
-            {
-                fewest = Some((index, ways));
-            }
-        }
-        let Some((index, ways)) = fewest else {
+        let Some((index, ways)) = self.strike_out(&mut node) else {
             return visit(self, &node.cell, attaining);
         };
         node.open.retain(|&other| other != index);
-        for cell in prepared.contests[index].parts(&node.cell, &node.terms[index], &ways)? {
+        let contest = &self.prepared.contests[index];
+        for cell in contest.parts(&node.cell, &node.terms[index], &ways)? {
             let child = Node {
                 cell,
                 terms: node.terms.clone(),
@@ -120,6 +109,21 @@ impl<'a> Search<'a> {
             self.explore(child, visit)?;
         }
         ControlFlow::Continue(())
+    }
+
+    /// Strikes out terms in all open contests; gives the one with the fewest ways to
+    /// balance (none, perhaps), and these.
+    fn strike_out(&self, node: &mut Node) -> Option<(usize, Vec<Vec<usize>>)> {
+        let mut choice: Option<(usize, Vec<Vec<usize>>)> = None;
+        for &index in &node.open {
+            let contest = &self.prepared.contests[index];
+            contest.strike_out(&node.cell, &mut node.terms[index]);
+            let ways = contest.ways(&node.terms[index]);
+            if (choice.as_ref()).is_none_or(|(_, fewest)| ways.len() < fewest.len()) {
+                choice = Some((index, ways));
+            }
+        }
+        choice
     }
 
     /// Whether no consistent cell has this one on its border. Such a cell would show
@@ -156,15 +160,11 @@ impl Prepared {
     /// The attaining terms all over the relative interior of a cell.
     fn attaining(&self, node: &Node) -> Attaining {
         let point = node.cell.inner_point();
-        let numbered = self.contests.iter().zip(&node.terms).enumerate();
-        let mut attaining: Attaining = numbered
-            .map(
-                |(index, (contest, terms))| match node.open.contains(&index) {
-                    true => Vec::new(),
-                    false => contest.largest(terms, &point),
-                },
-            )
-            .collect();
+        let largest = |index: usize| match node.open.contains(&index) {
+            true => Vec::new(),
+            false => self.contests[index].largest(&node.terms[index], &point),
+        };
+        let mut attaining: Attaining = (0..self.contests.len()).map(largest).collect();
         let tight = |&bound: &usize| dot(&self.bounds[bound], &point).is_zero();
         attaining.push((0..self.bounds.len()).filter(tight).collect());
         attaining

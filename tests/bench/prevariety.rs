@@ -1,6 +1,8 @@
 //! How long all dominant balances of a system take: 4, 6 and 8 equations in four
 //! unknowns, with small constants and with the logarithms of rounded numbers.
 
+mod draw;
+
 use std::hint::black_box;
 use std::ops::ControlFlow;
 
@@ -10,25 +12,9 @@ use num_traits::FromPrimitive;
 use scalewright::number::Exponent;
 use scalewright::polyhedra::prevariety::{Equation, System, Term, balances};
 
+use draw::Draw;
+
 const N_UNKNOWNS: usize = 4;
-
-/// Numbers that only look random, the same in every run.
-struct Draw(u64);
-
-impl Draw {
-    /// A whole number from 0 up to, not including, `end`.
-    fn below(&mut self, end: u64) -> u64 {
-        self.0 = self
-            .0
-            .wrapping_mul(6_364_136_223_846_793_005)
-            .wrapping_add(1_442_695_040_888_963_407);
-        (self.0 >> 33) % end
-    }
-
-    fn around_zero(&mut self, amount: u64) -> i64 {
-        self.below(2 * amount + 1) as i64 - amount as i64
-    }
-}
 
 /// Equations of `n_terms` terms with two unknowns each. Terms 0 and 1 are equal and the
 /// largest at the origin, so that there is a balance; `steps` is the grid of the
@@ -39,7 +25,8 @@ fn system(n_equations: usize, n_terms: usize, steps: f64) -> System {
         let mut exponents = vec![Exponent::ZERO; N_UNKNOWNS];
         for _ in 0..2 {
             let unknown = draw.below(N_UNKNOWNS as u64) as usize;
-            exponents[unknown] = Exponent::whole(draw.around_zero(3)).unwrap_or(Exponent::ZERO);
+            exponents[unknown] =
+                Exponent::whole(draw.below(7) as i64 - 3).unwrap_or(Exponent::ZERO);
         }
         let drop = if index < 2 {
             0.0

@@ -1,36 +1,26 @@
 //! How long the shares of all terms over a box take: 20 scales, 30 terms.
 
+mod draw;
+
 use std::hint::black_box;
 
 use criterion::{Criterion, criterion_group, criterion_main};
 use scalewright::number::Exponent;
 use scalewright::polyhedra::{Affine, highest, lowest_of_process};
 
-/// Numbers that only look random, the same in every run.
-struct Draw(u64);
+use draw::Draw;
 
-impl Draw {
-    /// A whole number from 0 up to, not including, `end`.
-    fn below(&mut self, end: u64) -> u64 {
-        self.0 = self
-            .0
-            .wrapping_mul(6_364_136_223_846_793_005)
-            .wrapping_add(1_442_695_040_888_963_407);
-        (self.0 >> 33) % end
+fn exponent(draw: &mut Draw) -> Exponent {
+    let numer = draw.below(7) as i64 - 3;
+    match draw.below(8) {
+        0 => Exponent::ratio(2 * numer + 1, 2),
+        1..3 => Exponent::whole(numer).unwrap_or(Exponent::ZERO),
+        _ => Exponent::ZERO,
     }
+}
 
-    fn exponent(&mut self) -> Exponent {
-        let numer = self.below(7) as i64 - 3;
-        match self.below(8) {
-            0 => Exponent::ratio(2 * numer + 1, 2),
-            1..3 => Exponent::whole(numer).unwrap_or(Exponent::ZERO),
-            _ => Exponent::ZERO,
-        }
-    }
-
-    fn float(&mut self, low: f64, high: f64) -> f64 {
-        low + (high - low) * self.below(1 << 30) as f64 / (1 << 30) as f64
-    }
+fn float(draw: &mut Draw, low: f64, high: f64) -> f64 {
+    low + (high - low) * draw.below(1 << 30) as f64 / (1 << 30) as f64
 }
 
 /// Thirty terms of about the same size in the middle of the box, so that most highest
@@ -41,12 +31,12 @@ fn terms(draw: &mut Draw, bounds: &[(f64, f64)]) -> Vec<Affine> {
         .map(|(low, high)| (low + high) / 2.0)
         .collect();
     let term = |_| {
-        let slopes = bounds.iter().map(|_| draw.exponent()).collect();
+        let slopes = bounds.iter().map(|_| exponent(draw)).collect();
         let mut term = Affine {
             slopes,
             constant: 0.0,
         };
-        term.constant = draw.float(-9.0, 9.0) - term.at(&middle);
+        term.constant = float(draw, -9.0, 9.0) - term.at(&middle);
         term
     };
     (0..30).map(term).collect()
@@ -55,8 +45,8 @@ fn terms(draw: &mut Draw, bounds: &[(f64, f64)]) -> Vec<Affine> {
 fn shares(c: &mut Criterion) {
     let mut draw = Draw(1);
     let bound = |_| {
-        let low = draw.float(-10.0, 10.0);
-        (low, low + draw.float(0.1, 4.0))
+        let low = float(&mut draw, -10.0, 10.0);
+        (low, low + float(&mut draw, 0.1, 4.0))
     };
     let bounds: Vec<(f64, f64)> = (0..20).map(bound).collect();
     let terms = terms(&mut draw, &bounds);

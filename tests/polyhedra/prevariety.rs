@@ -426,6 +426,29 @@ fn a_bound_cuts_a_family_and_is_named() {
     assert!(all_balances(&line).candidates.is_empty());
 }
 
+/// D^-2 against 1 and K, where K ranges from 1/10 to 10: one balance for each half of
+/// the range, and the tie of 1 and K, which holds at one value of K only.
+#[test]
+fn a_range_of_a_known_scale_falls_into_parts() {
+    let zero = || ratio(0, 1);
+    let terms = vec![
+        term(0, &[0, 0], zero()),
+        term(1, &[-2, 0], zero()),
+        term(2, &[0, 1], zero()),
+    ];
+    let mut layer = system(2, vec![equation(terms)]);
+    layer.within = vec![form(&[0, 1], 1), form(&[0, -1], 1)];
+    let found = all_balances(&layer).candidates;
+    let parts: Vec<&Candidate> = found.iter().filter(|c| c.dependent == [0]).collect();
+    assert_eq!((found.len(), parts.len()), (3, 2));
+    assert_eq!(parts[0].attaining, [[0, 1]]);
+    assert_eq!(parts[0].ranges[1], (Some(ratio(-1, 1)), Some(ratio(0, 1))));
+    assert_eq!(parts[1].attaining, [[1, 2]]);
+    assert_eq!(parts[1].equalities[0].exponents, [ratio(1, 1), ratio(1, 2)]);
+    assert_eq!(parts[1].ranges[1], (Some(ratio(0, 1)), Some(ratio(1, 1))));
+    assert!(parts.iter().all(|part| part.tight.is_empty()));
+}
+
 /// Two constants that differ by the least step of a dyadic number are not equal.
 #[test]
 fn near_ties_are_told_apart_exactly() {

@@ -1,9 +1,24 @@
-//! Equations between unknowns in reduced row echelon form.
+//! Linear forms, and equations between unknowns in reduced row echelon form.
 
 use num_rational::BigRational;
 use num_traits::Zero;
 
-use super::prevariety::LinearForm;
+/// Exponents times unknowns, plus the constant.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct LinearForm {
+    /// One for each unknown.
+    pub exponents: Vec<BigRational>,
+    /// What is added.
+    pub constant: BigRational,
+}
+
+impl LinearForm {
+    /// The value at a point.
+    pub fn at(&self, point: &[BigRational]) -> BigRational {
+        let products = self.exponents.iter().zip(point).map(|(e, x)| e * x);
+        products.fold(self.constant.clone(), |sum, product| sum + product)
+    }
+}
 
 /// Independent equations "form = 0": each begins with exponent 1 of an unknown that
 /// stands in no other one, and these unknowns are in ascending order.
