@@ -33,3 +33,12 @@ pub const SUM_POWER: i64 = 12;
 
 /// Most modules and files that one script may bring in.
 pub const MODULES: usize = 200;
+
+/// Most balances that are listed.
+pub const BALANCES: usize = 10_000;
+
+/// Most cells of log-space that one search for balances looks at.
+pub const CELLS: usize = 200_000;
+
+/// Most corners and directions of one cell in a search for balances.
+pub const CELL_RAYS: usize = 2_000;

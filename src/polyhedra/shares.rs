@@ -38,8 +38,9 @@ impl Affine {
 
 /// The logarithm of the highest share of term `of` over the box, at most 0.
 pub fn highest(of: usize, terms: &[Affine], bounds: &[(f64, f64)]) -> f64 {
-    let rivals: Vec<usize> = (0..terms.len()).filter(|&rival| rival != of).collect();
-    cap(highest_against(of, &rivals, terms, bounds))
+    // The term is among its rivals, which keeps the share at 1 or below.
+    let rivals: Vec<usize> = (0..terms.len()).collect();
+    highest_against(of, &rivals, terms, bounds)
 }
 
 /// The logarithm of the highest ratio, over the box, of term `of` to the largest of the
@@ -93,10 +94,6 @@ const GRID: f64 = (1_u64 << 50) as f64;
 /// Not a number stays; `f64::min` would lose it.
 fn smaller(a: f64, b: f64) -> f64 {
     if a < b { a } else { b }
-}
-
-fn cap(value: f64) -> f64 {
-    smaller(0.0, value)
 }
 
 /// A difference of two affine forms.

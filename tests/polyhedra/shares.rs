@@ -164,6 +164,29 @@ fn by_floating_point(of: usize, terms: &[Affine], bounds: &[(f64, f64)]) -> f64 
     solution.expect("no time limit is set").objective()
 }
 
+/// For each rival, minimise z subject to z >= ratio of each own term to it, by microlp.
+fn lowest_by_floating_point(of: &[usize], terms: &[Affine], bounds: &[(f64, f64)]) -> f64 {
+    let mut lowest = 0.0_f64;
+    for rival in (0..terms.len()).filter(|rival| !of.contains(rival)) {
+        let mut problem = Problem::new(OptimizationDirection::Minimize);
+        let z = problem.add_var(1.0, (f64::NEG_INFINITY, f64::INFINITY));
+        let scales: Vec<microlp::Variable> = bounds
+            .iter()
+            .map(|&bound| problem.add_var(0.0, bound))
+            .collect();
+        for &own in of {
+            let slope = |k: usize| terms[rival].slopes[k].to_f64() - terms[own].slopes[k].to_f64();
+            let mut expression = vec![(z, 1.0)];
+            expression.extend(scales.iter().enumerate().map(|(k, &v)| (v, slope(k))));
+            let limit = terms[own].constant - terms[rival].constant;
+            problem.add_constraint(&expression[..], ComparisonOp::Ge, limit);
+        }
+        let solution = problem.solve().unwrap().into_solution();
+        lowest = lowest.min(solution.expect("no time limit is set").objective());
+    }
+    lowest
+}
+
 fn share_at(of: &[usize], terms: &[Affine], point: &[f64]) -> f64 {
     let size = |index: usize| terms[index].at(point);
     let own = of
@@ -220,6 +243,7 @@ proptest! {
             scanned = scanned.min(share_at(&of, &terms, &point));
         }
         prop_assert!(found <= scanned + 1e-12);
+        prop_assert!((found - lowest_by_floating_point(&of, &terms, &bounds)).abs() < 1e-8);
         let singles = of.iter().map(|&i| lowest(i, &terms, &bounds));
         prop_assert!(found >= singles.fold(f64::NEG_INFINITY, f64::max) - 1e-12);
     }
