@@ -136,6 +136,7 @@ fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller
         (Kind::Field, _) if expected.has(Kind::Plus) && !expected.has(Kind::Star) => {
             Mend::PlainPart
         }
+        (_, Kind::Caret | Kind::Superscript) if expected.has(Kind::Star) => Mend::RaisedTwice,
         _ if before.is_some_and(|before| before.kind == Kind::Nabla) => Mend::Functions,
         _ if keyword.begins_statement() => Mend::Form(keyword),
         _ => Mend::None,

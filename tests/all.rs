@@ -1,0 +1,3 @@
+//! The integration tests, one binary; folders by what they prove.
+
+mod language;
