@@ -167,6 +167,8 @@ pub enum Mend {
     Word(&'static str),
     /// A product sign between two factors, which are as written.
     Product(String, String),
+    /// A product sign before it.
+    Sign,
     /// `show` before it.
     Show,
     /// A digit before a decimal point.
@@ -350,14 +352,12 @@ impl SyntaxError {
                     .with_related(*phenomenon, "the phenomenon is here")
                     .with_help("leave out `for`, or write the request outside the phenomenon")
             }
-            SyntaxError::OpenPhenomenon { opened, .. } => Diagnostic::error(
-                "unfinished",
-                at,
-                "expected `}`, found the end of the values",
-            )
-            .with_label("the phenomenon ends here")
-            .with_related(*opened, "it begins here")
-            .with_help("write `}` behind its last statement"),
+            SyntaxError::OpenPhenomenon { opened, .. } => {
+                Diagnostic::error("unfinished", at, "this phenomenon has no closing `}`")
+                    .with_label("the phenomenon ends here")
+                    .with_related(*opened, "it begins here")
+                    .with_help("write `}` behind its last statement")
+            }
         }
     }
 }
@@ -410,6 +410,7 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::None => return None,
         Mend::Word(word) => format!("did you mean `{word}`?"),
         Mend::Product(left, right) => format!("write `{left}*{right}` for a product"),
+        Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
         Mend::Functions => "write `grad(q)`, `div(V)` or `laplacian(q)`".to_owned(),

@@ -291,14 +291,20 @@ impl<'s> Reader<'s> {
         }
         self.unit_wanted = kind == Kind::In;
         match kind {
-            Kind::OpenText => {
-                let span = self.span(self.lexer.slice().trim_end().len());
-                self.out.errors.push(SyntaxError::OpenText { span });
-                self.push(Kind::Text);
-            }
+            Kind::OpenText => self.open_text(),
             Kind::Number => self.number(),
             kind => self.push(kind),
         }
+    }
+
+    /// A text that its line ends. Where it seems to go on over lines it is taken whole, so
+    /// that its words are no faults of their own.
+    fn open_text(&mut self) {
+        let span = self.span(self.lexer.slice().trim_end().len());
+        self.out.errors.push(SyntaxError::OpenText { span });
+        let more = length_to_lone_quote(self.lexer.remainder());
+        self.lexer.bump(more);
+        self.push(Kind::Text);
     }
 
     fn push(&mut self, kind: Kind) {
@@ -376,6 +382,19 @@ impl<'s> Reader<'s> {
             .errors
             .push(SyntaxError::UnexpectedCharacter { span, found });
     }
+}
+
+/// The length up to the next quote and with it, if no other pairs with it on its line; 0
+/// if one does.
+fn length_to_lone_quote(rest: &str) -> usize {
+    let Some(quote) = rest.find('"') else {
+        return 0;
+    };
+    let end = rest[quote..]
+        .find('\n')
+        .map_or(rest.len(), |end| quote + end);
+    let is_lone = rest[quote..end].matches('"').count() % 2 == 1;
+    if is_lone { quote + 1 } else { 0 }
 }
 
 /// Whether a character closes another, so that the two are one fault.
