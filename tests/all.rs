@@ -1,6 +1,7 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
 mod harness;
+mod language;
 mod polyhedra;
 mod published;
 mod reference;

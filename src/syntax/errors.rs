@@ -4,7 +4,7 @@ use crate::diagnostic::Diagnostic;
 use crate::limits;
 use crate::source::Span;
 use crate::syntax::forms::form;
-use crate::syntax::token::{Kind, Kinds, RESERVED};
+use crate::syntax::token::{Kind, Kinds, RESERVED, SIGNS};
 
 /// A fault in the form of a script.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -167,6 +167,8 @@ pub enum Mend {
     Word(&'static str),
     /// A product sign between two factors, which are as written.
     Product(String, String),
+    /// A product sign before it.
+    Sign,
     /// `show` before it.
     Show,
     /// A digit before a decimal point.
@@ -179,6 +181,8 @@ pub enum Mend {
     OneBracket,
     /// A plain name as a part of a split.
     PlainPart,
+    /// Brackets around a power that is raised again.
+    RaisedTwice,
     /// The form of the statement that begins with this keyword.
     Form(Kind),
 }
@@ -348,14 +352,12 @@ impl SyntaxError {
                     .with_related(*phenomenon, "the phenomenon is here")
                     .with_help("leave out `for`, or write the request outside the phenomenon")
             }
-            SyntaxError::OpenPhenomenon { opened, .. } => Diagnostic::error(
-                "unfinished",
-                at,
-                "expected `}`, found the end of the values",
-            )
-            .with_label("the phenomenon ends here")
-            .with_related(*opened, "it begins here")
-            .with_help("write `}` behind its last statement"),
+            SyntaxError::OpenPhenomenon { opened, .. } => {
+                Diagnostic::error("unfinished", at, "this phenomenon has no closing `}`")
+                    .with_label("the phenomenon ends here")
+                    .with_related(*opened, "it begins here")
+                    .with_help("write `}` behind its last statement")
+            }
         }
     }
 }
@@ -408,6 +410,7 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::None => return None,
         Mend::Word(word) => format!("did you mean `{word}`?"),
         Mend::Product(left, right) => format!("write `{left}*{right}` for a product"),
+        Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
         Mend::Functions => "write `grad(q)`, `div(V)` or `laplacian(q)`".to_owned(),
@@ -416,6 +419,7 @@ fn help(mend: &Mend) -> Option<String> {
             "write one bracket behind the last name, for all, or a statement each".to_owned()
         }
         Mend::PlainPart => "give the part a name of its own: a part is a plain name".to_owned(),
+        Mend::RaisedTwice => "write brackets around the power that is raised: `(a²)^3`".to_owned(),
         Mend::Form(keyword) => format!("write `{}`", form(*keyword)?),
     })
 }
@@ -440,24 +444,37 @@ fn list(expected: Kinds) -> String {
         };
     }
     let has_operator = expected.has(Kind::Star);
+    let is_named = |kind: Kind| expected.has(kind) && !(has_operator && is_operator(kind));
     let mut words: Vec<String> = Vec::new();
-    if expected.has(Kind::Name) {
-        words.push("a name".to_owned());
+    if has_operator {
+        words.push("an operator".to_owned());
     }
-    let signs = SIGNS.iter().filter(|(kind, _)| expected.has(*kind));
-    let signs = signs.filter(|(kind, _)| !(has_operator && is_operator(*kind)));
-    words.extend(signs.map(|(_, text)| (*text).to_owned()));
-    let reserved = RESERVED.iter().filter(|(kind, _)| expected.has(*kind));
-    let reserved = reserved.filter(|(kind, _)| !(has_operator && *kind == Kind::As));
-    words.extend(reserved.map(|(_, text)| format!("`{text}`")));
-    if has_operator && words.len() < 3 {
-        words.insert(0, "an operator".to_owned());
-    }
-    if expected.has_end() && words.len() < 3 {
+    let kinds = KINDS.iter().filter(|(kind, _)| is_named(*kind));
+    words.extend(kinds.map(|(_, text)| (*text).to_owned()));
+    let written = SIGNS.iter().chain(&RESERVED);
+    let written = written.filter(|(kind, _)| is_named(*kind));
+    words.extend(written.map(|(_, text)| format!("`{text}`")));
+    if expected.has_end() {
         words.push("the next statement".to_owned());
+    }
+    if words.len() > MOST_NAMED {
+        // The general is said by what remains.
+        words.retain(|word| word != "an operator" && word != "the next statement");
     }
     joined(&words)
 }
+
+/// How many things a reader takes in.
+const MOST_NAMED: usize = 4;
+
+/// What no fixed text writes.
+const KINDS: [(Kind, &str); 5] = [
+    (Kind::Name, "a name"),
+    (Kind::Number, "a number"),
+    (Kind::Unit, "a unit"),
+    (Kind::Text, "a text in quotes"),
+    (Kind::Superscript, "a superscript"),
+];
 
 fn begins_expression(expected: Kinds) -> bool {
     expected.has(Kind::Number) && expected.has(Kind::Name) && expected.has(Kind::Minus)
@@ -475,6 +492,7 @@ fn is_operator(kind: Kind) -> bool {
             | Kind::Dot
             | Kind::LeftBracket
             | Kind::Unit
+            | Kind::As
     )
 }
 
@@ -485,34 +503,3 @@ fn joined(words: &[String]) -> String {
         [first @ .., last] => format!("{} or {last}", first.join(", ")),
     }
 }
-
-/// How the kinds of token that are no reserved words are named.
-const SIGNS: [(Kind, &str); 27] = [
-    (Kind::Number, "a number"),
-    (Kind::Unit, "a unit"),
-    (Kind::Text, "a text in quotes"),
-    (Kind::Superscript, "a superscript"),
-    (Kind::Plus, "`+`"),
-    (Kind::Minus, "`-`"),
-    (Kind::Star, "`*`"),
-    (Kind::Slash, "`/`"),
-    (Kind::Caret, "`^`"),
-    (Kind::LeftBracket, "`(`"),
-    (Kind::RightBracket, "`)`"),
-    (Kind::LeftBrace, "`{`"),
-    (Kind::RightBrace, "`}`"),
-    (Kind::Comma, "`,`"),
-    (Kind::Colon, "`:`"),
-    (Kind::Dot, "`.`"),
-    (Kind::Range, "`..`"),
-    (Kind::Equals, "`=`"),
-    (Kind::Tilde, "`~`"),
-    (Kind::Less, "`<`"),
-    (Kind::Greater, "`>`"),
-    (Kind::MuchLess, "`<<`"),
-    (Kind::MuchGreater, "`>>`"),
-    (Kind::PlusMinus, "`+-`"),
-    (Kind::Arrow, "`->`"),
-    (Kind::Partial, "`∂`"),
-    (Kind::Nabla, "`∇`"),
-];

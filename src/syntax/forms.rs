@@ -25,7 +25,10 @@ pub const FORMS: [(Kind, &str); 28] = [
         Kind::Coordinate,
         "coordinate NAME, ... ~ SCALE [about VALUE] [\"title\"] [from \"source\"]",
     ),
-    (Kind::Frame, "frame spherical (NAME, NAME, NAME)"),
+    (
+        Kind::Frame,
+        "frame cartesian | cylindrical | spherical (NAME, NAME, NAME)",
+    ),
     (Kind::Vector, "vector NAME = (EXPR, EXPR, EXPR)"),
     (
         Kind::Field,
@@ -99,7 +102,7 @@ pub const FORMS: [(Kind, &str); 28] = [
     ),
     (
         Kind::Claim,
-        "claim EXPR << EXPR [within NUMBER] [for PHENOMENON, ...]",
+        "claim EXPR << EXPR [within NUMBER] | leading EQUATION = PROCESS, ... [for PHENOMENON, ...]",
     ),
 ];
 

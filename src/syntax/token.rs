@@ -185,6 +185,33 @@ pub const RESERVED: [(Kind, &str); 43] = [
     (Kind::Matching, "matching"),
 ];
 
+/// The signs, in ASCII where they have a twin.
+pub const SIGNS: [(Kind, &str); 23] = [
+    (Kind::Plus, "+"),
+    (Kind::Minus, "-"),
+    (Kind::Star, "*"),
+    (Kind::Slash, "/"),
+    (Kind::Caret, "^"),
+    (Kind::LeftBracket, "("),
+    (Kind::RightBracket, ")"),
+    (Kind::LeftBrace, "{"),
+    (Kind::RightBrace, "}"),
+    (Kind::Comma, ","),
+    (Kind::Colon, ":"),
+    (Kind::Dot, "."),
+    (Kind::Range, ".."),
+    (Kind::Equals, "="),
+    (Kind::Tilde, "~"),
+    (Kind::Less, "<"),
+    (Kind::Greater, ">"),
+    (Kind::MuchLess, "<<"),
+    (Kind::MuchGreater, ">>"),
+    (Kind::PlusMinus, "+-"),
+    (Kind::Arrow, "->"),
+    (Kind::Partial, "\u{2202}"),
+    (Kind::Nabla, "\u{2207}"),
+];
+
 /// Whether a word is reserved, so that it names nothing and is no unit.
 pub fn is_reserved(word: &str) -> bool {
     RESERVED.iter().any(|&(_, reserved)| reserved == word)
@@ -264,14 +291,20 @@ impl<'s> Reader<'s> {
         }
         self.unit_wanted = kind == Kind::In;
         match kind {
-            Kind::OpenText => {
-                let span = self.span(self.lexer.slice().trim_end().len());
-                self.out.errors.push(SyntaxError::OpenText { span });
-                self.push(Kind::Text);
-            }
+            Kind::OpenText => self.open_text(),
             Kind::Number => self.number(),
             kind => self.push(kind),
         }
+    }
+
+    /// A text that its line ends. Where it seems to go on over lines it is taken whole, so
+    /// that its words are no faults of their own.
+    fn open_text(&mut self) {
+        let span = self.span(self.lexer.slice().trim_end().len());
+        self.out.errors.push(SyntaxError::OpenText { span });
+        let more = length_to_lone_quote(self.lexer.remainder());
+        self.lexer.bump(more);
+        self.push(Kind::Text);
     }
 
     fn push(&mut self, kind: Kind) {
@@ -351,6 +384,19 @@ impl<'s> Reader<'s> {
     }
 }
 
+/// The length up to the next quote and with it, if no other pairs with it on its line; 0
+/// if one does.
+fn length_to_lone_quote(rest: &str) -> usize {
+    let Some(quote) = rest.find('"') else {
+        return 0;
+    };
+    let end = rest[quote..]
+        .find('\n')
+        .map_or(rest.len(), |end| quote + end);
+    let is_lone = rest[quote..end].matches('"').count() % 2 == 1;
+    if is_lone { quote + 1 } else { 0 }
+}
+
 /// Whether a character closes another, so that the two are one fault.
 fn closes(opening: char, closing: char) -> bool {
     matches!(
@@ -359,20 +405,14 @@ fn closes(opening: char, closing: char) -> bool {
     )
 }
 
-/// How much of the text behind `10` belongs to the number: `^-4`, or superscripts.
-/// Nothing if the exponent is no whole number or if it is itself raised to a power.
+/// How much of the text behind `10` belongs to the number: `^-4`, or superscripts; but no
+/// exponent that is no whole number or is itself raised to a power.
 fn power_of_ten_length(rest: &str) -> usize {
-    let len = match rest.strip_prefix('^') {
-        Some(digits) if digits.starts_with('(') => 0,
-        Some(_) | None => exponent_length(rest),
-    };
+    let len = exponent_length(rest);
     let behind = rest[len..].trim_start_matches([' ', '\t', '\r', '\n']);
-    let is_whole = !rest[..len].contains('.') && !has_exponent(&rest[len..]);
-    if is_whole && !behind.starts_with('^') {
-        len
-    } else {
-        0
-    }
+    let is_raised = behind.starts_with('^') || exponent_length(behind) > 0;
+    let is_whole = !rest[..len].contains(['.', '(']) && !has_exponent(&rest[len..]);
+    if is_whole && !is_raised { len } else { 0 }
 }
 
 /// Whether a text goes on as `e5` does: a decimal exponent behind digits.
@@ -380,4 +420,118 @@ fn has_exponent(text: &str) -> bool {
     text.strip_prefix(['e', 'E'])
         .map(|rest| rest.strip_prefix(['+', '-']).unwrap_or(rest))
         .is_some_and(|rest| rest.starts_with(|c: char| c.is_ascii_digit()))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn kinds(text: &str) -> Vec<(Kind, &str)> {
+        let lexed = read(text, FileId::default());
+        assert!(lexed.errors.is_empty(), "{text}");
+        let tokens = lexed.tokens.into_iter();
+        tokens.map(|token| (token.kind, token.text)).collect()
+    }
+
+    #[test]
+    fn words_and_signs_are_read_as_what_they_are() {
+        for (kind, text) in RESERVED.into_iter().chain(SIGNS) {
+            assert_eq!(kinds(text), [(kind, text)]);
+        }
+        for (twin, sign) in [
+            ("\u{B7}", "*"),
+            ("\u{D7}", "*"),
+            ("\u{226A}", "<<"),
+            ("\u{226B}", ">>"),
+            ("\u{B1}", "+-"),
+            ("\u{2192}", "->"),
+        ] {
+            assert_eq!(kinds(twin)[0].0, kinds(sign)[0].0);
+        }
+        assert_eq!(
+            kinds("scalex scale'"),
+            [(Kind::Name, "scalex"), (Kind::Name, "scale'")]
+        );
+    }
+
+    #[test]
+    fn names_take_letters_digits_subscripts_and_primes() {
+        for name in [
+            "u",
+            "dP",
+            "\u{3C1}_0",
+            "p'",
+            "\u{3B8}\u{2080}",
+            "u''",
+            "d_x",
+            "e\u{301}",
+        ] {
+            assert_eq!(kinds(name), [(Kind::Name, name)]);
+        }
+    }
+
+    #[test]
+    fn a_unit_stands_behind_its_number_on_its_line() {
+        use Kind::{Name, Number, Range, Unit};
+        assert_eq!(kinds("10m/s"), [(Number, "10"), (Unit, "m/s")]);
+        assert_eq!(kinds("1e-4 1/s"), [(Number, "1e-4"), (Unit, "1/s")]);
+        assert_eq!(kinds("10^-4 s^-1"), [(Number, "10^-4"), (Unit, "s^-1")]);
+        assert_eq!(kinds("10\nm"), [(Number, "10"), (Name, "m")]);
+        assert_eq!(kinds("10 within")[1].0, Kind::Within);
+        assert_eq!(
+            kinds("5..20 m..x"),
+            [
+                (Number, "5"),
+                (Range, ".."),
+                (Number, "20"),
+                (Unit, "m"),
+                (Range, ".."),
+                (Name, "x")
+            ]
+        );
+    }
+
+    #[test]
+    fn behind_in_a_unit_may_stand_on_the_next_line() {
+        assert_eq!(kinds("in 1")[1], (Kind::Unit, "1"));
+        assert_eq!(kinds("in # so\n  m/s")[1], (Kind::Unit, "m/s"));
+    }
+
+    #[test]
+    fn a_power_of_ten_is_one_number_unless_it_is_raised_again() {
+        assert_eq!(kinds("10^-4"), [(Kind::Number, "10^-4")]);
+        assert_eq!(
+            kinds("10\u{207B}\u{2074}"),
+            [(Kind::Number, "10\u{207B}\u{2074}")]
+        );
+        for text in [
+            "10^2^3", "10^2 ^3", "10^2.5", "10^(2)", "10 ^2", "10^2e1", "10^x",
+        ] {
+            assert_eq!(kinds(text)[0], (Kind::Number, "10"), "{text}");
+        }
+    }
+
+    #[test]
+    fn what_no_script_has_is_one_error_and_no_token() {
+        let lexed = read("\u{feff}a $$ $ b [x]", FileId::default());
+        let spans: Vec<_> = lexed
+            .errors
+            .iter()
+            .map(|error| error.span().start)
+            .collect();
+        assert_eq!(spans, [5, 12]);
+        assert_eq!(lexed.tokens.len(), 3);
+    }
+
+    #[test]
+    fn comments_are_kept_apart() {
+        let lexed = read("a # one \nb# two", FileId::default());
+        let texts: Vec<_> = lexed
+            .comments
+            .iter()
+            .map(|found| found.text.as_str())
+            .collect();
+        assert_eq!(texts, ["# one", "# two"]);
+        assert_eq!(lexed.tokens.len(), 2);
+    }
 }

@@ -49,7 +49,7 @@ pub(super) fn mend_of_stray(token: &Token<'_>, is_expression: bool, speller: &mu
 
 fn unfinished(expected: Kinds, place: &Place<'_, '_>) -> SyntaxError {
     let (span, behind) = match place.tokens.last() {
-        Some(last) => (end_of(last), last.text.to_owned()),
+        Some(last) => (end_of(last.span), last.text.to_owned()),
         None => (Span::default(), String::new()),
     };
     SyntaxError::Unfinished {
@@ -61,11 +61,11 @@ fn unfinished(expected: Kinds, place: &Place<'_, '_>) -> SyntaxError {
     }
 }
 
-/// The empty span behind a token.
-pub(super) fn end_of(token: &Token<'_>) -> Span {
+/// The empty span at the end of another.
+pub(super) fn end_of(span: Span) -> Span {
     Span {
-        start: token.span.end,
-        ..token.span
+        start: span.end,
+        ..span
     }
 }
 
@@ -136,6 +136,7 @@ fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller
         (Kind::Field, _) if expected.has(Kind::Plus) && !expected.has(Kind::Star) => {
             Mend::PlainPart
         }
+        (_, Kind::Caret | Kind::Superscript) if expected.has(Kind::Star) => Mend::RaisedTwice,
         _ if before.is_some_and(|before| before.kind == Kind::Nabla) => Mend::Functions,
         _ if keyword.begins_statement() => Mend::Form(keyword),
         _ => Mend::None,
@@ -159,8 +160,10 @@ fn is_unopened(tokens: &[Token<'_>]) -> bool {
 /// number with the unit `sin`, so there the product sign belongs before the unit.
 fn product(at: usize, place: &Place<'_, '_>) -> Mend {
     let text = |idx: usize| place.tokens[idx].text.to_owned();
-    match place.tokens[at - 1].kind {
-        Kind::Unit if at >= 2 => Mend::Product(text(at - 2), text(at - 1)),
+    let (before, found) = (&place.tokens[at - 1], &place.tokens[at]);
+    match (before.kind, found.kind) {
+        (Kind::Unit, _) if at >= 2 => Mend::Product(text(at - 2), text(at - 1)),
+        (Kind::RightBracket, _) | (_, Kind::LeftBracket) => Mend::Sign,
         _ => Mend::Product(text(at - 1), text(at)),
     }
 }

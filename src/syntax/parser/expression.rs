@@ -166,7 +166,9 @@ fn negated(signs: Vec<Span>, expr: Expr) -> Expr {
 fn power<'t, 's: 't>(expression: impl Rule<'t, 's, Expr>) -> impl Rule<'t, 's, Expr> {
     let primary = primary(expression).boxed();
     recursive(|power| {
-        let raised = token(Kind::Caret).ignore_then(unary(power));
+        let raised = token(Kind::Caret)
+            .ignore_then(token(Kind::Plus).or_not())
+            .ignore_then(unary(power));
         primary
             .then(raised.or(superscript()).or_not())
             .map_with(|(base, exponent), extra| match exponent {

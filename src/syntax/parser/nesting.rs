@@ -61,6 +61,7 @@ fn too_deep(tokens: &[Token<'_>]) -> Option<Span> {
                 level.take(inner + 1);
             }
             Kind::Minus if !ends_operand => level.chain += 1,
+            Kind::Plus if !ends_operand => {}
             Kind::Caret | Kind::Superscript => {
                 level.deepest += 1;
                 level.chain += 1;

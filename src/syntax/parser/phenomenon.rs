@@ -35,8 +35,9 @@ pub(super) struct Assembly {
 /// The phenomenon whose statements are being gathered.
 struct Open {
     head: Head,
-    body: Vec<Statement>,
-    misplaced: Vec<Statement>,
+    statements: Vec<Statement>,
+    /// Where the first of them stands that does not belong into a phenomenon.
+    first_misplaced: Option<usize>,
     /// What is wrong if the phenomenon is closed.
     errors: Vec<SyntaxError>,
 }
@@ -48,39 +49,20 @@ impl Assembly {
             self.statements.push(statement);
             return;
         };
-        let phenomenon = open.head.name.span;
-        match &statement.kind {
-            StatementKind::Value(_) | StatementKind::Tolerance(_) | StatementKind::Error => {
-                open.body.push(statement);
-            }
-            StatementKind::Request(request) => {
-                if let [first, .., last] | [first @ last] = request.phenomena.as_slice() {
-                    open.errors.push(SyntaxError::ForInPhenomenon {
-                        span: first.span.to(last.span),
-                        phenomenon,
-                    });
-                }
-                open.body.push(statement);
-            }
-            StatementKind::Use(_)
-            | StatementKind::Coordinate(_)
-            | StatementKind::Frame(_)
-            | StatementKind::Vector(_)
-            | StatementKind::Field(_)
-            | StatementKind::Split(_)
-            | StatementKind::Velocity(_)
-            | StatementKind::Equation(_)
-            | StatementKind::Group(_)
-            | StatementKind::Balance(_)
-            | StatementKind::Phenomenon(_) => {
-                open.errors.push(SyntaxError::NotInPhenomenon {
-                    span: keyword.span,
-                    keyword: keyword.text.to_owned(),
-                    phenomenon,
-                });
-                open.misplaced.push(statement);
-            }
+        if !belongs(&statement.kind) {
+            open.first_misplaced.get_or_insert(open.statements.len());
+            open.errors.push(SyntaxError::NotInPhenomenon {
+                span: keyword.span,
+                keyword: keyword.text.to_owned(),
+                phenomenon: open.head.name.span,
+            });
+        } else if let Some(span) = phenomena_of(&statement) {
+            open.errors.push(SyntaxError::ForInPhenomenon {
+                span,
+                phenomenon: open.head.name.span,
+            });
         }
+        open.statements.push(statement);
     }
 
     /// Opens a phenomenon; `last` is the token before it.
@@ -88,21 +70,23 @@ impl Assembly {
         self.leave_open(last, false);
         self.open = Some(Open {
             head,
-            body: Vec::new(),
-            misplaced: Vec::new(),
+            statements: Vec::new(),
+            first_misplaced: None,
             errors: Vec::new(),
         });
     }
 
     /// Closes the phenomenon at its brace.
     pub(super) fn close(&mut self, brace: Span) {
-        if let Some(open) = self.open.take() {
-            if open.head.is_whole {
-                self.errors.extend(open.errors);
-            }
-            self.statements
-                .push(phenomenon(open.head, open.body, brace));
+        let Some(mut open) = self.open.take() else {
+            return;
+        };
+        if open.head.is_whole {
+            self.errors.extend(open.errors);
         }
+        open.statements.retain(|statement| belongs(&statement.kind));
+        self.statements
+            .push(phenomenon(open.head, open.statements, brace));
     }
 
     /// The script behind its last token.
@@ -111,12 +95,19 @@ impl Assembly {
         (self.statements, self.errors)
     }
 
-    /// Ends a phenomenon whose brace is missing.
+    /// Ends a phenomenon whose brace is missing: it is taken to end before the first
+    /// statement that does not belong into it.
     fn leave_open(&mut self, last: Option<&Token<'_>>, is_last: bool) {
-        let Some(open) = self.open.take() else {
+        let Some(mut open) = self.open.take() else {
             return;
         };
-        let end = last.map_or(open.head.brace, end_of);
+        let n_body = open.first_misplaced.unwrap_or(open.statements.len());
+        let behind = open.statements.split_off(n_body);
+        let end = match (open.statements.last(), behind.is_empty()) {
+            (Some(statement), false) => end_of(statement.span),
+            (None, false) => end_of(open.head.brace),
+            (_, true) => end_of(last.map_or(open.head.brace, |token| token.span)),
+        };
         if open.head.is_whole {
             self.errors.push(SyntaxError::OpenPhenomenon {
                 span: end,
@@ -124,9 +115,41 @@ impl Assembly {
                 is_last,
             });
         }
-        self.statements.push(phenomenon(open.head, open.body, end));
-        self.statements.extend(open.misplaced);
+        self.statements
+            .push(phenomenon(open.head, open.statements, end));
+        self.statements.extend(behind);
     }
+}
+
+/// Whether a statement may stand in a phenomenon.
+fn belongs(kind: &StatementKind) -> bool {
+    match kind {
+        StatementKind::Value(_)
+        | StatementKind::Tolerance(_)
+        | StatementKind::Request(_)
+        | StatementKind::Error => true,
+        StatementKind::Use(_)
+        | StatementKind::Coordinate(_)
+        | StatementKind::Frame(_)
+        | StatementKind::Vector(_)
+        | StatementKind::Field(_)
+        | StatementKind::Split(_)
+        | StatementKind::Velocity(_)
+        | StatementKind::Equation(_)
+        | StatementKind::Group(_)
+        | StatementKind::Balance(_)
+        | StatementKind::Phenomenon(_) => false,
+    }
+}
+
+/// The names behind `for` of a request.
+fn phenomena_of(statement: &Statement) -> Option<Span> {
+    let StatementKind::Request(request) = &statement.kind else {
+        return None;
+    };
+    let first = request.phenomena.first()?;
+    let last = request.phenomena.last()?;
+    Some(first.span.to(last.span))
 }
 
 fn phenomenon(head: Head, body: Vec<Statement>, close: Span) -> Statement {
