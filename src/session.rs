@@ -206,6 +206,7 @@ fn check_model(
         errors.push(ModelError::NothingToRank { span: main_span });
     }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
+        errors.extend(analysis::value_errors(&model));
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);

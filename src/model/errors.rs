@@ -294,6 +294,20 @@ pub enum Product {
 }
 
 impl ModelError {
+    /// Whether it is about a value or its range, which can be judged beside other faults.
+    pub fn is_of_value(&self) -> bool {
+        matches!(
+            self,
+            ModelError::NotPositive { .. }
+                | ModelError::RangeUpsideDown { .. }
+                | ModelError::RangeHoldsZero { .. }
+                | ModelError::MarginTooWide { .. }
+                | ModelError::DerivedScale { .. }
+                | ModelError::DividesByZero { .. }
+                | ModelError::OutOfDomain { .. }
+        )
+    }
+
     /// Puts it into words.
     pub fn diagnostic(&self) -> Diagnostic {
         use ModelError as E;
