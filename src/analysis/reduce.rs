@@ -467,8 +467,9 @@ fn fields_of(factors: &[Factor], found: &mut Vec<FieldId>) {
         match &factor.base {
             Base::Field(id) => found.push(*id),
             Base::Derivative(derivative) => fields_of(&derivative.operand, found),
-            Base::Absolute(inside) => fields_of(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => fields_of(inside, found),
             Base::Sized(sized) => found.extend(&sized.fields),
+            Base::Function(applied) => fields_of(&applied.argument.factors, found),
             Base::Symbol(_) | Base::Coordinate(_) => {}
         }
     }
@@ -480,7 +481,12 @@ fn plain_fields(factors: &[Factor], found: &mut Vec<FieldId>) {
         match &factor.base {
             Base::Field(id) => found.push(*id),
             Base::Absolute(inside) => plain_fields(inside, found),
-            Base::Derivative(_) | Base::Symbol(_) | Base::Coordinate(_) | Base::Sized(_) => {}
+            Base::Derivative(_)
+            | Base::Symbol(_)
+            | Base::Coordinate(_)
+            | Base::Sized(_)
+            | Base::Mean(_)
+            | Base::Function(_) => {}
         }
     }
 }
