@@ -374,7 +374,8 @@ pub fn evaluated(
     Ok(product)
 }
 
-fn log_of_ten() -> Product {
+/// The natural logarithm of 10, which is a symbol of its own.
+pub fn log_of_ten() -> Product {
     let function = monomial::Function {
         text: "log(10)".to_owned(),
         value: Some(Range::exact(std::f64::consts::LN_10)),

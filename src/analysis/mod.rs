@@ -10,7 +10,7 @@ pub mod sizes;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::model::settings::{self, Setting};
-use crate::model::terms::{self, EquationTerms};
+use crate::model::terms::{self, Depth, EquationTerms};
 use crate::model::{Model, errors::ModelError};
 use crate::number::{Exponent, Number};
 
@@ -63,12 +63,8 @@ pub fn case(model: &Model, phenomenon: Option<usize>) -> (Option<Case>, Vec<Mode
     let Some(setting) = setting else {
         return (None, errors);
     };
-    let mut equations = Vec::with_capacity(model.equations.len());
-    for idx in 0..model.equations.len() {
-        let (made, found) = terms::terms(model, &setting, idx);
-        equations.push(made);
-        errors.extend(found);
-    }
+    let (equations, found) = terms::all(model, &setting, Depth::RANKED);
+    errors.extend(found);
     (Some(Case { setting, equations }), errors)
 }
 
