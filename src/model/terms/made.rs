@@ -2,7 +2,7 @@
 
 use super::expand::not_a_term;
 use super::pieces::{
-    Piece, Pieces, Sided, Tag, collected, gathered, met, multiplied, named, written_tag,
+    Piece, Pieces, Sided, collected, gathered, multiplied, named, written_tag,
 };
 use super::written::{has_partials, process_names};
 use super::{Maker, Side, Source, Summand};
