@@ -13,7 +13,7 @@ use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
-use crate::model::{Model, declarations, requests};
+use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
@@ -165,6 +165,7 @@ impl<'f> Session<'f> {
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
         let main_span = main_span(&outcome.sources);
         let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
         let (model, errors) = declarations::gather(scripts);
@@ -172,7 +173,7 @@ impl<'f> Session<'f> {
         outcome.diagnostics.extend(
             errors
                 .iter()
-                .filter(|error| !is_echo(error, &unreadable))
+                .filter(|error| !is_echo(error, &unreadable, is_whole))
                 .map(ModelError::diagnostic),
         );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -246,11 +247,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }
@@ -411,10 +420,15 @@ impl Answering<'_> {
                 .collect()
         };
         let mut is_open = false;
+        let mut is_faulty = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
             if open.is_empty() {
-                known.push(idx);
+                if self.is_sound(&case.equations[idx]) {
+                    known.push(idx);
+                } else {
+                    is_faulty = true;
+                }
                 continue;
             }
             let equation = case.equations[idx].name.clone();
@@ -423,6 +437,9 @@ impl Answering<'_> {
                 self.open_scale(case, Some(&equation), &open, place);
             }
             left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && is_faulty {
+            return None;
         }
         if known.is_empty() && !is_open {
             is_open = true;
@@ -445,6 +462,17 @@ impl Answering<'_> {
             }
         }
         (!is_open).then_some((known, left_out))
+    }
+
+    /// Whether an equation can be answered for; tells, once, why not.
+    fn is_sound(&mut self, equation: &terms::EquationTerms) -> bool {
+        for fault in &equation.faults {
+            let fault = fault.diagnostic();
+            if !self.outcome.diagnostics.contains(&fault) {
+                self.outcome.diagnostics.push(fault);
+            }
+        }
+        equation.faults.is_empty()
     }
 
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {

@@ -110,11 +110,7 @@ pub fn power(
         .map(|number| vec![Graded::plain(Product::number(Number::rational(number)))])
         .collect();
     let sum = composed(&coefficients, &ratios, highest)?;
-    times(
-        &[Graded::plain(leading.power(exponent)?)],
-        &sum,
-        highest,
-    )
+    times(&[Graded::plain(leading.power(exponent)?)], &sum, highest)
 }
 
 /// `sum of coefficients[k] * small^k` up to an order.

@@ -129,6 +129,9 @@ fn verdict(
         return Err(Fault::NotAProduct(equation.span));
     };
     let terms = &case.equations[idx];
+    if let Some(fault) = terms.faults.first() {
+        return Err(Fault::Error(fault.clone()));
+    }
     let tolerance = case.setting.tolerance();
     let Some(kept) = Kept::of(case, terms, tolerance) else {
         let mut open = Vec::new();

@@ -163,7 +163,7 @@ fn value_dimension(
                 Some(_) | None => dimension(nominal, model, phenomenon, place, errors),
             };
             spread_dimension(model, spread, found, phenomenon, place, errors);
-            found
+            whole_value(found, spread)
         }
     }
 }
@@ -276,12 +276,7 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
         for (_, decl) in &info.entries {
             if !std::ptr::eq(decl, defining) {
                 let found = value_dimension(model, decl, info.local_to, errors);
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
@@ -294,22 +289,14 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
             }
             let found = value_dimension(model, decl, Some(idx), errors);
             if let Some(expected) = effective_dimension(info.dimension, defining) {
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
 }
 
 /// A range such as `5 .. 20 m/s` has the dimension of its end.
-fn whole_value(found: Dim, decl: &ast::ValueDecl) -> Dim {
-    let ast::Value::Given { spread, .. } = &decl.value else {
-        return found;
-    };
+fn whole_value(found: Dim, spread: &ast::Spread) -> Dim {
     let end = match spread {
         ast::Spread::To(end) | ast::Spread::Margin(end) => end,
         ast::Spread::None | ast::Spread::Within(_) => return found,
@@ -380,12 +367,7 @@ fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
 }
 
 /// Refuses splits of too many parts, or nested too deep.
-fn split_sizes(
-    model: &Model,
-    order: &[usize],
-    needs: &[Vec<usize>],
-    errors: &mut Vec<ModelError>,
-) {
+fn split_sizes(model: &Model, order: &[usize], needs: &[Vec<usize>], errors: &mut Vec<ModelError>) {
     let mut n_parts = vec![1usize; needs.len()];
     let mut depth = vec![0usize; needs.len()];
     for &idx in order {
@@ -396,7 +378,11 @@ fn split_sizes(
         let n_constants = info.parts.len() - needs[idx].len().min(info.parts.len());
         let inner: usize = needs[idx].iter().map(|part| n_parts[*part]).sum();
         n_parts[idx] = n_constants + inner;
-        depth[idx] = 1 + needs[idx].iter().map(|part| depth[*part]).max().unwrap_or(0);
+        depth[idx] = 1 + needs[idx]
+            .iter()
+            .map(|part| depth[*part])
+            .max()
+            .unwrap_or(0);
         if n_parts[idx] > limits::SPLIT_PARTS || depth[idx] > limits::SPLIT_DEPTH {
             errors.push(ModelError::SplitTooLarge {
                 name: info.name.text.clone(),
@@ -605,18 +591,19 @@ fn groups(model: &Model, errors: &mut Vec<ModelError>) {
             });
         }
     }
-    let uses: Vec<Vec<usize>> = model
-        .groups
-        .iter()
-        .map(|info| groups_in(&info.value, model))
-        .collect();
-    if let Err(ring) = order(&uses) {
+    if let Err(ring) = order(&group_uses(model)) {
         let name = |idx: &usize| &model.groups[*idx].name;
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
         });
     }
+}
+
+/// For each group, those that its formula names.
+pub fn group_uses(model: &Model) -> Vec<Vec<usize>> {
+    let formulas = model.groups.iter();
+    formulas.map(|info| groups_in(&info.value, model)).collect()
 }
 
 fn groups_in(expr: &ast::Expr, model: &Model) -> Vec<usize> {
@@ -669,9 +656,7 @@ fn equation_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -
                 Dim::Any | Dim::Faulty => right,
             }
         }
-        ast::EquationBody::Made(expr) => {
-            dimension(expr, model, None, Place::Combination, errors)
-        }
+        ast::EquationBody::Made(expr) => dimension(expr, model, None, Place::Combination, errors),
     }
 }
 
@@ -910,7 +895,8 @@ impl Walker<'_> {
             return self.fault(unknown(name, span, self.model, self.phenomenon));
         };
         let may_vary = self.is_in_equation();
-        let may_be_group = self.is_in_equation() || matches!(self.place, Place::Group | Place::Request);
+        let may_be_group =
+            self.is_in_equation() || matches!(self.place, Place::Group | Place::Request);
         let found = match meaning {
             Meaning::Symbol(id) => self.model.symbols[id.idx()].dimension,
             Meaning::Group(_) if may_be_group => Some(Dimension::one()),

@@ -90,5 +90,4 @@ impl Maker<'_> {
         }
         Ok(sum)
     }
-
 }

@@ -106,11 +106,7 @@ impl Maker<'_> {
                 Some(Meaning::Coordinate(_) | Meaning::Group(_)) | None => continue,
             };
             let piece = Piece::plain(Product::base(base));
-            found.push(if is_negative {
-                piece.negated()
-            } else {
-                piece
-            });
+            found.push(if is_negative { piece.negated() } else { piece });
         }
     }
 

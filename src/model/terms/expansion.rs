@@ -177,10 +177,7 @@ impl Maker<'_> {
         span: Span,
     ) {
         let whole = self.nominal(leading);
-        let is_log = matches!(
-            function,
-            Elementary::Named(Function::Log | Function::Log10)
-        );
+        let is_log = matches!(function, Elementary::Named(Function::Log | Function::Log10));
         for term in small.iter().filter(|term| term.degree <= 1) {
             let change = self.nominal(&term.product);
             let ratio = change / whole;
@@ -366,10 +363,9 @@ impl Maker<'_> {
     /// The value of a product of constants; the open names in it otherwise.
     fn value(&self, monomial: &Monomial) -> Result<Value, Vec<SymbolId>> {
         let range = self.setting.monomial_range(monomial)?;
-        let exact = monomial
-            .powers()
-            .iter()
-            .try_fold(monomial.number.clone(), |product, (symbol, power)| {
+        let exact = monomial.powers().iter().try_fold(
+            monomial.number.clone(),
+            |product, (symbol, power)| {
                 let Symbol::Declared(id) = symbol else {
                     return None;
                 };
@@ -381,7 +377,8 @@ impl Maker<'_> {
                     return None;
                 }
                 product.times(&exact.power(*power).ok()?).ok()
-            });
+            },
+        );
         Ok(Value { range, exact })
     }
 

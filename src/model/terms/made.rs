@@ -1,9 +1,7 @@
 //! Equations made of others: linear combinations, and relations put in.
 
 use super::expand::not_a_term;
-use super::pieces::{
-    Piece, Pieces, Sided, collected, gathered, multiplied, named, written_tag,
-};
+use super::pieces::{Piece, Pieces, Sided, collected, gathered, multiplied, named, written_tag};
 use super::written::{has_partials, process_names};
 use super::{Maker, Side, Source, Summand};
 use crate::algebra::product::{Base, Derivative, Factor, Product};
@@ -167,7 +165,10 @@ impl Maker<'_> {
         let Some(idx) = self.model.equation(name) else {
             return Err(no_combination(span));
         };
-        Ok(self.take(idx).map(|source| source.pieces).unwrap_or_default())
+        Ok(self
+            .take(idx)
+            .map(|source| source.pieces)
+            .unwrap_or_default())
     }
 
     /// An equation that is done; none if an error was reported for it.
@@ -256,7 +257,9 @@ impl Maker<'_> {
 
     fn mean_of_combined(&mut self, expr: &ast::Expr) -> Combined {
         let pieces = self.combined(expr)?;
-        on_sides(&pieces, |pieces| self.averaged(&collected(pieces), expr.span))
+        on_sides(&pieces, |pieces| {
+            self.averaged(&collected(pieces), expr.span)
+        })
     }
 
     // Relations -------------------------------------------------------------------------------
@@ -320,7 +323,10 @@ impl Maker<'_> {
         let relation = self.solved(single, side(Side::Right), name.span)?;
         for piece in &relation.right {
             self.mention(piece);
-            if self.replaced(&piece.product, &relation, name.span)?.is_some() {
+            if self
+                .replaced(&piece.product, &relation, name.span)?
+                .is_some()
+            {
                 return Err(ModelError::HoldsItself {
                     relation: name.text.clone(),
                     span: self.model.equations[idx].name.span,
@@ -339,12 +345,7 @@ impl Maker<'_> {
     }
 
     /// The left side with the number 1.
-    fn solved(
-        &self,
-        left: &Piece,
-        right: Vec<Piece>,
-        span: Span,
-    ) -> Result<Relation, ModelError> {
+    fn solved(&self, left: &Piece, right: Vec<Piece>, span: Span) -> Result<Relation, ModelError> {
         let too_large = |_| ModelError::TooLarge { span };
         let number = left.product.number.power(Exponent::ONE.negated());
         let number = Product::number(number.map_err(too_large)?);

@@ -45,7 +45,10 @@ impl Maker<'_> {
                 function,
                 order,
                 arguments,
-            } => match (names::call(&function.text, self.model), arguments.as_slice()) {
+            } => match (
+                names::call(&function.text, self.model),
+                arguments.as_slice(),
+            ) {
                 (Call::Derivative(id), [operand]) => {
                     let pieces = self.mean(operand)?;
                     self.differentiated(&pieces, id, order.unwrap_or(1), span)

@@ -13,14 +13,14 @@ mod pieces;
 mod sized;
 mod written;
 
-use crate::algebra::monomial::{Symbol, SymbolId};
+use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Product, Speller};
 use crate::algebra::quantities::Size;
 use crate::limits;
 use crate::model::errors::ModelError;
 use crate::model::settings::{Setting, Variable};
 use crate::model::values::{Fault, Names, Value};
-use crate::model::{Model, combinations};
+use crate::model::{GroupId, Model, combinations};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Sign};
@@ -141,7 +141,10 @@ pub fn all(
         maker.sources = sources;
         maker.equation();
         sources = std::mem::take(&mut maker.sources);
-        let is_sound = !maker.errors.iter().any(|error| error.diagnostic().is_error());
+        let is_sound = !maker
+            .errors
+            .iter()
+            .any(|error| error.diagnostic().is_error());
         sources[idx] = is_sound.then(|| Source {
             pieces: std::mem::take(&mut maker.source),
             process_names: maker.made.process_names.clone(),
@@ -213,6 +216,10 @@ impl Names for Maker<'_> {
             Variable::Known(value) => Ok(value.clone()),
             Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
     }
 
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
@@ -495,5 +502,4 @@ impl<'a> Maker<'a> {
     }
 
     // Multiplying out -----------------------------------------------------------------------
-
 }

@@ -150,9 +150,9 @@ pub(super) fn met(a: Option<&Tag>, b: Option<&Tag>) -> Result<Option<Tag>, Model
 
 /// The one process of all pieces that have one.
 pub(super) fn common_tag(pieces: &[Piece]) -> Result<Option<Tag>, ModelError> {
-    pieces
-        .iter()
-        .try_fold(None::<Tag>, |tag, piece| met(tag.as_ref(), piece.tag.as_ref()))
+    pieces.iter().try_fold(None::<Tag>, |tag, piece| {
+        met(tag.as_ref(), piece.tag.as_ref())
+    })
 }
 
 /// Collects like terms of one process, each at its lowest order; what cancels goes.
@@ -219,11 +219,7 @@ pub(super) fn gathered(pieces: Vec<Sided>) -> Vec<Sided> {
 }
 
 /// The number of a piece with another added to it, the other brought to its side.
-fn total(
-    (side, piece): &Sided,
-    other_side: Side,
-    other: &Piece,
-) -> Option<crate::number::Number> {
+fn total((side, piece): &Sided, other_side: Side, other: &Piece) -> Option<crate::number::Number> {
     let number = if *side == other_side {
         other.product.number.clone()
     } else {

@@ -113,7 +113,9 @@ pub(super) fn unnamed(expr: &ast::Expr) -> ast::Expr {
 }
 
 /// The factors of a product without the minus before the first, if there is one.
-pub(super) fn leading_minus(factors: &[(Operator, ast::Expr)]) -> Option<Vec<(Operator, ast::Expr)>> {
+pub(super) fn leading_minus(
+    factors: &[(Operator, ast::Expr)],
+) -> Option<Vec<(Operator, ast::Expr)>> {
     let (operator, first) = factors.first()?;
     let ExprKind::Negate(inside) = &first.kind else {
         return None;
