@@ -58,13 +58,14 @@ pub fn times(left: &[Graded], right: &[Graded], highest: u32) -> Result<Series, 
     Ok(collected(product))
 }
 
-/// Collects like terms, each at its lowest order; what cancels goes. Numbers that have no
-/// common form stay apart.
+/// Collects like terms of one order; what cancels goes. Numbers that have no common form
+/// stay apart.
 pub fn collected(series: Series) -> Series {
-    let mut places: BTreeMap<Factors, Vec<usize>> = BTreeMap::new();
+    let mut places: BTreeMap<(u32, Factors), Vec<usize>> = BTreeMap::new();
     let mut sum: Series = Vec::with_capacity(series.len());
     for term in series {
-        let rivals = places.entry(term.product.likeness()).or_default();
+        let key = (term.degree, term.product.likeness());
+        let rivals = places.entry(key).or_default();
         let like = rivals.iter().find_map(|idx| {
             let number = sum[*idx].product.number.plus(&term.product.number)?;
             Some((*idx, number))
@@ -72,7 +73,6 @@ pub fn collected(series: Series) -> Series {
         match like {
             Some((idx, number)) => {
                 sum[idx].product.number = number;
-                sum[idx].degree = sum[idx].degree.min(term.degree);
             }
             None => {
                 rivals.push(sum.len());
@@ -426,7 +426,7 @@ mod tests {
     }
 
     #[test]
-    fn what_times_its_inverse_is_one_up_to_the_order() {
+    fn what_times_its_inverse_is_one_where_all_of_it_counts() {
         let small = vec![
             Graded {
                 product: symbol(1),

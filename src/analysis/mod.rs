@@ -1,8 +1,10 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod base_state;
 pub mod claims;
 pub mod names;
+pub mod neglected;
 pub mod rank;
 pub mod reduce;
 pub mod show;

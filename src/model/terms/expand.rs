@@ -10,7 +10,7 @@ use crate::algebra::quantities::FieldId;
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted};
 use crate::model::names::{self, Call, Function};
-use crate::model::{Meaning, values};
+use crate::model::{Meaning, Model, values};
 use crate::number::{Exponent, Number};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator, Sign};
@@ -43,8 +43,7 @@ impl Maker<'_> {
             }
             ExprKind::Power { base, exponent } => {
                 let exponent = names::exponent(exponent)?;
-                let pieces = self.expand(base)?;
-                self.power(pieces, exponent, span)?
+                self.raised(base, exponent, span)?
             }
             ExprKind::Call {
                 function,
@@ -137,10 +136,13 @@ impl Maker<'_> {
     pub(super) fn product(&mut self, factors: &[(Operator, ast::Expr)], span: Span) -> Pieces {
         let mut pieces = vec![Piece::plain(Product::number(Number::one()))];
         for (operator, factor) in factors {
-            let mut next = self.expand(factor)?;
-            if *operator == Operator::Over {
-                next = self.power(next, Exponent::ONE.negated(), factor.span)?;
-            }
+            let next = match operator {
+                Operator::Times => self.expand(factor)?,
+                Operator::Over => {
+                    let inverse = Exponent::ONE.negated();
+                    self.raised(factor, inverse, factor.span)?
+                }
+            };
             pieces = multiplied(&pieces, &next, self.highest(), span)?;
         }
         Ok(pieces)
@@ -172,7 +174,7 @@ impl Maker<'_> {
                 let is_constant = pieces.iter().all(|piece| is_constant(&piece.product));
                 match function_of {
                     Function::Sqrt if !is_constant || pieces.len() == 1 => {
-                        self.power(pieces, times(Exponent::ratio(1, 2), order, span)?, span)
+                        self.raised(argument, times(Exponent::ratio(1, 2), order, span)?, span)
                     }
                     Function::Abs if !is_constant || pieces.len() == 1 => {
                         let amount = self.amount(pieces, span)?;
@@ -194,15 +196,9 @@ impl Maker<'_> {
 
     /// A function of constants; of anything that varies it has no size by itself.
     fn constant_call(&self, expr: &ast::Expr, function: &str, arguments: &[ast::Expr]) -> Pieces {
-        let mut varies = false;
-        for argument in arguments {
-            names::visit_names(argument, &mut |name, _| {
-                varies |= matches!(
-                    self.model.meaning(name, None),
-                    Some(Meaning::Field(_) | Meaning::Coordinate(_))
-                );
-            });
-        }
+        let varies = arguments
+            .iter()
+            .any(|argument| holds_varying(argument, self.model));
         if varies {
             return Err(ModelError::NotSplit {
                 span: expr.span,
@@ -210,6 +206,70 @@ impl Maker<'_> {
             });
         }
         self.monomial(expr)
+    }
+
+    /// A power of an expression. Powers of powers are taken together, so that an expansion
+    /// is in the ratios of what is written: `1/(R + h)^2` in `h/R`.
+    fn raised(&mut self, expr: &ast::Expr, exponent: Exponent, span: Span) -> Pieces {
+        let too_large = |_| ModelError::TooLarge { span };
+        match &expr.kind {
+            ExprKind::Bracket(inside) => self.raised(inside, exponent, span),
+            ExprKind::Power {
+                base,
+                exponent: inner,
+            } if exponent.is_whole() => {
+                let inner = names::exponent(inner)?;
+                let exponent = exponent.times(inner).map_err(too_large)?;
+                self.raised(base, exponent, span)
+            }
+            ExprKind::Product(factors) if exponent.is_whole() => {
+                let mut pieces = vec![Piece::plain(Product::number(Number::one()))];
+                for (operator, factor) in factors {
+                    let own = match operator {
+                        Operator::Times => exponent,
+                        Operator::Over => exponent.negated(),
+                    };
+                    let next = self.raised(factor, own, span)?;
+                    pieces = multiplied(&pieces, &next, self.highest(), span)?;
+                }
+                Ok(pieces)
+            }
+            ExprKind::Call {
+                function,
+                order,
+                arguments,
+            } if exponent.is_whole()
+                && names::call(&function.text, self.model) == Call::Function(Function::Sqrt) =>
+            {
+                let half = times(Exponent::ratio(1, 2), *order, span)?;
+                match arguments.as_slice() {
+                    [argument] if holds_varying(argument, self.model) => {
+                        let exponent = exponent.times(half).map_err(too_large)?;
+                        self.raised(argument, exponent, span)
+                    }
+                    _ => {
+                        let pieces = self.expand(expr)?;
+                        self.power(pieces, exponent, span)
+                    }
+                }
+            }
+            ExprKind::Number(_)
+            | ExprKind::Name(_)
+            | ExprKind::Process { .. }
+            | ExprKind::Sum(_)
+            | ExprKind::Product(_)
+            | ExprKind::Negate(_)
+            | ExprKind::Power { .. }
+            | ExprKind::Call { .. }
+            | ExprKind::Derivative { .. }
+            | ExprKind::Tuple(_)
+            | ExprKind::Sized { .. }
+            | ExprKind::As { .. }
+            | ExprKind::Error => {
+                let pieces = self.expand(expr)?;
+                self.power(pieces, exponent, span)
+            }
+        }
     }
 
     /// A power: of one product exactly, a whole one of a sum multiplied out, any other
@@ -241,6 +301,18 @@ impl Maker<'_> {
         }
         Ok(result)
     }
+}
+
+/// Whether an expression names a field or a coordinate.
+fn holds_varying(expr: &ast::Expr, model: &Model) -> bool {
+    let mut varies = false;
+    names::visit_names(expr, &mut |name, _| {
+        varies |= matches!(
+            model.meaning(name, None),
+            Some(Meaning::Field(_) | Meaning::Coordinate(_))
+        );
+    });
+    varies
 }
 
 /// Whether a product holds numbers and symbols only.

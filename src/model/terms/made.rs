@@ -1,7 +1,9 @@
 //! Equations made of others: linear combinations, and relations put in.
 
 use super::expand::not_a_term;
-use super::pieces::{Piece, Pieces, Sided, collected, gathered, multiplied, named, written_tag};
+use super::pieces::{
+    Piece, Pieces, Sided, collected, gathered, leveled, multiplied, named, written_tag,
+};
 use super::written::{has_partials, process_names};
 use super::{Maker, Side, Source, Summand};
 use crate::algebra::product::{Base, Derivative, Factor, Product};
@@ -42,7 +44,15 @@ impl Maker<'_> {
             self.both_sides(|maker, pieces| maker.resolved(pieces, span))
         });
         match resolved {
-            Ok(pieces) => self.put_all(gathered(pieces), span),
+            Ok(pieces) => {
+                // What is left out does not cancel with what is not.
+                let order = self.depth.order;
+                let (within, beyond): (Vec<Sided>, Vec<Sided>) = pieces
+                    .into_iter()
+                    .partition(|(_, piece)| piece.degree <= order);
+                self.put_all(gathered(leveled(within)), span);
+                self.put_all(gathered(leveled(beyond)), span);
+            }
             Err(error) => self.errors.push(error),
         }
     }
@@ -374,25 +384,31 @@ impl Maker<'_> {
         let mut is_replaced = times > 0;
         let too_large = |_| ModelError::TooLarge { span };
         let mut rest = product.clone();
-        let mut found = vec![Piece::plain(Product::number(Number::one()))];
+        let mut inside = Vec::new();
         if times > 0 {
             let times = Exponent::whole(times).map_err(too_large)?;
-            let taken = relation.left.power(times.negated()).map_err(too_large)?;
+            let taken = spelt_as_in(product, &relation.left);
+            let taken = taken.power(times.negated()).map_err(too_large)?;
             rest = rest.times(&taken).map_err(too_large)?;
-            found = self.power(relation.right.clone(), times, span)?;
+            inside = self.power(relation.right.clone(), times, span)?;
         }
-        let number = Piece::plain(Product::number(rest.number.clone()));
-        found = multiplied(&[number], &found, self.highest(), span)?;
-        for factor in &rest.factors {
-            let next = match self.replaced_factor(factor, relation, span)? {
+        let mut found = vec![Piece::plain(Product::number(product.number.clone()))];
+        let mut is_in = times == 0;
+        for factor in &product.factors {
+            // What comes in stands where the first factor of the left side stood.
+            if !is_in && holds(&relation.left, &factor.base) {
+                is_in = true;
+                found = multiplied(&found, &inside, self.highest(), span)?;
+            }
+            let Some(left) = rest.factors.iter().find(|left| left.base == factor.base) else {
+                continue;
+            };
+            let next = match self.replaced_factor(left, relation, span)? {
                 Some(pieces) => {
                     is_replaced = true;
                     pieces
                 }
-                None => vec![Piece::plain(Product {
-                    number: Number::one(),
-                    factors: vec![factor.clone()],
-                })],
+                None => vec![Piece::plain(as_product(std::slice::from_ref(left)))],
             };
             found = multiplied(&found, &next, self.highest(), span)?;
         }
@@ -461,6 +477,34 @@ fn as_product(factors: &[Factor]) -> Product {
     Product {
         number: Number::one(),
         factors: factors.to_vec(),
+    }
+}
+
+fn are_like(a: &Base, b: &Base) -> bool {
+    Product::base(a.clone()).is_like(&Product::base(b.clone()))
+}
+
+fn holds(product: &Product, base: &Base) -> bool {
+    product
+        .factors
+        .iter()
+        .any(|factor| are_like(&factor.base, base))
+}
+
+/// The left side of a relation with each base as a product has it: `d_x(d_y(u))` may be
+/// `d_y(d_x(u))` there.
+fn spelt_as_in(product: &Product, left: &Product) -> Product {
+    let spelt = |factor: &Factor| {
+        let own = product.factors.iter();
+        let mut like = own.filter(|own| are_like(&own.base, &factor.base));
+        Factor {
+            base: like.next().unwrap_or(factor).base.clone(),
+            power: factor.power,
+        }
+    };
+    Product {
+        number: left.number.clone(),
+        factors: left.factors.iter().map(spelt).collect(),
     }
 }
 

@@ -26,7 +26,7 @@ use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Sign};
 use crate::syntax::print;
 use crate::units::Range;
-use pieces::{Piece, Sided, Tag, collected, named, written_tag};
+use pieces::{Piece, Sided, Tag, collected, merged, named, written_tag};
 use written::{has_partials, leading_minus, process_names, unnamed};
 
 /// Left or right of `=`.
@@ -366,6 +366,7 @@ impl<'a> Maker<'a> {
         let idx = self.made.summands.len();
         let is_within = |piece: &Piece| piece.degree <= self.depth.order;
         let (within, beyond): (Vec<Piece>, Vec<Piece>) = pieces.into_iter().partition(is_within);
+        let within = merged(within);
         let is_single = within.len() == 1;
         for piece in within {
             if let Some(term) = self.term(piece, &summand, idx, is_single, span) {
@@ -373,7 +374,7 @@ impl<'a> Maker<'a> {
             }
         }
         summand.is_whole = self.zeros.0.len() == n_zeros;
-        for piece in beyond {
+        for piece in merged(beyond) {
             if let Some(term) = self.term(piece, &summand, idx, false, span) {
                 self.made.neglected.push(term);
             }

@@ -155,13 +155,14 @@ pub(super) fn common_tag(pieces: &[Piece]) -> Result<Option<Tag>, ModelError> {
     })
 }
 
-/// Collects like terms of one process, each at its lowest order; what cancels goes.
+/// Collects like terms of one process and one order; what cancels goes.
 pub(super) fn collected(pieces: Vec<Piece>) -> Vec<Piece> {
-    let mut places: BTreeMap<(Option<String>, Factors), Vec<usize>> = BTreeMap::new();
+    let mut places: BTreeMap<(Option<String>, u32, Factors), Vec<usize>> = BTreeMap::new();
     let mut sum: Vec<Piece> = Vec::with_capacity(pieces.len());
     for piece in pieces {
         let name = piece.tag.as_ref().map(|tag| tag.name.clone());
-        let rivals = places.entry((name, piece.product.likeness())).or_default();
+        let key = (name, piece.degree, piece.product.likeness());
+        let rivals = places.entry(key).or_default();
         if !add(&mut sum, rivals, &piece) {
             rivals.push(sum.len());
             sum.push(piece);
@@ -173,13 +174,35 @@ pub(super) fn collected(pieces: Vec<Piece>) -> Vec<Piece> {
     sum
 }
 
+/// Collects like terms of one process whatever their orders; each has the lowest then.
+pub(super) fn merged(pieces: Vec<Piece>) -> Vec<Piece> {
+    // The side has no say here.
+    let sided = pieces.into_iter().map(|piece| (Side::Left, piece));
+    let level = leveled(sided.collect()).into_iter();
+    collected(level.map(|(_, piece)| piece).collect())
+}
+
+/// Like terms at the lowest of their orders, so that they are collected together.
+pub(super) fn leveled(pieces: Vec<Sided>) -> Vec<Sided> {
+    let mut lowest: BTreeMap<Factors, u32> = BTreeMap::new();
+    for (_, piece) in &pieces {
+        let degree = lowest.entry(piece.product.likeness()).or_insert(u32::MAX);
+        *degree = (*degree).min(piece.degree);
+    }
+    let level = |(side, piece): Sided| {
+        let degree = lowest.get(&piece.product.likeness()).copied();
+        let degree = degree.unwrap_or(piece.degree);
+        (side, Piece { degree, ..piece })
+    };
+    pieces.into_iter().map(level).collect()
+}
+
 /// Adds a piece to the first of these places whose number has a common form with its own.
 fn add(sum: &mut [Piece], places: &[usize], piece: &Piece) -> bool {
     for idx in places {
         let found = &mut sum[*idx];
         if let Some(number) = found.product.number.plus(&piece.product.number) {
             found.product.number = number;
-            found.degree = found.degree.min(piece.degree);
             return true;
         }
     }
@@ -189,13 +212,14 @@ fn add(sum: &mut [Piece], places: &[usize], piece: &Piece) -> bool {
 /// A piece with the side on which it stands.
 pub(super) type Sided = (Side, Piece);
 
-/// Collects like terms over both sides, where the first of them stands. Like terms of
-/// different processes stay apart, unless they cancel exactly.
+/// Collects like terms of one order over both sides, where the first of them stands. Like
+/// terms of different processes stay apart, unless they cancel exactly.
 pub(super) fn gathered(pieces: Vec<Sided>) -> Vec<Sided> {
-    let mut places: BTreeMap<Factors, Vec<usize>> = BTreeMap::new();
+    let mut places: BTreeMap<(u32, Factors), Vec<usize>> = BTreeMap::new();
     let mut sum: Vec<Sided> = Vec::with_capacity(pieces.len());
     for (side, piece) in pieces {
-        let rivals = places.entry(piece.product.likeness()).or_default();
+        let key = (piece.degree, piece.product.likeness());
+        let rivals = places.entry(key).or_default();
         let like = rivals.iter().copied().find(|idx| {
             let (_, found) = &sum[*idx];
             name_of(found) == name_of(&piece)
@@ -203,7 +227,6 @@ pub(super) fn gathered(pieces: Vec<Sided>) -> Vec<Sided> {
         match like.and_then(|idx| Some((idx, total(&sum[idx], side, &piece)?))) {
             Some((idx, number)) => {
                 sum[idx].1.product.number = number;
-                sum[idx].1.degree = sum[idx].1.degree.min(piece.degree);
             }
             None => {
                 rivals.push(sum.len());
