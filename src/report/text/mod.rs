@@ -13,7 +13,8 @@ use anstyle::{AnsiColor, Effects, Style};
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
-use crate::report::CAUTION;
+use crate::diagnostic::Severity;
+use crate::report::{CAUTION, words};
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
 use crate::session::Outcome;
 
@@ -24,6 +25,7 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
     if !outcome.answers.is_empty() || !outcome.claims.is_empty() {
         audit(&outcome.symbols, &pen, &mut out);
     }
+    notes(outcome, &mut out);
     for answer in &outcome.answers {
         write_answer(answer, &pen, &mut out);
     }
@@ -111,6 +113,24 @@ fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
         }
         out.push('\n');
     }
+}
+
+/// Notes that no answer has a place for: what was overridden, what vanishes.
+fn notes(outcome: &Outcome, out: &mut String) {
+    let mut messages: Vec<&str> = Vec::new();
+    for found in &outcome.diagnostics {
+        let is_new = !messages.contains(&found.message.as_str());
+        if found.severity == Severity::Note && !words::is_in_report(found.code) && is_new {
+            messages.push(&found.message);
+        }
+    }
+    if out.is_empty() || messages.is_empty() {
+        return;
+    }
+    for message in messages {
+        out.push_str(&wrapped("note  ", message));
+    }
+    out.push('\n');
 }
 
 fn audit_words(row: &AuditRow) -> String {
