@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::analysis::{self, Answer, Body, Case, LeftOut, groups, nondimensional, rank, reduce};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
@@ -362,12 +362,35 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Bounds { .. }
+            RequestKind::Bounds { .. }
             | RequestKind::Find { .. }
             | RequestKind::Layers
-            | RequestKind::Groups
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)

@@ -2,6 +2,7 @@
 //! `ruler` of decades), `json` for other programs. `words` holds the sentences that all
 //! forms share, `layout` numbers, columns and wrapping.
 
+pub mod dimensionless;
 pub mod json;
 pub mod layout;
 pub mod ruler;
