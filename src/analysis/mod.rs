@@ -7,6 +7,7 @@ pub mod names;
 pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 

@@ -5,7 +5,9 @@
 pub mod dimensionless;
 pub mod json;
 pub mod layout;
+pub mod mathematics;
 pub mod ruler;
+pub mod shelf;
 pub mod text;
 pub mod words;
 
