@@ -208,7 +208,8 @@ fn size(setting: &Setting, monomial: &Monomial) -> Option<Range> {
     setting
         .monomial_range(monomial)
         .ok()
-        .filter(|range| range.nominal.is_finite())
+        .filter(|_| setting.is_available(monomial))
+        .filter(|range| range.low.is_finite() && range.high.is_finite())
 }
 
 fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {

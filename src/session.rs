@@ -6,7 +6,7 @@ use std::path::{Path, PathBuf};
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::analysis::{self, Answer, Body, Case, LeftOut, groups, nondimensional, rank, reduce};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
@@ -17,6 +17,7 @@ use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+use crate::syntax::{parser, print};
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -56,6 +57,13 @@ impl Outcome {
         } else {
             Status::Ok
         }
+    }
+
+    /// The script in its canonical form, comments kept; `None` if none was read.
+    pub fn canonical(&self) -> Option<String> {
+        let (file, source) = self.sources.iter().next()?;
+        let (script, _) = parser::parse(&source.text, file);
+        Some(print::print(&script, &source.text))
     }
 
     /// The diagnostics drawn against their texts.
@@ -119,14 +127,14 @@ impl<'f> Session<'f> {
 
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, _) = self.checked(name, text, path);
+        let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
         self.finish(&mut outcome);
         outcome
     }
 
     /// Reads, checks and answers a script.
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, checked) = self.checked(name, text, path);
+        let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
             Answering {
                 model: &checked.model,
@@ -150,7 +158,13 @@ impl<'f> Session<'f> {
         diagnostic::sort(&mut outcome.diagnostics);
     }
 
-    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+    fn checked(
+        &self,
+        name: &str,
+        text: &str,
+        path: Option<&Path>,
+        purpose: Purpose,
+    ) -> (Outcome, Option<Checked>) {
         let mut outcome = Outcome {
             script: name.to_owned(),
             ..Outcome::default()
@@ -168,8 +182,12 @@ impl<'f> Session<'f> {
         let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
-        let (model, errors) = declarations::gather(scripts);
-        let (checked, errors) = check_model(model, errors, main_span, has_form);
+        let (model, mut errors) = declarations::gather(scripts);
+        let is_idle = model.equations.is_empty() && model.requests.is_empty();
+        if is_idle && has_form && purpose == Purpose::Run {
+            errors.push(ModelError::NothingToRank { span: main_span });
+        }
+        let (checked, errors) = check_model(model, errors, has_form);
         outcome.diagnostics.extend(
             errors
                 .iter()
@@ -185,6 +203,14 @@ impl<'f> Session<'f> {
     }
 }
 
+/// What a script is read for; a shelf of declarations has nothing to answer, but can be
+/// checked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Purpose {
+    Check,
+    Run,
+}
+
 struct Checked {
     model: Model,
     cases: Vec<Case>,
@@ -198,14 +224,10 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
-    main_span: Span,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
-    if model.equations.is_empty() && model.requests.is_empty() && has_form {
-        errors.push(ModelError::NothingToRank { span: main_span });
-    }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
         errors.extend(analysis::value_errors(&model));
         return (None, errors);
@@ -372,12 +394,35 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Bounds { .. }
+            RequestKind::Bounds { .. }
             | RequestKind::Find { .. }
             | RequestKind::Layers
-            | RequestKind::Groups
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)

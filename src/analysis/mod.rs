@@ -2,9 +2,12 @@
 //! and names, never prose.
 
 pub mod claims;
+pub mod groups;
 pub mod names;
+pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 
@@ -157,6 +160,10 @@ pub struct Answer {
 pub enum Body {
     /// `show`.
     Show(show::Shown),
+    /// `groups`.
+    Groups(groups::Groups),
+    /// `nondimensionalize`.
+    Nondimensionalize(Vec<nondimensional::DimensionlessEquation>),
     /// `rank`.
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.

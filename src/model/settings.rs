@@ -94,6 +94,12 @@ impl Setting {
         }
     }
 
+    /// Whether no symbol of a monomial is 0, so that it and its powers amount to something.
+    pub fn is_available(&self, monomial: &Monomial) -> bool {
+        let mut symbols = monomial.powers().iter();
+        symbols.all(|(symbol, _)| !self.is_zero(symbol))
+    }
+
     /// The value of a monomial over the box, with its sign: exact at its corners, since
     /// it grows or falls with each symbol alone.
     ///

@@ -2,6 +2,8 @@
 //! by the analysis and by `words`.
 
 mod claims;
+mod groups;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -107,6 +109,10 @@ fn answer(answer: &Answer) -> Value {
     });
     let own = match &answer.body {
         Body::Show(shown) => show::show(shown),
+        Body::Groups(found) => groups::groups(found),
+        Body::Nondimensionalize(equations) => {
+            json!({ "equations": list(equations, nondimensional::equation) })
+        }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
     };

@@ -2,6 +2,8 @@
 //! all answers share and the audit of what was given; each request has a file of its own.
 
 mod claims;
+mod groups;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -167,6 +169,10 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
     let _ = writeln!(out, "── {} {rule}\n", pen.head(&title));
     match &answer.body {
         Body::Show(_) => {}
+        Body::Groups(found) => groups::groups(found, pen, out),
+        Body::Nondimensionalize(equations) => equations
+            .iter()
+            .for_each(|equation| nondimensional::equation(equation, pen, out)),
         Body::Rank(equations) => equations
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
