@@ -1,7 +1,11 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod bounds;
 pub mod claims;
+pub mod compare;
+pub mod matching;
+pub mod movable;
 pub mod names;
 pub mod rank;
 pub mod reduce;
@@ -156,4 +160,8 @@ pub enum Body {
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

@@ -94,6 +94,11 @@ impl Space {
         Space { symbols, bounds }
     }
 
+    /// The symbols with their ranges, in natural logarithms of amounts.
+    pub fn ranges(&self) -> impl Iterator<Item = (&Symbol, (f64, f64))> {
+        self.symbols.iter().zip(self.bounds.iter().copied())
+    }
+
     /// Whether it is a single point.
     pub fn is_point(&self) -> bool {
         self.symbols.is_empty()

@@ -1,7 +1,10 @@
 //! The report for a terminal: at most 80 columns, readable without colour. Here stand what
 //! all answers share and the audit of what was given; each request has a file of its own.
 
+mod bounds;
 mod claims;
+mod columns;
+mod compare;
 mod rank;
 mod reduce;
 mod show;
@@ -151,6 +154,8 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Bounds(found) => bounds::bounds(found, pen, out),
+        Body::Compare(comparison) => compare::compare(comparison, pen, out),
     }
     for left in &answer.left_out {
         let text = format!("{}: open {}", left.equation, left.open.join(", "));
