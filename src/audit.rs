@@ -4,7 +4,7 @@
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::{self, Case};
 use crate::model::settings::{Setting, Variable};
-use crate::model::{FieldInfo, Model, names, requests};
+use crate::model::{FieldInfo, Meaning, Model, names, requests};
 use crate::source::Span;
 use crate::syntax::{ast, print};
 use crate::units::{self, Dimension, Range};
@@ -114,6 +114,24 @@ fn used(model: &Model, cases: &[Case]) -> Vec<bool> {
         requests::visit_expressions(request, &mut |expr| {
             waiting.extend(names::symbols_in(expr, model, *own));
         });
+        match &request.kind {
+            ast::RequestKind::Bounds { symbols } => {
+                let meanings = symbols.iter().map(|name| model.meaning(&name.text, *own));
+                waiting.extend(meanings.filter_map(|meaning| match meaning {
+                    Some(Meaning::Symbol(id)) => Some(id),
+                    Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
+                        None
+                    }
+                }));
+            }
+            // It shows every group.
+            ast::RequestKind::Compare { .. } => {
+                let groups = model.groups.iter();
+                waiting
+                    .extend(groups.flat_map(|group| names::symbols_in(&group.value, model, None)));
+            }
+            _ => {}
+        }
     }
     while let Some(id) = waiting.pop() {
         if std::mem::replace(&mut used[id.idx()], true) {

@@ -378,9 +378,11 @@ impl Answering<'_> {
                     match bounds::bounds(self.model, case, &wanted, symbols) {
                         Ok(found) => {
                             self.warn_of_lone_terms(case, &found);
-                            self.outcome
-                                .answers
-                                .push(answer("bounds", left_out, Body::Bounds(found)));
+                            self.outcome.answers.push(answer(
+                                "bounds",
+                                left_out,
+                                Body::Bounds(found),
+                            ));
                         }
                         Err(open) => self.fault(Fault::Open(open), case, request.span),
                     }

@@ -5,3 +5,4 @@ mod language;
 mod polyhedra;
 mod published;
 mod reference;
+mod standing;

@@ -116,7 +116,10 @@ pub fn compare<'c>(
     };
     let comparison = Comparison {
         phenomena: cases.iter().map(names).collect(),
-        titles: cases.iter().map(|case| case.setting.title.clone()).collect(),
+        titles: cases
+            .iter()
+            .map(|case| case.setting.title.clone())
+            .collect(),
         tolerance,
         scales: scales(model, cases),
         groups: groups(cases, tolerance),
@@ -225,7 +228,8 @@ pub fn agree(values: &[f64], tolerance: f64) -> bool {
     let amounts = values.iter().map(|value| value.abs());
     let smallest = amounts.clone().fold(f64::INFINITY, f64::min);
     let largest = amounts.fold(0.0, f64::max);
-    let is_one_sign = values.iter().all(|value| *value >= 0.0) || values.iter().all(|value| *value <= 0.0);
+    let is_one_sign =
+        values.iter().all(|value| *value >= 0.0) || values.iter().all(|value| *value <= 0.0);
     is_one_sign && at_most(largest, (1.0 + tolerance) * smallest)
 }
 
@@ -236,7 +240,10 @@ fn equations(model: &Model, cases: &[&Case]) -> (Vec<ComparedEquation>, Vec<Left
     let mut left_out = Vec::new();
     for (idx, equation) in model.equations.iter().enumerate() {
         let mut open: Vec<String> = Vec::new();
-        for name in cases.iter().flat_map(|case| case.open_in(&case.equations[idx])) {
+        for name in cases
+            .iter()
+            .flat_map(|case| case.open_in(&case.equations[idx]))
+        {
             if !open.contains(&name) {
                 open.push(name);
             }
@@ -244,7 +251,10 @@ fn equations(model: &Model, cases: &[&Case]) -> (Vec<ComparedEquation>, Vec<Left
         if !open.is_empty() {
             let equation = equation.name.text.clone();
             left_out.push(LeftOut { equation, open });
-        } else if cases.iter().any(|case| !case.equations[idx].terms.is_empty()) {
+        } else if cases
+            .iter()
+            .any(|case| !case.equations[idx].terms.is_empty())
+        {
             known.push(idx);
         }
     }

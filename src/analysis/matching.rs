@@ -68,7 +68,10 @@ pub fn matching<'c>(
     let Some(first) = cases.first() else {
         return Ok(found);
     };
-    if rows.iter().all(|row| compare::agree(&row.values, tolerance)) {
+    if rows
+        .iter()
+        .all(|row| compare::agree(&row.values, tolerance))
+    {
         return Ok(found);
     }
     let symbols = symbols(model, first, &rows);
@@ -233,7 +236,9 @@ impl System {
             .iter()
             .enumerate()
             .map(|(place, row)| {
-                let own = columns.iter().map(|column| self.exponents[*row][*column].clone());
+                let own = columns
+                    .iter()
+                    .map(|column| self.exponents[*row][*column].clone());
                 let unit = (0..rows.len()).map(|other| match other == place {
                     true => BigRational::one(),
                     false => BigRational::zero(),
@@ -243,7 +248,10 @@ impl System {
             .collect();
         let (made, pivots) = row_echelon(augmented, n);
         let right = |row: &[BigRational]| -> f64 {
-            let parts = row[n..].iter().zip(rows).filter(|(part, _)| !part.is_zero());
+            let parts = row[n..]
+                .iter()
+                .zip(rows)
+                .filter(|(part, _)| !part.is_zero());
             parts
                 .map(|(part, row)| rational_to_f64(part) * self.lacks[*row])
                 .sum()
@@ -253,9 +261,8 @@ impl System {
             .all(|row| right(row).abs() <= SAME);
         // A group without an answer poisons its row, pivot or not.
         let is_finite = rows.iter().all(|row| self.lacks[*row].is_finite());
-        (is_possible && is_finite).then(|| {
-            (pivots.len() == n).then(|| made[..n].iter().map(|row| right(row)).collect())
-        })
+        (is_possible && is_finite)
+            .then(|| (pivots.len() == n).then(|| made[..n].iter().map(|row| right(row)).collect()))
     }
 }
 

@@ -790,7 +790,10 @@ fn moves_others(name: &str, span: Span, holders: &[String]) -> Diagnostic {
     Diagnostic::error(
         "not-a-product",
         span,
-        format!("`{name}` cannot be moved alone: {} would change along no power law", quoted(holders)),
+        format!(
+            "`{name}` cannot be moved alone: {} would change along no power law",
+            quoted(holders)
+        ),
     )
     .with_help(help)
 }

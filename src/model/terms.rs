@@ -862,7 +862,9 @@ impl<'a> Maker<'a> {
         };
         if let Some(argument) = root {
             let parts = self.part_sizes(argument)?;
-            let roots = parts.iter().map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
             return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());

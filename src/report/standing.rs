@@ -41,14 +41,50 @@ pub fn factor_with_sign(way: f64) -> String {
     format!("{sign} {}", factor(way))
 }
 
-/// What happens at an end: `advection matters in x_momentum`.
-pub fn what_happens(place: &Place, why: Why) -> String {
-    let Place { equation, term } = place;
-    match why {
-        Why::Rises => format!("{term} matters in {equation}"),
-        Why::Falls => format!("{term} falls away in {equation}"),
-        Why::ExceedsParts => format!("{term} in {equation} would exceed its parts"),
+/// What happens at an end: `tendency, advection matter in x_momentum`.
+pub fn at_end(end: &End) -> String {
+    let places: Vec<&Place> = std::iter::once(&end.place).chain(&end.others).collect();
+    what_happens(&places, end.why)
+}
+
+fn what_happens(places: &[&Place], why: Why) -> String {
+    let alike = alike(places);
+    let texts: Vec<String> = alike
+        .iter()
+        .map(|(terms, equations)| {
+            let does = match (why, terms.len()) {
+                (Why::Rises, 1) => "matters in",
+                (Why::Rises, _) => "matter in",
+                (Why::Falls, 1) => "falls away in",
+                (Why::Falls, _) => "fall away in",
+                (Why::ExceedsParts, 1) => "exceeds its parts in",
+                (Why::ExceedsParts, _) => "exceed their parts in",
+            };
+            format!("{} {does} {}", terms.join(", "), equations.join(", "))
+        })
+        .collect();
+    texts.join("; ")
+}
+
+/// Terms with the equations in which it is just these.
+fn alike<'a>(places: &[&'a Place]) -> Vec<(Vec<&'a str>, Vec<&'a str>)> {
+    let mut equations: Vec<(&str, Vec<&str>)> = Vec::new();
+    for place in places {
+        let mut known = equations.iter_mut();
+        match known.find(|(equation, _)| *equation == place.equation) {
+            Some((_, terms)) if !terms.contains(&place.term.as_str()) => terms.push(&place.term),
+            Some(_) => {}
+            None => equations.push((&place.equation, vec![&place.term])),
+        }
     }
+    let mut alike: Vec<(Vec<&str>, Vec<&str>)> = Vec::new();
+    for (equation, terms) in equations {
+        match alike.iter_mut().find(|(known, _)| *known == terms) {
+            Some((_, names)) => names.push(equation),
+            None => alike.push((terms, vec![equation])),
+        }
+    }
+    alike
 }
 
 /// `U may grow by 2.3 (to 23 m/s), then advection matters in x_momentum`.
@@ -58,7 +94,7 @@ pub fn nearest(bounds: &Bounds) -> Option<String> {
     let end = &way_out.end;
     let name = &bound.name;
     let direction = if end.way < 0.0 { "shrink" } else { "grow" };
-    let what = what_happens(&end.place, end.why);
+    let what = at_end(end);
     if end.way == 0.0 {
         return Some(format!("{name} stands at an end: beyond it {what}"));
     }
@@ -73,29 +109,35 @@ pub fn nearest(bounds: &Bounds) -> Option<String> {
 /// happens.
 pub fn end(bound: &Bound, end: Option<&End>) -> [String; 3] {
     match end {
-        None => ["any".to_owned(), String::new(), "nothing ends it".to_owned()],
+        None => [
+            "any".to_owned(),
+            String::new(),
+            "nothing ends it".to_owned(),
+        ],
         Some(end) => [
             value(bound, end.value),
             factor_with_sign(end.way),
-            what_happens(&end.place, end.why),
+            at_end(end),
         ],
     }
 }
 
-/// Conditions that read alike, told once: the inequality with its present value, and what
-/// rests on it.
+/// Conditions that read alike, told once and those nearest to their limit first: the
+/// inequality with its present value, and what happens where it fails, or, of a term that
+/// may go, where it holds.
 pub fn conditions(conditions: &[Condition]) -> Vec<(String, String)> {
+    let mut order: Vec<&Condition> = conditions.iter().collect();
+    let room = |condition: &Condition| {
+        let inequality = &condition.inequality;
+        (inequality.value.nominal / inequality.limit).ln().abs()
+    };
+    order.sort_by(|a, b| room(a).total_cmp(&room(b)));
     let mut found: Vec<(String, Role, Vec<&Place>)> = Vec::new();
-    for condition in conditions {
+    for condition in order {
         let text = condition_with_value(condition);
-        match found
-            .iter_mut()
-            .find(|(known, role, _)| *known == text && *role == condition.role)
-        {
-            Some((_, _, places)) if !places.contains(&&condition.place) => {
-                places.push(&condition.place)
-            }
-            Some(_) => {}
+        let mut known = found.iter_mut();
+        match known.find(|(known, role, _)| *known == text && *role == condition.role) {
+            Some((_, _, places)) => places.push(&condition.place),
             None => found.push((text, condition.role, vec![&condition.place])),
         }
     }
@@ -116,27 +158,21 @@ pub fn condition_with_value(condition: &Condition) -> String {
 }
 
 fn rests(role: Role, places: &[&Place]) -> String {
-    let mut equations: Vec<(&str, Vec<&str>)> = Vec::new();
-    for place in places {
-        match equations
-            .iter_mut()
-            .find(|(known, _)| *known == place.equation)
-        {
-            Some((_, terms)) => terms.push(&place.term),
-            None => equations.push((&place.equation, vec![&place.term])),
+    let why = match role {
+        Role::StaysOut => Why::Rises,
+        Role::StaysIn => Why::Falls,
+        Role::WithinParts => Why::ExceedsParts,
+        Role::MayGo => {
+            let texts: Vec<String> = alike(places)
+                .iter()
+                .map(|(terms, equations)| {
+                    format!("{} of {}", terms.join(", "), equations.join(", "))
+                })
+                .collect();
+            return format!("where it holds, out may go {}", texts.join("; "));
         }
-    }
-    let listed: Vec<String> = equations
-        .iter()
-        .map(|(equation, terms)| format!("{equation}: {}", terms.join(", ")))
-        .collect();
-    let does = match role {
-        Role::StaysOut => "out of",
-        Role::StaysIn => "kept in",
-        Role::MayGo => "where it holds, may go from",
-        Role::WithinParts => "within its parts in",
     };
-    format!("{does} {}", listed.join("; "))
+    format!("else {}", what_happens(places, why))
 }
 
 /// Whether the system stands on the whole box of ranges, or what fails first.
@@ -156,7 +192,7 @@ pub fn box_words(bounds: &Bounds) -> String {
     format!(
         "it does not stand on the whole box of ranges: first fails {}, and {}",
         condition_with_value(condition),
-        what_happens(&condition.place, why)
+        what_happens(&[&condition.place], why)
     )
 }
 

@@ -190,7 +190,9 @@ fn failing(
 /// threat comes true somewhere; `None` if it does nowhere in the box.
 fn comes_true(case: &Case, threat: &Threat<'_>) -> Option<f64> {
     let lowers = threat.lowers.iter().map(|lower| lower.monomial);
-    let monomials: Vec<&Monomial> = std::iter::once(threat.upper.monomial).chain(lowers).collect();
+    let monomials: Vec<&Monomial> = std::iter::once(threat.upper.monomial)
+        .chain(lowers)
+        .collect();
     let space = Space::of(&case.setting, monomials.iter().copied());
     if space.is_point() {
         return None;

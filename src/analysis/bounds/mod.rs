@@ -12,8 +12,8 @@ use crate::algebra::monomial::{Symbol, SymbolId};
 use crate::analysis::Case;
 use crate::analysis::bounds::conditions::Condition;
 use crate::analysis::bounds::standing::{Reduced, SAME, Threat, Why};
-use crate::analysis::names::Namer;
 use crate::analysis::movable;
+use crate::analysis::names::Namer;
 use crate::audit;
 use crate::model::errors::ModelError;
 use crate::model::{Model, requests};
@@ -74,10 +74,12 @@ pub struct End {
     pub value: f64,
     /// The logarithm of its factor to the nominal value.
     pub way: f64,
-    /// What ends it.
+    /// What ends it; of several things the first.
     pub place: Place,
     /// How.
     pub why: Why,
+    /// What else does the same there.
+    pub others: Vec<Place>,
 }
 
 /// A term of an equation, by its process or its text.
@@ -159,11 +161,7 @@ pub fn bounds(
 }
 
 /// The equations reduced, and those that are left with one term.
-fn systems<'c>(
-    case: &'c Case,
-    wanted: &[usize],
-    tolerance: f64,
-) -> (Vec<Reduced<'c>>, Vec<Place>) {
+fn systems<'c>(case: &'c Case, wanted: &[usize], tolerance: f64) -> (Vec<Reduced<'c>>, Vec<Place>) {
     let all = wanted
         .iter()
         .filter_map(|idx| Reduced::of(case, &case.equations[*idx], tolerance));
@@ -212,7 +210,11 @@ fn symbols(
             .filter_map(|id| case.setting.symbol_value(&Symbol::Declared(*id)).err())
             .flatten()
             .collect();
-        return if open.is_empty() { Ok(found) } else { Err(open) };
+        return if open.is_empty() {
+            Ok(found)
+        } else {
+            Err(open)
+        };
     }
     let mut found: Vec<SymbolId> = Vec::new();
     let terms = systems.iter().flat_map(|reduced| &reduced.equation.terms);
@@ -262,11 +264,11 @@ fn bound(
     }
 }
 
-/// The nearest threats on both sides of the nominal value.
+/// The nearest threats on both sides of the nominal value, with those just as near.
 #[derive(Default)]
 struct Exits<'t, 'c> {
-    down: Option<(f64, &'t Threat<'c>)>,
-    up: Option<(f64, &'t Threat<'c>)>,
+    down: Vec<(f64, &'t Threat<'c>)>,
+    up: Vec<(f64, &'t Threat<'c>)>,
 }
 
 impl<'t, 'c> Exits<'t, 'c> {
@@ -289,16 +291,10 @@ impl<'t, 'c> Exits<'t, 'c> {
     }
 
     fn interval(&self, id: SymbolId, nominal: f64, systems: &[Reduced<'_>]) -> Interval {
-        let end = |exit: &(f64, &Threat<'_>)| {
-            let (way, threat) = *exit;
-            End {
-                value: nominal * way.exp(),
-                way,
-                place: place(&systems[threat.equation], threat.term_at(id, way)),
-                why: threat.why,
-            }
-        };
-        let (down, up) = (self.down.as_ref().map(end), self.up.as_ref().map(end));
+        let (down, up) = (
+            end(id, nominal, systems, &self.down),
+            end(id, nominal, systems, &self.up),
+        );
         // The amount of a negative constant grows downwards.
         if nominal < 0.0 {
             Interval {
@@ -314,18 +310,48 @@ impl<'t, 'c> Exits<'t, 'c> {
     }
 }
 
-/// Takes a nearer threat; of equal ones the first stays.
-fn nearer<'t, 'c>(best: &mut Option<(f64, &'t Threat<'c>)>, way: f64, threat: &'t Threat<'c>) {
-    if best.is_none_or(|(found, _)| way.abs() < found.abs() - SAME) {
-        *best = Some((way, threat));
+/// Takes a nearer threat, or one that is as near behind those.
+fn nearer<'t, 'c>(best: &mut Vec<(f64, &'t Threat<'c>)>, way: f64, threat: &'t Threat<'c>) {
+    match best.first() {
+        Some((found, _)) if way.abs() > found.abs() + SAME => {}
+        Some((found, _)) if way.abs() >= found.abs() - SAME => best.push((way, threat)),
+        Some(_) | None => *best = vec![(way, threat)],
     }
+}
+
+fn end(
+    id: SymbolId,
+    nominal: f64,
+    systems: &[Reduced<'_>],
+    exits: &[(f64, &Threat<'_>)],
+) -> Option<End> {
+    let (way, first) = exits.first()?;
+    let at = |threat: &Threat<'_>| place(&systems[threat.equation], threat.term_at(id, *way));
+    let own = at(first);
+    let mut others: Vec<Place> = Vec::new();
+    for (_, threat) in &exits[1..] {
+        let other = at(threat);
+        if threat.why == first.why && other != own && !others.contains(&other) {
+            others.push(other);
+        }
+    }
+    Some(End {
+        value: nominal * way.exp(),
+        way: *way,
+        place: own,
+        why: first.why,
+        others,
+    })
 }
 
 /// The end with the smallest factor; of equal ones the first listed.
 fn nearest(scales: &[Bound]) -> Option<WayOut> {
     let mut best: Option<WayOut> = None;
     for (scale, bound) in scales.iter().enumerate() {
-        for end in [&bound.stands.low, &bound.stands.high].into_iter().flatten() {
+        for end in [&bound.stands.low, &bound.stands.high]
+            .into_iter()
+            .flatten()
+        {
             let is_nearer = best
                 .as_ref()
                 .is_none_or(|found| end.way.abs() < found.end.way.abs() - SAME);

@@ -210,11 +210,7 @@ fn slope(upper: &Monomial, lower: &Monomial, id: SymbolId) -> f64 {
 }
 
 /// What ends a reduced system: first in order of the equations.
-pub fn endings<'c>(
-    case: &Case,
-    systems: &'c [Reduced<'c>],
-    tolerance: f64,
-) -> Vec<Threat<'c>> {
+pub fn endings<'c>(case: &Case, systems: &'c [Reduced<'c>], tolerance: f64) -> Vec<Threat<'c>> {
     let mut threats = Vec::new();
     for (equation, reduced) in systems.iter().enumerate() {
         rises(equation, reduced, tolerance, &mut threats);
@@ -231,7 +227,11 @@ fn rises<'c>(
     tolerance: f64,
     threats: &mut Vec<Threat<'c>>,
 ) {
-    let kept: Vec<Form<'c>> = reduced.stays().iter().map(|idx| reduced.form(*idx)).collect();
+    let kept: Vec<Form<'c>> = reduced
+        .stays()
+        .iter()
+        .map(|idx| reduced.form(*idx))
+        .collect();
     threats.extend(reduced.goes().iter().map(|idx| Threat {
         equation,
         why: Why::Rises,

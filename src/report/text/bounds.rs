@@ -15,7 +15,7 @@ pub(super) fn bounds(bounds: &Bounds, pen: &Pen, out: &mut String) {
         out.push_str("  no scale alone ends it\n\n");
     }
     table(bounds, out);
-    labelled("while", &standing::conditions(&bounds.conditions), out);
+    conditions(bounds, out);
     for text in standing::left_out(&bounds.dropped) {
         out.push_str(&wrapped("  left out ", &text));
     }
@@ -27,11 +27,17 @@ pub(super) fn bounds(bounds: &Bounds, pen: &Pen, out: &mut String) {
 }
 
 /// Each condition with what rests on it.
-fn labelled(label: &str, conditions: &[(String, String)], out: &mut String) {
-    for (condition, rests) in conditions {
-        let label = padded(&format!("  {label}"), 11);
-        out.push_str(&wrapped(&label, &format!("{condition}: {rests}")));
+fn conditions(bounds: &Bounds, out: &mut String) {
+    let found = standing::conditions(&bounds.conditions);
+    if found.is_empty() {
+        return;
     }
+    out.push_str("  stands while\n");
+    for (condition, rests) in found {
+        out.push_str(&wrapped("    ", &condition));
+        out.push_str(&wrapped("        ", &rests));
+    }
+    out.push('\n');
 }
 
 /// Every scale with its ends, the near ones first told.

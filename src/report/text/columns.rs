@@ -35,7 +35,14 @@ pub(super) fn columns(heads: &[String], rows: &[Row]) -> String {
         let end = (start + in_block).min(heads.len());
         // What is said of a whole row is said where its last cells stand.
         let has_notes = end == heads.len();
-        block(&heads[*start..end], rows, *start, [labels, room], has_notes, &mut out);
+        block(
+            &heads[*start..end],
+            rows,
+            *start,
+            [labels, room],
+            has_notes,
+            &mut out,
+        );
     }
     out
 }
@@ -85,7 +92,11 @@ fn line(
         .collect();
     let n_lines = cells.iter().map(Vec::len).max().unwrap_or(1);
     for idx in 0..n_lines {
-        let label = if idx == 0 { cut(label, labels) } else { String::new() };
+        let label = if idx == 0 {
+            cut(label, labels)
+        } else {
+            String::new()
+        };
         let mut text = format!("  {}", padded(&label, labels));
         for (cell, width) in cells.iter().zip(widths) {
             let part = cell.get(idx).map_or("", String::as_str);
@@ -144,6 +155,9 @@ mod tests {
             note: String::new(),
         }];
         let heads = ["bay".to_owned(), "tank".to_owned()];
-        assert_eq!(columns(&heads, &rows), "     bay     tank\n  U  10 m/s  2 cm/s\n");
+        assert_eq!(
+            columns(&heads, &rows),
+            "     bay     tank\n  U  10 m/s  2 cm/s\n"
+        );
     }
 }

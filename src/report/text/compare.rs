@@ -5,10 +5,10 @@ use std::fmt::Write as _;
 use crate::analysis::compare::{
     ComparedEquation, ComparedGroup, ComparedProcess, ComparedScale, Comparison,
 };
-use crate::report::layout::{cut, number, percent, quantity, unit, wrapped};
-use crate::report::standing;
+use crate::report::layout::{WIDTH, cut, number, percent, quantity, unit, wrapped};
 use crate::report::text::Pen;
 use crate::report::text::columns::{Row, columns};
+use crate::report::{standing, words};
 use crate::units::{self, Range};
 
 /// Writes phenomena side by side.
@@ -32,7 +32,7 @@ pub(super) fn compare(comparison: &Comparison, pen: &Pen, out: &mut String) {
     section("scales and constants", &rows);
     let rows: Vec<Row> = comparison.groups.iter().map(group).collect();
     let title = format!(
-        "groups (they match within {})",
+        "groups (a match is within {})",
         percent(comparison.tolerance)
     );
     section(&title, &rows);
@@ -89,14 +89,13 @@ fn head(equation: &ComparedEquation) -> String {
     if let Some(title) = &equation.title {
         let _ = write!(text, ", {title}");
     }
-    let _ = write!(text, " (share, verdict, size");
     match unit(&equation.unit) {
         unit if unit.is_empty() => {}
         unit => {
-            let _ = write!(text, " in {unit}");
+            let _ = write!(text, ", {unit}");
         }
     }
-    cut(&(text + ")"), crate::report::layout::WIDTH)
+    cut(&text, WIDTH)
 }
 
 fn processes(equation: &ComparedEquation) -> Vec<Row> {
@@ -116,8 +115,8 @@ fn process(process: &ComparedProcess) -> Row {
             return "not there".to_owned();
         }
         format!(
-            "{} {}, {}",
-            share(&process.shares[idx]),
+            "{} {}, size {}",
+            words::shares(&process.shares[idx]),
             process.verdicts[idx].word(),
             number(process.sizes[idx].nominal)
         )
@@ -129,25 +128,16 @@ fn process(process: &ComparedProcess) -> Row {
     }
 }
 
-fn share(share: &Range) -> String {
-    if share.is_exact() {
-        return percent(share.nominal);
-    }
-    let bare = |share: f64| percent(share).trim_end_matches(" %").to_owned();
-    format!(
-        "{} .. {} .. {}",
-        bare(share.low),
-        bare(share.nominal),
-        percent(share.high)
-    )
-}
-
 /// The reduced equation, once where all have the same.
 fn reduced(comparison: &Comparison, equation: &ComparedEquation, out: &mut String) {
     let Some(first) = equation.reduced.first() else {
         return;
     };
-    let _ = writeln!(out, "{}", cut(&format!("{}, reduced", equation.name), 80));
+    let _ = writeln!(
+        out,
+        "{}",
+        cut(&format!("{}, reduced", equation.name), WIDTH)
+    );
     if equation.reduced.iter().all(|text| text == first) {
         out.push_str(&wrapped("  for all: ", first));
     } else {
