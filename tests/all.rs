@@ -6,3 +6,4 @@ mod language;
 mod polyhedra;
 mod published;
 mod reference;
+mod standing;

@@ -1,8 +1,12 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod bounds;
 pub mod claims;
+pub mod compare;
 pub mod groups;
+pub mod matching;
+pub mod movable;
 pub mod names;
 pub mod nondimensional;
 pub mod rank;
@@ -168,4 +172,8 @@ pub enum Body {
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

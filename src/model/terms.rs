@@ -804,12 +804,14 @@ impl<'a> Maker<'a> {
             .quantities
             .size(found.abs())
             .map_err(|_| ModelError::TooLarge { span })?;
-        self.compare_with_parts(&found, inside, size.span)?;
+        let parts = self.part_sizes(inside).unwrap_or_default();
+        self.compare_with_parts(&found, &parts, size.span)?;
         let fields = self.fields_in(inside);
         let variations = self.shortest_variations(&fields, &found);
         let sized = Sized {
             text: print::expression(&unnamed(whole)),
             size: found,
+            parts,
             variations,
             fields,
             place: whole.span.start,
@@ -821,11 +823,12 @@ impl<'a> Maker<'a> {
     fn compare_with_parts(
         &mut self,
         size: &Size,
-        inside: &ast::Expr,
+        parts: &[Monomial],
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let largest = self.largest_part(inside);
+        let sizes = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = sizes.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -847,29 +850,34 @@ impl<'a> Maker<'a> {
         Ok(())
     }
 
-    /// The nominal size of the largest part of an expression, where it can be told.
-    fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
+    /// The sizes of the parts of an expression, where they can be told.
+    fn part_sizes(&mut self, inside: &ast::Expr) -> Option<Vec<Monomial>> {
         let root = match &inside.kind {
             ExprKind::Call {
                 function,
                 order: None,
                 arguments,
             } if function.text == "sqrt" => arguments.first(),
-            ExprKind::Bracket(inside) => return self.largest_part(inside),
+            ExprKind::Bracket(inside) => return self.part_sizes(inside),
             _ => None,
         };
         if let Some(argument) = root {
-            return self.largest_part(argument).map(f64::sqrt);
+            let parts = self.part_sizes(argument)?;
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        pieces?
+        let sizes = pieces?
             .iter()
             .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
-            .map(|size| self.setting.nominal(&size.resolved))
-            .reduce(f64::max)
+            .map(|size| size.resolved.abs())
+            .collect();
+        Some(sizes)
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {

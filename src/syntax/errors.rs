@@ -240,8 +240,16 @@ impl SyntaxError {
                 mend,
                 ..
             } => {
-                let kind = if is_reserved(found) { "the reserved word " } else { "" };
-                let message = format!("expected {}, found {kind}{}", list(*expected), quoted(found));
+                let kind = if is_reserved(found) {
+                    "the reserved word "
+                } else {
+                    ""
+                };
+                let message = format!(
+                    "expected {}, found {kind}{}",
+                    list(*expected),
+                    quoted(found)
+                );
                 mended(Diagnostic::error("unexpected-word", at, message), mend)
             }
             SyntaxError::Unfinished {

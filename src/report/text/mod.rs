@@ -1,7 +1,10 @@
 //! The report for a terminal: at most 80 columns, readable without colour. Here stand what
 //! all answers share and the audit of what was given; each request has a file of its own.
 
+mod bounds;
 mod claims;
+mod columns;
+mod compare;
 mod groups;
 mod nondimensional;
 mod rank;
@@ -16,8 +19,8 @@ use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
 use crate::diagnostic::Severity;
-use crate::report::{CAUTION, words};
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
+use crate::report::{CAUTION, words};
 use crate::session::Outcome;
 
 /// Writes the whole report.
@@ -177,6 +180,8 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Bounds(found) => bounds::bounds(found, pen, out),
+        Body::Compare(comparison) => compare::compare(comparison, pen, out),
     }
     for left in &answer.left_out {
         let text = format!("{}: open {}", left.equation, left.open.join(", "));
