@@ -212,6 +212,13 @@ fn spread_dimension(
         });
         return;
     }
+    if names::has_names(end) {
+        errors.push(ModelError::DerivedScale {
+            name: crate::syntax::print::expression(end),
+            span: end.span,
+        });
+        return;
+    }
     let found = dimension(end, model, phenomenon, place, errors);
     if borrows_unit(spread, nominal) {
         return;

@@ -329,7 +329,12 @@ impl ModelError {
             E::NotAvailable { what, span } => not_available(*what, *span),
             E::UnknownName { name, span, nearest } => {
                 let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
-                with_nearest(found, nearest, "declare it, or check its spelling")
+                match (nearest, crate::units::find_unit(name)) {
+                (None, Some(_)) => found.with_help(format!(
+                    "`{name}` is a unit only right behind a number: a unit has no blank inside, as in `10 m/s`"
+                )),
+                _ => with_nearest(found, nearest, "declare it, or check its spelling"),
+            }
             }
             E::NotAFunction { name, span, is_declared, nearest } => {
                 not_a_function(name, *span, *is_declared, nearest.as_ref())
@@ -421,9 +426,11 @@ impl ModelError {
             E::NotAProduct { span, what } => not_a_product(*span, *what),
             E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
                 .with_help(format!(
-                    "exponents go up to {}, exact numbers up to {} binary digits",
+                    "exponents go up to {}, exact numbers up to {} binary digits, powers of sums up to {}, one equation up to {} terms, sizes from 1e-300 to 1e300",
                     crate::limits::EXPONENT,
-                    crate::limits::NUMBER_BITS
+                    crate::limits::NUMBER_BITS,
+                    crate::limits::SUM_POWER,
+                    crate::limits::TERMS
                 )),
             E::TooManyGroups { n_symbols, span } => Diagnostic::error(
                 "too-large",

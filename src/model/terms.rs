@@ -430,6 +430,11 @@ impl<'a> Maker<'a> {
             self.errors.push(ModelError::DividesByZero { span });
             return None;
         }
+        let range = self.setting.monomial_range(&size.resolved);
+        if zeros.is_empty() && range.is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite()) {
+            self.errors.push(ModelError::TooLarge { span });
+            return None;
+        }
         if !zeros.is_empty() {
             let speller = self.speller();
             let names: Vec<String> = zeros
