@@ -80,8 +80,8 @@ pub fn rows(model: &Model, cases: &[Case]) -> Vec<AuditRow> {
         rows.extend(common.filter(|_| !is_told));
         rows.extend(own);
     };
-    for idx in 0..model.symbols.len() {
-        add(&|setting| symbol_row(model, setting, SymbolId(idx as u32), used[idx]));
+    for (idx, is_used) in used.into_iter().enumerate() {
+        add(&|setting| symbol_row(model, setting, SymbolId(idx as u32), is_used));
     }
     for idx in 0..model.coordinates.len() {
         add(&|setting| coordinate_row(model, setting, idx));
@@ -231,7 +231,8 @@ fn size(setting: &Setting, monomial: &Monomial) -> Option<Range> {
     setting
         .monomial_range(monomial)
         .ok()
-        .filter(|range| range.nominal.is_finite())
+        .filter(|_| setting.is_available(monomial))
+        .filter(|range| range.low.is_finite() && range.high.is_finite())
 }
 
 fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {

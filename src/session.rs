@@ -6,7 +6,9 @@ use std::path::{Path, PathBuf};
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, bounds, compare, rank, reduce};
+use crate::analysis::{
+    self, Answer, Body, Case, LeftOut, bounds, compare, groups, nondimensional, rank, reduce,
+};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
@@ -18,6 +20,7 @@ use crate::number::rational_to_f64;
 use crate::report::{standing, words};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+use crate::syntax::{parser, print};
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -57,6 +60,13 @@ impl Outcome {
         } else {
             Status::Ok
         }
+    }
+
+    /// The script in its canonical form, comments kept; `None` if none was read.
+    pub fn canonical(&self) -> Option<String> {
+        let (file, source) = self.sources.iter().next()?;
+        let (script, _) = parser::parse(&source.text, file);
+        Some(print::print(&script, &source.text))
     }
 
     /// The diagnostics drawn against their texts.
@@ -120,14 +130,14 @@ impl<'f> Session<'f> {
 
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, _) = self.checked(name, text, path);
+        let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
         self.finish(&mut outcome);
         outcome
     }
 
     /// Reads, checks and answers a script.
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, checked) = self.checked(name, text, path);
+        let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
             Answering {
                 model: &checked.model,
@@ -151,7 +161,13 @@ impl<'f> Session<'f> {
         diagnostic::sort(&mut outcome.diagnostics);
     }
 
-    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+    fn checked(
+        &self,
+        name: &str,
+        text: &str,
+        path: Option<&Path>,
+        purpose: Purpose,
+    ) -> (Outcome, Option<Checked>) {
         let mut outcome = Outcome {
             script: name.to_owned(),
             ..Outcome::default()
@@ -166,14 +182,19 @@ impl<'f> Session<'f> {
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
         let main_span = main_span(&outcome.sources);
         let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
-        let (model, errors) = declarations::gather(scripts);
-        let (checked, errors) = check_model(model, errors, main_span, has_form);
+        let (model, mut errors) = declarations::gather(scripts);
+        let is_idle = model.equations.is_empty() && model.requests.is_empty();
+        if is_idle && has_form && purpose == Purpose::Run {
+            errors.push(ModelError::NothingToRank { span: main_span });
+        }
+        let (checked, errors) = check_model(model, errors, has_form);
         outcome.diagnostics.extend(
             errors
                 .iter()
-                .filter(|error| !is_echo(error, &unreadable))
+                .filter(|error| !is_echo(error, &unreadable, is_whole))
                 .map(ModelError::diagnostic),
         );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -183,6 +204,14 @@ impl<'f> Session<'f> {
         }
         (outcome, checked)
     }
+}
+
+/// What a script is read for; a shelf of declarations has nothing to answer, but can be
+/// checked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Purpose {
+    Check,
+    Run,
 }
 
 struct Checked {
@@ -198,14 +227,10 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
-    main_span: Span,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
-    if model.equations.is_empty() && model.requests.is_empty() && has_form {
-        errors.push(ModelError::NothingToRank { span: main_span });
-    }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
         errors.extend(analysis::value_errors(&model));
         return (None, errors);
@@ -248,11 +273,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }
@@ -373,6 +406,31 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
             RequestKind::Bounds { symbols } => {
                 if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
                     match bounds::bounds(self.model, case, &wanted, symbols) {
@@ -391,10 +449,8 @@ impl Answering<'_> {
             // Answered once, for all the phenomena it names.
             RequestKind::Compare { .. } => {}
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Find { .. }
+            RequestKind::Find { .. }
             | RequestKind::Layers
-            | RequestKind::Groups
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)

@@ -4,11 +4,14 @@
 pub mod bounds;
 pub mod claims;
 pub mod compare;
+pub mod groups;
 pub mod matching;
 pub mod movable;
 pub mod names;
+pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 
@@ -161,6 +164,10 @@ pub struct Answer {
 pub enum Body {
     /// `show`.
     Show(show::Shown),
+    /// `groups`.
+    Groups(groups::Groups),
+    /// `nondimensionalize`.
+    Nondimensionalize(Vec<nondimensional::DimensionlessEquation>),
     /// `rank`.
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.

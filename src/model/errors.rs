@@ -147,6 +147,8 @@ pub enum ModelError {
     NotAProduct { span: Span, what: Product },
     /// A number or exponent beyond the limits.
     TooLarge { span: Span },
+    /// More scales than dimensionless groups are looked for among.
+    TooManyGroups { n_symbols: usize, span: Span },
     /// A division by 0.
     DividesByZero { span: Span },
     /// A value outside the domain of a function, or not a real number.
@@ -423,6 +425,12 @@ impl ModelError {
                     crate::limits::EXPONENT,
                     crate::limits::NUMBER_BITS
                 )),
+            E::TooManyGroups { n_symbols, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!("there are too many groups among {n_symbols} scales and constants"),
+            )
+            .with_help("ask in a script whose equations hold fewer of them"),
             E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
             E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
             E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),

@@ -115,14 +115,12 @@ impl Checker<'_> {
                 }
             }
             RequestKind::Claim(claim) => self.claim(claim),
-            RequestKind::Nondimensionalize { .. } => {
-                self.unavailable("nondimensionalize", request.span)
-            }
+            RequestKind::Nondimensionalize { equations, .. } => self.equations(equations),
             // What may be moved is known case by case.
             RequestKind::Bounds { .. } => {}
             RequestKind::Find { .. } => self.unavailable("find", request.span),
             RequestKind::Layers => self.unavailable("layers", request.span),
-            RequestKind::Groups => self.unavailable("groups", request.span),
+            RequestKind::Groups => {}
             RequestKind::Limit { .. } => self.unavailable("limit", request.span),
             RequestKind::Expand { .. } => self.unavailable("expand", request.span),
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
@@ -308,11 +306,26 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
                 {
                     errors.extend(process_label(model, case, idx, by).err());
                 }
+                if equations.is_empty() {
+                    errors.extend(unknown_everywhere(model, case, by));
+                }
             }
             _ => {}
         }
     }
     errors
+}
+
+/// What is wrong with a process that no equation has.
+fn unknown_everywhere(model: &Model, case: &Case, process: &ProcessRef) -> Option<ModelError> {
+    let mut unknown = None;
+    for idx in 0..case.equations.len() {
+        match process_label(model, case, idx, process) {
+            Ok(_) => return None,
+            Err(error) => unknown = unknown.or(Some(error)),
+        }
+    }
+    unknown
 }
 
 /// Checks the processes in an expression, `x_momentum.coriolis`.
@@ -403,15 +416,9 @@ pub fn process_label(
     if let Some(Ok(label)) = by_name {
         return Ok(label);
     }
-    let wanted = terms::products(model, &case.setting, idx, expr);
-    let found = match wanted.as_slice() {
-        [wanted] => case.equations[idx].terms.iter().find(|term| {
-            term.product.is_like(wanted) && term.product.number.abs() == wanted.number.abs()
-        }),
-        _ => None,
-    };
+    let found = term_of(model, case, idx, process);
     match (found, by_name) {
-        (Some(term), _) => Ok(term.label().to_owned()),
+        (Some(found), _) => Ok(case.equations[idx].terms[found].label().to_owned()),
         (None, Some(unknown)) => unknown,
         (None, None) => known_process(
             case,
@@ -419,5 +426,18 @@ pub fn process_label(
             &crate::syntax::print::expression(expr),
             expr.span,
         ),
+    }
+}
+
+/// The place of the term that a process is named by, matched by what it comes to.
+pub fn term_of(model: &Model, case: &Case, idx: usize, process: &ProcessRef) -> Option<usize> {
+    let ProcessRef::Term(expr) = process else {
+        return None;
+    };
+    match terms::products(model, &case.setting, idx, expr).as_slice() {
+        [wanted] => case.equations[idx].terms.iter().position(|term| {
+            term.product.is_like(wanted) && term.product.number.abs() == wanted.number.abs()
+        }),
+        _ => None,
     }
 }

@@ -2,9 +2,12 @@
 //! `ruler` of decades), `json` for other programs. `words` and `standing` hold the
 //! sentences that all forms share, `layout` numbers, columns and wrapping.
 
+pub mod dimensionless;
 pub mod json;
 pub mod layout;
+pub mod mathematics;
 pub mod ruler;
+pub mod shelf;
 pub mod standing;
 pub mod text;
 pub mod words;

@@ -5,7 +5,7 @@ use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation,
 use crate::analysis::{Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
-use crate::report::layout::{number, percent, quantity, range};
+use crate::report::layout::{number, percent, quantity, range, significant};
 use crate::syntax::ast::{ClaimWord, Relation};
 use crate::units::{self, Range};
 
@@ -33,13 +33,23 @@ pub fn product(factor: &Number, exponents: &Exponents) -> String {
     let mut above: Vec<String> = powers(false).collect();
     let below: Vec<String> = powers(true).collect();
     if !factor.is_one() || above.is_empty() {
-        above.insert(0, factor.to_string());
+        above.insert(0, short(factor));
     }
     let above = above.join("*");
     match below.as_slice() {
         [] => above,
         [single] => format!("{above}/{single}"),
         several => format!("{above}/({})", several.join("*")),
+    }
+}
+
+/// An exact number as it is where that is short, else in six digits.
+pub fn short(exact: &Number) -> String {
+    let text = exact.to_string();
+    if text.len() <= 9 {
+        text
+    } else {
+        significant(exact.to_f64(), 6)
     }
 }
 

@@ -4,6 +4,8 @@
 mod bounds;
 mod claims;
 mod compare;
+mod groups;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -109,6 +111,10 @@ fn answer(answer: &Answer) -> Value {
     });
     let own = match &answer.body {
         Body::Show(shown) => show::show(shown),
+        Body::Groups(found) => groups::groups(found),
+        Body::Nondimensionalize(equations) => {
+            json!({ "equations": list(equations, nondimensional::equation) })
+        }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
         Body::Bounds(found) => bounds::bounds(found),
