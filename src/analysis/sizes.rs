@@ -15,7 +15,9 @@ const SAME: f64 = 1e-12;
 
 /// Whether two sizes are equal.
 pub fn same(a: f64, b: f64) -> bool {
-    (a - b).abs() <= SAME * a.abs().max(b.abs())
+    let largest = a.abs().max(b.abs());
+    // An infinite size, of something over 0, would be near to everything.
+    a == b || (largest.is_finite() && (a - b).abs() <= SAME * largest)
 }
 
 /// Whether a size lies at or below a limit.
@@ -318,6 +320,14 @@ mod tests {
         assert_eq!(order_of_magnitude(3.0), Some(0));
         assert_eq!(order_of_magnitude(3.2), Some(1));
         assert_eq!(order_of_magnitude(0.0), None);
+    }
+
+    #[test]
+    fn nothing_finite_is_near_to_infinity() {
+        assert!(same(1.0, 1.0 + 1e-13));
+        assert!(!same(f64::INFINITY, 1.0));
+        assert!(!at_most(f64::INFINITY, 1.0));
+        assert!(same(f64::INFINITY, f64::INFINITY));
     }
 
     #[test]
