@@ -31,6 +31,12 @@ pub const TERMS: usize = 2_000;
 /// Highest whole power of a sum that is multiplied out.
 pub const SUM_POWER: i64 = 12;
 
+/// Deepest nesting of vector operations, `curl(curl(V))`.
+pub const VECTOR_NESTING: usize = 8;
+
+/// Most nodes of the tree that one component of a vector expression may come to.
+pub const VECTOR_NODES: usize = 20_000;
+
 /// Most modules and files that one script may bring in.
 pub const MODULES: usize = 200;
 

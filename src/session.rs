@@ -11,6 +11,7 @@ use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
@@ -200,6 +201,7 @@ fn check_model(
     main_span: Span,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
     if model.equations.is_empty() && model.requests.is_empty() && has_form {

@@ -163,7 +163,9 @@ fn evaluate_name(name: &str, span: Span, names: &impl Names) -> Result<Value, Fa
         Some(Meaning::Symbol(id)) => names.symbol(id).map_err(Fault::Open),
         Some(Meaning::Group(id)) => evaluate(&names.model().groups[id.0 as usize].value, names),
         None if names::is_pi(name) => Ok(Value::exact(Number::pi())),
-        Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
+        Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {
+            Err(Fault::NotAProduct(span))
+        }
     }
 }
 
@@ -395,7 +397,9 @@ fn monomial_name(name: &str, span: Span, names: &impl Names) -> Result<Monomial,
         Some(Meaning::Symbol(id)) => Ok(Monomial::symbol(Symbol::Declared(id))),
         Some(Meaning::Group(id)) => monomial(&names.model().groups[id.0 as usize].value, names),
         None if names::is_pi(name) => Ok(Monomial::number(Number::pi())),
-        Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
+        Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {
+            Err(Fault::NotAProduct(span))
+        }
     }
 }
 
@@ -504,7 +508,9 @@ fn holds_constants_only(expr: &ast::Expr, names: &impl Names) -> bool {
     names::visit_names(expr, &mut |name, _| {
         fits &= match model.meaning(name, names.phenomenon()) {
             Some(Meaning::Symbol(id)) => model.symbols[id.idx()].kind == ast::ValueKind::Constant,
-            Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) => false,
+            Some(
+                Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            ) => false,
             None => names::is_pi(name),
         };
     });
