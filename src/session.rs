@@ -13,6 +13,7 @@ use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
@@ -229,6 +230,7 @@ fn check_model(
     mut errors: Vec<ModelError>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
