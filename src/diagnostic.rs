@@ -3,6 +3,8 @@
 //! A stage has an error type of its own, without prose; one `match` a stage turns it
 //! into a [`Diagnostic`]. The drawing, with ariadne, happens here and nowhere else.
 
+pub mod codes;
+
 use crate::source::{Sources, Span};
 
 /// How much a diagnostic weighs.

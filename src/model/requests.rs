@@ -309,7 +309,12 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
 }
 
 /// Checks the processes in an expression, `x_momentum.coriolis`.
-fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Vec<ModelError>) {
+pub(crate) fn named_processes(
+    model: &Model,
+    case: &Case,
+    expr: &ast::Expr,
+    errors: &mut Vec<ModelError>,
+) {
     match &expr.kind {
         ExprKind::Process { equation, process } => {
             if let Some(idx) = model.equation(&equation.text) {
