@@ -164,6 +164,11 @@ pub fn draw(diagnostics: &[Diagnostic], sources: &Sources, colour: bool) -> Stri
         out.extend_from_slice(format!("and {rest} more\n").as_bytes());
     }
     let text = String::from_utf8_lossy(&out);
+    // The word for a note is coloured whatever is asked for.
+    let text = match colour {
+        true => text,
+        false => anstream::adapter::strip_str(&text).to_string().into(),
+    };
     let lines: Vec<&str> = text.lines().map(str::trim_end).collect();
     if lines.is_empty() {
         String::new()

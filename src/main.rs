@@ -261,7 +261,8 @@ fn prompt(start: Option<&str>) -> io::Result<ExitCode> {
     }
     let sheet = Sheet {
         columns: report::layout::WIDTH,
-        colour: anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never,
+        colour: io::stderr().is_terminal()
+            && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never,
     };
     let (mut out, mut err) = (io::stdout().lock(), io::stderr().lock());
     let mut input = io::stdin().lock();

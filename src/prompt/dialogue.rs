@@ -7,11 +7,12 @@ use std::path::{Path, PathBuf};
 
 use crate::analysis::Answer;
 use crate::analysis::claims::Held;
-use crate::diagnostic::Diagnostic;
+use crate::diagnostic::{Diagnostic, Severity};
 use crate::prompt::answers;
 use crate::prompt::entry::{self, Command};
 use crate::prompt::help;
 use crate::prompt::layout::Sheet;
+use crate::prompt::mends;
 use crate::prompt::moved;
 use crate::report::words::is_in_report;
 use crate::session::incremental::{Page, Taken};
@@ -44,35 +45,63 @@ struct Asked {
 /// What is to be written.
 #[derive(Debug, Default, PartialEq, Eq)]
 pub struct Reply {
-    /// Answers.
-    pub out: String,
-    /// Errors and warnings.
-    pub err: String,
+    /// Its parts in order.
+    pub parts: Vec<Part>,
     /// Whether the session ends.
     pub leaves: bool,
     /// How it went.
     pub status: Option<Status>,
 }
 
-impl Reply {
-    fn said(out: String) -> Reply {
-        Reply {
-            out,
-            ..Reply::default()
-        }
-    }
+/// A part of what is to be written.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub enum Part {
+    /// Answers.
+    Answer(String),
+    /// Errors, warnings and notes.
+    Fault(String),
+}
 
-    fn failed(err: String) -> Reply {
+impl Reply {
+    /// What could not be done.
+    pub fn failed(text: String) -> Reply {
         Reply {
-            err,
+            parts: vec![Part::Fault(text)],
             status: Some(Status::Invalid),
             ..Reply::default()
         }
     }
 
+    /// All of it as one text.
+    pub fn text(&self) -> String {
+        let texts = self.parts.iter().map(|part| match part {
+            Part::Answer(text) | Part::Fault(text) => text.as_str(),
+        });
+        texts.collect()
+    }
+
+    fn said(text: String) -> Reply {
+        Reply {
+            parts: vec![Part::Answer(text)],
+            ..Reply::default()
+        }
+    }
+
+    /// Faults, and how it went.
+    fn about(faults: String, status: Status) -> Reply {
+        Reply {
+            parts: vec![Part::Fault(faults)],
+            status: Some(status),
+            ..Reply::default()
+        }
+    }
+
+    fn answer(&mut self, text: String) {
+        self.parts.push(Part::Answer(text));
+    }
+
     fn add(&mut self, other: Reply) {
-        self.out.push_str(&other.out);
-        self.err.push_str(&other.err);
+        self.parts.extend(other.parts);
         self.leaves |= other.leaves;
         self.status = self.status.max(other.status);
     }
@@ -132,19 +161,13 @@ impl<'f> Dialogue<'f> {
     pub fn start(&mut self, name: &str, path: Option<&Path>, text: &str) -> Reply {
         self.own_files.extend(path.map(Path::to_owned));
         let taken = self.page.open(name, text);
-        let mut reply = Reply {
-            err: self.drawn(&taken),
-            status: taken.outcome.status().into(),
-            ..Reply::default()
-        };
+        let mut reply = Reply::about(self.drawn(&taken), taken.outcome.status());
         if taken.is_taken {
             let n_requests = taken.requests.len();
-            reply.out = answers::changed(&taken, &self.sheet);
+            reply.answer(answers::changed(&taken, &self.sheet));
             if n_requests > 0 {
                 let text = format!("{n_requests} from {name}; again answers them");
-                reply
-                    .out
-                    .push_str(&self.sheet.paragraph("  requests     ", &text));
+                reply.answer(self.sheet.paragraph("  requests     ", &text));
                 self.last = Some(Asked {
                     text: taken.requests.join("\n"),
                     answers: Vec::new(),
@@ -191,7 +214,8 @@ impl<'f> Dialogue<'f> {
             Some(command) => self.command(&command),
             None => {
                 let before = self.page.text().to_owned();
-                let taken = self.page.take(TYPED, text);
+                let mut taken = self.page.take(TYPED, text);
+                mends::mend(&mut taken.outcome.diagnostics, text, &self.page);
                 self.told(taken, before)
             }
         }
@@ -199,11 +223,7 @@ impl<'f> Dialogue<'f> {
 
     /// What is said of an entry, and what is remembered of it.
     fn told(&mut self, taken: Taken, before: String) -> Reply {
-        let mut reply = Reply {
-            err: self.drawn(&taken),
-            status: Some(taken.outcome.status()),
-            ..Reply::default()
-        };
+        let mut reply = Reply::about(self.drawn(&taken), taken.outcome.status());
         if !taken.is_taken {
             return reply;
         }
@@ -212,7 +232,8 @@ impl<'f> Dialogue<'f> {
             let n_over = self.earlier.len().saturating_sub(MOST_BACK);
             self.earlier.drain(..n_over);
         }
-        reply.out = answers::changed(&taken, &self.sheet) + &answers::answers(&taken, &self.sheet);
+        reply.answer(answers::changed(&taken, &self.sheet));
+        reply.answer(answers::answers(&taken, &self.sheet));
         if !taken.requests.is_empty() {
             self.last = Some(Asked {
                 text: taken.requests.join("\n"),
@@ -223,10 +244,22 @@ impl<'f> Dialogue<'f> {
         reply
     }
 
+    /// Errors and warnings against the text, notes in a line each. What a report says
+    /// already, and what an override says, is not said a second time.
     fn drawn(&self, taken: &Taken) -> String {
-        // What a report says already is not drawn a second time.
-        let wanted = |found: &Diagnostic| found.is_error() || !is_in_report(found.code);
-        taken.outcome.drawn(self.sheet.colour, wanted)
+        let is_drawn = |found: &Diagnostic| match found.severity {
+            Severity::Error => true,
+            Severity::Warning => !is_in_report(found.code),
+            Severity::Note => false,
+        };
+        let mut text = taken.outcome.drawn(self.sheet.colour, is_drawn);
+        for found in &taken.outcome.diagnostics {
+            let is_known = is_in_report(found.code) || found.code == "value-overridden";
+            if found.severity == Severity::Note && !is_known {
+                text.push_str(&self.sheet.paragraph("  note         ", &found.message));
+            }
+        }
+        text
     }
 
     // Commands --------------------------------------------------------------------------------
@@ -250,22 +283,16 @@ impl<'f> Dialogue<'f> {
             return Reply::failed("nothing was asked yet\n".to_owned());
         };
         let taken = self.page.ask(TYPED, &last.text);
-        let mut reply = Reply {
-            err: self.drawn(&taken),
-            status: Some(taken.outcome.status()),
-            ..Reply::default()
-        };
+        let mut reply = Reply::about(self.drawn(&taken), taken.outcome.status());
         if !taken.is_taken {
             self.last = Some(last);
             return reply;
         }
-        reply.out = answers::answers(&taken, &self.sheet);
+        reply.answer(answers::answers(&taken, &self.sheet));
         let (answers, claims) = (taken.outcome.answers, taken.outcome.claims);
         if !last.answers.is_empty() || !last.claims.is_empty() {
             let before = (last.answers.as_slice(), last.claims.as_slice());
-            reply
-                .out
-                .push_str(&moved::moved(before, (&answers, &claims), &self.sheet));
+            reply.answer(moved::moved(before, (&answers, &claims), &self.sheet));
         }
         self.last = Some(Asked {
             text: last.text,

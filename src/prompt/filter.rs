@@ -5,7 +5,7 @@ use std::io::{self, Read, Write};
 
 use crate::limits::SCRIPT_BYTES;
 use crate::prompt::Start;
-use crate::prompt::dialogue::Dialogue;
+use crate::prompt::dialogue::{Dialogue, Part, Reply};
 use crate::prompt::layout::Sheet;
 use crate::session::{Session, Status};
 
@@ -23,31 +23,42 @@ pub fn run(
 ) -> io::Result<Status> {
     let mut dialogue = Dialogue::new(session, sheet);
     let mut worst = Status::Ok;
-    let mut write = |reply: crate::prompt::dialogue::Reply| -> io::Result<Status> {
-        err.write_all(reply.err.as_bytes())?;
-        out.write_all(reply.out.as_bytes())?;
-        Ok(reply.status.unwrap_or(Status::Ok))
+    let mut write = |reply: Reply| -> io::Result<()> {
+        for part in &reply.parts {
+            match part {
+                Part::Answer(text) => out.write_all(text.as_bytes())?,
+                Part::Fault(text) => {
+                    out.flush()?;
+                    err.write_all(text.as_bytes())?;
+                }
+            }
+        }
+        worst = worst.max(reply.status.unwrap_or(Status::Ok));
+        Ok(())
     };
     if let Some(start) = start {
-        worst = write(dialogue.start(&start.name, start.path.as_deref(), &start.text))?;
+        write(dialogue.start(&start.name, start.path.as_deref(), &start.text))?;
     }
+    let reply = match read(input)? {
+        Ok(text) => dialogue.enter(&text),
+        Err(fault) => Reply::failed(fault),
+    };
+    write(reply)?;
+    Ok(worst)
+}
+
+/// All of the input, or what is wrong with it.
+fn read(input: &mut dyn Read) -> io::Result<Result<String, String>> {
     let mut bytes = Vec::new();
     input
         .take(SCRIPT_BYTES as u64 + 1)
         .read_to_end(&mut bytes)?;
     if bytes.len() > SCRIPT_BYTES {
-        let text = format!("[too-long] the input is longer than {SCRIPT_BYTES} bytes\n");
-        err.write_all(text.as_bytes())?;
-        return Ok(Status::Invalid);
+        let fault = format!("[too-long] the input is longer than {SCRIPT_BYTES} bytes\n");
+        return Ok(Err(fault));
     }
-    let text = match String::from_utf8(bytes) {
-        Ok(text) => text,
-        Err(error) => {
-            let at = error.utf8_error().valid_up_to() + 1;
-            let text = format!("[not-utf8] the input is no UTF-8 text: byte {at} cannot be read\n");
-            err.write_all(text.as_bytes())?;
-            return Ok(Status::Invalid);
-        }
-    };
-    Ok(worst.max(write(dialogue.enter(&text))?))
+    Ok(String::from_utf8(bytes).map_err(|error| {
+        let at = error.utf8_error().valid_up_to() + 1;
+        format!("[not-utf8] the input is no UTF-8 text: byte {at} cannot be read\n")
+    }))
 }

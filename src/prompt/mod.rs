@@ -13,6 +13,7 @@ pub mod highlight;
 pub mod hint;
 pub mod history;
 pub mod layout;
+mod mends;
 pub mod moved;
 pub mod terminal;
 

@@ -123,8 +123,7 @@ fn io_error(error: ReadlineError) -> io::Error {
 
 fn write(reply: &Reply) -> io::Result<()> {
     let mut stdout = io::stdout().lock();
-    stdout.write_all(reply.err.as_bytes())?;
-    stdout.write_all(reply.out.as_bytes())?;
+    stdout.write_all(reply.text().as_bytes())?;
     stdout.flush()
 }
 
@@ -180,10 +179,8 @@ impl Talk {
         let (dialogue, reply) = match self.wait() {
             Some(done) => done,
             None => {
-                let reply = Reply {
-                    err: "[interrupted] the answer was left; the page is as it was\n".to_owned(),
-                    ..Reply::default()
-                };
+                let text = "[interrupted] the answer was left; the page is as it was\n";
+                let reply = Reply::failed(text.to_owned());
                 let restored = Dialogue::restored(self.session.clone(), sheet, snapshot);
                 (Box::new(restored), reply)
             }

@@ -220,8 +220,10 @@ impl<'f> Page<'f> {
         if taken.is_taken && mode != Mode::Ask {
             merge::append(&mut self.text, &entry.script_text);
             settle(&mut self.checked.model);
-            // What stands is told apart by its text, which spans of the requests need.
-            self.sources = taken.outcome.sources.clone();
+            if self.checked.model.requests.len() > n_before {
+                // Those that stay have their places in this text.
+                self.sources = taken.outcome.sources.clone();
+            }
         } else {
             self.checked.model.requests.truncate(n_before);
         }

@@ -269,8 +269,8 @@ fn edited(text: &str, edits: &[Edit]) -> String {
 
 /// Puts a text behind another, on lines of its own.
 pub(super) fn append(text: &mut String, rest: &str) {
-    let rest = rest.trim_matches(['\n', '\r']).trim_end();
-    if rest.trim().is_empty() {
+    let rest = rest.trim();
+    if rest.is_empty() {
         return;
     }
     if !text.is_empty() && !text.ends_with('\n') {
@@ -286,7 +286,8 @@ fn insert_lines(text: &mut String, edit: &Edit) {
     if text[line..edit.start].trim().is_empty() {
         text.insert_str(line, &edit.text);
     } else {
-        text.insert_str(edit.start, &format!("\n{}", edit.text));
+        let end = text[..edit.start].trim_end().len();
+        text.replace_range(end..edit.start, &format!("\n{}", edit.text));
     }
 }
 
