@@ -1,5 +1,9 @@
 //! A session: takes a script, checks it, answers it. The command line and embedders go
-//! through here.
+//! through here. A session that grows line by line is in `incremental`.
+
+pub mod changes;
+pub mod incremental;
+mod merge;
 
 use std::path::{Path, PathBuf};
 
@@ -83,6 +87,7 @@ impl Outcome {
 }
 
 /// Reads and answers scripts.
+#[derive(Clone)]
 pub struct Session<'f> {
     files: &'f dyn Files,
     folder: PathBuf,
@@ -173,37 +178,24 @@ impl<'f> Session<'f> {
             script: name.to_owned(),
             ..Outcome::default()
         };
-        let main = Main {
+        let main = self.main(name, text, path);
+        let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
+        let nothing_at = (purpose == Purpose::Run).then(|| main_span(&outcome.sources));
+        let checked = judged(scripts, errors, nothing_at, &mut outcome);
+        if let Some(checked) = &checked {
+            outcome.symbols = audit::rows(&checked.model, &checked.cases);
+        }
+        (outcome, checked)
+    }
+
+    fn main(&self, name: &str, text: &str, path: Option<&Path>) -> Main {
+        Main {
             name: name.to_owned(),
             text: text.to_owned(),
             path: path.map(Path::to_owned),
             folder: self.folder.clone(),
             root: self.root.clone().unwrap_or_else(|| self.folder.clone()),
-        };
-        let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
-        let main_span = main_span(&outcome.sources);
-        let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
-        let is_whole = errors.iter().all(|found| !is_of_module(found));
-        let has_form = errors.iter().all(|found| !found.is_error());
-        outcome.diagnostics.extend(errors);
-        let (model, mut errors) = declarations::gather(scripts);
-        let is_idle = model.equations.is_empty() && model.requests.is_empty();
-        if is_idle && has_form && purpose == Purpose::Run {
-            errors.push(ModelError::NothingToRank { span: main_span });
         }
-        let (checked, errors) = check_model(model, errors, has_form);
-        outcome.diagnostics.extend(
-            errors
-                .iter()
-                .filter(|error| !is_echo(error, &unreadable, is_whole))
-                .map(ModelError::diagnostic),
-        );
-        let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
-        let checked = checked.filter(|_| is_sound);
-        if let Some(checked) = &checked {
-            outcome.symbols = audit::rows(&checked.model, &checked.cases);
-        }
-        (outcome, checked)
     }
 }
 
@@ -215,6 +207,31 @@ enum Purpose {
     Run,
 }
 
+/// Checks what was read and adds what is wrong to an outcome. A script that holds nothing
+/// to answer for is at fault at `nothing_at`, if that is given.
+fn judged(
+    scripts: Vec<(crate::model::Level, ast::Script)>,
+    errors: Vec<Diagnostic>,
+    nothing_at: Option<Span>,
+    outcome: &mut Outcome,
+) -> Option<Checked> {
+    let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+    let is_whole = errors.iter().all(|found| !is_of_module(found));
+    let has_form = errors.iter().all(|found| !found.is_error());
+    outcome.diagnostics.extend(errors);
+    let (model, errors) = declarations::gather(scripts);
+    let (checked, errors) = check_model(model, errors, nothing_at, has_form);
+    outcome.diagnostics.extend(
+        errors
+            .iter()
+            .filter(|error| !is_echo(error, &unreadable, is_whole))
+            .map(ModelError::diagnostic),
+    );
+    let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
+    checked.filter(|_| is_sound)
+}
+
+#[derive(Debug)]
 struct Checked {
     model: Model,
     cases: Vec<Case>,
@@ -228,11 +245,19 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
+    nothing_at: Option<Span>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
     errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
+    if let Some(span) = nothing_at
+        && model.equations.is_empty()
+        && model.requests.is_empty()
+        && has_form
+    {
+        errors.push(ModelError::NothingToRank { span });
+    }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
         for error in analysis::value_errors(&model) {
             if errors.iter().all(|known| !overlap(known, &error)) {

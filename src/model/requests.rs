@@ -339,7 +339,12 @@ fn unknown_everywhere(model: &Model, case: &Case, process: &ProcessRef) -> Optio
 }
 
 /// Checks the processes in an expression, `x_momentum.coriolis`.
-fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Vec<ModelError>) {
+pub(crate) fn named_processes(
+    model: &Model,
+    case: &Case,
+    expr: &ast::Expr,
+    errors: &mut Vec<ModelError>,
+) {
     match &expr.kind {
         ExprKind::Process { equation, process } => {
             if let Some(idx) = model.equation(&equation.text) {

@@ -15,6 +15,7 @@ use std::fmt::Write as _;
 
 use anstyle::{AnsiColor, Effects, Style};
 
+use crate::analysis::claims::Held;
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
@@ -39,6 +40,18 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
         out.push('\n');
         out.push_str(&wrapped("", CAUTION));
     }
+    out
+}
+
+/// Writes the answers and claims alone, without what was given and without the caution:
+/// what a prompt says to one request.
+pub fn answers(answers: &[Answer], held: &[Held], colour: bool) -> String {
+    let pen = Pen { colour };
+    let mut out = String::new();
+    for answer in answers {
+        write_answer(answer, &pen, &mut out);
+    }
+    claims::claims(held, &pen, &mut out);
     out
 }
 
