@@ -16,11 +16,20 @@ fn check_rank_reduce(criterion: &mut Criterion) {
     for n_equations in [30, 100, 300] {
         let text = script(n_equations);
         let outcome = Session::new().run("bench.scl", &text, None);
-        assert_eq!(outcome.status(), Status::Ok, "{}", outcome.drawn(false, |_| true));
+        assert_eq!(
+            outcome.status(),
+            Status::Ok,
+            "{}",
+            outcome.drawn(false, |_| true)
+        );
         group.throughput(Throughput::Elements(n_equations as u64));
-        group.bench_with_input(BenchmarkId::from_parameter(n_equations), &text, |bencher, text| {
-            bencher.iter(|| black_box(Session::new().run("bench.scl", black_box(text), None)));
-        });
+        group.bench_with_input(
+            BenchmarkId::from_parameter(n_equations),
+            &text,
+            |bencher, text| {
+                bencher.iter(|| black_box(Session::new().run("bench.scl", black_box(text), None)));
+            },
+        );
     }
     group.finish();
 }
