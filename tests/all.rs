@@ -4,5 +4,6 @@ mod exact;
 mod harness;
 mod language;
 mod polyhedra;
+mod properties;
 mod published;
 mod reference;
