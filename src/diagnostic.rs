@@ -134,6 +134,9 @@ pub fn sort(diagnostics: &mut Vec<Diagnostic>) {
 /// longer one an excerpt of about this length is shown.
 const LINE_DRAWN: usize = 160;
 
+/// Most diagnostics that are drawn; a count stands for the rest.
+const DRAWN: usize = 60;
+
 /// Draws diagnostics against their sources, each with its lines of text underneath.
 ///
 /// `colour` decides whether escape sequences are written; the caller knows the terminal.
@@ -144,7 +147,7 @@ pub fn draw(diagnostics: &[Diagnostic], sources: &Sources, colour: bool) -> Stri
             .map(|(_, source)| (source.name.clone(), printable(&source.text))),
     );
     let mut out = Vec::new();
-    for found in diagnostics {
+    for found in diagnostics.iter().take(DRAWN) {
         let fits = spans(found).all(|span| line_length(span, sources) <= LINE_DRAWN);
         if found.span.is_some() && fits {
             let report = report(found, sources, colour);
@@ -154,7 +157,15 @@ pub fn draw(diagnostics: &[Diagnostic], sources: &Sources, colour: bool) -> Stri
             out.extend_from_slice(plain(found, sources).as_bytes());
         }
     }
-    let text = String::from_utf8_lossy(&out);
+    if diagnostics.len() > DRAWN {
+        let rest = diagnostics.len() - DRAWN;
+        out.extend_from_slice(format!("and {rest} more\n").as_bytes());
+    }
+    let mut text = String::from_utf8_lossy(&out).into_owned();
+    if !colour {
+        // Some parts are coloured whatever the configuration says.
+        text = anstream::adapter::strip_str(&text).to_string();
+    }
     let lines: Vec<&str> = text.lines().map(str::trim_end).collect();
     if lines.is_empty() {
         String::new()
@@ -184,22 +195,23 @@ fn report(
         "" => "here",
         label => label,
     };
-    let mut builder = Report::build(kind, span.clone())
+    let own = Label::new(span.clone())
+        .with_message(cleaned(label))
+        .with_color(tint);
+    let mut labels: Vec<(Option<Span>, Label<NamedSpan>)> = vec![(found.span, own)];
+    labels.extend(found.related.iter().map(|related| {
+        let label = Label::new(named(related.span, sources))
+            .with_message(cleaned(&related.message))
+            .with_color(Color::Blue);
+        (Some(related.span), label)
+    }));
+    // In order of place: a label before the first one would open a second frame.
+    labels.sort_by_key(|(place, _)| *place);
+    let mut builder = Report::build(kind, span)
         .with_config(config)
         .with_code(found.code)
         .with_message(cleaned(&found.message))
-        .with_label(
-            Label::new(span)
-                .with_message(cleaned(label))
-                .with_color(tint),
-        );
-    for related in &found.related {
-        builder = builder.with_label(
-            Label::new(named(related.span, sources))
-                .with_message(cleaned(&related.message))
-                .with_color(Color::Blue),
-        );
-    }
+        .with_labels(labels.into_iter().map(|(_, label)| label));
     if let Some(help) = &found.help {
         builder = builder.with_help(cleaned(help));
     }

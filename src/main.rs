@@ -7,7 +7,7 @@ use std::process::ExitCode;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use scalewright::analysis::shelf;
-use scalewright::diagnostic::Diagnostic;
+use scalewright::diagnostic::{Diagnostic, Severity};
 use scalewright::model::errors::ModelError;
 use scalewright::model::library;
 use scalewright::model::modules::{Files, Main};
@@ -245,7 +245,8 @@ fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<E
     };
     // What a report says already is not drawn a second time beside it.
     draw_diagnostics(&outcomes, |found| {
-        found.is_error() || !report::words::is_in_report(found.code)
+        let is_told = found.severity == Severity::Note || report::words::is_in_report(found.code);
+        found.is_error() || !is_told
     })?;
     match output {
         None => io::stdout().lock().write_all(text.as_bytes())?,

@@ -6,7 +6,9 @@ use std::path::{Path, PathBuf};
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, groups, nondimensional, rank, reduce};
+use crate::analysis::{
+    self, Answer, Body, Case, LeftOut, bounds, compare, groups, nondimensional, rank, reduce,
+};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
@@ -15,6 +17,7 @@ use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
+use crate::report::{standing, words};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
 use crate::syntax::{parser, print};
@@ -179,6 +182,7 @@ impl<'f> Session<'f> {
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
         let main_span = main_span(&outcome.sources);
         let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
         let (model, mut errors) = declarations::gather(scripts);
@@ -190,7 +194,7 @@ impl<'f> Session<'f> {
         outcome.diagnostics.extend(
             errors
                 .iter()
-                .filter(|error| !is_echo(error, &unreadable))
+                .filter(|error| !is_echo(error, &unreadable, is_whole))
                 .map(ModelError::diagnostic),
         );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -228,12 +232,14 @@ fn check_model(
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
+        errors.extend(analysis::value_errors(&model));
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
     errors.extend(found);
     for case in &cases {
         errors.extend(requests::check_processes(&model, case));
+        errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
 }
@@ -267,11 +273,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }
@@ -306,12 +320,20 @@ impl Answering<'_> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = words(self.outcome.sources.slice(request.span));
+            let text = one_line(self.outcome.sources.slice(request.span));
             self.request(*own, request, &text);
         }
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Compare {
+            phenomena,
+            matching,
+        } = &request.kind
+        {
+            self.compare(phenomena, matching.as_deref(), request.span, text);
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
             if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
@@ -409,15 +431,85 @@ impl Answering<'_> {
                     self.outcome.diagnostics.push(error.diagnostic());
                 }
             },
+            RequestKind::Bounds { symbols } => {
+                if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
+                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                        Ok(found) => {
+                            self.warn_of_lone_terms(case, &found);
+                            self.outcome.answers.push(answer(
+                                "bounds",
+                                left_out,
+                                Body::Bounds(found),
+                            ));
+                        }
+                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                    }
+                }
+            }
+            // Answered once, for all the phenomena it names.
+            RequestKind::Compare { .. } => {}
             // The check refused these.
-            RequestKind::Bounds { .. }
-            | RequestKind::Find { .. }
+            RequestKind::Find { .. }
             | RequestKind::Layers
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..)
-            | RequestKind::Compare { .. } => {}
+            | RequestKind::Regimes(..) => {}
+        }
+    }
+
+    fn compare(
+        &mut self,
+        phenomena: &[ast::Name],
+        matching: Option<&[ast::Name]>,
+        span: Span,
+        text: &str,
+    ) {
+        let named: Vec<&Case> = phenomena
+            .iter()
+            .filter_map(|name| {
+                let wanted = self.model.phenomenon(&name.text);
+                let mut cases = self.cases.iter();
+                cases.find(|case| case.setting.phenomenon == wanted)
+            })
+            .collect();
+        match compare::compare(self.model, &named, matching) {
+            Ok((comparison, left_out)) => {
+                let matching = comparison.matching.iter();
+                let found = matching.filter_map(|matching| standing::cannot_match(matching, span));
+                self.outcome.diagnostics.extend(found);
+                self.outcome.answers.push(Answer {
+                    request: "compare",
+                    phenomenon: None,
+                    title: None,
+                    text: text.to_owned(),
+                    left_out,
+                    body: Body::Compare(comparison),
+                });
+            }
+            Err(compare::Fault::Open(case, open)) => self.fault(Fault::Open(open), case, span),
+            Err(compare::Fault::TooMany) => {
+                let message = "matching tries more sets of scales than the limit";
+                let found = Diagnostic::error("too-large", span, message);
+                let found = found.with_help("name fewer groups behind `matching`");
+                self.outcome.diagnostics.push(found);
+            }
+        }
+    }
+
+    /// What `bounds` leaves out since nothing balances it.
+    fn warn_of_lone_terms(&mut self, case: &Case, bounds: &bounds::Bounds) {
+        for place in &bounds.lone {
+            let mut equations = case.equations.iter();
+            let span = equations
+                .find(|found| found.name == place.equation)
+                .map_or(Span::default(), |found| found.span);
+            let message = match &case.setting.name {
+                Some(name) => format!("{name}: {}", standing::left_out_lone(place)),
+                None => standing::left_out_lone(place),
+            };
+            let found = Diagnostic::warning("lone-leading-term", span, message);
+            self.outcome.diagnostics.push(found);
         }
     }
 
@@ -559,7 +651,7 @@ impl Answering<'_> {
                 .iter()
                 .find(|found| found.name == equation.name)
                 .map_or(Span::default(), |found| found.span);
-            for warning in crate::report::words::warnings(equation) {
+            for warning in words::warnings(equation) {
                 let message = match &case.setting.name {
                     Some(name) => format!("{name}: {}", warning.message),
                     None => warning.message,
@@ -573,7 +665,7 @@ impl Answering<'_> {
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.
-fn words(text: &str) -> String {
+fn one_line(text: &str) -> String {
     let lines = text
         .lines()
         .map(|line| line.split('#').next().unwrap_or(""));

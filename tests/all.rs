@@ -1,5 +1,6 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
+mod answers;
 mod exact;
 mod harness;
 mod language;
@@ -7,3 +8,4 @@ mod polyhedra;
 mod properties;
 mod published;
 mod reference;
+mod standing;

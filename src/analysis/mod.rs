@@ -1,8 +1,12 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod bounds;
 pub mod claims;
+pub mod compare;
 pub mod groups;
+pub mod matching;
+pub mod movable;
 pub mod names;
 pub mod nondimensional;
 pub mod rank;
@@ -26,17 +30,38 @@ pub struct Case {
     pub equations: Vec<EquationTerms>,
 }
 
-/// Works out all phenomena of a model, or the script itself where it has none.
-/// Errors make the script invalid; notes do not.
-pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
-    let phenomena: Vec<Option<usize>> = if model.phenomena.is_empty() {
+fn phenomena(model: &Model) -> Vec<Option<usize>> {
+    if model.phenomena.is_empty() {
         vec![None]
     } else {
         (0..model.phenomena.len()).map(Some).collect()
-    };
+    }
+}
+
+/// The faults of values and ranges alone, for a model that has other faults: a script with
+/// five mistakes tells of five.
+pub fn value_errors(model: &Model) -> Vec<ModelError> {
+    let found = phenomena(model)
+        .into_iter()
+        .flat_map(|idx| settings::build(model, idx).1);
+    let mut errors: Vec<ModelError> = Vec::new();
+    for error in found.filter(ModelError::is_of_value) {
+        if errors
+            .iter()
+            .all(|known| known.diagnostic() != error.diagnostic())
+        {
+            errors.push(error);
+        }
+    }
+    errors
+}
+
+/// Works out all phenomena of a model, or the script itself where it has none.
+/// Errors make the script invalid; notes do not.
+pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
     let mut errors = Vec::new();
     let mut cases = Vec::new();
-    for phenomenon in phenomena {
+    for phenomenon in phenomena(model) {
         let (case, found) = case(model, phenomenon);
         cases.extend(case);
         errors.extend(found);
@@ -147,4 +172,8 @@ pub enum Body {
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

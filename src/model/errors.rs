@@ -131,6 +131,18 @@ pub enum ModelError {
     ShareAsMargin { span: Span, text: String },
     /// A range behind a value that follows others.
     DerivedScale { name: String, span: Span },
+    /// A derived name where one is wanted that moves by itself.
+    MovesWithParts {
+        name: String,
+        span: Span,
+        parts: Vec<String>,
+    },
+    /// A name that would move a symbol which is no product with it.
+    MovesOthers {
+        name: String,
+        span: Span,
+        holders: Vec<String>,
+    },
     /// Something that is no product of powers where one is needed.
     NotAProduct { span: Span, what: Product },
     /// A number or exponent beyond the limits.
@@ -296,6 +308,20 @@ pub enum Product {
 }
 
 impl ModelError {
+    /// Whether it is about a value or its range, which can be judged beside other faults.
+    pub fn is_of_value(&self) -> bool {
+        matches!(
+            self,
+            ModelError::NotPositive { .. }
+                | ModelError::RangeUpsideDown { .. }
+                | ModelError::RangeHoldsZero { .. }
+                | ModelError::MarginTooWide { .. }
+                | ModelError::DerivedScale { .. }
+                | ModelError::DividesByZero { .. }
+                | ModelError::OutOfDomain { .. }
+        )
+    }
+
     /// Puts it into words.
     pub fn diagnostic(&self) -> Diagnostic {
         use ModelError as E;
@@ -390,6 +416,8 @@ impl ModelError {
             | E::MarginTooWide { .. }
             | E::ShareAsMargin { .. }
             | E::DerivedScale { .. } => self.value_diagnostic(),
+            E::MovesWithParts { name, span, parts } => moves_with_parts(name, *span, parts),
+            E::MovesOthers { name, span, holders } => moves_others(name, *span, holders),
             E::NotAProduct { span, what } => not_a_product(*span, *what),
             E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
                 .with_help(format!(
@@ -741,6 +769,46 @@ fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagn
             .with_related(first, "declared here first"),
         None => found,
     }
+}
+
+fn moves_with_parts(name: &str, span: Span, parts: &[String]) -> Diagnostic {
+    let found = Diagnostic::error(
+        "derived-scale",
+        span,
+        format!("`{name}` follows its parts and cannot be moved alone"),
+    );
+    match quoted(parts) {
+        listed if listed.is_empty() => found,
+        listed => found.with_help(format!("take one of its parts: {listed}")),
+    }
+}
+
+fn moves_others(name: &str, span: Span, holders: &[String]) -> Diagnostic {
+    let named: Vec<String> = holders
+        .iter()
+        .filter(|holder| !holder.contains('('))
+        .cloned()
+        .collect();
+    let help = match (named.as_slice(), holders.first()) {
+        ([], Some(function)) => {
+            format!("name the function, `constant k = {function}`, and take `k`")
+        }
+        (_, _) => format!("take {} instead", quoted(&named)),
+    };
+    Diagnostic::error(
+        "not-a-product",
+        span,
+        format!(
+            "`{name}` cannot be moved alone: {} would change along no power law",
+            quoted(holders)
+        ),
+    )
+    .with_help(help)
+}
+
+fn quoted(names: &[String]) -> String {
+    let quoted: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+    quoted.join(", ")
 }
 
 fn not_a_product(span: Span, what: Product) -> Diagnostic {

@@ -1,7 +1,7 @@
 //! Checks requests and claims: that what they name is there and that their expressions
 //! have fitting dimensions; and finds the phenomena that a request answers for.
 
-use crate::analysis::Case;
+use crate::analysis::{Case, compare};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
 use crate::model::{Model, declarations, names, terms};
@@ -61,7 +61,11 @@ pub fn check(model: &Model) -> Vec<ModelError> {
     errors
 }
 
-fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
+/// A phenomenon by its name.
+///
+/// # Errors
+/// [`ModelError::UnknownPhenomenon`].
+pub fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
     model
         .phenomenon(&name.text)
         .ok_or_else(|| ModelError::UnknownPhenomenon {
@@ -112,7 +116,8 @@ impl Checker<'_> {
             }
             RequestKind::Claim(claim) => self.claim(claim),
             RequestKind::Nondimensionalize { equations, .. } => self.equations(equations),
-            RequestKind::Bounds { .. } => self.unavailable("bounds", request.span),
+            // What may be moved is known case by case.
+            RequestKind::Bounds { .. } => {}
             RequestKind::Find { .. } => self.unavailable("find", request.span),
             RequestKind::Layers => self.unavailable("layers", request.span),
             RequestKind::Groups => {}
@@ -120,7 +125,9 @@ impl Checker<'_> {
             RequestKind::Expand { .. } => self.unavailable("expand", request.span),
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
             RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
-            RequestKind::Compare { .. } => self.unavailable("compare", request.span),
+            RequestKind::Compare { .. } => {
+                self.errors.extend(compare::check(self.model, request));
+            }
         }
     }
 

@@ -55,7 +55,7 @@ const BYTE_ORDER_MARK: char = '\u{feff}';
 #[derive(Logos, Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 #[logos(skip r"[ \t\r\n\f]+")]
 #[rustfmt::skip]
-#[allow(missing_docs)] // each keyword stands for itself
+#[expect(missing_docs, reason = "each stands for what is written beside it")]
 pub enum Kind {
     #[token("scale")] Scale,
     #[token("constant")] Constant,

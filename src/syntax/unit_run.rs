@@ -3,6 +3,7 @@
 //! Used by the lexer behind a number and behind `in`. Whether the run is a unit that
 //! exists, and whether it divides once only, is left to the units.
 
+use crate::limits::NESTING;
 use crate::syntax::token::is_reserved;
 
 /// Where a unit begins.
@@ -14,14 +15,11 @@ pub(crate) enum StartOfUnit {
     BehindIn,
 }
 
-/// The deepest nesting of brackets in a unit.
-const UNIT_NESTING: usize = 8;
-
 /// The length in bytes of the unit at the start of a text; 0 if there is none.
 pub(crate) fn unit_length(text: &str, start: StartOfUnit) -> usize {
     let mut len = first_factor_length(text, start);
     while len > 0 {
-        let more = joined_length(&text[len..], &['.', '\u{B7}', '/'], UNIT_NESTING);
+        let more = joined_length(&text[len..], &['.', '\u{B7}', '/'], NESTING);
         if more == 0 {
             break;
         }
@@ -44,7 +42,7 @@ pub(crate) fn exponent_length(text: &str) -> usize {
 
 fn first_factor_length(text: &str, start: StartOfUnit) -> usize {
     if let Some(rest) = text.strip_prefix('1') {
-        let divided = joined_length(rest, &['/'], UNIT_NESTING);
+        let divided = joined_length(rest, &['/'], NESTING);
         let stands_alone = !rest.starts_with(|c: char| c.is_alphanumeric() || ".^".contains(c));
         return match start {
             StartOfUnit::BehindIn if divided == 0 && stands_alone => 1,
@@ -53,7 +51,7 @@ fn first_factor_length(text: &str, start: StartOfUnit) -> usize {
     }
     match start {
         StartOfUnit::BehindNumber if text.starts_with('(') => 0,
-        StartOfUnit::BehindNumber | StartOfUnit::BehindIn => factor_length(text, UNIT_NESTING),
+        StartOfUnit::BehindNumber | StartOfUnit::BehindIn => factor_length(text, NESTING),
     }
 }
 

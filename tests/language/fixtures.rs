@@ -8,12 +8,14 @@ use scalewright::source::Sources;
 use scalewright::syntax::parser::parse;
 
 use super::printing::check_printing;
+use super::spans::check_spans;
 
 #[test]
 fn scripts_are_read() {
     insta::glob!("..", "inputs/parser/ok/*.scl", |path| {
         let source = text_of(path);
         let printed = check_printing(&source);
+        check_spans(&source);
         insta::with_settings!({ description => source, omit_expression => true }, {
             insta::assert_snapshot!("ok", printed);
         });

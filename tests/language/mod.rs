@@ -4,7 +4,9 @@ mod fixtures;
 mod grammar;
 mod limits;
 mod printing;
+mod prompt;
 mod soup;
+mod spans;
 
 use scalewright::source::FileId;
 use scalewright::syntax::ast::Script;

@@ -1,7 +1,9 @@
 //! The answers as JSON, for other programs. It only serialises: what is said is settled
 //! by the analysis and by `words`.
 
+mod bounds;
 mod claims;
+mod compare;
 mod groups;
 mod nondimensional;
 mod rank;
@@ -115,6 +117,8 @@ fn answer(answer: &Answer) -> Value {
         }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
+        Body::Bounds(found) => bounds::bounds(found),
+        Body::Compare(comparison) => compare::compare(comparison),
     };
     if let (Value::Object(object), Value::Object(own)) = (&mut object, own) {
         object.extend(own);

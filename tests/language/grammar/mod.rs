@@ -14,6 +14,7 @@ use self::ebnf::Rule;
 use self::sentences::{Sentences, is_token};
 use super::printing::check_printing;
 use super::soup::check;
+use super::spans::check_spans;
 use super::{read, read_well};
 
 const N_SENTENCES: usize = 6_000;
@@ -34,16 +35,22 @@ fn grammar() -> BTreeMap<String, Rule> {
     ebnf::read(include_str!("../../../grammar/scl.ebnf"))
 }
 
-/// Tokens as a text; a blank stands between two, or now and then a new line where one may.
+/// Tokens as a text; a blank stands between two, or now and then new lines and a comment
+/// where they may.
 fn joined(tokens: &[String], sentences: &mut Sentences<'_>) -> String {
     let mut text = String::new();
     for (at, token) in tokens.iter().enumerate() {
         let is_digit = |c: char| c.is_ascii_digit();
         let behind_number = at > 0 && tokens[at - 1].starts_with(is_digit);
-        text.push_str(match at > 0 && !behind_number && sentences.below(12) == 0 {
-            true => "\n",
+        let blanks = [" ", "\n", "\n\n\n", " # so\n", "\n # so"];
+        let blank = match at > 0 && !behind_number && sentences.below(6) == 0 {
+            true => blanks[sentences.below(blanks.len())],
             false => " ",
-        });
+        };
+        text.push_str(blank);
+        if blank.ends_with('o') {
+            text.push('\n');
+        }
         text.push_str(token);
     }
     text
@@ -84,6 +91,7 @@ fn sentences_of_the_grammar_are_read_and_printed() {
         assert!(errors.iter().all(is_beyond_form), "{errors:?} in\n{text}");
         if errors.is_empty() {
             check_printing(&text);
+            check_spans(&text);
             n_clean += 1;
         }
     }
