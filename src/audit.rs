@@ -172,6 +172,7 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
     let opened = info
         .entries
         .iter()
+        .rev()
         .find_map(|(_, entry)| entry.notes.title.as_ref());
     let formula = match &decl.value {
         ast::Value::Given { nominal, .. } => {

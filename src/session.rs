@@ -13,6 +13,7 @@ use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
@@ -229,10 +230,15 @@ fn check_model(
     mut errors: Vec<ModelError>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
-        errors.extend(analysis::value_errors(&model));
+        for error in analysis::value_errors(&model) {
+            if errors.iter().all(|known| !overlap(known, &error)) {
+                errors.push(error);
+            }
+        }
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
@@ -242,6 +248,14 @@ fn check_model(
         errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
+}
+
+/// Whether two faults point at one place, so that the second would repeat the first.
+fn overlap(a: &ModelError, b: &ModelError) -> bool {
+    match (a.diagnostic().span, b.diagnostic().span) {
+        (Some(a), Some(b)) => a.file == b.file && a.start < b.end && b.start < a.end,
+        (Some(_) | None, None) | (None, Some(_)) => false,
+    }
 }
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
@@ -586,7 +600,7 @@ impl Answering<'_> {
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
             Some(equation) => format!("`{equation}` needs"),
-            None => "every equation needs".to_owned(),
+            None => "this request needs".to_owned(),
         };
         let whose = case
             .setting
@@ -634,7 +648,7 @@ impl Answering<'_> {
                     .iter()
                     .map(|id| case.setting.names[id.idx()].clone())
                     .collect();
-                self.open_scale(case, Some("this"), &names, span);
+                self.open_scale(case, None, &names, span);
             }
             fault => self
                 .outcome

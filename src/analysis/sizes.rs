@@ -197,11 +197,7 @@ impl Shares {
             .iter()
             .map(|idx| polyhedra::highest(*idx, &self.forms, bounds))
             .fold(f64::NEG_INFINITY, f64::max);
-        Range {
-            low: snapped(low.exp()).min(nominal),
-            nominal,
-            high: snapped(high.exp()).max(nominal),
-        }
+        around(snapped(low.exp()), nominal, snapped(high.exp()))
     }
 
     /// The lowest share of a process over the box.
@@ -257,6 +253,16 @@ impl Shares {
     }
 }
 
+/// A range whose ends are equal to its nominal value within rounding is that value.
+fn around(low: f64, nominal: f64, high: f64) -> Range {
+    let end = |end: f64| if same(end, nominal) { nominal } else { end };
+    Range {
+        low: end(low).min(nominal),
+        nominal,
+        high: end(high).max(nominal),
+    }
+}
+
 /// A share of 1 within rounding is 1.
 fn snapped(share: f64) -> f64 {
     if same(share, 1.0) { 1.0 } else { share }
@@ -296,11 +302,11 @@ pub fn ratio(setting: &Setting, above: &[Monomial], below: &[Monomial]) -> Range
             .map(|idx| polyhedra::highest_against(*idx, against, &forms, &space.bounds))
             .fold(f64::NEG_INFINITY, f64::max)
     };
-    Range {
-        low: (-highest(&rivals, &own)).exp().min(nominal),
+    around(
+        (-highest(&rivals, &own)).exp(),
         nominal,
-        high: highest(&own, &rivals).exp().max(nominal),
-    }
+        highest(&own, &rivals).exp(),
+    )
 }
 
 #[cfg(test)]

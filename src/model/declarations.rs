@@ -9,9 +9,10 @@ use num_traits::{One, Signed};
 use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::model::errors::{Clash, ModelError, Unavailable};
+use crate::model::frames::FrameInfo;
 use crate::model::{
     CoordinateInfo, FieldInfo, GroupId, GroupInfo, Level, Meaning, Model, PhenomenonInfo,
-    SymbolInfo, ToleranceInfo, VelocityInfo, is_given, names,
+    SymbolInfo, ToleranceInfo, VectorId, VectorInfo, VelocityInfo, is_given, names,
 };
 use crate::source::Span;
 use crate::syntax::ast;
@@ -54,11 +55,8 @@ impl Gatherer {
             Kind::Equation(decl) => self.equation(decl),
             Kind::Group(decl) => self.group(level, decl),
             Kind::Balance(decl) => self.balance(decl),
-            Kind::Frame(_) => self.unavailable(Unavailable::Frames, span),
-            Kind::Vector(decl) => {
-                self.unavailable(Unavailable::Frames, span);
-                self.sizeless_field(decl.name, Vec::new(), decl.notes);
-            }
+            Kind::Frame(decl) => self.frame(decl, span),
+            Kind::Vector(decl) => self.vector(decl),
             Kind::Split(decl) => self.sizeless_field(decl.name, decl.parts, decl.notes),
             Kind::Tolerance(decl) if level == Level::Script => self.tolerance(&decl),
             Kind::Phenomenon(decl) if level == Level::Script => self.phenomenon(decl),
@@ -226,14 +224,13 @@ impl Gatherer {
 
     fn velocity(&mut self, decl: ast::VelocityDecl, span: Span) {
         match decl {
-            ast::VelocityDecl::Vector { .. } => self.unavailable(Unavailable::Frames, span),
+            ast::VelocityDecl::Vector { name, .. } => self.vector_velocity(name, span),
             ast::VelocityDecl::Components {
                 fields,
                 coordinates,
                 ..
             } => {
-                if let Some(first) = &self.model.velocity {
-                    let first = first.span;
+                if let Some(first) = self.first_velocity() {
                     self.errors.push(ModelError::SecondValue {
                         name: "velocity".to_owned(),
                         span,
@@ -250,6 +247,53 @@ impl Gatherer {
                     self.model.velocity = Some(VelocityInfo { components, span });
                 }
             }
+        }
+    }
+
+    fn first_velocity(&self) -> Option<Span> {
+        let vector = self.model.vector_velocity.as_ref().map(|(_, span)| *span);
+        let components = self.model.velocity.as_ref().map(|info| info.span);
+        vector.or(components)
+    }
+
+    fn vector_velocity(&mut self, name: ast::Name, span: Span) {
+        match self.first_velocity() {
+            Some(first) => self.errors.push(ModelError::SecondValue {
+                name: "velocity".to_owned(),
+                span,
+                first,
+            }),
+            None => self.model.vector_velocity = Some((name, span)),
+        }
+    }
+
+    fn frame(&mut self, decl: ast::FrameDecl, span: Span) {
+        match &self.model.frame {
+            Some(first) => self.errors.push(ModelError::SecondValue {
+                name: "frame".to_owned(),
+                span,
+                first: first.span,
+            }),
+            None => self.model.frame = Some(FrameInfo::new(decl, span)),
+        }
+    }
+
+    fn vector(&mut self, decl: ast::VectorDecl) {
+        let id = VectorId(self.model.vectors.len() as u32);
+        let span = decl.value.span;
+        let components = match decl.value.kind {
+            ast::ExprKind::Tuple(parts) => parts,
+            // What could not be read was reported.
+            _ => Vec::new(),
+        };
+        if self.claim_name(&decl.name, Meaning::Vector(id)) {
+            self.model.vectors.push(VectorInfo {
+                name: decl.name,
+                components,
+                span,
+                notes: decl.notes,
+                shape: None,
+            });
         }
     }
 
@@ -388,7 +432,9 @@ impl Gatherer {
     fn phenomenon_value(&mut self, idx: usize, decl: ast::ValueDecl) {
         let id = match self.model.names.get(&decl.name.text).copied() {
             Some(Meaning::Symbol(id)) => id,
-            Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) => {
+            Some(
+                Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            ) => {
                 let first = self.places[&decl.name.text];
                 self.clash(&decl.name, first, Clash::Name);
                 return;

@@ -1,6 +1,9 @@
 //! Checks requests and claims: that what they name is there and that their expressions
 //! have fitting dimensions; and finds the phenomena that a request answers for.
 
+use num_rational::BigRational;
+use num_traits::One;
+
 use crate::analysis::{Case, compare};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
@@ -209,7 +212,14 @@ impl Checker<'_> {
         let result = match relation {
             R::MuchLess | R::MuchGreater => declarations::tolerance_value(within).map(|_| ()),
             R::Similar => crate::model::settings::factor(within).map(|_| ()),
-            R::Equal => declarations::share(within).map(|_| ()),
+            R::Equal => match declarations::share(within) {
+                Ok(share) if share >= BigRational::one() => Err(ModelError::WrongForm {
+                    found: "a factor",
+                    wanted: "a relative margin below 1 behind `=`, such as `within 1 %`",
+                    span: within.span,
+                }),
+                other => other.map(|_| ()),
+            },
             R::Less | R::Greater => Err(ModelError::WrongForm {
                 found: "`within`",
                 wanted: "no margin behind a comparison",

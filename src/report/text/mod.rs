@@ -158,9 +158,11 @@ fn audit_words(row: &AuditRow) -> String {
 // Answers -------------------------------------------------------------------------------------
 
 fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
+    // The phenomenon is named once, whatever the request says behind `for`.
+    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
     let title = match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
-        (Some(name), None) => format!("{}, {name}", answer.text),
+        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
+        (Some(name), None) => format!("{asked}, {name}"),
         (None, _) => answer.text.clone(),
     };
     if let Body::Show(shown) = &answer.body {
