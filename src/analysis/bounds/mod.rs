@@ -201,10 +201,14 @@ fn symbols(
     named: &[ast::Name],
 ) -> Result<Vec<SymbolId>, Vec<SymbolId>> {
     if !named.is_empty() {
-        let found: Vec<SymbolId> = named
-            .iter()
-            .filter_map(|name| movable::movable(model, case, name).ok())
-            .collect();
+        let mut found: Vec<SymbolId> = Vec::new();
+        for name in named {
+            if let Ok(id) = movable::movable(model, case, name)
+                && !found.contains(&id)
+            {
+                found.push(id);
+            }
+        }
         let open: Vec<SymbolId> = found
             .iter()
             .filter_map(|id| case.setting.symbol_value(&Symbol::Declared(*id)).err())
