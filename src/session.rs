@@ -1,7 +1,11 @@
 //! A session: takes a script, checks it, answers it. The command line and embedders go
 //! through here.
 
+mod solving;
+
+use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
+use std::rc::Rc;
 
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
@@ -17,6 +21,8 @@ use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+
+pub use solving::Watcher;
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -76,6 +82,7 @@ pub struct Session<'f> {
     folder: PathBuf,
     root: Option<PathBuf>,
     is_strict: bool,
+    watcher: Option<&'f dyn Watcher>,
 }
 
 impl Default for Session<'_> {
@@ -92,6 +99,7 @@ impl<'f> Session<'f> {
             folder: PathBuf::new(),
             root: None,
             is_strict: false,
+            watcher: None,
         }
     }
 
@@ -117,6 +125,13 @@ impl<'f> Session<'f> {
         self
     }
 
+    /// Lets somebody watch long searches, and end them.
+    #[must_use]
+    pub fn with_watcher(mut self, watcher: &'f dyn Watcher) -> Session<'f> {
+        self.watcher = Some(watcher);
+        self
+    }
+
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, _) = self.checked(name, text, path);
@@ -132,6 +147,10 @@ impl<'f> Session<'f> {
                 model: &checked.model,
                 cases: &checked.cases,
                 outcome: &mut outcome,
+                watcher: self.watcher,
+                found: BTreeMap::new(),
+                limit: None,
+                is_interrupted: false,
             }
             .all();
         }
@@ -261,9 +280,16 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    watcher: Option<&'a dyn Watcher>,
+    /// Phenomena in which a `find` gave formulas.
+    found: BTreeMap<Option<usize>, solving::Found>,
+    /// The `limit` in force.
+    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Whether a search was ended, and with it the rest.
+    is_interrupted: bool,
 }
 
-impl Answering<'_> {
+impl<'a> Answering<'a> {
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -286,14 +312,37 @@ impl Answering<'_> {
         }
         for (own, request) in &model.requests {
             let text = words(self.outcome.sources.slice(request.span));
+            if let RequestKind::Limit { small, places } = &request.kind {
+                self.limit = Some((small, places));
+            }
+            if self.is_interrupted {
+                break;
+            }
             self.request(*own, request, &text);
         }
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Find {
+            unknowns,
+            conditions,
+        } = &request.kind
+        {
+            let span = request.span;
+            let words = solving::FindWords {
+                unknowns,
+                conditions,
+                span,
+                text,
+            };
+            self.find(own, request, &words);
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
-            if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
+            let found = self.found.get(&target).map(|found| Rc::clone(&found.case));
+            let given = cases.iter().find(|case| case.setting.phenomenon == target);
+            if let Some(case) = found.as_deref().or(given) {
                 self.answer(case, request, text);
             }
         }
@@ -363,11 +412,11 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
-            // The check refused these.
+            RequestKind::Layers => self.layers(case, request.span, text),
+            // Answered before, or the check refused them.
             RequestKind::Nondimensionalize { .. }
             | RequestKind::Bounds { .. }
             | RequestKind::Find { .. }
-            | RequestKind::Layers
             | RequestKind::Groups
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }

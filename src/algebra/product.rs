@@ -67,6 +67,8 @@ pub struct Sized {
     pub variations: Vec<Variation>,
     /// The fields in it.
     pub fields: Vec<FieldId>,
+    /// The sizes of its parts, derived scales replaced; none where they cannot be told.
+    pub parts: Vec<Monomial>,
     /// Where it stands, so that two of them are told apart.
     pub place: u32,
 }

@@ -1,7 +1,9 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod balances;
 pub mod claims;
+pub mod layers;
 pub mod names;
 pub mod rank;
 pub mod reduce;
@@ -9,7 +11,7 @@ pub mod show;
 pub mod sizes;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
-use crate::model::settings::{self, Setting};
+use crate::model::settings::{self, Adopted, Setting};
 use crate::model::terms::{self, EquationTerms};
 use crate::model::{Model, errors::ModelError};
 use crate::number::{Exponent, Number};
@@ -34,10 +36,15 @@ fn phenomena(model: &Model) -> Vec<Option<usize>> {
 /// The faults of values and ranges alone, for a model that has other faults: a script with
 /// five mistakes tells of five.
 pub fn value_errors(model: &Model) -> Vec<ModelError> {
-    let found = phenomena(model).into_iter().flat_map(|idx| settings::build(model, idx).1);
+    let found = phenomena(model)
+        .into_iter()
+        .flat_map(|idx| settings::build(model, idx).1);
     let mut errors: Vec<ModelError> = Vec::new();
     for error in found.filter(ModelError::is_of_value) {
-        if errors.iter().all(|known| known.diagnostic() != error.diagnostic()) {
+        if errors
+            .iter()
+            .all(|known| known.diagnostic() != error.diagnostic())
+        {
             errors.push(error);
         }
     }
@@ -59,7 +66,16 @@ pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
 
 /// Works out one phenomenon.
 pub fn case(model: &Model, phenomenon: Option<usize>) -> (Option<Case>, Vec<ModelError>) {
-    let (setting, mut errors) = settings::build(model, phenomenon);
+    case_with(model, phenomenon, &Adopted::new())
+}
+
+/// The same with open scales that follow the formulas found for them.
+pub fn case_with(
+    model: &Model,
+    phenomenon: Option<usize>,
+    adopted: &Adopted,
+) -> (Option<Case>, Vec<ModelError>) {
+    let (setting, mut errors) = settings::build_with(model, phenomenon, adopted);
     let Some(setting) = setting else {
         return (None, errors);
     };
@@ -156,4 +172,8 @@ pub enum Body {
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `find`.
+    Find(balances::Balances),
+    /// `layers`.
+    Layers(layers::Layers),
 }

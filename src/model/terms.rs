@@ -7,7 +7,7 @@ use std::sync::Arc;
 use num_traits::ToPrimitive;
 
 use crate::algebra::calculus;
-use crate::algebra::monomial::Symbol;
+use crate::algebra::monomial::{Monomial, Symbol};
 use crate::algebra::product::{Base, Derivative, Factor, Product, Sized, Speller};
 use crate::algebra::quantities::{CoordinateId, FieldId, Size, Variation};
 use crate::limits;
@@ -803,7 +803,8 @@ impl<'a> Maker<'a> {
             .quantities
             .size(found.abs())
             .map_err(|_| ModelError::TooLarge { span })?;
-        self.compare_with_parts(&found, inside, size.span)?;
+        let parts = self.part_sizes(inside).unwrap_or_default();
+        self.compare_with_parts(&found, &parts, size.span)?;
         let fields = self.fields_in(inside);
         let variations = self.shortest_variations(&fields, &found);
         let sized = Sized {
@@ -811,6 +812,7 @@ impl<'a> Maker<'a> {
             size: found,
             variations,
             fields,
+            parts,
             place: whole.span.start,
         };
         Ok(plain(Product::base(Base::Sized(Arc::new(sized)))))
@@ -820,11 +822,12 @@ impl<'a> Maker<'a> {
     fn compare_with_parts(
         &mut self,
         size: &Size,
-        inside: &ast::Expr,
+        parts: &[Monomial],
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let largest = self.largest_part(inside);
+        let parts = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = parts.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -846,29 +849,37 @@ impl<'a> Maker<'a> {
         Ok(())
     }
 
-    /// The nominal size of the largest part of an expression, where it can be told.
-    fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
+    /// The sizes of the parts of an expression, where they can be told.
+    fn part_sizes(&mut self, inside: &ast::Expr) -> Option<Vec<Monomial>> {
         let root = match &inside.kind {
             ExprKind::Call {
                 function,
                 order: None,
                 arguments,
             } if function.text == "sqrt" => arguments.first(),
-            ExprKind::Bracket(inside) => return self.largest_part(inside),
+            ExprKind::Bracket(inside) => return self.part_sizes(inside),
             _ => None,
         };
         if let Some(argument) = root {
-            return self.largest_part(argument).map(f64::sqrt);
+            let parts = self.part_sizes(argument)?.into_iter();
+            return parts
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok())
+                .collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        pieces?
-            .iter()
-            .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
-            .map(|size| self.setting.nominal(&size.resolved))
-            .reduce(f64::max)
+        let sizes = pieces?.into_iter().map(|piece| {
+            let size = piece.product.size(&self.setting.quantities).ok()?;
+            Some(size.resolved.abs())
+        });
+        let is_there = |size: &Monomial| {
+            let mut symbols = size.powers().iter();
+            !size.number.is_zero() && !symbols.any(|(symbol, _)| self.setting.is_zero(symbol))
+        };
+        let sizes: Vec<Monomial> = sizes.collect::<Option<_>>()?;
+        Some(sizes.into_iter().filter(is_there).collect())
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {

@@ -2,6 +2,8 @@
 //! by the analysis and by `words`.
 
 mod claims;
+mod find;
+mod layers;
 mod rank;
 mod reduce;
 mod show;
@@ -109,6 +111,8 @@ fn answer(answer: &Answer) -> Value {
         Body::Show(shown) => show::show(shown),
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
+        Body::Find(balances) => find::find(balances),
+        Body::Layers(found) => layers::layers(found),
     };
     if let (Value::Object(object), Value::Object(own)) = (&mut object, own) {
         object.extend(own);

@@ -2,6 +2,8 @@
 //! all answers share and the audit of what was given; each request has a file of its own.
 
 mod claims;
+mod find;
+mod layers;
 mod rank;
 mod reduce;
 mod show;
@@ -151,6 +153,8 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Find(balances) => find::find(balances, pen, out),
+        Body::Layers(found) => layers::layers(found, pen, out),
     }
     for left in &answer.left_out {
         let text = format!("{}: open {}", left.equation, left.open.join(", "));
