@@ -5,7 +5,7 @@ use crate::report::layout::{number, padded, quantity, range, wrapped};
 use crate::report::text::Pen;
 use crate::report::words;
 
-/// Writes all thin layers.
+/// Writes all thin layers, those of one thickness together.
 pub(super) fn layers(found: &Layers, pen: &Pen, out: &mut String) {
     if found.layers.is_empty() {
         let text = "no thin layer: no highest derivative is dropped that a layer could bring back";
@@ -13,8 +13,9 @@ pub(super) fn layers(found: &Layers, pen: &Pen, out: &mut String) {
         out.push('\n');
         return;
     }
-    for (idx, layer) in found.layers.iter().enumerate() {
-        write_layer(layer, idx, found, pen, out);
+    let groups = groups(found);
+    for (idx, group) in groups.iter().enumerate() {
+        write_group(group, idx, &groups, found, pen, out);
     }
     let text =
         "All other sizes are those outside; a layer in which they change is asked with `find`.";
@@ -22,58 +23,82 @@ pub(super) fn layers(found: &Layers, pen: &Pen, out: &mut String) {
     out.push('\n');
 }
 
-fn write_layer(layer: &Layer, idx: usize, found: &Layers, pen: &Pen, out: &mut String) {
-    let mut head = format!("{}  {}", idx + 1, layer.equation);
-    if let Some(title) = &layer.title {
-        head.push_str(&format!(", {title}"));
+/// Places of layers with one coordinate and one formula; adjustments in time come last.
+fn groups(found: &Layers) -> Vec<Vec<usize>> {
+    let mut groups: Vec<Vec<usize>> = Vec::new();
+    for (idx, layer) in found.layers.iter().enumerate() {
+        let alike = |group: &&mut Vec<usize>| {
+            let first = &found.layers[group[0]];
+            first.coordinate == layer.coordinate && first.formula == layer.formula
+        };
+        match groups.iter_mut().find(alike) {
+            Some(group) => group.push(idx),
+            None => groups.push(vec![idx]),
+        }
     }
-    let kind = match layer.coordinate.as_str() {
-        "t" => ", fast adjustment in time".to_owned(),
-        along => format!(", thin along {along}"),
+    groups.sort_by_key(|group| found.layers[group[0]].coordinate == "t");
+    groups
+}
+
+fn write_group(
+    group: &[usize],
+    idx: usize,
+    groups: &[Vec<usize>],
+    found: &Layers,
+    pen: &Pen,
+    out: &mut String,
+) {
+    let first = &found.layers[group[0]];
+    let is_time = first.coordinate == "t";
+    let head = match first.coordinate.as_str() {
+        "t" => format!("{}  fast adjustment in time", idx + 1),
+        along => format!("{}  thin layer along {along}", idx + 1),
     };
-    head.push_str(&kind);
-    out.push_str(&wrapped("", &head).replacen(&head, &pen.head(&head), 1));
-    let mut row = |word: &str, text: &str| {
-        out.push_str(&wrapped(&format!("  {}  ", padded(word, 9)), text));
-    };
-    let word = if layer.coordinate == "t" {
-        "time"
-    } else {
-        "thickness"
-    };
+    out.push_str(&format!("{}\n", pen.head(&head)));
     let size = format!(
         "{} = {}, {} of {}",
-        words::formula(&layer.formula),
-        quantity(&layer.value, &layer.unit),
-        range(&layer.ratio),
-        words::factors(&layer.outer)
+        words::formula(&first.formula),
+        quantity(&first.value, &first.unit),
+        range(&first.ratio),
+        words::factors(&first.outer)
     );
-    row(word, &size);
+    let word = if is_time { "time" } else { "thickness" };
+    row(word, &size, out);
+    if let Some(around) = first.inside {
+        let outer = &found.layers[around];
+        let times = number(outer.value.nominal / first.value.nominal);
+        let long = if is_time { "long" } else { "thick" };
+        let place = groups.iter().position(|group| group.contains(&around));
+        let place = place.map_or(0, |place| place + 1);
+        row("within", &format!("{place}, {times} times as {long}"), out);
+    }
+    for idx in group {
+        write_layer(&found.layers[*idx], out);
+    }
+    out.push('\n');
+}
+
+fn row(word: &str, text: &str, out: &mut String) {
+    out.push_str(&wrapped(&format!("  {}  ", padded(word, 9)), text));
+}
+
+fn write_layer(layer: &Layer, out: &mut String) {
+    row("in", &layer.equation, out);
     let inside = layer.balance.join(" ~ ");
     match &layer.name {
-        Some(name) => row("inside", &format!("{inside} ({name})")),
-        None => row("inside", &inside),
+        Some(name) => row("  inside", &format!("{inside} ({name})"), out),
+        None => row("  inside", &inside, out),
     }
-    row("outside", &outside(layer));
-    if let Some(around) = layer.inside {
-        let outer = &found.layers[around];
-        let times = outer.value.nominal / layer.value.nominal;
-        let text = format!("layer {}, {} times as thick", around + 1, number(times));
-        row("within", &text);
-    }
+    row("  outside", &outside(layer), out);
     if !layer.whole_box {
         let texts: Vec<String> = (layer.conditions.iter())
             .map(|condition| {
-                format!(
-                    "{} (now {})",
-                    words::inequality(condition),
-                    range(&condition.value)
-                )
+                let now = range(&condition.value);
+                format!("{} (now {now})", words::inequality(condition))
             })
             .collect();
-        row("stands", &format!("where {}", texts.join(" and ")));
+        row("  stands", &format!("where {}", texts.join(" and ")), out);
     }
-    out.push('\n');
 }
 
 fn outside(layer: &Layer) -> String {
