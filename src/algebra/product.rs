@@ -63,12 +63,13 @@ pub struct Sized {
     pub text: String,
     /// Its size.
     pub size: Size,
+    /// The sizes of its parts, the largest of which it must not exceed; none where they
+    /// cannot be told.
+    pub parts: Vec<Monomial>,
     /// How it varies, over the shortest of its parts' lengths.
     pub variations: Vec<Variation>,
     /// The fields in it.
     pub fields: Vec<FieldId>,
-    /// The sizes of its parts, derived scales replaced; none where they cannot be told.
-    pub parts: Vec<Monomial>,
     /// Where it stands, so that two of them are told apart.
     pub place: u32,
 }

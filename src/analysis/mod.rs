@@ -2,11 +2,18 @@
 //! and names, never prose.
 
 pub mod balances;
-pub mod claims;
 pub mod layers;
+pub mod bounds;
+pub mod claims;
+pub mod compare;
+pub mod groups;
+pub mod matching;
+pub mod movable;
 pub mod names;
+pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 
@@ -168,6 +175,10 @@ pub struct Answer {
 pub enum Body {
     /// `show`.
     Show(show::Shown),
+    /// `groups`.
+    Groups(groups::Groups),
+    /// `nondimensionalize`.
+    Nondimensionalize(Vec<nondimensional::DimensionlessEquation>),
     /// `rank`.
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
@@ -176,4 +187,8 @@ pub enum Body {
     Find(balances::Balances),
     /// `layers`.
     Layers(layers::Layers),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

@@ -94,6 +94,11 @@ impl Space {
         Space { symbols, bounds }
     }
 
+    /// The symbols with their ranges, in natural logarithms of amounts.
+    pub fn ranges(&self) -> impl Iterator<Item = (&Symbol, (f64, f64))> {
+        self.symbols.iter().zip(self.bounds.iter().copied())
+    }
+
     /// Whether it is a single point.
     pub fn is_point(&self) -> bool {
         self.symbols.is_empty()
@@ -195,6 +200,51 @@ impl Shares {
             nominal,
             high: snapped(high.exp()).max(nominal),
         }
+    }
+
+    /// The lowest share of a process over the box.
+    pub fn lowest(&self, members: &[usize]) -> f64 {
+        if self.space.is_point() {
+            return self.of_process(members).nominal;
+        }
+        let low = polyhedra::lowest_of_process(members, &self.forms, &self.space.bounds);
+        snapped(low.exp())
+    }
+
+    /// The highest share of a term over the box.
+    pub fn highest(&self, term: usize) -> f64 {
+        if self.space.is_point() {
+            return self.of_process(&[term]).nominal;
+        }
+        let high = polyhedra::highest(term, &self.forms, &self.space.bounds);
+        snapped(high.exp())
+    }
+
+    /// The nominal share of a process.
+    pub fn nominal(&self, members: &[usize]) -> f64 {
+        let own = members.iter().map(|idx| self.sizes[*idx].nominal);
+        snapped(own.fold(0.0, f64::max) / self.sizes[self.largest].nominal)
+    }
+
+    /// The same with the size of each term multiplied by the exponential of its way; the
+    /// shares are worked out when they are asked for.
+    #[must_use]
+    pub fn moved(&self, ways: &[f64]) -> Shares {
+        let mut moved = Shares {
+            shares: Vec::new(),
+            ..self.clone()
+        };
+        for (idx, way) in ways.iter().enumerate() {
+            let factor = way.exp();
+            moved.forms[idx].constant += way;
+            let size = &mut moved.sizes[idx];
+            size.low *= factor;
+            size.nominal *= factor;
+            size.high *= factor;
+        }
+        let nominal = moved.sizes.iter().map(|size| size.nominal);
+        moved.largest = largest(nominal).unwrap_or(0);
+        moved
     }
 
     /// The terms that are the largest somewhere in the box.

@@ -146,6 +146,8 @@ pub struct GroupInfo {
     pub value: ast::Expr,
     /// Title and source.
     pub notes: ast::Notes,
+    /// The level at which it is declared; a script's overrides a module's.
+    pub level: Level,
 }
 
 /// `velocity (u, v, w) along (x, y, z)`.

@@ -7,15 +7,15 @@ use std::sync::Arc;
 use num_traits::ToPrimitive;
 
 use crate::algebra::calculus;
-use crate::algebra::monomial::{Monomial, Symbol};
+use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Base, Derivative, Factor, Product, Sized, Speller};
 use crate::algebra::quantities::{CoordinateId, FieldId, Size, Variation};
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Unavailable};
 use crate::model::names::{self, Call, Function};
-use crate::model::settings::Setting;
+use crate::model::settings::{Setting, Variable};
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::number::{Exponent, Number, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator, Sign};
@@ -268,14 +268,15 @@ impl Names for Maker<'_> {
         None
     }
 
-    fn symbol(
-        &self,
-        id: crate::algebra::monomial::SymbolId,
-    ) -> Result<Value, Vec<crate::algebra::monomial::SymbolId>> {
+    fn symbol(&self, id: SymbolId) -> Result<Value, Vec<SymbolId>> {
         match &self.setting.variables[id.idx()] {
-            crate::model::settings::Variable::Known(value) => Ok(value.clone()),
-            crate::model::settings::Variable::Open(open) => Err(open.clone()),
+            Variable::Known(value) => Ok(value.clone()),
+            Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
     }
 
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
@@ -810,9 +811,9 @@ impl<'a> Maker<'a> {
         let sized = Sized {
             text: print::expression(&unnamed(whole)),
             size: found,
+            parts,
             variations,
             fields,
-            parts,
             place: whole.span.start,
         };
         Ok(plain(Product::base(Base::Sized(Arc::new(sized)))))
@@ -826,8 +827,8 @@ impl<'a> Maker<'a> {
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let parts = parts.iter().map(|part| self.setting.nominal(part));
-        let largest = parts.reduce(f64::max);
+        let sizes = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = sizes.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -861,25 +862,22 @@ impl<'a> Maker<'a> {
             _ => None,
         };
         if let Some(argument) = root {
-            let parts = self.part_sizes(argument)?.into_iter();
-            return parts
-                .map(|part| part.power(Exponent::ratio(1, 2)).ok())
-                .collect();
+            let parts = self.part_sizes(argument)?;
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        let sizes = pieces?.into_iter().map(|piece| {
-            let size = piece.product.size(&self.setting.quantities).ok()?;
-            Some(size.resolved.abs())
-        });
-        let is_there = |size: &Monomial| {
-            let mut symbols = size.powers().iter();
-            !size.number.is_zero() && !symbols.any(|(symbol, _)| self.setting.is_zero(symbol))
-        };
-        let sizes: Vec<Monomial> = sizes.collect::<Option<_>>()?;
-        Some(sizes.into_iter().filter(is_there).collect())
+        let sizes = pieces?
+            .iter()
+            .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
+            .map(|size| size.resolved.abs())
+            .collect();
+        Some(sizes)
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {

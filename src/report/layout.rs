@@ -139,6 +139,15 @@ pub fn wrapped(label: &str, text: &str) -> String {
     out
 }
 
+/// An equation likewise; a line is broken before a sign, never behind it.
+pub fn wrapped_equation(label: &str, equation: &str) -> String {
+    let mut glued = equation.to_owned();
+    for sign in ["+", "-", "="] {
+        glued = glued.replace(&format!(" {sign} "), &format!(" {sign}\u{a0}"));
+    }
+    wrapped(label, &glued).replace('\u{a0}', " ")
+}
+
 /// An SI unit as people write it: `m/s²`.
 pub fn unit(unit: &str) -> String {
     if unit == "1" {

@@ -87,6 +87,11 @@ impl Answering<'_> {
         self.outcome.diagnostics.extend(found);
     }
 
+    /// A phenomenon with the formulas that a `find` gave.
+    pub(super) fn solved(&self, target: Option<usize>) -> Option<Rc<Case>> {
+        self.found.get(&target).map(|found| Rc::clone(&found.case))
+    }
+
     /// The first of the wanted names that is not open in a phenomenon.
     fn closed_name(&self, target: Option<usize>, words: &FindWords<'_>) -> Option<Closed> {
         words.unknowns.iter().find_map(|name| {

@@ -376,12 +376,15 @@ impl<'q> Logs<'q> {
     fn below_parts(&self, sized: &Sized) -> Option<(Equation, Vec<Monomial>)> {
         let size = &sized.size.resolved;
         let mut sizes: Vec<Monomial> = Vec::new();
-        for part in &sized.parts {
+        for part in sized.parts.iter().filter(|part| self.is_there(part)) {
             sizes.extend([part.clone(), part.clone()]);
+        }
+        if sizes.is_empty() {
+            return None;
         }
         sizes.push(size.clone());
         let is_open = |part: &Monomial| self.open_exponents(part).iter().any(|e| !e.is_zero());
-        if sized.parts.is_empty() || !sizes.iter().any(is_open) {
+        if !sizes.iter().any(is_open) {
             return None;
         }
         let terms = sizes.iter().enumerate();
@@ -392,6 +395,13 @@ impl<'q> Logs<'q> {
             required: Vec::new(),
         };
         Some((equation, sizes))
+    }
+
+    /// Whether no constant that is 0 takes a product out.
+    fn is_there(&self, product: &Monomial) -> bool {
+        let mut symbols = product.powers().iter();
+        !product.number.is_zero()
+            && !symbols.any(|(symbol, _)| self.query.setting.is_zero(symbol))
     }
 
     /// The bounds: those asked for, then two for each range.
