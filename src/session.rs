@@ -5,7 +5,11 @@ pub mod changes;
 pub mod incremental;
 mod merge;
 
+mod solving;
+
+use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
+use std::rc::Rc;
 
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
@@ -26,6 +30,8 @@ use crate::report::{standing, words};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
 use crate::syntax::{parser, print};
+
+pub use solving::Watcher;
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -93,6 +99,7 @@ pub struct Session<'f> {
     folder: PathBuf,
     root: Option<PathBuf>,
     is_strict: bool,
+    watcher: Option<&'f dyn Watcher>,
 }
 
 impl Default for Session<'_> {
@@ -109,6 +116,7 @@ impl<'f> Session<'f> {
             folder: PathBuf::new(),
             root: None,
             is_strict: false,
+            watcher: None,
         }
     }
 
@@ -134,6 +142,13 @@ impl<'f> Session<'f> {
         self
     }
 
+    /// Lets somebody watch long searches, and end them.
+    #[must_use]
+    pub fn with_watcher(mut self, watcher: &'f dyn Watcher) -> Session<'f> {
+        self.watcher = Some(watcher);
+        self
+    }
+
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
@@ -149,6 +164,10 @@ impl<'f> Session<'f> {
                 model: &checked.model,
                 cases: &checked.cases,
                 outcome: &mut outcome,
+                watcher: self.watcher,
+                found: BTreeMap::new(),
+                limit: None,
+                is_interrupted: false,
             }
             .all();
         }
@@ -335,9 +354,16 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    watcher: Option<&'a dyn Watcher>,
+    /// Phenomena in which a `find` gave formulas.
+    found: BTreeMap<Option<usize>, solving::Found>,
+    /// The `limit` in force.
+    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Whether a search was ended, and with it the rest.
+    is_interrupted: bool,
 }
 
-impl Answering<'_> {
+impl<'a> Answering<'a> {
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -360,11 +386,32 @@ impl Answering<'_> {
         }
         for (own, request) in &model.requests {
             let text = one_line(self.outcome.sources.slice(request.span));
+            if let RequestKind::Limit { small, places } = &request.kind {
+                self.limit = Some((small, places));
+            }
+            if self.is_interrupted {
+                break;
+            }
             self.request(*own, request, &text);
         }
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Find {
+            unknowns,
+            conditions,
+        } = &request.kind
+        {
+            let span = request.span;
+            let words = solving::FindWords {
+                unknowns,
+                conditions,
+                span,
+                text,
+            };
+            self.find(own, request, &words);
+            return;
+        }
         if let RequestKind::Compare {
             phenomena,
             matching,
@@ -375,7 +422,9 @@ impl Answering<'_> {
         }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
-            if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
+            let solved = self.solved(target);
+            let given = cases.iter().find(|case| case.setting.phenomenon == target);
+            if let Some(case) = solved.as_deref().or(given) {
                 self.answer(case, request, text);
             }
         }
@@ -445,6 +494,7 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Layers => self.layers(case, request.span, text),
             RequestKind::Nondimensionalize { equations, by } => {
                 if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
                     let are_named = !equations.is_empty();
@@ -485,12 +535,10 @@ impl Answering<'_> {
                     }
                 }
             }
-            // Answered once, for all the phenomena it names.
-            RequestKind::Compare { .. } => {}
+            // Answered once, for all the phenomena they name.
+            RequestKind::Compare { .. } | RequestKind::Find { .. } => {}
             // The check refused these.
-            RequestKind::Find { .. }
-            | RequestKind::Layers
-            | RequestKind::Limit { .. }
+            RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)
             | RequestKind::Regimes(..) => {}
@@ -504,13 +552,15 @@ impl Answering<'_> {
         span: Span,
         text: &str,
     ) {
-        let named: Vec<&Case> = phenomena
+        let wanted = phenomena.iter().map(|name| self.model.phenomenon(&name.text));
+        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> = wanted
+            .map(|wanted| (wanted, self.solved(wanted)))
+            .collect();
+        let cases = self.cases;
+        let given = |wanted| cases.iter().find(|case| case.setting.phenomenon == wanted);
+        let named: Vec<&Case> = solved
             .iter()
-            .filter_map(|name| {
-                let wanted = self.model.phenomenon(&name.text);
-                let mut cases = self.cases.iter();
-                cases.find(|case| case.setting.phenomenon == wanted)
-            })
+            .filter_map(|(wanted, solved)| solved.as_deref().or(given(*wanted)))
             .collect();
         match compare::compare(self.model, &named, matching) {
             Ok((comparison, left_out)) => {

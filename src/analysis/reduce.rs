@@ -516,7 +516,8 @@ fn lost_derivatives(case: &Case, kept: &Kept<'_>, stays: &[usize]) -> Vec<LostDe
     lost
 }
 
-fn order_along(derivative: &Derivative, along: CoordinateId) -> u32 {
+/// The order of a derivative along a coordinate, those inside it included.
+pub(crate) fn order_along(derivative: &Derivative, along: CoordinateId) -> u32 {
     let own: u32 = derivative
         .by
         .iter()

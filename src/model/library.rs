@@ -39,6 +39,7 @@ pub const MODULES: &[Module] = modules! {
     "constants": "constants.scl";
     "demo.boundary_current": "demo/boundary_current.scl";
     "demo.coastal_current": "demo/coastal_current.scl";
+    "demo.ekman": "demo/ekman.scl";
     "demo.harbour_surge": "demo/harbour_surge.scl";
     "demo.oil_drift": "demo/oil_drift.scl";
     "demo.ridge_wind": "demo/ridge_wind.scl";

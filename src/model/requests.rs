@@ -7,7 +7,7 @@ use num_traits::One;
 use crate::analysis::{Case, compare};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
-use crate::model::{Model, declarations, names, terms};
+use crate::model::{Meaning, Model, declarations, names, terms};
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ExprKind, ProcessRef, RequestKind};
 
@@ -121,9 +121,16 @@ impl Checker<'_> {
             RequestKind::Nondimensionalize { equations, .. } => self.equations(equations),
             // What may be moved is known case by case.
             RequestKind::Bounds { .. } => {}
-            RequestKind::Find { .. } => self.unavailable("find", request.span),
-            RequestKind::Layers => self.unavailable("layers", request.span),
-            RequestKind::Groups => {}
+            RequestKind::Find {
+                unknowns,
+                conditions,
+            } => {
+                unknowns.iter().for_each(|name| self.open_name(name));
+                for condition in conditions {
+                    self.equations(std::slice::from_ref(&condition.equation));
+                }
+            }
+            RequestKind::Layers | RequestKind::Groups => {}
             RequestKind::Limit { .. } => self.unavailable("limit", request.span),
             RequestKind::Expand { .. } => self.unavailable("expand", request.span),
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
@@ -147,6 +154,31 @@ impl Checker<'_> {
                 self.errors.push(error);
             }
         }
+    }
+
+    /// A name that may be looked for: a scale or a constant.
+    fn open_name(&mut self, name: &ast::Name) {
+        let kind = match self.model.meaning(&name.text, self.phenomenon) {
+            Some(Meaning::Symbol(_)) => return,
+            Some(Meaning::Coordinate(_)) => "coordinate",
+            Some(Meaning::Field(_)) => "field",
+            Some(Meaning::Group(_)) => "group",
+            None => {
+                let known = self.model.visible_names(self.phenomenon);
+                self.errors.push(ModelError::UnknownName {
+                    name: name.text.clone(),
+                    span: name.span,
+                    nearest: names::nearest(&name.text, known),
+                });
+                return;
+            }
+        };
+        self.errors.push(ModelError::OutOfPlace {
+            name: name.text.clone(),
+            kind,
+            wanted: "an open scale",
+            span: name.span,
+        });
     }
 
     fn show(&mut self, expr: &ast::Expr, unit: Option<&ast::UnitText>) {
@@ -306,6 +338,16 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
                 named_processes(model, case, right, &mut errors);
             }
             RequestKind::Show { expr, .. } => named_processes(model, case, expr, &mut errors),
+            RequestKind::Find { conditions, .. } => {
+                for condition in conditions {
+                    let Some(idx) = model.equation(&condition.equation.text) else {
+                        continue;
+                    };
+                    for process in [&condition.left, &condition.right] {
+                        errors.extend(process_label(model, case, idx, process).err());
+                    }
+                }
+            }
             RequestKind::Nondimensionalize {
                 equations,
                 by: Some(by),

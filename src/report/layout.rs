@@ -2,7 +2,7 @@
 
 use unicode_width::UnicodeWidthStr;
 
-use crate::units::Range;
+use crate::units::{Range, parse_unit};
 
 /// The width of a terminal that every report fits.
 pub const WIDTH: usize = 80;
@@ -201,6 +201,22 @@ pub fn quantity(value: &Range, unit_text: &str) -> String {
     let named = NAMED.iter().find(|(long, _)| *long == unit_text);
     let text = named.map_or_else(|| unit(unit_text), |(_, short)| (*short).to_owned());
     format!("{} {text}", range(value)).trim_end().to_owned()
+}
+
+/// A value in the unit in which it was declared, else in its SI unit.
+pub fn quantity_in(value: &Range, shown_in: Option<&str>, si_unit: &str) -> String {
+    let found = shown_in.and_then(|text| Some((text, parse_unit(text).ok()?)));
+    match found {
+        Some((text, found)) => {
+            let shown = Range {
+                low: found.from_si(value.low),
+                nominal: found.from_si(value.nominal),
+                high: found.from_si(value.high),
+            };
+            quantity(&shown, text)
+        }
+        None => quantity(value, si_unit),
+    }
 }
 
 #[cfg(test)]

@@ -1,5 +1,7 @@
 //! The sentences that all report forms share.
 
+use num_integer::Integer as _;
+
 use crate::analysis::claims::{Astray, Held, Measured};
 use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation, ReducedTerm};
 use crate::analysis::{Exponents, Factors};
@@ -67,6 +69,43 @@ fn raised(name: &str, power: Exponent) -> String {
 pub fn factors(factors: &Factors) -> String {
     product(&factors.number, &factors.exponents)
 }
+
+/// The same with what is raised to a fraction under one root: `tau_0/(rho_0*sqrt(nu*f))`.
+pub fn formula(found: &Factors) -> String {
+    let (whole, broken): (Exponents, Exponents) = found
+        .exponents
+        .iter()
+        .cloned()
+        .partition(|(_, power)| power.is_whole());
+    let degree = broken
+        .iter()
+        .fold(1, |lcm: i64, (_, power)| lcm.lcm(&power.denom()));
+    if broken.is_empty() || degree > MAX_DEGREE {
+        return factors(found);
+    }
+    let is_below = broken.iter().all(|(_, power)| power.is_negative());
+    let inside = broken.iter().map(|(name, power)| {
+        let sign = if is_below { -1 } else { 1 };
+        let times = sign * power.numer() * (degree / power.denom());
+        (name.clone(), Exponent::whole(times).unwrap_or(*power))
+    });
+    let inside = product(&Number::one(), &inside.collect());
+    let root = match degree {
+        2 => format!("sqrt({inside})"),
+        degree => format!("({inside})^(1/{degree})"),
+    };
+    let power = if is_below {
+        Exponent::ONE.negated()
+    } else {
+        Exponent::ONE
+    };
+    let mut exponents = whole;
+    exponents.push((root, power));
+    product(&found.number, &exponents)
+}
+
+/// Roots of a higher degree are written name by name.
+const MAX_DEGREE: i64 = 12;
 
 /// `Ro <= 0.1`.
 pub fn inequality(condition: &Inequality) -> String {
@@ -265,6 +304,27 @@ pub fn measured(held: &Held) -> String {
     }
 }
 
+/// That no balance is consistent, and why.
+pub fn no_balance(contradiction: &[String]) -> String {
+    let listed: Vec<String> = contradiction
+        .iter()
+        .map(|name| format!("`{name}`"))
+        .collect();
+    match listed.as_slice() {
+        [] => "no balance is consistent".to_owned(),
+        [single] => {
+            format!("no balance is consistent: nothing in {single} can balance its largest process")
+        }
+        [first, second] => {
+            format!("no balance is consistent: {first} and {second} contradict one another")
+        }
+        [others @ .., last] => format!(
+            "no balance is consistent: {} and {last} contradict one another",
+            others.join(", ")
+        ),
+    }
+}
+
 /// A value in the unit in which it was written, or else in SI units.
 pub fn in_unit(value: &Range, si_unit: &str, written: Option<&String>) -> String {
     let unit = written.and_then(|text| Some((text, units::parse_unit(text).ok()?)));
@@ -323,6 +383,10 @@ pub fn shares(share: &Range) -> String {
 pub fn is_in_report(code: &str) -> bool {
     matches!(
         code,
-        "lone-leading-term" | "lone-process" | "lost-derivative" | "undetermined-field"
+        "lone-leading-term"
+            | "lone-process"
+            | "lost-derivative"
+            | "undetermined-field"
+            | "no-balance"
     )
 }

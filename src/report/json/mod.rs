@@ -3,6 +3,8 @@
 
 mod bounds;
 mod claims;
+mod find;
+mod layers;
 mod compare;
 mod groups;
 mod nondimensional;
@@ -117,6 +119,8 @@ fn answer(answer: &Answer) -> Value {
         }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
+        Body::Find(balances) => find::find(balances),
+        Body::Layers(found) => layers::layers(found),
         Body::Bounds(found) => bounds::bounds(found),
         Body::Compare(comparison) => compare::compare(comparison),
     };

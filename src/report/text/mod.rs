@@ -3,6 +3,8 @@
 
 mod bounds;
 mod claims;
+mod find;
+mod layers;
 mod columns;
 mod compare;
 mod groups;
@@ -195,6 +197,8 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Find(balances) => find::find(balances, pen, out),
+        Body::Layers(found) => layers::layers(found, pen, out),
         Body::Bounds(found) => bounds::bounds(found, pen, out),
         Body::Compare(comparison) => compare::compare(comparison, pen, out),
     }
