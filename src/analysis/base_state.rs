@@ -40,7 +40,7 @@ fn base_fields(model: &Model, case: &Case) -> Vec<FieldId> {
                 .symbol_size(&crate::algebra::monomial::Symbol::Declared(id));
             Some((None, case.setting.nominal(&size.resolved)))
         }
-        Some(Meaning::Coordinate(_) | Meaning::Group(_)) | None => None,
+        Some(Meaning::Coordinate(_) | Meaning::Group(_) | Meaning::Vector(_)) | None => None,
     };
     let largest = |parts: &[(crate::syntax::ast::Sign, crate::syntax::ast::Name)]| {
         let sizes: Vec<(Option<FieldId>, f64)> = parts

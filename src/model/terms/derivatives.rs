@@ -9,6 +9,7 @@ use crate::algebra::quantities::CoordinateId;
 use crate::limits;
 use crate::model::Meaning;
 use crate::model::errors::ModelError;
+use crate::model::frames;
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind};
 
@@ -60,7 +61,10 @@ impl Maker<'_> {
                 let tendency = self.differentiated(pieces, time, 1, span)?;
                 sum.extend(named(tendency, Some(&made_tag("tendency", span))));
             }
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => {
                 self.has_no_time.get_or_insert(span);
             }
         }
@@ -83,7 +87,10 @@ impl Maker<'_> {
                 kind: ExprKind::Name(field.text.clone()),
                 span: field.span,
             };
-            let carrier = self.name(&name, &field.text)?;
+            let mut carrier = self.name(&name, &field.text)?;
+            if let Some(metric) = frames::metric(along, model, span) {
+                carrier = multiplied(&carrier, &self.expand(&metric)?, self.highest(), span)?;
+            }
             let gradient = self.differentiated(pieces, along, 1, span)?;
             let carried = multiplied(&carrier, &gradient, self.highest(), span)?;
             sum.extend(named(carried, Some(&made_tag("advection", span))));

@@ -9,6 +9,7 @@ use crate::algebra::product::{Base, Factor, Product};
 use crate::algebra::quantities::FieldId;
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted};
+use crate::model::frames;
 use crate::model::names::{self, Call, Function};
 use crate::model::{Meaning, Model, values};
 use crate::number::{Exponent, Number};
@@ -85,6 +86,7 @@ impl Maker<'_> {
             Some(Meaning::Coordinate(id)) => Base::Coordinate(id),
             Some(Meaning::Field(id)) => Base::Field(id),
             Some(Meaning::Group(_)) | None => return self.monomial(expr),
+            Some(Meaning::Vector(_)) => return Err(not_a_term(expr.span)),
         };
         Ok(vec![Piece::plain(Product::base(base))])
     }
@@ -102,7 +104,9 @@ impl Maker<'_> {
                 }
                 Some(Meaning::Field(inner)) => Base::Field(inner),
                 Some(Meaning::Symbol(inner)) => Base::Symbol(Symbol::Declared(inner)),
-                Some(Meaning::Coordinate(_) | Meaning::Group(_)) | None => continue,
+                Some(Meaning::Coordinate(_) | Meaning::Group(_) | Meaning::Vector(_)) | None => {
+                    continue;
+                }
             };
             let piece = Piece::plain(Product::base(base));
             found.push(if is_negative { piece.negated() } else { piece });
@@ -156,6 +160,10 @@ impl Maker<'_> {
         arguments: &[ast::Expr],
     ) -> Pieces {
         let span = expr.span;
+        if names::call(function, self.model) == Call::Vector {
+            let written_out = frames::expanded(expr, self.model)?;
+            return self.expand(&written_out);
+        }
         let [argument] = arguments else {
             return self.constant_call(expr, function, arguments);
         };
@@ -309,7 +317,7 @@ fn holds_varying(expr: &ast::Expr, model: &Model) -> bool {
     names::visit_names(expr, &mut |name, _| {
         varies |= matches!(
             model.meaning(name, None),
-            Some(Meaning::Field(_) | Meaning::Coordinate(_))
+            Some(Meaning::Field(_) | Meaning::Coordinate(_) | Meaning::Vector(_))
         );
     });
     varies

@@ -66,6 +66,7 @@ impl Maker<'_> {
                 is_negative,
                 side,
                 is_whole: true,
+                is_material: false,
             };
             let piece = match is_negative {
                 true => piece.negated(),
@@ -165,9 +166,10 @@ impl Maker<'_> {
     fn coordinate(&self, name: &ast::Name) -> Result<CoordinateId, ModelError> {
         match self.model.meaning(&name.text, None) {
             Some(Meaning::Coordinate(id)) => Ok(id),
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
-                Err(not_a_term(name.span))
-            }
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => Err(not_a_term(name.span)),
         }
     }
 

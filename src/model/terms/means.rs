@@ -3,6 +3,7 @@
 
 use super::Maker;
 use super::pieces::{Piece, Pieces, collected, made_tag, multiplied, named, written_tag};
+use super::written::holds_material;
 use crate::algebra::product::{Base, Derivative, Factor, Product};
 use crate::model::names::{self, Call};
 use crate::model::{Meaning, Model};
@@ -107,7 +108,10 @@ impl Maker<'_> {
                 let tendency = self.differentiated(&inside, time, 1, span)?;
                 named(tendency, Some(&made_tag("tendency", span)))
             }
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => {
                 self.has_no_time.get_or_insert(span);
                 Vec::new()
             }
@@ -197,7 +201,7 @@ fn fluctuates(expr: &ast::Expr, model: &Model) -> bool {
     let mut found = false;
     names::visit_names(expr, &mut |name, _| found |= is_fluctuating(name, model));
     // `D_t` carries with the velocity, which may fluctuate.
-    found || holds_material(expr, model)
+    found || holds_material(expr)
 }
 
 fn is_fluctuating(name: &str, model: &Model) -> bool {
@@ -211,29 +215,9 @@ fn is_fluctuating(name: &str, model: &Model) -> bool {
                     .iter()
                     .any(|(_, part)| is_fluctuating(&part.text, model))
         }
-        Some(Meaning::Symbol(_) | Meaning::Coordinate(_) | Meaning::Group(_)) | None => false,
-    }
-}
-
-fn holds_material(expr: &ast::Expr, model: &Model) -> bool {
-    let any = |exprs: &[ast::Expr]| exprs.iter().any(|expr| holds_material(expr, model));
-    match &expr.kind {
-        ExprKind::Call {
-            function,
-            arguments,
-            ..
-        } => matches!(names::call(&function.text, model), Call::Material) || any(arguments),
-        ExprKind::Sum(terms) => terms.iter().any(|(_, term)| holds_material(term, model)),
-        ExprKind::Product(factors) => factors
-            .iter()
-            .any(|(_, factor)| holds_material(factor, model)),
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => holds_material(inside, model),
-        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => holds_material(expr, model),
-        ExprKind::Power { base, .. } => holds_material(base, model),
-        ExprKind::Derivative { operand, .. } => holds_material(operand, model),
-        ExprKind::Tuple(parts) => any(parts),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
-            false
-        }
+        Some(
+            Meaning::Symbol(_) | Meaning::Coordinate(_) | Meaning::Group(_) | Meaning::Vector(_),
+        )
+        | None => false,
     }
 }

@@ -27,7 +27,7 @@ use crate::syntax::ast::{self, ExprKind, Sign};
 use crate::syntax::print;
 use crate::units::Range;
 use pieces::{Piece, Sided, Tag, collected, merged, named, written_tag};
-use written::{has_partials, leading_minus, process_names, unnamed};
+use written::{has_partials, holds_material, leading_minus, process_names, unnamed};
 
 /// Left or right of `=`.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -97,6 +97,8 @@ pub struct Summand {
     pub side: Side,
     /// Whether no constant that is 0 took a part of it out.
     pub is_whole: bool,
+    /// Whether it holds a `D_t`.
+    pub is_material: bool,
 }
 
 /// An equation in one setting.
@@ -276,7 +278,8 @@ impl<'a> Maker<'a> {
         let model = self.model;
         let decl = &model.equations[self.made.idx];
         if let ast::EquationBody::Written { left, right } = &decl.body {
-            self.made.with_partials = has_partials(left) || has_partials(right);
+            self.made.with_partials =
+                model.is_component(self.made.idx) || has_partials(left) || has_partials(right);
             process_names(left, &mut self.made.process_names);
             process_names(right, &mut self.made.process_names);
             self.flatten(left, false, None, Side::Left);
@@ -353,6 +356,7 @@ impl<'a> Maker<'a> {
             text: print::expression(&unnamed(expr)),
             is_negative,
             side,
+            is_material: holds_material(expr),
         };
         match self.resolved(pieces, expr.span) {
             Ok(pieces) => self.put(summand, pieces, expr.span),
@@ -413,6 +417,11 @@ impl<'a> Maker<'a> {
             }
         };
         if self.is_zero(&size, &text, degree, span) {
+            return None;
+        }
+        let range = self.setting.monomial_range(&size.resolved);
+        if range.is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite()) {
+            self.errors.push(ModelError::TooLarge { span });
             return None;
         }
         let product = if summand.is_negative {

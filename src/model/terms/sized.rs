@@ -5,10 +5,12 @@ use std::sync::Arc;
 use super::Maker;
 use super::pieces::Piece;
 use super::written::unnamed;
+use crate::algebra::monomial::Monomial;
 use crate::algebra::product::{Base, Product, Sized};
 use crate::algebra::quantities::{FieldId, Size, Variation};
 use crate::model::errors::{ModelError, Product as Wanted};
 use crate::model::{Meaning, names, values};
+use crate::number::Exponent;
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind};
 use crate::syntax::print;
@@ -34,12 +36,14 @@ impl Maker<'_> {
             .quantities
             .size(found.abs())
             .map_err(|_| ModelError::TooLarge { span })?;
-        self.compare_with_parts(&found, inside, size.span)?;
+        let parts = self.part_sizes(inside).unwrap_or_default();
+        self.compare_with_parts(&found, &parts, size.span)?;
         let fields = self.fields_in(inside);
         let variations = self.shortest_variations(&fields, &found);
         let sized = Sized {
             text: print::expression(&unnamed(whole)),
             size: found,
+            parts,
             variations,
             fields,
             place: whole.span.start,
@@ -51,11 +55,12 @@ impl Maker<'_> {
     fn compare_with_parts(
         &mut self,
         size: &Size,
-        inside: &ast::Expr,
+        parts: &[Monomial],
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let largest = self.largest_part(inside);
+        let sizes = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = sizes.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -77,39 +82,52 @@ impl Maker<'_> {
         Ok(())
     }
 
-    /// The nominal size of the largest part of an expression, where it can be told.
-    fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
+    /// The sizes of the parts of an expression, where they can be told.
+    fn part_sizes(&mut self, inside: &ast::Expr) -> Option<Vec<Monomial>> {
         let root = match &inside.kind {
             ExprKind::Call {
                 function,
                 order: None,
                 arguments,
             } if function.text == "sqrt" => arguments.first(),
-            ExprKind::Bracket(inside) => return self.largest_part(inside),
+            ExprKind::Bracket(inside) => return self.part_sizes(inside),
             _ => None,
         };
         if let Some(argument) = root {
-            return self.largest_part(argument).map(f64::sqrt);
+            let parts = self.part_sizes(argument)?;
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        pieces?
+        let sizes = pieces?
             .iter()
             .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
-            .map(|size| self.setting.nominal(&size.resolved))
-            .reduce(f64::max)
+            .map(|size| size.resolved.abs())
+            .collect();
+        Some(sizes)
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {
         let mut fields = Vec::new();
-        names::visit_names(expr, &mut |name, _| {
+        let mut add = |name: &str| {
             if let Some(Meaning::Field(id)) = self.model.meaning(name, None)
                 && !fields.contains(&id)
             {
                 fields.push(id);
             }
+        };
+        names::visit_names(expr, &mut |name, _| match self.model.meaning(name, None) {
+            Some(Meaning::Vector(id)) => {
+                for part in &self.model.vectors[id.0 as usize].components {
+                    names::visit_names(part, &mut |name, _| add(name));
+                }
+            }
+            Some(_) | None => add(name),
         });
         fields
     }

@@ -1,6 +1,7 @@
 //! Expressions of equations as they are written: process names in them, the same without
 //! them, and whether derivatives are spelled with `∂`.
 
+use crate::model::names;
 use crate::syntax::ast::{self, ExprKind, Operator};
 
 pub(super) fn has_partials(expr: &ast::Expr) -> bool {
@@ -11,9 +12,12 @@ pub(super) fn has_partials(expr: &ast::Expr) -> bool {
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => has_partials(inside),
         ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => has_partials(expr),
         ExprKind::Power { base, .. } => has_partials(base),
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments.iter().any(has_partials)
-        }
+        ExprKind::Call {
+            function,
+            arguments,
+            ..
+        } => names::is_vector_operation(&function.text) || arguments.iter().any(has_partials),
+        ExprKind::Tuple(arguments) => arguments.iter().any(has_partials),
         ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
             false
         }
@@ -123,4 +127,26 @@ pub(super) fn leading_minus(
     let mut factors = factors.to_vec();
     factors[0] = (*operator, (**inside).clone());
     Some(factors)
+}
+
+/// Whether an expression holds a `D_t`.
+pub(super) fn holds_material(expr: &ast::Expr) -> bool {
+    let any = |exprs: &[ast::Expr]| exprs.iter().any(holds_material);
+    match &expr.kind {
+        ExprKind::Call {
+            function,
+            arguments,
+            ..
+        } => function.text == "D_t" || any(arguments),
+        ExprKind::Sum(terms) => terms.iter().any(|(_, term)| holds_material(term)),
+        ExprKind::Product(factors) => factors.iter().any(|(_, factor)| holds_material(factor)),
+        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => holds_material(inside),
+        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => holds_material(expr),
+        ExprKind::Power { base, .. } => holds_material(base),
+        ExprKind::Derivative { operand, .. } => holds_material(operand),
+        ExprKind::Tuple(parts) => any(parts),
+        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
+            false
+        }
+    }
 }
