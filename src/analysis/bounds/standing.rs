@@ -9,12 +9,9 @@ use crate::algebra::monomial::{Monomial, SymbolId};
 use crate::algebra::product::{Base, Factor, Sized};
 use crate::analysis::Case;
 use crate::analysis::rank;
-use crate::analysis::sizes::{self, Space};
+use crate::analysis::sizes::{self, SAME, Space};
 use crate::model::terms::EquationTerms;
 use crate::number::Exponent;
-
-/// Logarithms of sizes this near to one another are equal.
-pub const SAME: f64 = 1e-12;
 
 /// What happens where a reduced system ends, or changes.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]

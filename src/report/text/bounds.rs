@@ -2,8 +2,8 @@
 
 use std::fmt::Write as _;
 
-use crate::analysis::bounds::standing::SAME;
 use crate::analysis::bounds::{Bound, Bounds, End};
+use crate::analysis::sizes::SAME;
 use crate::report::layout::{padded, width, wrapped};
 use crate::report::standing;
 use crate::report::text::Pen;
