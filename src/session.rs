@@ -160,16 +160,7 @@ impl<'f> Session<'f> {
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering {
-                model: &checked.model,
-                cases: &checked.cases,
-                outcome: &mut outcome,
-                watcher: self.watcher,
-                found: BTreeMap::new(),
-                limit: None,
-                is_interrupted: false,
-            }
-            .all();
+            Answering::new(&checked, &mut outcome, self.watcher).all();
         }
         self.finish(&mut outcome);
         outcome
@@ -364,6 +355,22 @@ struct Answering<'a> {
 }
 
 impl<'a> Answering<'a> {
+    fn new(
+        checked: &'a Checked,
+        outcome: &'a mut Outcome,
+        watcher: Option<&'a dyn Watcher>,
+    ) -> Answering<'a> {
+        Answering {
+            model: &checked.model,
+            cases: &checked.cases,
+            outcome,
+            watcher,
+            found: BTreeMap::new(),
+            limit: None,
+            is_interrupted: false,
+        }
+    }
+
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -552,10 +559,11 @@ impl<'a> Answering<'a> {
         span: Span,
         text: &str,
     ) {
-        let wanted = phenomena.iter().map(|name| self.model.phenomenon(&name.text));
-        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> = wanted
-            .map(|wanted| (wanted, self.solved(wanted)))
-            .collect();
+        let wanted = phenomena
+            .iter()
+            .map(|name| self.model.phenomenon(&name.text));
+        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> =
+            wanted.map(|wanted| (wanted, self.solved(wanted))).collect();
         let cases = self.cases;
         let given = |wanted| cases.iter().find(|case| case.setting.phenomenon == wanted);
         let named: Vec<&Case> = solved

@@ -162,6 +162,7 @@ impl Checker<'_> {
             Some(Meaning::Symbol(_)) => return,
             Some(Meaning::Coordinate(_)) => "coordinate",
             Some(Meaning::Field(_)) => "field",
+            Some(Meaning::Vector(_)) => "vector",
             Some(Meaning::Group(_)) => "group",
             None => {
                 let known = self.model.visible_names(self.phenomenon);

@@ -28,7 +28,7 @@ use crate::syntax::ast::{self, LimitPlace};
 use crate::syntax::print;
 
 /// Is told how long searches get on, and may end them.
-pub trait Watcher {
+pub trait Watcher: Send + Sync {
     /// Called at every step of a search with the number of balances found so far; whether
     /// it shall go on.
     fn goes_on(&self, n_found: usize) -> bool;
