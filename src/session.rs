@@ -529,7 +529,9 @@ impl<'a> Answering<'a> {
             },
             RequestKind::Bounds { symbols } => {
                 if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
-                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                    let found = self.found.get(&case.setting.phenomenon);
+                    let balances = found.map_or(&[][..], |found| &found.balances);
+                    match bounds::bounds(self.model, case, &wanted, symbols, balances) {
                         Ok(found) => {
                             self.warn_of_lone_terms(case, &found);
                             self.outcome.answers.push(answer(
@@ -538,7 +540,7 @@ impl<'a> Answering<'a> {
                                 Body::Bounds(found),
                             ));
                         }
-                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                        Err(fault) => self.fault(fault, case, request.span),
                     }
                 }
             }

@@ -176,7 +176,7 @@ fn failing(
     let (term, role) = match threat.why {
         Why::Rises => (threat.upper.term, Role::StaysOut),
         Why::Falls => (lower.term, Role::StaysIn),
-        Why::ExceedsParts => (threat.upper.term, Role::WithinParts),
+        Why::ExceedsParts | Why::Joins => (threat.upper.term, Role::WithinParts),
     };
     Some(Condition {
         place: super::place(&systems[threat.equation], term),
