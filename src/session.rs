@@ -6,7 +6,9 @@ use std::path::{Path, PathBuf};
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::analysis::{
+    self, Answer, Body, Case, LeftOut, bounds, compare, groups, nondimensional, rank, reduce,
+};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
@@ -16,8 +18,10 @@ use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
+use crate::report::{standing, words};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+use crate::syntax::{parser, print};
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -57,6 +61,13 @@ impl Outcome {
         } else {
             Status::Ok
         }
+    }
+
+    /// The script in its canonical form, comments kept; `None` if none was read.
+    pub fn canonical(&self) -> Option<String> {
+        let (file, source) = self.sources.iter().next()?;
+        let (script, _) = parser::parse(&source.text, file);
+        Some(print::print(&script, &source.text))
     }
 
     /// The diagnostics drawn against their texts.
@@ -120,14 +131,14 @@ impl<'f> Session<'f> {
 
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, _) = self.checked(name, text, path);
+        let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
         self.finish(&mut outcome);
         outcome
     }
 
     /// Reads, checks and answers a script.
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, checked) = self.checked(name, text, path);
+        let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
             Answering {
                 model: &checked.model,
@@ -151,7 +162,13 @@ impl<'f> Session<'f> {
         diagnostic::sort(&mut outcome.diagnostics);
     }
 
-    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+    fn checked(
+        &self,
+        name: &str,
+        text: &str,
+        path: Option<&Path>,
+        purpose: Purpose,
+    ) -> (Outcome, Option<Checked>) {
         let mut outcome = Outcome {
             script: name.to_owned(),
             ..Outcome::default()
@@ -166,14 +183,19 @@ impl<'f> Session<'f> {
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
         let main_span = main_span(&outcome.sources);
         let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
-        let (model, errors) = declarations::gather(scripts);
-        let (checked, errors) = check_model(model, errors, main_span, has_form);
+        let (model, mut errors) = declarations::gather(scripts);
+        let is_idle = model.equations.is_empty() && model.requests.is_empty();
+        if is_idle && has_form && purpose == Purpose::Run {
+            errors.push(ModelError::NothingToRank { span: main_span });
+        }
+        let (checked, errors) = check_model(model, errors, has_form);
         outcome.diagnostics.extend(
             errors
                 .iter()
-                .filter(|error| !is_echo(error, &unreadable))
+                .filter(|error| !is_echo(error, &unreadable, is_whole))
                 .map(ModelError::diagnostic),
         );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -183,6 +205,14 @@ impl<'f> Session<'f> {
         }
         (outcome, checked)
     }
+}
+
+/// What a script is read for; a shelf of declarations has nothing to answer, but can be
+/// checked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Purpose {
+    Check,
+    Run,
 }
 
 struct Checked {
@@ -198,25 +228,34 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
-    main_span: Span,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
     errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
-    if model.equations.is_empty() && model.requests.is_empty() && has_form {
-        errors.push(ModelError::NothingToRank { span: main_span });
-    }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
-        errors.extend(analysis::value_errors(&model));
+        for error in analysis::value_errors(&model) {
+            if errors.iter().all(|known| !overlap(known, &error)) {
+                errors.push(error);
+            }
+        }
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
     errors.extend(found);
     for case in &cases {
         errors.extend(requests::check_processes(&model, case));
+        errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
+}
+
+/// Whether two faults point at one place, so that the second would repeat the first.
+fn overlap(a: &ModelError, b: &ModelError) -> bool {
+    match (a.diagnostic().span, b.diagnostic().span) {
+        (Some(a), Some(b)) => a.file == b.file && a.start < b.end && b.start < a.end,
+        (Some(_) | None, None) | (None, Some(_)) => false,
+    }
 }
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
@@ -248,11 +287,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }
@@ -287,12 +334,20 @@ impl Answering<'_> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = words(self.outcome.sources.slice(request.span));
+            let text = one_line(self.outcome.sources.slice(request.span));
             self.request(*own, request, &text);
         }
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Compare {
+            phenomena,
+            matching,
+        } = &request.kind
+        {
+            self.compare(phenomena, matching.as_deref(), request.span, text);
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
             if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
@@ -365,17 +420,110 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
+            RequestKind::Bounds { symbols } => {
+                if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
+                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                        Ok(found) => {
+                            self.warn_of_lone_terms(case, &found);
+                            self.outcome.answers.push(answer(
+                                "bounds",
+                                left_out,
+                                Body::Bounds(found),
+                            ));
+                        }
+                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                    }
+                }
+            }
+            // Answered once, for all the phenomena it names.
+            RequestKind::Compare { .. } => {}
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Bounds { .. }
-            | RequestKind::Find { .. }
+            RequestKind::Find { .. }
             | RequestKind::Layers
-            | RequestKind::Groups
             | RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..)
-            | RequestKind::Compare { .. } => {}
+            | RequestKind::Regimes(..) => {}
+        }
+    }
+
+    fn compare(
+        &mut self,
+        phenomena: &[ast::Name],
+        matching: Option<&[ast::Name]>,
+        span: Span,
+        text: &str,
+    ) {
+        let named: Vec<&Case> = phenomena
+            .iter()
+            .filter_map(|name| {
+                let wanted = self.model.phenomenon(&name.text);
+                let mut cases = self.cases.iter();
+                cases.find(|case| case.setting.phenomenon == wanted)
+            })
+            .collect();
+        match compare::compare(self.model, &named, matching) {
+            Ok((comparison, left_out)) => {
+                let matching = comparison.matching.iter();
+                let found = matching.filter_map(|matching| standing::cannot_match(matching, span));
+                self.outcome.diagnostics.extend(found);
+                self.outcome.answers.push(Answer {
+                    request: "compare",
+                    phenomenon: None,
+                    title: None,
+                    text: text.to_owned(),
+                    left_out,
+                    body: Body::Compare(comparison),
+                });
+            }
+            Err(compare::Fault::Open(case, open)) => self.fault(Fault::Open(open), case, span),
+            Err(compare::Fault::TooMany) => {
+                let message = "matching tries more sets of scales than the limit";
+                let found = Diagnostic::error("too-large", span, message);
+                let found = found.with_help("name fewer groups behind `matching`");
+                self.outcome.diagnostics.push(found);
+            }
+        }
+    }
+
+    /// What `bounds` leaves out since nothing balances it.
+    fn warn_of_lone_terms(&mut self, case: &Case, bounds: &bounds::Bounds) {
+        for place in &bounds.lone {
+            let mut equations = case.equations.iter();
+            let span = equations
+                .find(|found| found.name == place.equation)
+                .map_or(Span::default(), |found| found.span);
+            let message = match &case.setting.name {
+                Some(name) => format!("{name}: {}", standing::left_out_lone(place)),
+                None => standing::left_out_lone(place),
+            };
+            let found = Diagnostic::warning("lone-leading-term", span, message);
+            self.outcome.diagnostics.push(found);
         }
     }
 
@@ -452,7 +600,7 @@ impl Answering<'_> {
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
             Some(equation) => format!("`{equation}` needs"),
-            None => "every equation needs".to_owned(),
+            None => "this request needs".to_owned(),
         };
         let whose = case
             .setting
@@ -500,7 +648,7 @@ impl Answering<'_> {
                     .iter()
                     .map(|id| case.setting.names[id.idx()].clone())
                     .collect();
-                self.open_scale(case, Some("this"), &names, span);
+                self.open_scale(case, None, &names, span);
             }
             fault => self
                 .outcome
@@ -517,7 +665,7 @@ impl Answering<'_> {
                 .iter()
                 .find(|found| found.name == equation.name)
                 .map_or(Span::default(), |found| found.span);
-            for warning in crate::report::words::warnings(equation) {
+            for warning in words::warnings(equation) {
                 let message = match &case.setting.name {
                     Some(name) => format!("{name}: {}", warning.message),
                     None => warning.message,
@@ -531,7 +679,7 @@ impl Answering<'_> {
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.
-fn words(text: &str) -> String {
+fn one_line(text: &str) -> String {
     let lines = text
         .lines()
         .map(|line| line.split('#').next().unwrap_or(""));

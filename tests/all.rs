@@ -1,7 +1,9 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
+mod answers;
 mod harness;
 mod language;
 mod polyhedra;
 mod published;
 mod reference;
+mod standing;

@@ -1,10 +1,17 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod bounds;
 pub mod claims;
+pub mod compare;
+pub mod groups;
+pub mod matching;
+pub mod movable;
 pub mod names;
+pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 
@@ -157,8 +164,16 @@ pub struct Answer {
 pub enum Body {
     /// `show`.
     Show(show::Shown),
+    /// `groups`.
+    Groups(groups::Groups),
+    /// `nondimensionalize`.
+    Nondimensionalize(Vec<nondimensional::DimensionlessEquation>),
     /// `rank`.
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

@@ -260,7 +260,7 @@ fn reduced_term(
 
 /// The conditions under which a term may go: against the nominally largest term first,
 /// then against each other one that is the largest somewhere.
-fn conditions(
+pub fn conditions(
     case: &Case,
     kept: &Kept<'_>,
     idx: usize,

@@ -53,7 +53,7 @@ impl Gatherer {
             Kind::Field(decl) => self.field(decl, span),
             Kind::Velocity(decl) => self.velocity(decl, span),
             Kind::Equation(decl) => self.equation(decl),
-            Kind::Group(decl) => self.group(decl),
+            Kind::Group(decl) => self.group(level, decl),
             Kind::Balance(decl) => self.balance(decl),
             Kind::Frame(decl) => self.frame(decl, span),
             Kind::Vector(decl) => self.vector(decl),
@@ -316,15 +316,36 @@ impl Gatherer {
         self.model.equations.push(decl);
     }
 
-    fn group(&mut self, decl: ast::GroupDecl) {
-        let id = GroupId(self.model.groups.len() as u32);
-        if self.claim_name(&decl.name, Meaning::Group(id)) {
-            self.model.groups.push(GroupInfo {
-                name: decl.name,
-                value: decl.value,
-                notes: decl.notes,
-            });
+    fn group(&mut self, level: Level, decl: ast::GroupDecl) {
+        let info = GroupInfo {
+            name: decl.name,
+            value: decl.value,
+            notes: decl.notes,
+            level,
+        };
+        if let Some(Meaning::Group(id)) = self.model.names.get(&info.name.text).copied()
+            && self.model.groups[id.0 as usize].level < level
+        {
+            self.override_group(id, info);
+            return;
         }
+        let id = GroupId(self.model.groups.len() as u32);
+        if self.claim_name(&info.name, Meaning::Group(id)) {
+            self.model.groups.push(info);
+        }
+    }
+
+    /// A script's group takes the place of a module's.
+    fn override_group(&mut self, id: GroupId, info: GroupInfo) {
+        let place = &mut self.model.groups[id.0 as usize];
+        self.errors.push(ModelError::ValueOverridden {
+            name: info.name.text.clone(),
+            span: info.name.span,
+            first: place.name.span,
+            phenomenon: None,
+        });
+        self.places.insert(info.name.text.clone(), info.name.span);
+        *place = info;
     }
 
     fn balance(&mut self, decl: ast::BalanceDecl) {

@@ -131,10 +131,24 @@ pub enum ModelError {
     ShareAsMargin { span: Span, text: String },
     /// A range behind a value that follows others.
     DerivedScale { name: String, span: Span },
+    /// A derived name where one is wanted that moves by itself.
+    MovesWithParts {
+        name: String,
+        span: Span,
+        parts: Vec<String>,
+    },
+    /// A name that would move a symbol which is no product with it.
+    MovesOthers {
+        name: String,
+        span: Span,
+        holders: Vec<String>,
+    },
     /// Something that is no product of powers where one is needed.
     NotAProduct { span: Span, what: Product },
     /// A number or exponent beyond the limits.
     TooLarge { span: Span },
+    /// More scales than dimensionless groups are looked for among.
+    TooManyGroups { n_symbols: usize, span: Span },
     /// A division by 0.
     DividesByZero { span: Span },
     /// A value outside the domain of a function, or not a real number.
@@ -345,7 +359,12 @@ impl ModelError {
             E::NotAvailable { what, span } => not_available(*what, *span),
             E::UnknownName { name, span, nearest } => {
                 let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
-                with_nearest(found, nearest, "declare it, or check its spelling")
+                match (nearest, crate::units::find_unit(name)) {
+                (None, Some(_)) => found.with_help(format!(
+                    "`{name}` is a unit only right behind a number: a unit has no blank inside, as in `10 m/s`"
+                )),
+                _ => with_nearest(found, nearest, "declare it, or check its spelling"),
+            }
             }
             E::NotAFunction { name, span, is_declared, nearest } => {
                 not_a_function(name, *span, *is_declared, nearest.as_ref())
@@ -432,13 +451,23 @@ impl ModelError {
             | E::MarginTooWide { .. }
             | E::ShareAsMargin { .. }
             | E::DerivedScale { .. } => self.value_diagnostic(),
+            E::MovesWithParts { name, span, parts } => moves_with_parts(name, *span, parts),
+            E::MovesOthers { name, span, holders } => moves_others(name, *span, holders),
             E::NotAProduct { span, what } => not_a_product(*span, *what),
             E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
                 .with_help(format!(
-                    "exponents go up to {}, exact numbers up to {} binary digits",
+                    "exponents go up to {}, exact numbers up to {} binary digits, powers of sums up to {}, one equation up to {} terms, sizes from 1e-300 to 1e300",
                     crate::limits::EXPONENT,
-                    crate::limits::NUMBER_BITS
+                    crate::limits::NUMBER_BITS,
+                    crate::limits::SUM_POWER,
+                    crate::limits::TERMS
                 )),
+            E::TooManyGroups { n_symbols, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!("there are too many groups among {n_symbols} scales and constants"),
+            )
+            .with_help("ask in a script whose equations hold fewer of them"),
             E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
             E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
             E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),
@@ -857,6 +886,46 @@ fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagn
             .with_related(first, "declared here first"),
         None => found,
     }
+}
+
+fn moves_with_parts(name: &str, span: Span, parts: &[String]) -> Diagnostic {
+    let found = Diagnostic::error(
+        "derived-scale",
+        span,
+        format!("`{name}` follows its parts and cannot be moved alone"),
+    );
+    match quoted(parts) {
+        listed if listed.is_empty() => found,
+        listed => found.with_help(format!("take one of its parts: {listed}")),
+    }
+}
+
+fn moves_others(name: &str, span: Span, holders: &[String]) -> Diagnostic {
+    let named: Vec<String> = holders
+        .iter()
+        .filter(|holder| !holder.contains('('))
+        .cloned()
+        .collect();
+    let help = match (named.as_slice(), holders.first()) {
+        ([], Some(function)) => {
+            format!("name the function, `constant k = {function}`, and take `k`")
+        }
+        (_, _) => format!("take {} instead", quoted(&named)),
+    };
+    Diagnostic::error(
+        "not-a-product",
+        span,
+        format!(
+            "`{name}` cannot be moved alone: {} would change along no power law",
+            quoted(holders)
+        ),
+    )
+    .with_help(help)
+}
+
+fn quoted(names: &[String]) -> String {
+    let quoted: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+    quoted.join(", ")
 }
 
 fn not_a_product(span: Span, what: Product) -> Diagnostic {

@@ -73,16 +73,23 @@ pub fn find(name: &str) -> Option<&'static Module> {
 
 /// The first sentence of a module's head comment.
 pub fn headline(module: &Module) -> String {
-    let head: Vec<&str> = module
-        .text
+    let head = head(module.text).into_iter().next().unwrap_or_default();
+    let end = head.find([':', '.', '?']).unwrap_or(head.len());
+    head[..end].to_owned()
+}
+
+/// The paragraphs of the comment that a text begins with.
+pub fn head(text: &str) -> Vec<String> {
+    let lines: Vec<&str> = text
         .lines()
         .map_while(|line| line.strip_prefix('#'))
         .map(str::trim)
-        .take_while(|line| !line.is_empty())
         .collect();
-    let head = head.join(" ");
-    let end = head.find([':', '.', '?']).unwrap_or(head.len());
-    head[..end].to_owned()
+    lines
+        .split(|line| line.is_empty())
+        .filter(|paragraph| !paragraph.is_empty())
+        .map(|paragraph| paragraph.join(" "))
+        .collect()
 }
 
 #[cfg(test)]

@@ -163,6 +163,8 @@ pub struct GroupInfo {
     pub value: ast::Expr,
     /// Title and source.
     pub notes: ast::Notes,
+    /// The level at which it is declared; a script's overrides a module's.
+    pub level: Level,
 }
 
 /// `vector V = (u, v, w)`, or a symmetric stress of six.

@@ -264,13 +264,19 @@ pub fn has_names(expr: &ast::Expr) -> bool {
 /// each once.
 pub fn symbols_in(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) -> Vec<SymbolId> {
     let mut found = Vec::new();
-    visit_names(expr, &mut |name, _| {
-        if let Some(Meaning::Symbol(id)) = model.meaning(name, phenomenon)
-            && !found.contains(&id)
-        {
-            found.push(id);
-        }
-    });
+    // Groups may name groups, in a chain as long as a script.
+    let mut seen = Vec::new();
+    let mut waiting = vec![expr];
+    while let Some(expr) = waiting.pop() {
+        visit_names(expr, &mut |name, _| match model.meaning(name, phenomenon) {
+            Some(Meaning::Symbol(id)) if !found.contains(&id) => found.push(id),
+            Some(Meaning::Group(id)) if !seen.contains(&id) => {
+                seen.push(id);
+                waiting.push(&model.groups[id.0 as usize].value);
+            }
+            Some(Meaning::Symbol(_) | Meaning::Group(_) | Meaning::Coordinate(_) | Meaning::Field(_)) | None => {}
+        });
+    }
     found
 }
 

@@ -7,16 +7,16 @@ use std::sync::Arc;
 use num_traits::ToPrimitive;
 
 use crate::algebra::calculus;
-use crate::algebra::monomial::Symbol;
+use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Base, Derivative, Factor, Product, Sized, Speller};
 use crate::algebra::quantities::{CoordinateId, FieldId, Size, Variation};
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Unavailable};
 use crate::model::frames;
 use crate::model::names::{self, Call, Function};
-use crate::model::settings::Setting;
+use crate::model::settings::{Setting, Variable};
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::number::{Exponent, Number, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator, Sign};
@@ -273,14 +273,15 @@ impl Names for Maker<'_> {
         None
     }
 
-    fn symbol(
-        &self,
-        id: crate::algebra::monomial::SymbolId,
-    ) -> Result<Value, Vec<crate::algebra::monomial::SymbolId>> {
+    fn symbol(&self, id: SymbolId) -> Result<Value, Vec<SymbolId>> {
         match &self.setting.variables[id.idx()] {
-            crate::model::settings::Variable::Known(value) => Ok(value.clone()),
-            crate::model::settings::Variable::Open(open) => Err(open.clone()),
+            Variable::Known(value) => Ok(value.clone()),
+            Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
     }
 
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
@@ -432,6 +433,11 @@ impl<'a> Maker<'a> {
             .collect();
         if zeros.iter().any(|(_, power)| power.is_negative()) {
             self.errors.push(ModelError::DividesByZero { span });
+            return None;
+        }
+        let range = self.setting.monomial_range(&size.resolved);
+        if zeros.is_empty() && range.is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite()) {
+            self.errors.push(ModelError::TooLarge { span });
             return None;
         }
         if !zeros.is_empty() {
@@ -821,12 +827,14 @@ impl<'a> Maker<'a> {
             .quantities
             .size(found.abs())
             .map_err(|_| ModelError::TooLarge { span })?;
-        self.compare_with_parts(&found, inside, size.span)?;
+        let parts = self.part_sizes(inside).unwrap_or_default();
+        self.compare_with_parts(&found, &parts, size.span)?;
         let fields = self.fields_in(inside);
         let variations = self.shortest_variations(&fields, &found);
         let sized = Sized {
             text: print::expression(&unnamed(whole)),
             size: found,
+            parts,
             variations,
             fields,
             place: whole.span.start,
@@ -838,11 +846,12 @@ impl<'a> Maker<'a> {
     fn compare_with_parts(
         &mut self,
         size: &Size,
-        inside: &ast::Expr,
+        parts: &[Monomial],
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let largest = self.largest_part(inside);
+        let sizes = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = sizes.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -864,29 +873,34 @@ impl<'a> Maker<'a> {
         Ok(())
     }
 
-    /// The nominal size of the largest part of an expression, where it can be told.
-    fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
+    /// The sizes of the parts of an expression, where they can be told.
+    fn part_sizes(&mut self, inside: &ast::Expr) -> Option<Vec<Monomial>> {
         let root = match &inside.kind {
             ExprKind::Call {
                 function,
                 order: None,
                 arguments,
             } if function.text == "sqrt" => arguments.first(),
-            ExprKind::Bracket(inside) => return self.largest_part(inside),
+            ExprKind::Bracket(inside) => return self.part_sizes(inside),
             _ => None,
         };
         if let Some(argument) = root {
-            return self.largest_part(argument).map(f64::sqrt);
+            let parts = self.part_sizes(argument)?;
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        pieces?
+        let sizes = pieces?
             .iter()
             .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
-            .map(|size| self.setting.nominal(&size.resolved))
-            .reduce(f64::max)
+            .map(|size| size.resolved.abs())
+            .collect();
+        Some(sizes)
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {

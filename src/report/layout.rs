@@ -23,7 +23,7 @@ pub fn significant(value: f64, digits: usize) -> String {
 
 /// Whether a number reads well without a power of ten.
 fn is_plain(value: f64) -> bool {
-    value == 0.0 || (1e-3..1e6).contains(&value.abs())
+    value == 0.0 || (1e-3..1e5).contains(&value.abs())
 }
 
 fn scientific(value: f64, digits: usize) -> String {
@@ -137,6 +137,15 @@ pub fn wrapped(label: &str, text: &str) -> String {
     }
     out.push('\n');
     out
+}
+
+/// An equation likewise; a line is broken before a sign, never behind it.
+pub fn wrapped_equation(label: &str, equation: &str) -> String {
+    let mut glued = equation.to_owned();
+    for sign in ["+", "-", "="] {
+        glued = glued.replace(&format!(" {sign} "), &format!(" {sign}\u{a0}"));
+    }
+    wrapped(label, &glued).replace('\u{a0}', " ")
 }
 
 /// An SI unit as people write it: `m/s²`.

@@ -1,13 +1,13 @@
 //! The sentences that all report forms share.
 
-use crate::analysis::claims::{Held, Measured};
+use crate::analysis::claims::{Astray, Held, Measured};
 use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation, ReducedTerm};
 use crate::analysis::{Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
-use crate::report::layout::{number, percent, quantity, range};
+use crate::report::layout::{number, percent, quantity, range, significant};
 use crate::syntax::ast::{ClaimWord, Relation};
-use crate::units::Range;
+use crate::units::{self, Range};
 
 /// A warning or note of one equation.
 #[derive(Debug, Clone)]
@@ -33,13 +33,23 @@ pub fn product(factor: &Number, exponents: &Exponents) -> String {
     let mut above: Vec<String> = powers(false).collect();
     let below: Vec<String> = powers(true).collect();
     if !factor.is_one() || above.is_empty() {
-        above.insert(0, factor.to_string());
+        above.insert(0, short(factor));
     }
     let above = above.join("*");
     match below.as_slice() {
         [] => above,
         [single] => format!("{above}/{single}"),
         several => format!("{above}/({})", several.join("*")),
+    }
+}
+
+/// An exact number as it is where that is short, else in six digits.
+pub fn short(exact: &Number) -> String {
+    let text = exact.to_string();
+    if text.len() <= 9 {
+        text
+    } else {
+        significant(exact.to_f64(), 6)
     }
 }
 
@@ -230,6 +240,7 @@ pub fn measured(held: &Held) -> String {
             left,
             right,
             unit,
+            written_unit,
             relation,
             is_bound,
         } => {
@@ -242,28 +253,70 @@ pub fn measured(held: &Held) -> String {
                 Relation::Equal => (Range::exact(left.nominal), Range::exact(right.nominal)),
                 _ => (*left, *right),
             };
-            format!(
-                "{} against {}{bound}",
-                quantity(&left, unit),
-                quantity(&right, unit)
-            )
+            let shown = |range: &Range| in_unit(range, unit, written_unit.as_ref());
+            format!("{} against {}{bound}", shown(&left), shown(&right))
         }
-        Measured::Processes { word, found, share } => {
-            let listed = if found.is_empty() {
-                "nothing".to_owned()
-            } else {
-                found.join(", ")
-            };
-            match (word, share) {
-                (ClaimWord::Leading, _) => format!("{listed} leads"),
-                (ClaimWord::Kept, _) => format!("{listed} is kept"),
-                (ClaimWord::Dropped, Some(share)) => {
-                    format!("{listed} stays, at up to {}", percent(*share))
-                }
-                (ClaimWord::Dropped, None) => "all of it drops".to_owned(),
-            }
-        }
+        Measured::Processes {
+            word,
+            found,
+            astray,
+            ..
+        } => measured_processes(*word, found, astray),
     }
+}
+
+/// A value in the unit in which it was written, or else in SI units.
+fn in_unit(value: &Range, si_unit: &str, written: Option<&String>) -> String {
+    let unit = written.and_then(|text| Some((text, units::parse_unit(text).ok()?)));
+    match unit {
+        Some((text, unit)) => {
+            let [low, nominal, high] =
+                [value.low, value.nominal, value.high].map(|end| unit.from_si(end));
+            quantity(&Range { low, nominal, high }, text)
+        }
+        None => quantity(value, si_unit),
+    }
+}
+
+fn measured_processes(word: ClaimWord, found: &[String], astray: &[Astray]) -> String {
+    let verb = match word {
+        ClaimWord::Leading if found.len() > 1 => "lead",
+        ClaimWord::Leading => "leads",
+        ClaimWord::Kept if found.len() > 1 => "are kept",
+        ClaimWord::Kept => "is kept",
+        ClaimWord::Dropped if found.len() > 1 => "stay",
+        ClaimWord::Dropped => "stays",
+    };
+    let mut text = match (word, found) {
+        (ClaimWord::Dropped, []) => "all of it drops".to_owned(),
+        (_, []) => format!("nothing {verb}"),
+        (_, found) => format!("{} {verb}", found.join(", ")),
+    };
+    for astray in astray {
+        let process = &astray.process;
+        text.push_str(&match (&astray.share, astray.is_claimed) {
+            (None, _) => format!("; {process} is gone"),
+            (Some(share), true) => format!("; {process} has a share of {}", shares(share)),
+            (Some(share), false) => {
+                format!("; {process}, not claimed, has a share of {}", shares(share))
+            }
+        });
+    }
+    text
+}
+
+/// A share over the box: `2 .. 9.5 .. 27.7 %`.
+pub fn shares(share: &Range) -> String {
+    if share.is_exact() {
+        return percent(share.nominal);
+    }
+    let bare = |share: f64| percent(share).trim_end_matches(" %").to_owned();
+    format!(
+        "{} .. {} .. {}",
+        bare(share.low),
+        bare(share.nominal),
+        percent(share.high)
+    )
 }
 
 /// Whether the reports say in their own place what a diagnostic of this code says.
