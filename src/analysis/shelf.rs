@@ -319,7 +319,10 @@ impl Gatherer<'_> {
         };
         let time = match self.model.meaning("t", None) {
             Some(Meaning::Coordinate(id)) => self.coordinate_size(id),
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_)) | None => None,
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => None,
         };
         found.extend(time.map(|time| (time, format!("{length}/{speed}"))));
         for (across, depth) in &sizes[1..] {

@@ -274,7 +274,14 @@ pub fn symbols_in(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) ->
                 seen.push(id);
                 waiting.push(&model.groups[id.0 as usize].value);
             }
-            Some(Meaning::Symbol(_) | Meaning::Group(_) | Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {}
+            Some(
+                Meaning::Symbol(_)
+                | Meaning::Group(_)
+                | Meaning::Coordinate(_)
+                | Meaning::Field(_)
+                | Meaning::Vector(_),
+            )
+            | None => {}
         });
     }
     found

@@ -436,7 +436,10 @@ impl<'a> Maker<'a> {
             return None;
         }
         let range = self.setting.monomial_range(&size.resolved);
-        if zeros.is_empty() && range.is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite()) {
+        if zeros.is_empty()
+            && range
+                .is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite())
+        {
             self.errors.push(ModelError::TooLarge { span });
             return None;
         }
