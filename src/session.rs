@@ -645,6 +645,7 @@ impl<'a> Answering<'a> {
                 .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
                 .collect()
         };
+        let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
@@ -761,6 +762,16 @@ impl<'a> Answering<'a> {
             }
         }
     }
+}
+
+/// The equations without components of a vector of which nothing is left, unless there are
+/// no others.
+fn with_terms(model: &Model, case: &Case, all: Vec<(usize, Span)>) -> Vec<(usize, Span)> {
+    let is_empty = |idx: usize| model.is_component(idx) && case.equations[idx].terms.is_empty();
+    if all.iter().all(|(idx, _)| is_empty(*idx)) {
+        return all;
+    }
+    all.into_iter().filter(|(idx, _)| !is_empty(*idx)).collect()
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.
