@@ -24,7 +24,7 @@ use crate::model::errors::{ModelError, Product};
 use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
-use crate::model::{Model, declarations, requests};
+use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
 use crate::report::{standing, words};
 use crate::source::{Sources, Span};
@@ -647,10 +647,15 @@ impl<'a> Answering<'a> {
         };
         let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
+        let mut is_faulty = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
             if open.is_empty() {
-                known.push(idx);
+                if self.is_sound(&case.equations[idx]) {
+                    known.push(idx);
+                } else {
+                    is_faulty = true;
+                }
                 continue;
             }
             let equation = case.equations[idx].name.clone();
@@ -659,6 +664,9 @@ impl<'a> Answering<'a> {
                 self.open_scale(case, Some(&equation), &open, place);
             }
             left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && is_faulty {
+            return None;
         }
         if known.is_empty() && !is_open {
             is_open = true;
@@ -681,6 +689,17 @@ impl<'a> Answering<'a> {
             }
         }
         (!is_open).then_some((known, left_out))
+    }
+
+    /// Whether an equation can be answered for; tells, once, why not.
+    fn is_sound(&mut self, equation: &terms::EquationTerms) -> bool {
+        for fault in &equation.faults {
+            let fault = fault.diagnostic();
+            if !self.outcome.diagnostics.contains(&fault) {
+                self.outcome.diagnostics.push(fault);
+            }
+        }
+        equation.faults.is_empty()
     }
 
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {

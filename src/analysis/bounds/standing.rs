@@ -307,7 +307,8 @@ fn sized_in<'c>(factors: &'c [Factor], found: &mut Vec<&'c Sized>) {
         match &factor.base {
             Base::Sized(sized) => found.push(sized),
             Base::Derivative(derivative) => sized_in(&derivative.operand, found),
-            Base::Absolute(inside) => sized_in(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => sized_in(inside, found),
+            Base::Function(applied) => sized_in(&applied.argument.factors, found),
             Base::Symbol(_) | Base::Coordinate(_) | Base::Field(_) => {}
         }
     }
