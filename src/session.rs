@@ -513,10 +513,11 @@ impl<'a> Answering<'a> {
         span: Span,
         text: &str,
     ) {
-        let wanted = phenomena.iter().map(|name| self.model.phenomenon(&name.text));
-        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> = wanted
-            .map(|wanted| (wanted, self.solved(wanted)))
-            .collect();
+        let wanted = phenomena
+            .iter()
+            .map(|name| self.model.phenomenon(&name.text));
+        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> =
+            wanted.map(|wanted| (wanted, self.solved(wanted))).collect();
         let cases = self.cases;
         let given = |wanted| cases.iter().find(|case| case.setting.phenomenon == wanted);
         let named: Vec<&Case> = solved

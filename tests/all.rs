@@ -1,6 +1,7 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
 mod answers;
+mod finding;
 mod harness;
 mod language;
 mod polyhedra;

@@ -2,11 +2,11 @@
 //! and names, never prose.
 
 pub mod balances;
-pub mod layers;
 pub mod bounds;
 pub mod claims;
 pub mod compare;
 pub mod groups;
+pub mod layers;
 pub mod matching;
 pub mod movable;
 pub mod names;

@@ -400,8 +400,7 @@ impl<'q> Logs<'q> {
     /// Whether no constant that is 0 takes a product out.
     fn is_there(&self, product: &Monomial) -> bool {
         let mut symbols = product.powers().iter();
-        !product.number.is_zero()
-            && !symbols.any(|(symbol, _)| self.query.setting.is_zero(symbol))
+        !product.number.is_zero() && !symbols.any(|(symbol, _)| self.query.setting.is_zero(symbol))
     }
 
     /// The bounds: those asked for, then two for each range.

@@ -3,10 +3,10 @@
 
 mod bounds;
 mod claims;
-mod find;
-mod layers;
 mod compare;
+mod find;
 mod groups;
+mod layers;
 mod nondimensional;
 mod rank;
 mod reduce;

@@ -3,11 +3,11 @@
 
 mod bounds;
 mod claims;
-mod find;
-mod layers;
 mod columns;
 mod compare;
+mod find;
 mod groups;
+mod layers;
 mod nondimensional;
 mod rank;
 mod reduce;
