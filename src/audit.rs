@@ -119,9 +119,13 @@ fn used(model: &Model, cases: &[Case]) -> Vec<bool> {
                 let meanings = symbols.iter().map(|name| model.meaning(&name.text, *own));
                 waiting.extend(meanings.filter_map(|meaning| match meaning {
                     Some(Meaning::Symbol(id)) => Some(id),
-                    Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
-                        None
-                    }
+                    Some(
+                        Meaning::Coordinate(_)
+                        | Meaning::Field(_)
+                        | Meaning::Group(_)
+                        | Meaning::Vector(_),
+                    )
+                    | None => None,
                 }));
             }
             // It shows every group.
@@ -172,6 +176,7 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
     let opened = info
         .entries
         .iter()
+        .rev()
         .find_map(|(_, entry)| entry.notes.title.as_ref());
     let formula = match &decl.value {
         ast::Value::Given { nominal, .. } => {

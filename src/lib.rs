@@ -33,6 +33,7 @@ pub mod limits;
 pub mod model;
 pub mod number;
 pub mod polyhedra;
+pub mod prompt;
 pub mod report;
 pub mod session;
 pub mod source;

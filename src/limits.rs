@@ -37,6 +37,11 @@ pub const SUM_POWER: i64 = 12;
 /// Most columns that are reduced in the search for dimensionless groups: about 60 scales of
 /// two dimensions, 25 of four.
 pub const CIRCUIT_STEPS: usize = 200_000;
+/// Deepest nesting of vector operations, `curl(curl(V))`.
+pub const VECTOR_NESTING: usize = 8;
+
+/// Most nodes of the tree that one component of a vector expression may come to.
+pub const VECTOR_NODES: usize = 20_000;
 
 /// Most modules and files that one script may bring in.
 pub const MODULES: usize = 200;
@@ -49,3 +54,12 @@ pub const CELLS: usize = 200_000;
 
 /// Most corners and directions of one cell in a search for balances.
 pub const CELL_RAYS: usize = 2_000;
+
+/// Most parts of one split field, those of split parts counted instead of them.
+pub const SPLIT_PARTS: usize = 64;
+
+/// Deepest nesting of splits.
+pub const SPLIT_DEPTH: usize = 20;
+
+/// The order in small ratios to which `rank`, `reduce` and their like expand.
+pub const EXPANSION_ORDER: u32 = 2;

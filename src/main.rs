@@ -14,20 +14,31 @@ use scalewright::model::errors::ModelError;
 use scalewright::model::library;
 use scalewright::model::modules::{Files, Main};
 use scalewright::model::names;
+use scalewright::prompt::layout::Sheet;
+use scalewright::prompt::terminal::Aids;
+use scalewright::prompt::{self, Start};
 use scalewright::report;
 use scalewright::source::Sources;
 use scalewright::{Outcome, Session, Status};
 
 /// Decide, for one phenomenon, which terms of the governing equations matter.
+///
+/// Without a command it asks for statements and answers them one by one.
 #[derive(Parser)]
-#[command(version, arg_required_else_help = true)]
+#[command(version)]
 struct Words {
     #[command(subcommand)]
-    command: Command,
+    command: Option<Command>,
 }
 
 #[derive(Subcommand)]
 enum Command {
+    /// Try scales and requests one by one; without a terminal, answer what is piped in
+    Prompt {
+        /// A script to start from: a file or a bundled module
+        #[arg(value_name = "FILE")]
+        start: Option<String>,
+    },
     /// Answer scripts: files, bundled modules, or - for standard input
     Run {
         #[command(flatten)]
@@ -104,7 +115,9 @@ fn reason(error: &io::Error) -> String {
 
 fn main() -> ExitCode {
     let words = Words::parse();
-    let done = match &words.command {
+    let none = Command::Prompt { start: None };
+    let done = match words.command.as_ref().unwrap_or(&none) {
+        Command::Prompt { start } => prompt(start.as_deref()),
         Command::Run {
             scripts,
             format,
@@ -233,6 +246,69 @@ fn outcomes(
             }
         })
         .collect()
+}
+
+// The prompt ----------------------------------------------------------------------------------
+
+fn prompt(start: Option<&str>) -> io::Result<ExitCode> {
+    let input = start.map(read);
+    let folder = input
+        .as_ref()
+        .map(|input| input.folder.clone())
+        .unwrap_or_default();
+    let session = Session::new().with_files(&Disk, folder);
+    let start = match input.map(start_of).transpose() {
+        Ok(start) => start,
+        Err(outcome) => {
+            draw_diagnostics(&[outcome], |_| true)?;
+            return Ok(ExitCode::from(2));
+        }
+    };
+    if io::stdin().is_terminal() {
+        prompt::terminal::run(session, start.as_ref(), aids())?;
+        return Ok(ExitCode::SUCCESS);
+    }
+    let sheet = Sheet {
+        columns: report::layout::WIDTH,
+        colour: io::stderr().is_terminal()
+            && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never,
+    };
+    let (mut out, mut err) = (io::stdout().lock(), io::stderr().lock());
+    let mut input = io::stdin().lock();
+    let status = prompt::filter::run(
+        session,
+        start.as_ref(),
+        &mut input,
+        &mut out,
+        &mut err,
+        sheet,
+    )?;
+    Ok(exit_code(status))
+}
+
+fn start_of(input: Input) -> Result<Start, Outcome> {
+    match input.text {
+        Ok(text) => Ok(Start {
+            name: input.name,
+            path: input.path,
+            text,
+        }),
+        Err(error) => Err(Outcome {
+            script: input.name,
+            diagnostics: vec![error.diagnostic()],
+            ..Outcome::default()
+        }),
+    }
+}
+
+/// Completion, hints and colours, unless the terminal or the user wants none.
+fn aids() -> Aids {
+    let is_set = |name: &str| std::env::var_os(name).is_some_and(|value| !value.is_empty());
+    let is_dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb" || term.is_empty());
+    match is_set("NO_COLOR") || is_dumb && !cfg!(windows) || !io::stdout().is_terminal() {
+        true => Aids::None,
+        false => Aids::All,
+    }
 }
 
 // Answering -----------------------------------------------------------------------------------

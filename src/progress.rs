@@ -1,10 +1,9 @@
 //! Long searches at a terminal: a line on standard error that tells how they get on, and
 //! Ctrl-C, which ends the search but keeps the answers.
 
-use std::cell::Cell;
 use std::process;
-use std::sync::Arc;
 use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::{Arc, Mutex, PoisonError};
 use std::time::{Duration, Instant};
 
 use indicatif::{ProgressBar, ProgressDrawTarget, ProgressStyle};
@@ -24,7 +23,8 @@ pub(crate) struct Terminal {
     searching: Arc<AtomicBool>,
     interrupted: Arc<AtomicBool>,
     bar: ProgressBar,
-    since: Cell<Option<Instant>>,
+    /// When the present search began.
+    since: Mutex<Option<Instant>>,
 }
 
 impl Terminal {
@@ -35,7 +35,7 @@ impl Terminal {
             searching: Arc::default(),
             interrupted: Arc::default(),
             bar: ProgressBar::hidden(),
-            since: Cell::new(None),
+            since: Mutex::default(),
         };
         let searching = Arc::clone(&terminal.searching);
         let interrupted = Arc::clone(&terminal.interrupted);
@@ -67,9 +67,8 @@ impl Terminal {
 impl Watcher for Terminal {
     fn goes_on(&self, n_found: usize) -> bool {
         self.searching.store(true, Ordering::SeqCst);
-        let since = self.since.get().unwrap_or_else(Instant::now);
-        self.since.set(Some(since));
-        if since.elapsed() > PATIENCE {
+        let mut since = self.since.lock().unwrap_or_else(PoisonError::into_inner);
+        if since.get_or_insert_with(Instant::now).elapsed() > PATIENCE {
             self.show(n_found);
         }
         !self.interrupted.load(Ordering::SeqCst)
@@ -77,7 +76,8 @@ impl Watcher for Terminal {
 
     fn is_done(&self) {
         self.searching.store(false, Ordering::SeqCst);
-        if self.since.take().is_some() {
+        let mut since = self.since.lock().unwrap_or_else(PoisonError::into_inner);
+        if since.take().is_some() {
             self.bar.finish_and_clear();
             self.bar.reset();
             self.bar.set_draw_target(ProgressDrawTarget::hidden());

@@ -1,5 +1,9 @@
 //! A session: takes a script, checks it, answers it. The command line and embedders go
-//! through here.
+//! through here. A session that grows line by line is in `incremental`.
+
+pub mod changes;
+pub mod incremental;
+mod merge;
 
 mod solving;
 
@@ -17,9 +21,10 @@ use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
-use crate::model::{Model, declarations, requests};
+use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
 use crate::report::{standing, words};
 use crate::source::{Sources, Span};
@@ -88,6 +93,7 @@ impl Outcome {
 }
 
 /// Reads and answers scripts.
+#[derive(Clone)]
 pub struct Session<'f> {
     files: &'f dyn Files,
     folder: PathBuf,
@@ -154,16 +160,7 @@ impl<'f> Session<'f> {
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering {
-                model: &checked.model,
-                cases: &checked.cases,
-                outcome: &mut outcome,
-                watcher: self.watcher,
-                found: BTreeMap::new(),
-                limit: None,
-                is_interrupted: false,
-            }
-            .all();
+            Answering::new(&checked, &mut outcome, self.watcher).all();
         }
         self.finish(&mut outcome);
         outcome
@@ -191,37 +188,24 @@ impl<'f> Session<'f> {
             script: name.to_owned(),
             ..Outcome::default()
         };
-        let main = Main {
+        let main = self.main(name, text, path);
+        let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
+        let nothing_at = (purpose == Purpose::Run).then(|| main_span(&outcome.sources));
+        let checked = judged(scripts, errors, nothing_at, &mut outcome);
+        if let Some(checked) = &checked {
+            outcome.symbols = audit::rows(&checked.model, &checked.cases);
+        }
+        (outcome, checked)
+    }
+
+    fn main(&self, name: &str, text: &str, path: Option<&Path>) -> Main {
+        Main {
             name: name.to_owned(),
             text: text.to_owned(),
             path: path.map(Path::to_owned),
             folder: self.folder.clone(),
             root: self.root.clone().unwrap_or_else(|| self.folder.clone()),
-        };
-        let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
-        let main_span = main_span(&outcome.sources);
-        let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
-        let is_whole = errors.iter().all(|found| !is_of_module(found));
-        let has_form = errors.iter().all(|found| !found.is_error());
-        outcome.diagnostics.extend(errors);
-        let (model, mut errors) = declarations::gather(scripts);
-        let is_idle = model.equations.is_empty() && model.requests.is_empty();
-        if is_idle && has_form && purpose == Purpose::Run {
-            errors.push(ModelError::NothingToRank { span: main_span });
         }
-        let (checked, errors) = check_model(model, errors, has_form);
-        outcome.diagnostics.extend(
-            errors
-                .iter()
-                .filter(|error| !is_echo(error, &unreadable, is_whole))
-                .map(ModelError::diagnostic),
-        );
-        let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
-        let checked = checked.filter(|_| is_sound);
-        if let Some(checked) = &checked {
-            outcome.symbols = audit::rows(&checked.model, &checked.cases);
-        }
-        (outcome, checked)
     }
 }
 
@@ -233,6 +217,31 @@ enum Purpose {
     Run,
 }
 
+/// Checks what was read and adds what is wrong to an outcome. A script that holds nothing
+/// to answer for is at fault at `nothing_at`, if that is given.
+fn judged(
+    scripts: Vec<(crate::model::Level, ast::Script)>,
+    errors: Vec<Diagnostic>,
+    nothing_at: Option<Span>,
+    outcome: &mut Outcome,
+) -> Option<Checked> {
+    let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+    let is_whole = errors.iter().all(|found| !is_of_module(found));
+    let has_form = errors.iter().all(|found| !found.is_error());
+    outcome.diagnostics.extend(errors);
+    let (model, errors) = declarations::gather(scripts);
+    let (checked, errors) = check_model(model, errors, nothing_at, has_form);
+    outcome.diagnostics.extend(
+        errors
+            .iter()
+            .filter(|error| !is_echo(error, &unreadable, is_whole))
+            .map(ModelError::diagnostic),
+    );
+    let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
+    checked.filter(|_| is_sound)
+}
+
+#[derive(Debug)]
 struct Checked {
     model: Model,
     cases: Vec<Case>,
@@ -246,12 +255,25 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
+    nothing_at: Option<Span>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
+    if let Some(span) = nothing_at
+        && model.equations.is_empty()
+        && model.requests.is_empty()
+        && has_form
+    {
+        errors.push(ModelError::NothingToRank { span });
+    }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
-        errors.extend(analysis::value_errors(&model));
+        for error in analysis::value_errors(&model) {
+            if errors.iter().all(|known| !overlap(known, &error)) {
+                errors.push(error);
+            }
+        }
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
@@ -261,6 +283,14 @@ fn check_model(
         errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
+}
+
+/// Whether two faults point at one place, so that the second would repeat the first.
+fn overlap(a: &ModelError, b: &ModelError) -> bool {
+    match (a.diagnostic().span, b.diagnostic().span) {
+        (Some(a), Some(b)) => a.file == b.file && a.start < b.end && b.start < a.end,
+        (Some(_) | None, None) | (None, Some(_)) => false,
+    }
 }
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
@@ -325,6 +355,22 @@ struct Answering<'a> {
 }
 
 impl<'a> Answering<'a> {
+    fn new(
+        checked: &'a Checked,
+        outcome: &'a mut Outcome,
+        watcher: Option<&'a dyn Watcher>,
+    ) -> Answering<'a> {
+        Answering {
+            model: &checked.model,
+            cases: &checked.cases,
+            outcome,
+            watcher,
+            found: BTreeMap::new(),
+            limit: None,
+            is_interrupted: false,
+        }
+    }
+
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -483,7 +529,9 @@ impl<'a> Answering<'a> {
             },
             RequestKind::Bounds { symbols } => {
                 if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
-                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                    let found = self.found.get(&case.setting.phenomenon);
+                    let balances = found.map_or(&[][..], |found| &found.balances);
+                    match bounds::bounds(self.model, case, &wanted, symbols, balances) {
                         Ok(found) => {
                             self.warn_of_lone_terms(case, &found);
                             self.outcome.answers.push(answer(
@@ -492,7 +540,7 @@ impl<'a> Answering<'a> {
                                 Body::Bounds(found),
                             ));
                         }
-                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                        Err(fault) => self.fault(fault, case, request.span),
                     }
                 }
             }
@@ -597,11 +645,17 @@ impl<'a> Answering<'a> {
                 .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
                 .collect()
         };
+        let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
+        let mut is_faulty = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
             if open.is_empty() {
-                known.push(idx);
+                if self.is_sound(&case.equations[idx]) {
+                    known.push(idx);
+                } else {
+                    is_faulty = true;
+                }
                 continue;
             }
             let equation = case.equations[idx].name.clone();
@@ -610,6 +664,9 @@ impl<'a> Answering<'a> {
                 self.open_scale(case, Some(&equation), &open, place);
             }
             left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && is_faulty {
+            return None;
         }
         if known.is_empty() && !is_open {
             is_open = true;
@@ -634,10 +691,21 @@ impl<'a> Answering<'a> {
         (!is_open).then_some((known, left_out))
     }
 
+    /// Whether an equation can be answered for; tells, once, why not.
+    fn is_sound(&mut self, equation: &terms::EquationTerms) -> bool {
+        for fault in &equation.faults {
+            let fault = fault.diagnostic();
+            if !self.outcome.diagnostics.contains(&fault) {
+                self.outcome.diagnostics.push(fault);
+            }
+        }
+        equation.faults.is_empty()
+    }
+
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
             Some(equation) => format!("`{equation}` needs"),
-            None => "every equation needs".to_owned(),
+            None => "this request needs".to_owned(),
         };
         let whose = case
             .setting
@@ -685,7 +753,7 @@ impl<'a> Answering<'a> {
                     .iter()
                     .map(|id| case.setting.names[id.idx()].clone())
                     .collect();
-                self.open_scale(case, Some("this"), &names, span);
+                self.open_scale(case, None, &names, span);
             }
             fault => self
                 .outcome
@@ -713,6 +781,16 @@ impl<'a> Answering<'a> {
             }
         }
     }
+}
+
+/// The equations without components of a vector of which nothing is left, unless there are
+/// no others.
+fn with_terms(model: &Model, case: &Case, all: Vec<(usize, Span)>) -> Vec<(usize, Span)> {
+    let is_empty = |idx: usize| model.is_component(idx) && case.equations[idx].terms.is_empty();
+    if all.iter().all(|(idx, _)| is_empty(*idx)) {
+        return all;
+    }
+    all.into_iter().filter(|(idx, _)| !is_empty(*idx)).collect()
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.

@@ -40,8 +40,8 @@ pub struct ComparedScale {
     pub name: String,
     /// Its SI unit.
     pub unit: String,
-    /// The unit in which it was written first.
-    pub written_unit: Option<String>,
+    /// The units in which they were written.
+    pub written_units: Vec<Option<String>>,
     /// Its values; `None` where it is open or does not exist.
     pub values: Vec<Option<Range>>,
 }
@@ -144,9 +144,12 @@ fn scales(model: &Model, cases: &[&Case]) -> Vec<ComparedScale> {
                 unit: info
                     .dimension
                     .map_or_else(|| "1".to_owned(), |dimension| dimension.unit_text()),
-                written_unit: settings()
-                    .filter(|setting| is_seen(model, setting, idx))
-                    .find_map(|setting| audit::written_unit(model, setting, id)),
+                written_units: settings()
+                    .map(|setting| {
+                        let is_seen = is_seen(model, setting, idx);
+                        is_seen.then(|| audit::written_unit(model, setting, id))?
+                    })
+                    .collect(),
                 values: settings()
                     .map(|setting| setting.symbol_value(&Symbol::Declared(id)).ok())
                     .collect(),

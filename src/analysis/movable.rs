@@ -44,6 +44,7 @@ fn symbol(model: &Model, case: &Case, name: &ast::Name) -> Result<SymbolId, Mode
         Some(Meaning::Symbol(id)) => return Ok(id),
         Some(Meaning::Coordinate(_)) => "coordinate",
         Some(Meaning::Field(_)) => "field",
+        Some(Meaning::Vector(_)) => "vector",
         Some(Meaning::Group(_)) => "group",
         None => {
             return Err(ModelError::UnknownName {
@@ -74,6 +75,7 @@ pub fn group(model: &Model, name: &ast::Name) -> Result<(), ModelError> {
         },
         Some(Meaning::Coordinate(_)) => "coordinate",
         Some(Meaning::Field(_)) => "field",
+        Some(Meaning::Vector(_)) => "vector",
         None => {
             let groups = model.groups.iter().map(|group| group.name.text.as_str());
             return Err(ModelError::UnknownName {

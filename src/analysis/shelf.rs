@@ -319,7 +319,10 @@ impl Gatherer<'_> {
         };
         let time = match self.model.meaning("t", None) {
             Some(Meaning::Coordinate(id)) => self.coordinate_size(id),
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => None,
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => None,
         };
         found.extend(time.map(|time| (time, format!("{length}/{speed}"))));
         for (across, depth) in &sizes[1..] {
@@ -336,7 +339,7 @@ impl Gatherer<'_> {
         match self.model.meaning(&name.text, None)? {
             Meaning::Coordinate(id) => self.coordinate_size(id),
             Meaning::Field(id) => lone_name(&self.model.fields[id.0 as usize].size),
-            Meaning::Symbol(_) | Meaning::Group(_) => None,
+            Meaning::Symbol(_) | Meaning::Group(_) | Meaning::Vector(_) => None,
         }
     }
 

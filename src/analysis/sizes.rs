@@ -10,12 +10,15 @@ use crate::number::Exponent;
 use crate::polyhedra::{self, Affine};
 use crate::units::Range;
 
-/// Sizes this near to one another, relative, are equal.
-const SAME: f64 = 1e-12;
+/// Sizes this near to one another, relative, are equal; so are logarithms of sizes this
+/// near to one another.
+pub const SAME: f64 = 1e-12;
 
 /// Whether two sizes are equal.
 pub fn same(a: f64, b: f64) -> bool {
-    (a - b).abs() <= SAME * a.abs().max(b.abs())
+    let largest = a.abs().max(b.abs());
+    // An infinite size, of something over 0, would be near to everything.
+    a == b || (largest.is_finite() && (a - b).abs() <= SAME * largest)
 }
 
 /// Whether a size lies at or below a limit.
@@ -195,11 +198,7 @@ impl Shares {
             .iter()
             .map(|idx| polyhedra::highest(*idx, &self.forms, bounds))
             .fold(f64::NEG_INFINITY, f64::max);
-        Range {
-            low: snapped(low.exp()).min(nominal),
-            nominal,
-            high: snapped(high.exp()).max(nominal),
-        }
+        around(snapped(low.exp()), nominal, snapped(high.exp()))
     }
 
     /// The lowest share of a process over the box.
@@ -255,6 +254,16 @@ impl Shares {
     }
 }
 
+/// A range whose ends are equal to its nominal value within rounding is that value.
+fn around(low: f64, nominal: f64, high: f64) -> Range {
+    let end = |end: f64| if same(end, nominal) { nominal } else { end };
+    Range {
+        low: end(low).min(nominal),
+        nominal,
+        high: end(high).max(nominal),
+    }
+}
+
 /// A share of 1 within rounding is 1.
 fn snapped(share: f64) -> f64 {
     if same(share, 1.0) { 1.0 } else { share }
@@ -294,11 +303,11 @@ pub fn ratio(setting: &Setting, above: &[Monomial], below: &[Monomial]) -> Range
             .map(|idx| polyhedra::highest_against(*idx, against, &forms, &space.bounds))
             .fold(f64::NEG_INFINITY, f64::max)
     };
-    Range {
-        low: (-highest(&rivals, &own)).exp().min(nominal),
+    around(
+        (-highest(&rivals, &own)).exp(),
         nominal,
-        high: highest(&own, &rivals).exp().max(nominal),
-    }
+        highest(&own, &rivals).exp(),
+    )
 }
 
 #[cfg(test)]
@@ -312,6 +321,14 @@ mod tests {
         assert_eq!(order_of_magnitude(3.0), Some(0));
         assert_eq!(order_of_magnitude(3.2), Some(1));
         assert_eq!(order_of_magnitude(0.0), None);
+    }
+
+    #[test]
+    fn nothing_finite_is_near_to_infinity() {
+        assert!(same(1.0, 1.0 + 1e-13));
+        assert!(!same(f64::INFINITY, 1.0));
+        assert!(!at_most(f64::INFINITY, 1.0));
+        assert!(same(f64::INFINITY, f64::INFINITY));
     }
 
     #[test]

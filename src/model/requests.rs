@@ -1,6 +1,9 @@
 //! Checks requests and claims: that what they name is there and that their expressions
 //! have fitting dimensions; and finds the phenomena that a request answers for.
 
+use num_rational::BigRational;
+use num_traits::One;
+
 use crate::analysis::{Case, compare};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
@@ -178,6 +181,7 @@ impl Checker<'_> {
             Some(Meaning::Symbol(_)) => return,
             Some(Meaning::Coordinate(_)) => "coordinate",
             Some(Meaning::Field(_)) => "field",
+            Some(Meaning::Vector(_)) => "vector",
             Some(Meaning::Group(_)) => "group",
             None => {
                 let known = self.model.visible_names(self.phenomenon);
@@ -260,7 +264,14 @@ impl Checker<'_> {
         let result = match relation {
             R::MuchLess | R::MuchGreater => declarations::tolerance_value(within).map(|_| ()),
             R::Similar => crate::model::settings::factor(within).map(|_| ()),
-            R::Equal => declarations::share(within).map(|_| ()),
+            R::Equal => match declarations::share(within) {
+                Ok(share) if share >= BigRational::one() => Err(ModelError::WrongForm {
+                    found: "a factor",
+                    wanted: "a relative margin below 1 behind `=`, such as `within 1 %`",
+                    span: within.span,
+                }),
+                other => other.map(|_| ()),
+            },
             R::Less | R::Greater => Err(ModelError::WrongForm {
                 found: "`within`",
                 wanted: "no margin behind a comparison",
@@ -390,7 +401,12 @@ fn unknown_everywhere(model: &Model, case: &Case, process: &ProcessRef) -> Optio
 }
 
 /// Checks the processes in an expression, `x_momentum.coriolis`.
-fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Vec<ModelError>) {
+pub(crate) fn named_processes(
+    model: &Model,
+    case: &Case,
+    expr: &ast::Expr,
+    errors: &mut Vec<ModelError>,
+) {
     match &expr.kind {
         ExprKind::Process { equation, process } => {
             if let Some(idx) = model.equation(&equation.text) {

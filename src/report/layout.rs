@@ -23,7 +23,7 @@ pub fn significant(value: f64, digits: usize) -> String {
 
 /// Whether a number reads well without a power of ten.
 fn is_plain(value: f64) -> bool {
-    value == 0.0 || (1e-3..1e6).contains(&value.abs())
+    value == 0.0 || (1e-3..1e5).contains(&value.abs())
 }
 
 fn scientific(value: f64, digits: usize) -> String {

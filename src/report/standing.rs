@@ -6,21 +6,18 @@ use crate::analysis::bounds::standing::Why;
 use crate::analysis::bounds::{Bound, Bounds, Dropped, End, Place};
 use crate::analysis::matching::Matching;
 use crate::diagnostic::Diagnostic;
-use crate::report::layout::{quantity, range, significant};
+use crate::report::layout::{range, significant};
 use crate::report::words;
 use crate::source::Span;
-use crate::units::{self, Range};
+use crate::units::Range;
 
 /// A value of a scale in the unit in which it was written.
 pub fn value(bound: &Bound, value: f64) -> String {
-    let written = bound
-        .written_unit
-        .as_ref()
-        .and_then(|text| Some((text, units::parse_unit(text).ok()?)));
-    match written {
-        Some((text, unit)) => quantity(&Range::exact(unit.from_si(value)), text),
-        None => quantity(&Range::exact(value), &bound.unit),
-    }
+    words::in_unit(
+        &Range::exact(value),
+        &bound.unit,
+        bound.written_unit.as_ref(),
+    )
 }
 
 /// A factor of at least 1, with as many digits as tell it from 1.
@@ -57,6 +54,8 @@ fn what_happens(places: &[&Place], why: Why) -> String {
                 (Why::Rises, _) => "matter in",
                 (Why::Falls, 1) => "falls away in",
                 (Why::Falls, _) => "fall away in",
+                (Why::Joins, 1) => "exceeds the balance in",
+                (Why::Joins, _) => "exceed the balance in",
                 (Why::ExceedsParts, 1) => "exceeds its parts in",
                 (Why::ExceedsParts, _) => "exceed their parts in",
             };

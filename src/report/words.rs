@@ -327,7 +327,7 @@ pub fn no_balance(found: &Balances) -> String {
 }
 
 /// A value in the unit in which it was written, or else in SI units.
-fn in_unit(value: &Range, si_unit: &str, written: Option<&String>) -> String {
+pub fn in_unit(value: &Range, si_unit: &str, written: Option<&String>) -> String {
     let unit = written.and_then(|text| Some((text, units::parse_unit(text).ok()?)));
     match unit {
         Some((text, unit)) => {

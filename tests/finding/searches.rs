@@ -1,6 +1,6 @@
 //! What `find` refuses, what it says where there is no balance, and searches that are ended.
 
-use std::cell::Cell;
+use std::sync::atomic::{AtomicUsize, Ordering};
 
 use scalewright::{Session, Watcher, report};
 use serde_json::json;
@@ -135,14 +135,13 @@ fn a_point_where_three_terms_meet_is_one_candidate() {
 
 /// Ends a search at its nth step.
 struct Ender {
-    steps: Cell<usize>,
+    steps: AtomicUsize,
     last: usize,
 }
 
 impl Watcher for Ender {
     fn goes_on(&self, _: usize) -> bool {
-        self.steps.set(self.steps.get() + 1);
-        self.steps.get() < self.last
+        self.steps.fetch_add(1, Ordering::Relaxed) + 1 < self.last
     }
 }
 
@@ -150,7 +149,7 @@ impl Watcher for Ender {
 fn a_search_that_is_ended_keeps_the_answers_before_it() {
     let script = format!("{BASE}show A\nfind X\nshow B");
     let ender = Ender {
-        steps: Cell::new(0),
+        steps: AtomicUsize::new(0),
         last: 1,
     };
     let outcome = Session::new()
@@ -166,11 +165,11 @@ fn a_search_that_is_ended_keeps_the_answers_before_it() {
 fn a_search_is_watched_step_by_step() {
     let script = "scale X in 1  equation e: X as x = 2 as two  find X";
     let ender = Ender {
-        steps: Cell::new(0),
+        steps: AtomicUsize::new(0),
         last: usize::MAX,
     };
     let outcome = Session::new()
         .with_watcher(&ender)
         .run("case.scl", script, None);
-    assert!(outcome.diagnostics.is_empty() && ender.steps.get() > 0);
+    assert!(outcome.diagnostics.is_empty() && ender.steps.load(Ordering::Relaxed) > 0);
 }

@@ -8,11 +8,11 @@ use crate::harness::{answers, answers_to, entry, list};
 /// An eddy in a bay and in a turning tank.
 const EDDIES: &str = "
 scale U in m/s   scale L in m   scale H in m
-constant f in 1/s   constant g = 9.80665 m/s^2
+constant f in 1/s   constant nu = 1e-6 m^2/s   constant g = 9.80665 m/s^2
 group Ro = U/(f*L)
 group Fr = U/sqrt(g*H)
 group steep = H/L
-group spin = f*sqrt(L/g)
+group Re = U*L/nu
 phenomenon tank { scale U = 5 cm/s  scale L = 20 cm  scale H = 10 cm  constant f = 1 1/s }
 phenomenon bay { scale U = 20 cm/s  scale L = 20 km  scale H = 40 m  constant f = 1e-4 1/s }
 phenomenon gulf { scale U = 21 cm/s  scale L = 20 km  scale H = 42 m  constant f = 1e-4 1/s }
@@ -96,21 +96,21 @@ fn groups_that_match_need_no_change() {
 
 #[test]
 fn groups_in_conflict_are_named() {
-    // Ro, Fr, steep and spin are four conditions on three scales.
-    let script = with("compare tank, bay matching Ro, Fr, steep, spin");
+    // Four conditions on three scales.
+    let script = with("compare tank, bay matching Ro, Fr, steep, Re");
     let output = answers(&script);
     assert_eq!(output["outcome"], "invalid");
     let found = &answers_to(&output, "compare")[0]["matching"];
     assert_eq!(found["possible"], false);
     assert_eq!(found["changes"], json!([]));
-    assert_eq!(found["conflict"], json!(["Ro", "Fr", "steep", "spin"]));
+    assert_eq!(found["conflict"], json!(["Ro", "Fr", "steep", "Re"]));
     let found = errors(&script);
     assert_eq!(found.len(), 1);
     assert_eq!(found[0].0, "cannot-match");
     assert!(
         found[0]
             .1
-            .contains("`Ro`, `Fr`, `steep`, `spin` cannot be matched together")
+            .contains("`Ro`, `Fr`, `steep`, `Re` cannot be matched together")
     );
     assert!(report(&script).contains("cannot be matched together by scales of tank alone"));
 }

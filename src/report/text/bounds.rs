@@ -3,6 +3,7 @@
 use std::fmt::Write as _;
 
 use crate::analysis::bounds::{Bound, Bounds, End};
+use crate::analysis::sizes::SAME;
 use crate::report::layout::{padded, width, wrapped};
 use crate::report::standing;
 use crate::report::text::Pen;
@@ -84,13 +85,25 @@ fn ends(bound: &Bound) -> Vec<[String; 4]> {
         rows.push([label.to_owned(), value, factor, then]);
     };
     let (stands, same) = (&bound.stands, &bound.unchanged);
-    if same.low != stands.low {
+    if is_elsewhere(same.low.as_ref(), stands.low.as_ref()) {
         add("changes below", same.low.as_ref());
     }
     add("stands down to", stands.low.as_ref());
-    if same.high != stands.high {
+    if is_elsewhere(same.high.as_ref(), stands.high.as_ref()) {
         add("changes above", same.high.as_ref());
     }
     add("stands up to", stands.high.as_ref());
+    if let Some(balance) = &bound.balance {
+        add("balanced down to", balance.low.as_ref());
+        add("balanced up to", balance.high.as_ref());
+    }
     rows
+}
+
+fn is_elsewhere(a: Option<&End>, b: Option<&End>) -> bool {
+    match (a, b) {
+        (Some(a), Some(b)) => (a.way - b.way).abs() > SAME,
+        (None, None) => false,
+        (Some(_), None) | (None, Some(_)) => true,
+    }
 }

@@ -9,7 +9,7 @@ use crate::report::layout::{WIDTH, cut, number, percent, quantity, unit, wrapped
 use crate::report::text::Pen;
 use crate::report::text::columns::{Row, columns};
 use crate::report::{standing, words};
-use crate::units::{self, Range};
+use crate::units::Range;
 
 /// Writes phenomena side by side.
 pub(super) fn compare(comparison: &Comparison, pen: &Pen, out: &mut String) {
@@ -49,25 +49,14 @@ pub(super) fn compare(comparison: &Comparison, pen: &Pen, out: &mut String) {
 }
 
 fn scale(scale: &ComparedScale) -> Row {
-    let written = scale
-        .written_unit
-        .as_ref()
-        .and_then(|text| Some((text, units::parse_unit(text).ok()?)));
-    let cell = |value: &Option<Range>| match (value, &written) {
-        (None, _) => "-".to_owned(),
-        (Some(value), Some((text, unit))) => {
-            let shown = Range {
-                low: unit.from_si(value.low),
-                nominal: unit.from_si(value.nominal),
-                high: unit.from_si(value.high),
-            };
-            quantity(&shown, text)
-        }
-        (Some(value), None) => quantity(value, &scale.unit),
+    let cell = |(value, written): (&Option<Range>, &Option<String>)| match value {
+        Some(value) => words::in_unit(value, &scale.unit, written.as_ref()),
+        None => "-".to_owned(),
     };
+    let values = scale.values.iter().zip(&scale.written_units);
     Row {
         label: scale.name.clone(),
-        cells: scale.values.iter().map(cell).collect(),
+        cells: values.map(cell).collect(),
         note: String::new(),
     }
 }

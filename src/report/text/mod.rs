@@ -17,6 +17,7 @@ use std::fmt::Write as _;
 
 use anstyle::{AnsiColor, Effects, Style};
 
+use crate::analysis::claims::Held;
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
@@ -41,6 +42,18 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
         out.push('\n');
         out.push_str(&wrapped("", CAUTION));
     }
+    out
+}
+
+/// Writes the answers and claims alone, without what was given and without the caution:
+/// what a prompt says to one request.
+pub fn answers(answers: &[Answer], held: &[Held], colour: bool) -> String {
+    let pen = Pen { colour };
+    let mut out = String::new();
+    for answer in answers {
+        write_answer(answer, &pen, &mut out);
+    }
+    claims::claims(held, &pen, &mut out);
     out
 }
 
@@ -160,9 +173,11 @@ fn audit_words(row: &AuditRow) -> String {
 // Answers -------------------------------------------------------------------------------------
 
 fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
+    // The phenomenon is named once, whatever the request says behind `for`.
+    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
     let title = match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
-        (Some(name), None) => format!("{}, {name}", answer.text),
+        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
+        (Some(name), None) => format!("{asked}, {name}"),
         (None, _) => answer.text.clone(),
     };
     if let Body::Show(shown) = &answer.body {

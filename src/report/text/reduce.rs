@@ -37,6 +37,10 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
     };
     out.push_str(&wrapped("  leading order  ", &order));
     out.push_str(&wrapped_equation("      ", &equation.reduced));
+    if equation.is_base_state {
+        let text = "a base state alone: `using` takes it out of other equations";
+        out.push_str(&wrapped("  base     ", text));
+    }
     depends(equation, out);
     dropped(equation, out);
     if let Some(text) = &equation.first_neglected {
