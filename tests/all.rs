@@ -2,6 +2,7 @@
 
 mod answers;
 mod exact;
+mod finding;
 mod harness;
 mod language;
 mod polyhedra;

@@ -132,7 +132,7 @@ impl Answering<'_> {
             }
         };
         if found.candidates.is_empty() && found.ending == Ending::Complete {
-            let message = words::no_balance(&found.contradiction);
+            let message = words::no_balance(&found);
             let whose = case.setting.name.as_ref().map(|name| format!("{name}: "));
             let message = format!("{}{message}", whose.unwrap_or_default());
             let warning = Diagnostic::warning("no-balance", words.span, message);
@@ -474,7 +474,7 @@ fn closed_diagnostics(
     };
     if !is_error {
         let message =
-            format!("nothing is looked for{whose}: not all of these scales are open there");
+            format!("`find` finds nothing{whose}: not all of these scales are open there");
         return Some(Diagnostic::note("not-open", span, message));
     }
     Some(match first {
