@@ -474,6 +474,7 @@ impl Answering<'_> {
 
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
+            Some("this") => "this needs".to_owned(),
             Some(equation) => format!("`{equation}` needs"),
             None => "every equation needs".to_owned(),
         };

@@ -3,5 +3,6 @@
 mod harness;
 mod language;
 mod polyhedra;
+mod prompt;
 mod published;
 mod reference;

@@ -18,6 +18,7 @@ use rustyline::{ColorMode, CompletionType, Config, Context, Editor, Helper};
 use crate::prompt::dialogue::{Dialogue, Reply};
 use crate::prompt::layout::Sheet;
 use crate::prompt::{Start, complete, entry, highlight, hint, history};
+use crate::report::layout::{cut, width};
 use crate::session::Session;
 
 /// The mark before an entry: what is typed scales as ...
@@ -25,6 +26,9 @@ const MARK: &str = "~: ";
 
 /// Columns where the terminal does not tell.
 const COLUMNS: usize = 80;
+
+/// Columns below which a hint is no use.
+const LEAST_HINT: usize = 6;
 
 /// Most lines that are remembered.
 const REMEMBERED: usize = 2_000;
@@ -286,7 +290,11 @@ impl Hinter for Aid {
         if pos < line.len() {
             return None;
         }
-        hint::hint(self.dialogue()?.page(), line).map(Remark)
+        let dialogue = self.dialogue()?;
+        let said = hint::hint(dialogue.page(), line)?;
+        let taken = width(MARK) + width(line.rsplit('\n').next().unwrap_or(line));
+        let room = dialogue.sheet().columns.saturating_sub(taken + 1);
+        (room >= LEAST_HINT).then(|| Remark(cut(&said, room)))
     }
 }
 

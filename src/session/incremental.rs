@@ -44,6 +44,8 @@ pub struct Taken {
     pub outcome: Outcome,
     /// Whether the page holds the entry now; not so if it was at fault.
     pub is_taken: bool,
+    /// Whether it declares something, rather than asking alone.
+    pub declares: bool,
     /// What gave way to it.
     pub replaced: Vec<Replaced>,
     /// What it changed.
@@ -328,6 +330,7 @@ impl<'f> Page<'f> {
         Taken {
             outcome,
             is_taken: true,
+            declares: true,
             replaced: attempt.replaced,
             changes,
             requests: attempt.requests,
@@ -612,7 +615,9 @@ fn comment_out(text: &mut String, span: Span) {
         true => "",
         false => "\n",
     };
-    let behind = match text[end..].starts_with('\n') || end == text.len() {
+    let blanks = text[end..].len() - text[end..].trim_start_matches([' ', '\t']).len();
+    let rest = &text[end + blanks..];
+    let behind = match rest.is_empty() || rest.starts_with('\n') {
         true => "",
         false => "\n",
     };
@@ -620,7 +625,7 @@ fn comment_out(text: &mut String, span: Span) {
         "{before}# no longer answered:\n{}{behind}",
         lines.join("\n")
     );
-    text.replace_range(start..end, &comment);
+    text.replace_range(start..end + blanks, &comment);
 }
 
 impl Checked {
