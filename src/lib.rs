@@ -40,7 +40,7 @@ pub mod source;
 pub mod syntax;
 pub mod units;
 
-pub use session::{Outcome, Session, Status};
+pub use session::{Outcome, Session, Status, Watcher};
 
 /// Runs a script that uses no files and gives its answers as one JSON object.
 pub fn run_to_json(name: &str, text: &str) -> serde_json::Value {

@@ -6,15 +6,17 @@ use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
-use scalewright::diagnostic::Diagnostic;
+use scalewright::analysis::shelf;
+use scalewright::diagnostic::{Diagnostic, Severity};
 use scalewright::model::errors::ModelError;
 use scalewright::model::library;
-use scalewright::model::modules::Files;
+use scalewright::model::modules::{Files, Main};
 use scalewright::model::names;
 use scalewright::prompt::layout::Sheet;
 use scalewright::prompt::terminal::Aids;
 use scalewright::prompt::{self, Start};
 use scalewright::report;
+use scalewright::source::Sources;
 use scalewright::{Outcome, Session, Status};
 
 /// Decide, for one phenomenon, which terms of the governing equations matter.
@@ -50,6 +52,9 @@ enum Command {
     Check {
         #[command(flatten)]
         scripts: Scripts,
+        /// Print them in the canonical form, comments kept
+        #[arg(long)]
+        print: bool,
     },
     /// List the bundled modules, or show one
     Library {
@@ -116,7 +121,7 @@ fn main() -> ExitCode {
             format,
             output,
         } => run(scripts, *format, output.as_deref()),
-        Command::Check { scripts } => check(scripts),
+        Command::Check { scripts, print } => check(scripts, *print),
         Command::Library { name } => show_library(name.as_deref()),
     };
     match done {
@@ -316,7 +321,8 @@ fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<E
     };
     // What a report says already is not drawn a second time beside it.
     draw_diagnostics(&outcomes, |found| {
-        found.is_error() || !report::words::is_in_report(found.code)
+        let is_told = found.severity == Severity::Note || report::words::is_in_report(found.code);
+        found.is_error() || !is_told
     })?;
     match output {
         None => io::stdout().lock().write_all(text.as_bytes())?,
@@ -378,7 +384,7 @@ fn write_whole(path: &Path, text: &str) -> io::Result<()> {
     })
 }
 
-fn check(scripts: &Scripts) -> io::Result<ExitCode> {
+fn check(scripts: &Scripts, is_printed: bool) -> io::Result<ExitCode> {
     let outcomes = outcomes(scripts, |session, input, text| {
         session.check(&input.name, text, input.path.as_deref())
     });
@@ -388,39 +394,46 @@ fn check(scripts: &Scripts) -> io::Result<ExitCode> {
         .iter()
         .filter(|outcome| outcome.status() == Status::Ok)
     {
-        writeln!(stdout, "{}: no errors", outcome.script)?;
+        match outcome.canonical() {
+            Some(text) if is_printed => stdout.write_all(text.as_bytes())?,
+            Some(_) | None => writeln!(stdout, "{}: no errors", outcome.script)?,
+        }
     }
     Ok(exit_code(worst(&outcomes)))
 }
 
 fn show_library(name: Option<&str>) -> io::Result<ExitCode> {
-    let mut stdout = io::stdout().lock();
     let Some(name) = name else {
-        let widest = library::MODULES
-            .iter()
-            .map(|module| module.name.len())
-            .max()
-            .unwrap_or(0);
-        for module in library::MODULES {
-            let headline = report::layout::cut(
-                &library::headline(module),
-                report::layout::WIDTH - widest - 2,
-            );
-            writeln!(stdout, "{:widest$}  {headline}", module.name)?;
-        }
+        let text = report::shelf::list(library::MODULES);
+        io::stdout().lock().write_all(text.as_bytes())?;
         return Ok(ExitCode::SUCCESS);
     };
-    match read(name).text {
-        Ok(text) => stdout.write_all(text.as_bytes())?,
-        Err(error) => {
-            drop(stdout);
-            let outcome = Outcome {
-                diagnostics: vec![error.diagnostic()],
-                ..Outcome::default()
+    let input = read(name);
+    let (diagnostics, sources) = match &input.text {
+        Ok(text) => {
+            let main = Main {
+                name: input.name.clone(),
+                text: text.clone(),
+                path: input.path.clone(),
+                folder: input.folder.clone(),
+                root: input.folder.clone(),
             };
-            draw_diagnostics(&[outcome], |_| true)?;
-            return Ok(ExitCode::from(2));
+            match shelf::shelf(&main, &Disk) {
+                Ok(shelf) => {
+                    let text = report::shelf::shelf(&shelf);
+                    io::stdout().lock().write_all(text.as_bytes())?;
+                    return Ok(ExitCode::SUCCESS);
+                }
+                Err(found) => found,
+            }
         }
-    }
-    Ok(ExitCode::SUCCESS)
+        Err(error) => (vec![error.diagnostic()], Sources::default()),
+    };
+    let outcome = Outcome {
+        diagnostics,
+        sources,
+        ..Outcome::default()
+    };
+    draw_diagnostics(&[outcome], Diagnostic::is_error)?;
+    Ok(ExitCode::from(2))
 }

@@ -5,22 +5,33 @@ pub mod changes;
 pub mod incremental;
 mod merge;
 
+mod solving;
+
+use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
+use std::rc::Rc;
 
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::analysis::{
+    self, Answer, Body, Case, LeftOut, bounds, compare, groups, nondimensional, rank, reduce,
+};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
-use crate::model::{Model, declarations, requests};
+use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
+use crate::report::{standing, words};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+use crate::syntax::{parser, print};
+
+pub use solving::Watcher;
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -62,6 +73,13 @@ impl Outcome {
         }
     }
 
+    /// The script in its canonical form, comments kept; `None` if none was read.
+    pub fn canonical(&self) -> Option<String> {
+        let (file, source) = self.sources.iter().next()?;
+        let (script, _) = parser::parse(&source.text, file);
+        Some(print::print(&script, &source.text))
+    }
+
     /// The diagnostics drawn against their texts.
     pub fn drawn(&self, colour: bool, wanted: impl Fn(&Diagnostic) -> bool) -> String {
         let wanted: Vec<Diagnostic> = self
@@ -81,6 +99,7 @@ pub struct Session<'f> {
     folder: PathBuf,
     root: Option<PathBuf>,
     is_strict: bool,
+    watcher: Option<&'f dyn Watcher>,
 }
 
 impl Default for Session<'_> {
@@ -97,6 +116,7 @@ impl<'f> Session<'f> {
             folder: PathBuf::new(),
             root: None,
             is_strict: false,
+            watcher: None,
         }
     }
 
@@ -122,23 +142,25 @@ impl<'f> Session<'f> {
         self
     }
 
+    /// Lets somebody watch long searches, and end them.
+    #[must_use]
+    pub fn with_watcher(mut self, watcher: &'f dyn Watcher) -> Session<'f> {
+        self.watcher = Some(watcher);
+        self
+    }
+
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, _) = self.checked(name, text, path);
+        let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
         self.finish(&mut outcome);
         outcome
     }
 
     /// Reads, checks and answers a script.
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, checked) = self.checked(name, text, path);
+        let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering {
-                model: &checked.model,
-                cases: &checked.cases,
-                outcome: &mut outcome,
-            }
-            .all();
+            Answering::new(&checked, &mut outcome, self.watcher).all();
         }
         self.finish(&mut outcome);
         outcome
@@ -155,15 +177,21 @@ impl<'f> Session<'f> {
         diagnostic::sort(&mut outcome.diagnostics);
     }
 
-    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+    fn checked(
+        &self,
+        name: &str,
+        text: &str,
+        path: Option<&Path>,
+        purpose: Purpose,
+    ) -> (Outcome, Option<Checked>) {
         let mut outcome = Outcome {
             script: name.to_owned(),
             ..Outcome::default()
         };
         let main = self.main(name, text, path);
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
-        let whole = main_span(&outcome.sources);
-        let checked = judged(scripts, errors, Some(whole), &mut outcome);
+        let nothing_at = (purpose == Purpose::Run).then(|| main_span(&outcome.sources));
+        let checked = judged(scripts, errors, nothing_at, &mut outcome);
         if let Some(checked) = &checked {
             outcome.symbols = audit::rows(&checked.model, &checked.cases);
         }
@@ -181,6 +209,14 @@ impl<'f> Session<'f> {
     }
 }
 
+/// What a script is read for; a shelf of declarations has nothing to answer, but can be
+/// checked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Purpose {
+    Check,
+    Run,
+}
+
 /// Checks what was read and adds what is wrong to an outcome. A script that holds nothing
 /// to answer for is at fault at `nothing_at`, if that is given.
 fn judged(
@@ -190,6 +226,7 @@ fn judged(
     outcome: &mut Outcome,
 ) -> Option<Checked> {
     let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+    let is_whole = errors.iter().all(|found| !is_of_module(found));
     let has_form = errors.iter().all(|found| !found.is_error());
     outcome.diagnostics.extend(errors);
     let (model, errors) = declarations::gather(scripts);
@@ -197,7 +234,7 @@ fn judged(
     outcome.diagnostics.extend(
         errors
             .iter()
-            .filter(|error| !is_echo(error, &unreadable))
+            .filter(|error| !is_echo(error, &unreadable, is_whole))
             .map(ModelError::diagnostic),
     );
     let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -221,6 +258,7 @@ fn check_model(
     nothing_at: Option<Span>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
     if let Some(span) = nothing_at
@@ -231,15 +269,28 @@ fn check_model(
         errors.push(ModelError::NothingToRank { span });
     }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
-        errors.extend(analysis::value_errors(&model));
+        for error in analysis::value_errors(&model) {
+            if errors.iter().all(|known| !overlap(known, &error)) {
+                errors.push(error);
+            }
+        }
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
     errors.extend(found);
     for case in &cases {
         errors.extend(requests::check_processes(&model, case));
+        errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
+}
+
+/// Whether two faults point at one place, so that the second would repeat the first.
+fn overlap(a: &ModelError, b: &ModelError) -> bool {
+    match (a.diagnostic().span, b.diagnostic().span) {
+        (Some(a), Some(b)) => a.file == b.file && a.start < b.end && b.start < a.end,
+        (Some(_) | None, None) | (None, Some(_)) => false,
+    }
 }
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
@@ -271,11 +322,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }
@@ -286,9 +345,32 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    watcher: Option<&'a dyn Watcher>,
+    /// Phenomena in which a `find` gave formulas.
+    found: BTreeMap<Option<usize>, solving::Found>,
+    /// The `limit` in force.
+    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Whether a search was ended, and with it the rest.
+    is_interrupted: bool,
 }
 
-impl Answering<'_> {
+impl<'a> Answering<'a> {
+    fn new(
+        checked: &'a Checked,
+        outcome: &'a mut Outcome,
+        watcher: Option<&'a dyn Watcher>,
+    ) -> Answering<'a> {
+        Answering {
+            model: &checked.model,
+            cases: &checked.cases,
+            outcome,
+            watcher,
+            found: BTreeMap::new(),
+            limit: None,
+            is_interrupted: false,
+        }
+    }
+
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -310,15 +392,51 @@ impl Answering<'_> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = words(self.outcome.sources.slice(request.span));
-            self.request(*own, request, &text);
+            self.in_turn(*own, request);
         }
     }
 
+    /// Answers a request of the script; what it settles holds for those behind it.
+    fn in_turn(&mut self, own: Option<usize>, request: &'a ast::Request) {
+        if self.is_interrupted {
+            return;
+        }
+        if let RequestKind::Limit { small, places } = &request.kind {
+            self.limit = Some((small, places));
+        }
+        let text = one_line(self.outcome.sources.slice(request.span));
+        self.request(own, request, &text);
+    }
+
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Find {
+            unknowns,
+            conditions,
+        } = &request.kind
+        {
+            let span = request.span;
+            let words = solving::FindWords {
+                unknowns,
+                conditions,
+                span,
+                text,
+            };
+            self.find(own, request, &words);
+            return;
+        }
+        if let RequestKind::Compare {
+            phenomena,
+            matching,
+        } = &request.kind
+        {
+            self.compare(phenomena, matching.as_deref(), request.span, text);
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
-            if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
+            let solved = self.solved(target);
+            let given = cases.iter().find(|case| case.setting.phenomenon == target);
+            if let Some(case) = solved.as_deref().or(given) {
                 self.answer(case, request, text);
             }
         }
@@ -388,17 +506,114 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Layers => self.layers(case, request.span, text),
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
+            RequestKind::Bounds { symbols } => {
+                if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
+                    let found = self.found.get(&case.setting.phenomenon);
+                    let balances = found.map_or(&[][..], |found| &found.balances);
+                    match bounds::bounds(self.model, case, &wanted, symbols, balances) {
+                        Ok(found) => {
+                            self.warn_of_lone_terms(case, &found);
+                            self.outcome.answers.push(answer(
+                                "bounds",
+                                left_out,
+                                Body::Bounds(found),
+                            ));
+                        }
+                        Err(fault) => self.fault(fault, case, request.span),
+                    }
+                }
+            }
+            // Answered once, for all the phenomena they name.
+            RequestKind::Compare { .. } | RequestKind::Find { .. } => {}
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Bounds { .. }
-            | RequestKind::Find { .. }
-            | RequestKind::Layers
-            | RequestKind::Groups
-            | RequestKind::Limit { .. }
+            RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..)
-            | RequestKind::Compare { .. } => {}
+            | RequestKind::Regimes(..) => {}
+        }
+    }
+
+    fn compare(
+        &mut self,
+        phenomena: &[ast::Name],
+        matching: Option<&[ast::Name]>,
+        span: Span,
+        text: &str,
+    ) {
+        let wanted = phenomena
+            .iter()
+            .map(|name| self.model.phenomenon(&name.text));
+        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> =
+            wanted.map(|wanted| (wanted, self.solved(wanted))).collect();
+        let cases = self.cases;
+        let given = |wanted| cases.iter().find(|case| case.setting.phenomenon == wanted);
+        let named: Vec<&Case> = solved
+            .iter()
+            .filter_map(|(wanted, solved)| solved.as_deref().or(given(*wanted)))
+            .collect();
+        match compare::compare(self.model, &named, matching) {
+            Ok((comparison, left_out)) => {
+                let matching = comparison.matching.iter();
+                let found = matching.filter_map(|matching| standing::cannot_match(matching, span));
+                self.outcome.diagnostics.extend(found);
+                self.outcome.answers.push(Answer {
+                    request: "compare",
+                    phenomenon: None,
+                    title: None,
+                    text: text.to_owned(),
+                    left_out,
+                    body: Body::Compare(comparison),
+                });
+            }
+            Err(compare::Fault::Open(case, open)) => self.fault(Fault::Open(open), case, span),
+            Err(compare::Fault::TooMany) => {
+                let message = "matching tries more sets of scales than the limit";
+                let found = Diagnostic::error("too-large", span, message);
+                let found = found.with_help("name fewer groups behind `matching`");
+                self.outcome.diagnostics.push(found);
+            }
+        }
+    }
+
+    /// What `bounds` leaves out since nothing balances it.
+    fn warn_of_lone_terms(&mut self, case: &Case, bounds: &bounds::Bounds) {
+        for place in &bounds.lone {
+            let mut equations = case.equations.iter();
+            let span = equations
+                .find(|found| found.name == place.equation)
+                .map_or(Span::default(), |found| found.span);
+            let message = match &case.setting.name {
+                Some(name) => format!("{name}: {}", standing::left_out_lone(place)),
+                None => standing::left_out_lone(place),
+            };
+            let found = Diagnostic::warning("lone-leading-term", span, message);
+            self.outcome.diagnostics.push(found);
         }
     }
 
@@ -435,11 +650,17 @@ impl Answering<'_> {
                 .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
                 .collect()
         };
+        let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
+        let mut is_faulty = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
             if open.is_empty() {
-                known.push(idx);
+                if self.is_sound(&case.equations[idx]) {
+                    known.push(idx);
+                } else {
+                    is_faulty = true;
+                }
                 continue;
             }
             let equation = case.equations[idx].name.clone();
@@ -448,6 +669,9 @@ impl Answering<'_> {
                 self.open_scale(case, Some(&equation), &open, place);
             }
             left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && is_faulty {
+            return None;
         }
         if known.is_empty() && !is_open {
             is_open = true;
@@ -472,11 +696,21 @@ impl Answering<'_> {
         (!is_open).then_some((known, left_out))
     }
 
+    /// Whether an equation can be answered for; tells, once, why not.
+    fn is_sound(&mut self, equation: &terms::EquationTerms) -> bool {
+        for fault in &equation.faults {
+            let fault = fault.diagnostic();
+            if !self.outcome.diagnostics.contains(&fault) {
+                self.outcome.diagnostics.push(fault);
+            }
+        }
+        equation.faults.is_empty()
+    }
+
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
-            Some("this") => "this needs".to_owned(),
             Some(equation) => format!("`{equation}` needs"),
-            None => "every equation needs".to_owned(),
+            None => "this request needs".to_owned(),
         };
         let whose = case
             .setting
@@ -524,7 +758,7 @@ impl Answering<'_> {
                     .iter()
                     .map(|id| case.setting.names[id.idx()].clone())
                     .collect();
-                self.open_scale(case, Some("this"), &names, span);
+                self.open_scale(case, None, &names, span);
             }
             fault => self
                 .outcome
@@ -541,7 +775,7 @@ impl Answering<'_> {
                 .iter()
                 .find(|found| found.name == equation.name)
                 .map_or(Span::default(), |found| found.span);
-            for warning in crate::report::words::warnings(equation) {
+            for warning in words::warnings(equation) {
                 let message = match &case.setting.name {
                     Some(name) => format!("{name}: {}", warning.message),
                     None => warning.message,
@@ -554,8 +788,18 @@ impl Answering<'_> {
     }
 }
 
+/// The equations without components of a vector of which nothing is left, unless there are
+/// no others.
+fn with_terms(model: &Model, case: &Case, all: Vec<(usize, Span)>) -> Vec<(usize, Span)> {
+    let is_empty = |idx: usize| model.is_component(idx) && case.equations[idx].terms.is_empty();
+    if all.iter().all(|(idx, _)| is_empty(*idx)) {
+        return all;
+    }
+    all.into_iter().filter(|(idx, _)| !is_empty(*idx)).collect()
+}
+
 /// A request as written, with its blanks and line breaks made single blanks.
-fn words(text: &str) -> String {
+fn one_line(text: &str) -> String {
     let lines = text
         .lines()
         .map(|line| line.split('#').next().unwrap_or(""));

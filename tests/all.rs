@@ -1,8 +1,12 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
+mod answers;
+mod exact;
 mod harness;
 mod language;
 mod polyhedra;
 mod prompt;
+mod properties;
 mod published;
 mod reference;
+mod standing;

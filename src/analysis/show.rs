@@ -3,10 +3,11 @@
 use crate::algebra::monomial::{Monomial, SymbolId};
 use crate::analysis::sizes::{self, order_of_magnitude};
 use crate::analysis::{Case, Factors};
+use crate::model::errors::ModelError;
 use crate::model::names;
 use crate::model::settings::Variable;
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator};
 use crate::units::Range;
@@ -56,8 +57,16 @@ impl Names for CaseNames<'_> {
         }
     }
 
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.case
+            .setting
+            .group_formulas
+            .get(id.0 as usize)?
+            .as_ref()
+    }
+
     fn process(&self, equation: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
-        let sizes = self.process_sizes(equation, process);
+        let sizes = self.process_sizes(equation, process)?;
         if sizes.is_empty() {
             return Ok(Range::exact(0.0));
         }
@@ -73,15 +82,23 @@ impl Names for CaseNames<'_> {
 
 impl CaseNames<'_> {
     /// The sizes of a process's terms; none where all of them are gone.
-    fn process_sizes(&self, equation: &ast::Name, process: &ast::ProcessName) -> Vec<Monomial> {
+    fn process_sizes(
+        &self,
+        equation: &ast::Name,
+        process: &ast::ProcessName,
+    ) -> Result<Vec<Monomial>, Fault> {
         let Some(idx) = self.model.equation(&equation.text) else {
-            return Vec::new();
+            return Ok(Vec::new());
         };
-        let terms = self.case.equations[idx].terms.iter();
-        terms
+        let equation = &self.case.equations[idx];
+        if let Some(fault) = equation.faults.first() {
+            return Err(Fault::Error(fault.clone()));
+        }
+        let terms = equation.terms.iter();
+        Ok(terms
             .filter(|term| term.label() == process.text)
             .map(|term| term.size.resolved.clone())
-            .collect()
+            .collect())
     }
 }
 
@@ -104,7 +121,7 @@ pub fn quotient(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<Quotient, Fau
     match &expr.kind {
         ExprKind::Bracket(inside) => quotient(inside, names),
         ExprKind::Process { equation, process } => Ok(Quotient {
-            above: names.process_sizes(equation, process),
+            above: names.process_sizes(equation, process)?,
             below: vec![Monomial::one()],
         }),
         ExprKind::Product(factors) => {
@@ -114,6 +131,11 @@ pub fn quotient(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<Quotient, Fau
             };
             for (operator, factor) in factors {
                 let next = quotient(factor, names)?;
+                let is_zero = next.above.iter().all(|size| size.number.is_zero());
+                if *operator == Operator::Over && is_zero {
+                    let span = factor.span;
+                    return Err(Fault::Error(ModelError::DividesByZero { span }));
+                }
                 let (above, below) = match operator {
                     Operator::Times => (next.above, next.below),
                     Operator::Over => (next.below, next.above),
@@ -164,8 +186,8 @@ fn resolved(written: &Monomial, names: &CaseNames<'_>, span: Span) -> Result<Mon
     let size = setting
         .quantities
         .size(written.clone())
-        .map_err(|_| Fault::Error(crate::model::errors::ModelError::TooLarge { span }))?;
-    let is_zero = size.resolved.number.is_zero()
+        .map_err(|_| Fault::Error(ModelError::TooLarge { span }))?;
+    let is_zero = size.resolved.number.is_zero() && !size.resolved.is_number()
         || size
             .resolved
             .powers()
@@ -196,7 +218,7 @@ fn products(left: &[Monomial], right: &[Monomial], span: Span) -> Result<Vec<Mon
         for b in right {
             let product = a
                 .times(b)
-                .map_err(|_| Fault::Error(crate::model::errors::ModelError::TooLarge { span }))?;
+                .map_err(|_| Fault::Error(ModelError::TooLarge { span }))?;
             if !all.contains(&product) {
                 all.push(product);
             }
@@ -210,18 +232,25 @@ fn products(left: &[Monomial], right: &[Monomial], span: Span) -> Result<Vec<Mon
 /// # Errors
 /// Open names, divisions by zero and the like.
 pub fn value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), Fault> {
+    let (range, is_bound) = unchecked_value(expr, names)?;
+    let is_finite = range.low.is_finite() && range.nominal.is_finite() && range.high.is_finite();
+    if !is_finite {
+        return Err(Fault::Error(ModelError::TooLarge { span: expr.span }));
+    }
+    Ok((range, is_bound))
+}
+
+fn unchecked_value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), Fault> {
     let setting = &names.case.setting;
     match quotient(expr, names) {
         Ok(found) => match (found.above.as_slice(), found.below.as_slice()) {
             ([], _) => Ok((Range::exact(0.0), false)),
-            (_, []) => Err(Fault::Error(
-                crate::model::errors::ModelError::DividesByZero { span: expr.span },
-            )),
+            (_, []) => Err(Fault::Error(ModelError::DividesByZero { span: expr.span })),
             // Alone, a monomial keeps its sign.
             ([above], [below]) => {
                 let single = above
                     .over(below)
-                    .map_err(|_| crate::model::errors::ModelError::TooLarge { span: expr.span })?;
+                    .map_err(|_| ModelError::TooLarge { span: expr.span })?;
                 let range = setting.monomial_range(&single).map_err(Fault::Open)?;
                 Ok((range, false))
             }

@@ -5,9 +5,11 @@
 //! points at both terms.
 
 use crate::algebra::monomial::SymbolId;
-use crate::model::errors::{Alike, Clash, ModelError, Unavailable};
+use crate::limits;
+use crate::model::errors::{Alike, Clash, ModelError, Shape};
+use crate::model::frames;
 use crate::model::names::{self, Call, Function};
-use crate::model::{Level, Meaning, Model, declarations, is_given};
+use crate::model::{Level, Meaning, Model, combinations, declarations, is_given};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind};
@@ -24,6 +26,8 @@ pub enum Place {
     Group,
     /// An equation: fields, coordinates and derivatives too.
     Equation,
+    /// What an equation is made of: equations too.
+    Combination,
     /// A request: scales, constants, groups, processes.
     Request,
 }
@@ -54,6 +58,8 @@ pub fn check(model: &mut Model) -> Vec<ModelError> {
     let mut errors = Vec::new();
     symbols(model, &mut errors);
     coordinates_and_fields(model, &mut errors);
+    frames::check_dimensions(model, &mut errors);
+    vectors(model, &mut errors);
     velocity(model, &mut errors);
     groups(model, &mut errors);
     derivative_clashes(model, &mut errors);
@@ -76,7 +82,7 @@ pub fn dimension(
         place,
         whole: match place {
             Place::Constant | Place::Size => Some(expr.span),
-            Place::Group | Place::Equation | Place::Request => None,
+            Place::Group | Place::Equation | Place::Combination | Place::Request => None,
         },
         errors,
     };
@@ -160,7 +166,7 @@ fn value_dimension(
                 Some(_) | None => dimension(nominal, model, phenomenon, place, errors),
             };
             spread_dimension(model, spread, found, phenomenon, place, errors);
-            found
+            whole_value(found, spread)
         }
     }
 }
@@ -209,6 +215,13 @@ fn spread_dimension(
         errors.push(ModelError::ShareAsMargin {
             span: end.span,
             text,
+        });
+        return;
+    }
+    if names::has_names(end) {
+        errors.push(ModelError::DerivedScale {
+            name: crate::syntax::print::expression(end),
+            span: end.span,
         });
         return;
     }
@@ -273,12 +286,7 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
         for (_, decl) in &info.entries {
             if !std::ptr::eq(decl, defining) {
                 let found = value_dimension(model, decl, info.local_to, errors);
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
@@ -291,22 +299,14 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
             }
             let found = value_dimension(model, decl, Some(idx), errors);
             if let Some(expected) = effective_dimension(info.dimension, defining) {
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
 }
 
 /// A range such as `5 .. 20 m/s` has the dimension of its end.
-fn whole_value(found: Dim, decl: &ast::ValueDecl) -> Dim {
-    let ast::Value::Given { spread, .. } = &decl.value else {
-        return found;
-    };
+fn whole_value(found: Dim, spread: &ast::Spread) -> Dim {
     let end = match spread {
         ast::Spread::To(end) | ast::Spread::Margin(end) => end,
         ast::Spread::None | ast::Spread::Within(_) => return found,
@@ -352,23 +352,58 @@ fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
                 .filter_map(|(_, part)| model.meaning(&part.text, None));
             let fields = parts.filter_map(|meaning| match meaning {
                 Meaning::Field(id) => Some(id.0 as usize),
-                Meaning::Symbol(_) | Meaning::Coordinate(_) | Meaning::Group(_) => None,
+                Meaning::Symbol(_)
+                | Meaning::Coordinate(_)
+                | Meaning::Group(_)
+                | Meaning::Vector(_) => None,
             });
             fields.collect()
         })
         .collect();
     match order(&needs) {
-        Ok(order) => order.into_iter().for_each(|idx| {
-            if !model.fields[idx].parts.is_empty() {
-                model.fields[idx].dimension = split_dimension(model, idx, errors);
+        Ok(order) => {
+            split_sizes(model, &order, &needs, errors);
+            for idx in order {
+                if !model.fields[idx].parts.is_empty() {
+                    model.fields[idx].dimension = split_dimension(model, idx, errors);
+                }
             }
-        }),
+        }
         Err(ring) => {
             let name = |idx: &usize| &model.fields[*idx].name;
             errors.push(ModelError::Circular {
                 names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
                 spans: ring.iter().map(|idx| name(idx).span).collect(),
             });
+        }
+    }
+}
+
+/// Refuses splits of too many parts, or nested too deep.
+fn split_sizes(model: &Model, order: &[usize], needs: &[Vec<usize>], errors: &mut Vec<ModelError>) {
+    let mut n_parts = vec![1usize; needs.len()];
+    let mut depth = vec![0usize; needs.len()];
+    for &idx in order {
+        let info = &model.fields[idx];
+        if info.parts.is_empty() {
+            continue;
+        }
+        let n_constants = info.parts.len() - needs[idx].len().min(info.parts.len());
+        let inner: usize = needs[idx].iter().map(|part| n_parts[*part]).sum();
+        n_parts[idx] = n_constants + inner;
+        depth[idx] = 1 + needs[idx]
+            .iter()
+            .map(|part| depth[*part])
+            .max()
+            .unwrap_or(0);
+        if n_parts[idx] > limits::SPLIT_PARTS || depth[idx] > limits::SPLIT_DEPTH {
+            errors.push(ModelError::SplitTooLarge {
+                name: info.name.text.clone(),
+                span: info.name.span,
+            });
+            // One report is enough.
+            n_parts[idx] = 1;
+            depth[idx] = 0;
         }
     }
 }
@@ -502,12 +537,21 @@ fn out_of_place(
         Meaning::Coordinate(_) => "coordinate",
         Meaning::Field(_) => "field",
         Meaning::Group(_) => "group",
+        Meaning::Vector(_) => "vector",
     };
     ModelError::OutOfPlace {
         name: name.to_owned(),
         kind,
         wanted,
         span,
+    }
+}
+
+/// Components are expressions of an equation; their dimensions need not agree.
+fn vectors(model: &Model, errors: &mut Vec<ModelError>) {
+    let sound = model.vectors.iter().filter(|info| info.shape.is_some());
+    for part in sound.flat_map(|info| &info.components) {
+        dimension(part, model, None, Place::Equation, errors);
     }
 }
 
@@ -526,6 +570,10 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
     };
     for (field, along) in &info.components {
         let place = coordinate(along, model, errors);
+        let length = match model.meaning(&along.text, None) {
+            Some(Meaning::Coordinate(id)) => frames::length_dimension(id, model),
+            Some(_) | None => None,
+        };
         let meaning = model.meaning(&field.text, None);
         let Some(Meaning::Field(id)) = meaning else {
             errors.push(match meaning {
@@ -534,7 +582,8 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
             });
             continue;
         };
-        let (Some((_, Some(length))), Some(speed)) = (place, model.fields[id.0 as usize].dimension)
+        let (Some(_), Some(length), Some(speed)) =
+            (place, length, model.fields[id.0 as usize].dimension)
         else {
             continue;
         };
@@ -569,18 +618,19 @@ fn groups(model: &Model, errors: &mut Vec<ModelError>) {
             });
         }
     }
-    let uses: Vec<Vec<usize>> = model
-        .groups
-        .iter()
-        .map(|info| groups_in(&info.value, model))
-        .collect();
-    if let Err(ring) = order(&uses) {
+    if let Err(ring) = order(&group_uses(model)) {
         let name = |idx: &usize| &model.groups[*idx].name;
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
         });
     }
+}
+
+/// For each group, those that its formula names.
+pub fn group_uses(model: &Model) -> Vec<Vec<usize>> {
+    let formulas = model.groups.iter();
+    formulas.map(|info| groups_in(&info.value, model)).collect()
 }
 
 fn groups_in(expr: &ast::Expr, model: &Model) -> Vec<usize> {
@@ -602,6 +652,7 @@ fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
             Some(Meaning::Coordinate(id)) => model.coordinates[id.0 as usize].name.span,
             Some(Meaning::Field(id)) => model.fields[id.0 as usize].name.span,
             Some(Meaning::Group(id)) => model.groups[id.0 as usize].name.span,
+            Some(Meaning::Vector(id)) => model.vectors[id.0 as usize].name.span,
             None => continue,
         };
         errors.push(ModelError::NameClash {
@@ -614,20 +665,35 @@ fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
 }
 
 fn equations(model: &mut Model, errors: &mut Vec<ModelError>) {
-    let dimensions = model
-        .equations
-        .iter()
-        .map(|equation| match &equation.body {
-            ast::EquationBody::Written { left, right } => {
-                let left = dimension(left, model, None, Place::Equation, errors);
-                let right = dimension(right, model, None, Place::Equation, errors);
-                alike(left, right, Alike::Sides, errors);
-                left.known().or(right.known())
+    errors.extend(combinations::check(model));
+    model.equation_dimensions = vec![None; model.equations.len()];
+    let mut found = Vec::new();
+    for idx in combinations::order(model) {
+        let own = equation_dimension(model, idx, &mut found);
+        model.equation_dimensions[idx] = own.known();
+        // What is written out in components repeats its faults.
+        for error in found.drain(..) {
+            let diagnostic = error.diagnostic();
+            if errors.iter().all(|known| known.diagnostic() != diagnostic) {
+                errors.push(error);
             }
-            ast::EquationBody::Made(_) => None,
-        })
-        .collect();
-    model.equation_dimensions = dimensions;
+        }
+    }
+}
+
+fn equation_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Dim {
+    match &model.equations[idx].body {
+        ast::EquationBody::Written { left, right } => {
+            let left = dimension(left, model, None, Place::Equation, errors);
+            let right = dimension(right, model, None, Place::Equation, errors);
+            alike(left, right, Alike::Sides, errors);
+            match left {
+                Dim::Known(..) => left,
+                Dim::Any | Dim::Faulty => right,
+            }
+        }
+        ast::EquationBody::Made(expr) => dimension(expr, model, None, Place::Combination, errors),
+    }
 }
 
 fn balances(model: &Model, errors: &mut Vec<ModelError>) {
@@ -645,16 +711,25 @@ fn balances(model: &Model, errors: &mut Vec<ModelError>) {
 /// # Errors
 /// [`ModelError::UnknownEquation`].
 pub fn equation(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
-    model
-        .equation(&name.text)
-        .ok_or_else(|| ModelError::UnknownEquation {
+    let mut vectors = model.vector_equations.iter();
+    let vector = vectors.find(|found| found.name.text == name.text);
+    match (model.equation(&name.text), vector) {
+        (Some(idx), _) => Ok(idx),
+        (None, Some(vector)) => Err(ModelError::VectorEquation {
             name: name.text.clone(),
             span: name.span,
-            nearest: names::nearest(
-                &name.text,
-                model.equations.iter().map(|found| found.name.text.as_str()),
-            ),
-        })
+            components: vector.components.clone(),
+        }),
+        (None, None) => {
+            let whole = model.vector_equations.iter().map(|found| &found.name);
+            let known = model.equations.iter().map(|found| &found.name).chain(whole);
+            Err(ModelError::UnknownEquation {
+                name: name.text.clone(),
+                span: name.span,
+                nearest: names::nearest(&name.text, known.map(|name| name.text.as_str())),
+            })
+        }
+    }
 }
 
 // Order -----------------------------------------------------------------------------------
@@ -720,6 +795,10 @@ struct Walker<'a> {
 }
 
 impl Walker<'_> {
+    fn is_in_equation(&self) -> bool {
+        matches!(self.place, Place::Equation | Place::Combination)
+    }
+
     fn fault(&mut self, error: ModelError) -> Dim {
         self.errors.push(error);
         Dim::Faulty
@@ -744,7 +823,7 @@ impl Walker<'_> {
             }
             ExprKind::Product(factors) => self.product(factors, span),
             ExprKind::Negate(inside) | ExprKind::Bracket(inside) => self.dimension(inside),
-            ExprKind::As { expr, .. } if self.place == Place::Equation => self.dimension(expr),
+            ExprKind::As { expr, .. } if self.is_in_equation() => self.dimension(expr),
             ExprKind::As { process, .. } => self.fault(ModelError::WrongForm {
                 found: "a process name",
                 wanted: "no `as` outside an equation",
@@ -755,11 +834,13 @@ impl Walker<'_> {
                 function,
                 order,
                 arguments,
-            } => self.call(&function.text, *order, arguments, span),
+            } => self.call(expr, &function.text, *order, arguments),
             ExprKind::Derivative { operand, by } => self.derivative(operand, by, span),
-            ExprKind::Tuple(_) => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Frames,
+            ExprKind::Tuple(_) => self.fault(ModelError::WrongShape {
+                wanted: Shape::Scalar,
+                found: Shape::Vector,
                 span,
+                because: None,
             }),
             ExprKind::Sized { expr, size } => self.sized(expr, size, span),
             ExprKind::Error => Dim::Faulty,
@@ -846,20 +927,29 @@ impl Walker<'_> {
     }
 
     fn name(&mut self, name: &str, span: Span) -> Dim {
+        if self.place == Place::Combination
+            && let Some(idx) = self.model.equation(name)
+        {
+            return match self.model.equation_dimensions[idx] {
+                Some(dimension) => Dim::Known(dimension, span),
+                None => Dim::Faulty,
+            };
+        }
         let Some(meaning) = self.model.meaning(name, self.phenomenon) else {
             if names::is_pi(name) {
                 return Dim::Known(Dimension::one(), span);
             }
             return self.fault(unknown(name, span, self.model, self.phenomenon));
         };
-        let may_vary = self.place == Place::Equation;
-        let may_be_group = matches!(self.place, Place::Group | Place::Equation | Place::Request);
+        let may_vary = self.is_in_equation();
+        let may_be_group =
+            self.is_in_equation() || matches!(self.place, Place::Group | Place::Request);
         let found = match meaning {
             Meaning::Symbol(id) => self.model.symbols[id.idx()].dimension,
             Meaning::Group(_) if may_be_group => Some(Dimension::one()),
             Meaning::Coordinate(id) if may_vary => self.model.coordinates[id.0 as usize].dimension,
             Meaning::Field(id) if may_vary => self.model.fields[id.0 as usize].dimension,
-            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) => {
+            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_) => {
                 let wanted = if may_be_group {
                     "a scale, a constant or a group"
                 } else {
@@ -977,11 +1067,12 @@ impl Walker<'_> {
 
     fn call(
         &mut self,
+        expr: &ast::Expr,
         function: &str,
         order: Option<u32>,
         arguments: &[ast::Expr],
-        span: Span,
     ) -> Dim {
+        let span = expr.span;
         let found = names::call(function, self.model);
         match found {
             Call::Unknown => {
@@ -998,17 +1089,14 @@ impl Walker<'_> {
                     nearest,
                 })
             }
-            Call::Mean => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Means,
-                span,
-            }),
-            Call::Vector => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Frames,
-                span,
-            }),
+            Call::Mean => match self.operand("a mean", function, arguments, span) {
+                Some(inside) => inside,
+                None => Dim::Faulty,
+            },
+            Call::Vector => self.vector_operation(expr),
             Call::Function(found) => self.function(found, function, order, arguments, span),
             Call::Derivative(id) => {
-                let Some(inside) = self.operand(function, arguments, span) else {
+                let Some(inside) = self.operand("a derivative", function, arguments, span) else {
                     return Dim::Faulty;
                 };
                 let along = self.model.coordinates[id.0 as usize].dimension;
@@ -1018,12 +1106,34 @@ impl Walker<'_> {
         }
     }
 
-    /// The one argument of an operation that only an equation may hold.
-    fn operand(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Option<Dim> {
+    /// A vector operation that gives a scalar, in the coordinates of the frame.
+    fn vector_operation(&mut self, expr: &ast::Expr) -> Dim {
+        let span = expr.span;
         if self.place != Place::Equation {
-            self.fault(ModelError::WrongForm {
-                found: "a derivative",
+            return self.fault(ModelError::WrongForm {
+                found: "a vector operation",
                 wanted: "no derivative outside an equation",
+                span,
+            });
+        }
+        match frames::expanded(expr, self.model) {
+            Ok(written_out) => self.dimension(&written_out),
+            Err(error) => self.fault(error),
+        }
+    }
+
+    /// The one argument of an operation that only an equation may hold.
+    fn operand(
+        &mut self,
+        found: &'static str,
+        function: &str,
+        arguments: &[ast::Expr],
+        span: Span,
+    ) -> Option<Dim> {
+        if !self.is_in_equation() {
+            self.fault(ModelError::WrongForm {
+                found,
+                wanted: "no derivative and no mean outside an equation",
                 span,
             });
             return None;
@@ -1067,7 +1177,7 @@ impl Walker<'_> {
     }
 
     fn material(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Dim {
-        let Some(inside) = self.operand(function, arguments, span) else {
+        let Some(inside) = self.operand("a derivative", function, arguments, span) else {
             return Dim::Faulty;
         };
         let Some(velocity) = &self.model.velocity else {
@@ -1082,7 +1192,7 @@ impl Walker<'_> {
                 return None;
             };
             let speed = self.model.fields[field.0 as usize].dimension?;
-            let length = self.model.coordinates[along.0 as usize].dimension?;
+            let length = frames::length_dimension(along, self.model)?;
             length.over(&speed).ok()
         });
         self.quotient(inside, rate, 1, span)
@@ -1149,7 +1259,7 @@ impl Walker<'_> {
     }
 
     fn derivative(&mut self, operand: &ast::Expr, by: &[(ast::Name, u32)], span: Span) -> Dim {
-        if self.place != Place::Equation {
+        if !self.is_in_equation() {
             return self.fault(ModelError::WrongForm {
                 found: "a derivative",
                 wanted: "no derivative outside an equation",
@@ -1166,7 +1276,7 @@ impl Walker<'_> {
     }
 
     fn sized(&mut self, expr: &ast::Expr, size: &ast::Expr, span: Span) -> Dim {
-        if self.place != Place::Equation {
+        if !self.is_in_equation() {
             return self.fault(ModelError::WrongForm {
                 found: "a size behind `~`",
                 wanted: "no `~` outside an equation",
@@ -1178,9 +1288,9 @@ impl Walker<'_> {
                 .push(ModelError::ProcessInside { span: process });
         }
         let inside = self.dimension(expr);
-        self.place = Place::Size;
+        let place = std::mem::replace(&mut self.place, Place::Size);
         let found = self.dimension(size);
-        self.place = Place::Equation;
+        self.place = place;
         alike(inside, found, Alike::Size, self.errors);
         match (inside, found) {
             (Dim::Known(dimension, _), _) | (_, Dim::Known(dimension, _)) => {

@@ -131,10 +131,24 @@ pub enum ModelError {
     ShareAsMargin { span: Span, text: String },
     /// A range behind a value that follows others.
     DerivedScale { name: String, span: Span },
+    /// A derived name where one is wanted that moves by itself.
+    MovesWithParts {
+        name: String,
+        span: Span,
+        parts: Vec<String>,
+    },
+    /// A name that would move a symbol which is no product with it.
+    MovesOthers {
+        name: String,
+        span: Span,
+        holders: Vec<String>,
+    },
     /// Something that is no product of powers where one is needed.
     NotAProduct { span: Span, what: Product },
     /// A number or exponent beyond the limits.
     TooLarge { span: Span },
+    /// More scales than dimensionless groups are looked for among.
+    TooManyGroups { n_symbols: usize, span: Span },
     /// A division by 0.
     DividesByZero { span: Span },
     /// A value outside the domain of a function, or not a real number.
@@ -150,10 +164,48 @@ pub enum ModelError {
     OneTerm { equation: String, span: Span },
     /// `D_t` without a velocity.
     NoVelocity { span: Span },
+    /// Vectors without a frame.
+    NoFrame { span: Span },
+    /// A vector where a scalar is needed, or the other way round.
+    WrongShape {
+        wanted: Shape,
+        found: Shape,
+        span: Span,
+        because: Option<Span>,
+    },
+    /// A tuple of another number than three, or six for a stress.
+    ComponentCount { found: usize, span: Span },
+    /// Vector operations nested beyond the limit.
+    DeepVectors { span: Span },
+    /// A vector expression that comes to too much.
+    TooManyTerms { span: Span },
+    /// A vector equation where one component is needed.
+    VectorEquation {
+        name: String,
+        span: Span,
+        components: Vec<String>,
+    },
     /// Without a time coordinate `D_t` has no tendency.
     NoTime { span: Span },
     /// A function of something that varies.
     NotSplit { span: Span, function: String },
+    /// A split of too many parts, or nested too deep.
+    SplitTooLarge { name: String, span: Span },
+    /// Parts that are too large to expand about the largest.
+    RatioNotSmall {
+        span: Span,
+        small: String,
+        large: String,
+        ratio: f64,
+        declared: Option<(String, Span)>,
+    },
+    /// An expansion about a place where it has none.
+    SingularExpansion { span: Span, what: String },
+    /// An expression that is no linear combination of equations, or an equation that
+    /// says nothing to put in elsewhere.
+    NotARelation { span: Span, what: Relation },
+    /// A relation whose right side holds its left one.
+    HoldsItself { relation: String, span: Span },
     /// A derivative along a coordinate on which its field does not depend.
     ZeroDerivative {
         equation: String,
@@ -223,21 +275,31 @@ pub enum ModelError {
     OutsideFolder { path: String, span: Span },
 }
 
+/// What an expression is.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Shape {
+    /// One value.
+    Scalar,
+    /// Three components.
+    Vector,
+    /// A symmetric stress, of six components.
+    Stress,
+}
+
 /// What this version does not answer.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Unavailable {
-    /// `frame`, `vector`, `grad` and their like.
-    Frames,
-    /// `fluctuation`, `mean`.
-    Means,
-    /// `coordinate ... about`.
-    Origins,
-    /// `equation ... from`, `using`.
-    MadeEquations,
-    /// A power of a sum that is not whole, in an equation.
-    PowersOfSums,
     /// A request, by its keyword.
     Request(&'static str),
+}
+
+/// What is no relation.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Relation {
+    /// What stands behind `from`.
+    Combination,
+    /// An equation behind `using` whose left side holds nothing to replace.
+    Using,
 }
 
 /// What clashes.
@@ -291,6 +353,8 @@ pub enum Product {
     Term,
     /// A limit.
     Limit,
+    /// The left side of an equation behind `using`.
+    Using,
 }
 
 impl ModelError {
@@ -315,7 +379,12 @@ impl ModelError {
             E::NotAvailable { what, span } => not_available(*what, *span),
             E::UnknownName { name, span, nearest } => {
                 let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
-                with_nearest(found, nearest, "declare it, or check its spelling")
+                match (nearest, crate::units::find_unit(name)) {
+                (None, Some(_)) => found.with_help(format!(
+                    "`{name}` is a unit only right behind a number: a unit has no blank inside, as in `10 m/s`"
+                )),
+                _ => with_nearest(found, nearest, "declare it, or check its spelling"),
+            }
             }
             E::NotAFunction { name, span, is_declared, nearest } => {
                 not_a_function(name, *span, *is_declared, nearest.as_ref())
@@ -402,13 +471,23 @@ impl ModelError {
             | E::MarginTooWide { .. }
             | E::ShareAsMargin { .. }
             | E::DerivedScale { .. } => self.value_diagnostic(),
+            E::MovesWithParts { name, span, parts } => moves_with_parts(name, *span, parts),
+            E::MovesOthers { name, span, holders } => moves_others(name, *span, holders),
             E::NotAProduct { span, what } => not_a_product(*span, *what),
             E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
                 .with_help(format!(
-                    "exponents go up to {}, exact numbers up to {} binary digits",
+                    "exponents go up to {}, exact numbers up to {} binary digits, powers of sums up to {}, one equation up to {} terms, sizes from 1e-300 to 1e300",
                     crate::limits::EXPONENT,
-                    crate::limits::NUMBER_BITS
+                    crate::limits::NUMBER_BITS,
+                    crate::limits::SUM_POWER,
+                    crate::limits::TERMS
                 )),
+            E::TooManyGroups { n_symbols, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!("there are too many groups among {n_symbols} scales and constants"),
+            )
+            .with_help("ask in a script whose equations hold fewer of them"),
             E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
             E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
             E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),
@@ -427,12 +506,23 @@ impl ModelError {
                 *span,
                 "there is no coordinate `t`, so `D_t` has no tendency here",
             ),
+            E::NoFrame { .. }
+            | E::WrongShape { .. }
+            | E::ComponentCount { .. }
+            | E::DeepVectors { .. }
+            | E::TooManyTerms { .. }
+            | E::VectorEquation { .. } => self.vector_diagnostic(),
             E::NotSplit { span, function } => Diagnostic::error(
                 "not-split",
                 *span,
                 format!("`{function}` of something that varies has no size by itself"),
             )
             .with_help("give the expression a size of its own, `(... ~ SIZE)`, or name a constant level"),
+            E::SplitTooLarge { .. }
+            | E::RatioNotSmall { .. }
+            | E::SingularExpansion { .. }
+            | E::NotARelation { .. }
+            | E::HoldsItself { .. } => self.expansion_diagnostic(),
             E::ZeroDerivative { equation, texts, span } => Diagnostic::note(
                 "zero-derivative",
                 *span,
@@ -521,6 +611,53 @@ impl ModelError {
         }
     }
 
+    fn vector_diagnostic(&self) -> Diagnostic {
+        use ModelError as E;
+        match self {
+            E::NoFrame { span } => {
+                Diagnostic::error("no-frame", *span, "vectors need to know their coordinates")
+                    .with_help("declare `frame cartesian (x, y, z)`, `cylindrical (r, theta, z)` or `spherical (lambda, phi, r)`")
+            }
+            E::WrongShape {
+                wanted,
+                found,
+                span,
+                because,
+            } => wrong_shape(*wanted, *found, *span, *because),
+            E::ComponentCount { found, span } => Diagnostic::error(
+                "not-a-vector",
+                *span,
+                format!("expected three components, found {found}"),
+            )
+            .with_help("write 0 for a component that is missing; a symmetric stress has six, in the order 11 12 13 22 23 33"),
+            E::DeepVectors { span } => Diagnostic::error(
+                "too-deep",
+                *span,
+                format!(
+                    "vector operations are nested more than {} deep",
+                    crate::limits::VECTOR_NESTING
+                ),
+            ),
+            E::TooManyTerms { span } => Diagnostic::error(
+                "too-large",
+                *span,
+                "this vector expression comes to too many terms",
+            )
+            .with_help("name parts of it: a `field` of its own for each"),
+            E::VectorEquation {
+                name,
+                span,
+                components,
+            } => Diagnostic::error(
+                "unknown-equation",
+                *span,
+                format!("`{name}` is a vector equation, and one component is needed here"),
+            )
+            .with_help(format!("name one of its components: {}", listed(components))),
+            other => unreachable_words(other),
+        }
+    }
+
     fn value_diagnostic(&self) -> Diagnostic {
         use ModelError as E;
         match self {
@@ -585,6 +722,67 @@ impl ModelError {
                 format!("`{name}` follows the names in its formula and takes no range of its own"),
             )
             .with_help("put the range on a factor: `scale k = 1 within 3`, then `k*...`"),
+            other => unreachable_words(other),
+        }
+    }
+
+    fn expansion_diagnostic(&self) -> Diagnostic {
+        match self {
+            ModelError::RatioNotSmall {
+                span,
+                small,
+                large,
+                ratio,
+                declared,
+            } => {
+                let found = Diagnostic::error(
+                    "ratio-not-small",
+                    *span,
+                    format!("`{small}` is {ratio:.3} of `{large}`, too much to expand in it"),
+                );
+                let help = "an expansion needs a ratio of at most 0.316";
+                match declared {
+                    Some((name, place)) => found
+                        .with_related(*place, format!("`{name}` is declared here"))
+                        .with_help(format!("{help}: change the declaration of `{name}`")),
+                    None => found.with_help(help),
+                }
+            }
+            ModelError::SplitTooLarge { name, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!(
+                    "`{name}` is split into more than {} parts, or more than {} times over",
+                    crate::limits::SPLIT_PARTS,
+                    crate::limits::SPLIT_DEPTH
+                ),
+            ),
+            ModelError::SingularExpansion { span, what } => Diagnostic::error(
+                "singular-expansion",
+                *span,
+                format!("{what} has no expansion there"),
+            )
+            .with_help("take another origin, or give the expression a size of its own"),
+            ModelError::NotARelation { span, what } => match what {
+                Relation::Combination => Diagnostic::error(
+                    "not-a-relation",
+                    *span,
+                    "expected a linear combination of equations behind `from`",
+                )
+                .with_help("write sums of equations, their derivatives and means, each with a factor: `d_x(y_momentum) - d_y(x_momentum)`"),
+                Relation::Using => Diagnostic::error(
+                    "not-a-relation",
+                    *span,
+                    "the left side of this equation holds nothing to replace",
+                )
+                .with_help("write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`"),
+            },
+            ModelError::HoldsItself { relation, span } => Diagnostic::error(
+                "circular-definition",
+                *span,
+                format!("the right side of `{relation}` holds its left side"),
+            )
+            .with_help("write it with the wanted factor alone on the left"),
             other => unreachable_words(other),
         }
     }
@@ -685,26 +883,42 @@ fn unreachable_words(error: &ModelError) -> Diagnostic {
     Diagnostic::without_place("not-available", format!("{error:?}"))
 }
 
-fn not_available(what: Unavailable, span: Span) -> Diagnostic {
-    let subject = match what {
-        Unavailable::Frames => "vectors and frames are",
-        Unavailable::Means => "fluctuations and means are",
-        Unavailable::Origins => "a coordinate about an origin is",
-        Unavailable::MadeEquations => "equations made of others are",
-        Unavailable::PowersOfSums => "the expansion of a power of a sum is",
-        Unavailable::Request(word) => {
-            return Diagnostic::error(
-                "not-available",
-                span,
-                format!("`{word}` is read, but not answered by this version"),
-            );
-        }
+fn wrong_shape(wanted: Shape, found: Shape, span: Span, because: Option<Span>) -> Diagnostic {
+    let code = match wanted {
+        Shape::Vector | Shape::Stress => "not-a-vector",
+        Shape::Scalar => "unexpected-word",
     };
-    Diagnostic::error(
-        "not-available",
-        span,
-        format!("{subject} read, but not answered by this version"),
-    )
+    let word = |shape: Shape| match shape {
+        Shape::Scalar => "a scalar",
+        Shape::Vector => "a vector",
+        Shape::Stress => "a stress",
+    };
+    let message = format!("expected {}, found {}", word(wanted), word(found));
+    let diagnostic = Diagnostic::error(code, span, message).with_label(word(found));
+    let diagnostic = match because {
+        Some(because) => diagnostic.with_related(because, word(wanted)),
+        None => diagnostic,
+    };
+    match (wanted, found) {
+        (Shape::Vector, Shape::Scalar) => {
+            diagnostic.with_help("write its components, `(u, v, w)`, or name a `vector`")
+        }
+        (Shape::Scalar, Shape::Vector) => {
+            diagnostic.with_help("name a component, or make a scalar of it with `dot` or `div`")
+        }
+        (_, Shape::Stress) => diagnostic.with_help("of a stress only `div` can be taken"),
+        (Shape::Scalar | Shape::Vector, _) | (Shape::Stress, _) => diagnostic,
+    }
+}
+
+fn not_available(what: Unavailable, span: Span) -> Diagnostic {
+    match what {
+        Unavailable::Request(word) => Diagnostic::error(
+            "not-available",
+            span,
+            format!("`{word}` is read, but not answered by this version"),
+        ),
+    }
 }
 
 fn not_a_function(
@@ -749,6 +963,46 @@ fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagn
     }
 }
 
+fn moves_with_parts(name: &str, span: Span, parts: &[String]) -> Diagnostic {
+    let found = Diagnostic::error(
+        "derived-scale",
+        span,
+        format!("`{name}` follows its parts and cannot be moved alone"),
+    );
+    match quoted(parts) {
+        listed if listed.is_empty() => found,
+        listed => found.with_help(format!("take one of its parts: {listed}")),
+    }
+}
+
+fn moves_others(name: &str, span: Span, holders: &[String]) -> Diagnostic {
+    let named: Vec<String> = holders
+        .iter()
+        .filter(|holder| !holder.contains('('))
+        .cloned()
+        .collect();
+    let help = match (named.as_slice(), holders.first()) {
+        ([], Some(function)) => {
+            format!("name the function, `constant k = {function}`, and take `k`")
+        }
+        (_, _) => format!("take {} instead", quoted(&named)),
+    };
+    Diagnostic::error(
+        "not-a-product",
+        span,
+        format!(
+            "`{name}` cannot be moved alone: {} would change along no power law",
+            quoted(holders)
+        ),
+    )
+    .with_help(help)
+}
+
+fn quoted(names: &[String]) -> String {
+    let quoted: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+    quoted.join(", ")
+}
+
 fn not_a_product(span: Span, what: Product) -> Diagnostic {
     let (message, help) = match what {
         Product::Size => (
@@ -762,6 +1016,10 @@ fn not_a_product(span: Span, what: Product) -> Diagnostic {
         Product::Term => (
             "a term must be a product of powers",
             "give the expression a size of its own, `(... ~ SIZE)`, or name a constant",
+        ),
+        Product::Using => (
+            "the left side of an equation behind `using` must be a single product",
+            "write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`",
         ),
         Product::Limit => (
             "a limit must be a product of powers of named groups",

@@ -6,12 +6,13 @@ use std::sync::Arc;
 use num_rational::BigRational;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
-use crate::algebra::quantities::{CoordinateId, Quantities, Quantity, Size, Variation};
-use crate::model::dimensions::{circular, literal_unit, order};
+use crate::algebra::quantities::{CoordinateId, Origin, Quantities, Quantity, Size, Variation};
+use crate::model::dimensions::{circular, group_uses, literal_unit, order};
 use crate::model::errors::{ModelError, Product};
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{FieldInfo, Meaning, Model, declarations, names};
+use crate::model::{CoordinateInfo, FieldInfo, GroupId, Meaning, Model, declarations, names};
 use crate::number::{Exponent, Number, rational_to_f64};
+use crate::source::Span;
 use crate::syntax::ast;
 use crate::units::Range;
 
@@ -37,6 +38,8 @@ pub struct Setting {
     pub quantities: Quantities,
     /// The named groups, in order of declaration.
     pub groups: Vec<Group>,
+    /// The formula of each declared group in the user's own scales, where it has one.
+    pub group_formulas: Vec<Option<Monomial>>,
     /// Names of the scales and constants.
     pub names: Arc<Vec<String>>,
 }
@@ -90,6 +93,12 @@ impl Setting {
             },
             Symbol::Function(function) => function.is_zero,
         }
+    }
+
+    /// Whether no symbol of a monomial is 0, so that it and its powers amount to something.
+    pub fn is_available(&self, monomial: &Monomial) -> bool {
+        let mut symbols = monomial.powers().iter();
+        symbols.all(|(symbol, _)| !self.is_zero(symbol))
     }
 
     /// The value of a monomial over the box, with its sign: exact at its corners, since
@@ -151,10 +160,23 @@ pub fn raised(amount: f64, power: Exponent) -> f64 {
     }
 }
 
+/// Open scales with the formulas that were found for them.
+pub type Adopted = Vec<(SymbolId, Monomial)>;
+
 /// Works out a phenomenon (`None`: the script outside all of them).
 pub fn build(model: &Model, phenomenon: Option<usize>) -> (Option<Setting>, Vec<ModelError>) {
+    build_with(model, phenomenon, &Vec::new())
+}
+
+/// The same with open scales that follow the formulas found for them.
+pub fn build_with(
+    model: &Model,
+    phenomenon: Option<usize>,
+    adopted: &Adopted,
+) -> (Option<Setting>, Vec<ModelError>) {
     let mut builder = Builder {
         model,
+        adopted,
         setting: Setting {
             phenomenon,
             name: phenomenon.map(|idx| model.phenomena[idx].name.text.clone()),
@@ -168,6 +190,7 @@ pub fn build(model: &Model, phenomenon: Option<usize>) -> (Option<Setting>, Vec<
                 ..Quantities::default()
             },
             groups: Vec::new(),
+            group_formulas: vec![None; model.groups.len()],
             names: Arc::new(model.symbols.iter().map(|info| info.name.clone()).collect()),
         },
         errors: Vec::new(),
@@ -191,6 +214,7 @@ fn tolerance(model: &Model, phenomenon: Option<usize>) -> BigRational {
 
 struct Builder<'m> {
     model: &'m Model,
+    adopted: &'m Adopted,
     setting: Setting,
     errors: Vec<ModelError>,
 }
@@ -211,6 +235,10 @@ impl Names for Builder<'_> {
         }
     }
 
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
+    }
+
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
         Err(Fault::NotAProduct(process.span))
     }
@@ -228,6 +256,9 @@ impl Builder<'_> {
             .map(|idx| {
                 if !self.is_seen(idx) {
                     return Vec::new();
+                }
+                if let Some(formula) = self.found_formula(SymbolId(idx as u32)) {
+                    return symbols_of(formula);
                 }
                 let (_, decl) = self
                     .model
@@ -252,8 +283,20 @@ impl Builder<'_> {
         }
     }
 
+    fn found_formula(&self, id: SymbolId) -> Option<&Monomial> {
+        let found = self.adopted.iter().find(|(adopted, _)| *adopted == id);
+        found.map(|(_, formula)| formula)
+    }
+
     fn symbol_definition(&mut self, id: SymbolId) {
         let (_, decl) = self.model.effective(id, self.setting.phenomenon);
+        if let Some(formula) = self.found_formula(id).cloned() {
+            match self.product(id, decl.name.span, formula) {
+                Ok(variable) => self.setting.variables[id.idx()] = variable,
+                Err(error) => self.errors.push(error),
+            }
+            return;
+        }
         let ast::Value::Given { nominal, spread } = &decl.value else {
             self.setting.variables[id.idx()] = Variable::Open(vec![id]);
             return;
@@ -366,22 +409,33 @@ impl Builder<'_> {
                 Ok(Variable::Known(value))
             };
         }
-        let range = self.setting.monomial_range(&size.resolved);
-        let open = match range {
-            Ok(range) if !range.nominal.is_finite() || range.nominal == 0.0 => {
-                return Err(Fault::Error(ModelError::TooLarge { span }));
-            }
+        match self.setting.monomial_range(&size.resolved) {
             Ok(range) if decl.kind == ast::ValueKind::Scale && range.nominal < 0.0 => {
-                return Err(not_positive(decl, nominal, range.nominal).into());
+                Err(not_positive(decl, nominal, range.nominal).into())
+            }
+            Ok(_) | Err(_) => Ok(self.product(id, span, size.resolved)?),
+        }
+    }
+
+    /// A symbol that stands for a product of others, from now on replaced by it.
+    fn product(
+        &mut self,
+        id: SymbolId,
+        span: Span,
+        resolved: Monomial,
+    ) -> Result<Variable, ModelError> {
+        let variable = match self.setting.monomial_range(&resolved) {
+            Ok(range) if !range.nominal.is_finite() || range.nominal == 0.0 => {
+                return Err(ModelError::TooLarge { span });
             }
             Ok(range) => Variable::Known(Value {
                 range,
-                exact: self.exact(&size.resolved),
+                exact: self.exact(&resolved),
             }),
             Err(open) => Variable::Open(open),
         };
-        self.setting.quantities.replacements[id.idx()] = Some(size.resolved);
-        Ok(open)
+        self.setting.quantities.replacements[id.idx()] = Some(resolved);
+        Ok(variable)
     }
 
     /// The exact value of a monomial whose symbols all have one.
@@ -444,28 +498,86 @@ impl Builder<'_> {
     }
 
     fn coordinates(&mut self) {
+        let n_coordinates = self.model.coordinates.len() as u32;
+        let mut displacements = Vec::new();
         for (idx, info) in self.model.coordinates.iter().enumerate() {
-            let Some(size) = self.size(&info.size) else {
+            let id = CoordinateId(idx as u32);
+            let Some(scale) = self.size(&info.size) else {
+                continue;
+            };
+            let level = match &info.about {
+                None => None,
+                Some(about) => match self.level(about) {
+                    Some(level) => Some(level),
+                    None => continue,
+                },
+            };
+            let is_away = |level: &(Monomial, bool)| !level.1;
+            let size = match level.as_ref().filter(|level| is_away(level)) {
+                Some((level, _)) => self.setting.quantities.size(level.abs()),
+                None => Ok(scale.clone()),
+            };
+            let Ok(size) = size else {
+                let span = info.size.span;
+                self.errors.push(ModelError::TooLarge { span });
                 continue;
             };
             let variation = Variation {
-                coordinate: CoordinateId(idx as u32),
-                length: size.clone(),
-                nominal_amplitude: self.setting.nominal(&size.resolved),
-                amplitude: size.clone(),
-                has_own_amplitude: false,
+                coordinate: id,
+                length: scale.clone(),
+                nominal_amplitude: self.setting.nominal(&scale.resolved),
+                amplitude: scale.clone(),
+                has_own_amplitude: level.as_ref().is_some_and(is_away),
             };
-            self.setting.quantities.coordinates.push(Quantity {
+            let displaced = CoordinateId(n_coordinates + displacements.len() as u32);
+            let displacement = match level.as_ref().filter(|level| is_away(level)) {
+                Some(_) => displaced,
+                None => id,
+            };
+            if let (Some(about), true) = (&info.about, displacement != id) {
+                displacements.push(displacement_of(info, about, scale, &variation));
+            }
+            let quantities = &mut self.setting.quantities;
+            quantities.coordinates.push(Quantity {
                 name: info.name.text.clone(),
                 size,
                 variations: vec![variation],
             });
+            quantities
+                .origins
+                .push(level.map(|(level, is_zero)| Origin {
+                    level,
+                    is_zero,
+                    displacement,
+                }));
+        }
+        // A coordinate without a size was reported; the places would be off without it.
+        if self.setting.quantities.coordinates.len() == self.model.coordinates.len() {
+            self.setting.quantities.coordinates.extend(displacements);
+        }
+    }
+
+    /// The origin of a coordinate, with whether it is 0.
+    fn level(&mut self, about: &ast::Expr) -> Option<(Monomial, bool)> {
+        match values::monomial(about, self) {
+            Ok(level) => {
+                let is_zero = level.number.is_zero()
+                    || level
+                        .powers()
+                        .iter()
+                        .any(|(symbol, _)| self.setting.is_zero(symbol));
+                Some((level, is_zero))
+            }
+            Err(fault) => {
+                self.errors.extend(fault.error(Product::Size));
+                None
+            }
         }
     }
 
     fn fields(&mut self) {
         // A coordinate without a size was reported, and its index would be off.
-        if self.setting.quantities.coordinates.len() != self.model.coordinates.len() {
+        if self.setting.quantities.origins.len() != self.model.coordinates.len() {
             return;
         }
         for info in &self.model.fields {
@@ -541,23 +653,67 @@ impl Builder<'_> {
         variations
     }
 
+    /// Groups in an order in which each comes after those it names.
     fn groups(&mut self) {
-        for info in &self.model.groups {
-            let size = values::monomial(&info.value, self).and_then(|written| {
-                let span = info.value.span;
-                let size = self.setting.quantities.size(written);
-                size.map_err(|_| Fault::Error(ModelError::TooLarge { span }))
-            });
-            match size {
+        let Ok(order) = order(&group_uses(self.model)) else {
+            // A ring was reported by the check.
+            return;
+        };
+        for idx in order {
+            match values::monomial(&self.model.groups[idx].value, self) {
+                Ok(written) => self.setting.group_formulas[idx] = Some(written),
+                Err(fault) => self.errors.extend(fault.error(Product::Group)),
+            }
+        }
+        for (idx, info) in self.model.groups.iter().enumerate() {
+            let Some(written) = self.setting.group_formulas[idx].clone() else {
+                continue;
+            };
+            match self.setting.quantities.size(written) {
                 Ok(size) => self.setting.groups.push(Group {
                     name: info.name.text.clone(),
                     title: info.notes.title.as_ref().map(|title| title.text.clone()),
                     size,
                 }),
-                Err(fault) => self.errors.extend(fault.error(Product::Group)),
+                Err(_) => self.errors.push(ModelError::TooLarge {
+                    span: info.value.span,
+                }),
             }
         }
     }
+}
+
+/// A coordinate as it counts from its origin.
+fn displacement_of(
+    info: &CoordinateInfo,
+    about: &ast::Expr,
+    scale: Size,
+    variation: &Variation,
+) -> Quantity {
+    let origin = crate::syntax::print::expression(about);
+    Quantity {
+        name: match origin.strip_prefix('-') {
+            Some(amount) => format!("({} + {amount})", info.name.text),
+            None => format!("({} - {origin})", info.name.text),
+        },
+        size: scale,
+        variations: vec![Variation {
+            has_own_amplitude: false,
+            ..variation.clone()
+        }],
+    }
+}
+
+/// The declared symbols that a product rests on.
+fn symbols_of(monomial: &Monomial) -> Vec<usize> {
+    let mut found = Vec::new();
+    for (symbol, _) in monomial.powers() {
+        match symbol {
+            Symbol::Declared(id) => found.push(id.idx()),
+            Symbol::Function(function) => found.extend(function.parts.iter().map(|id| id.idx())),
+        }
+    }
+    found
 }
 
 fn holds_function(monomial: &Monomial) -> bool {
@@ -637,7 +793,14 @@ impl<N: Names> Spreading<'_, N> {
                 span,
             }));
         }
-        let nominal = low.signum() * (low.abs().sqrt() * high.abs().sqrt());
+        // One root rounds less than two, unless the product leaves the range of numbers.
+        let product = low * high;
+        let mean = if product.is_normal() {
+            product.sqrt()
+        } else {
+            low.abs().sqrt() * high.abs().sqrt()
+        };
+        let nominal = low.signum() * mean;
         self.range(low, nominal, high)
     }
 

@@ -41,7 +41,10 @@ fn value(name: &Token<'_>, page: &Page<'_>) -> String {
     let model = page.model();
     let kind = match model.meaning(name.text, None) {
         Some(Meaning::Symbol(id)) => Some(model.symbols[id.idx()].kind),
-        Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) | None => None,
+        Some(
+            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+        )
+        | None => None,
     };
     match kind {
         Some(ValueKind::Scale) => format!("write `scale {} = ...`", name.text),

@@ -2,7 +2,7 @@
 
 use unicode_width::UnicodeWidthStr;
 
-use crate::units::Range;
+use crate::units::{Range, parse_unit};
 
 /// The width of a terminal that every report fits.
 pub const WIDTH: usize = 80;
@@ -23,7 +23,7 @@ pub fn significant(value: f64, digits: usize) -> String {
 
 /// Whether a number reads well without a power of ten.
 fn is_plain(value: f64) -> bool {
-    value == 0.0 || (1e-3..1e6).contains(&value.abs())
+    value == 0.0 || (1e-3..1e5).contains(&value.abs())
 }
 
 fn scientific(value: f64, digits: usize) -> String {
@@ -139,6 +139,15 @@ pub fn wrapped(label: &str, text: &str) -> String {
     out
 }
 
+/// An equation likewise; a line is broken before a sign, never behind it.
+pub fn wrapped_equation(label: &str, equation: &str) -> String {
+    let mut glued = equation.to_owned();
+    for sign in ["+", "-", "="] {
+        glued = glued.replace(&format!(" {sign} "), &format!(" {sign}\u{a0}"));
+    }
+    wrapped(label, &glued).replace('\u{a0}', " ")
+}
+
 /// An SI unit as people write it: `m/s²`.
 pub fn unit(unit: &str) -> String {
     if unit == "1" {
@@ -192,6 +201,22 @@ pub fn quantity(value: &Range, unit_text: &str) -> String {
     let named = NAMED.iter().find(|(long, _)| *long == unit_text);
     let text = named.map_or_else(|| unit(unit_text), |(_, short)| (*short).to_owned());
     format!("{} {text}", range(value)).trim_end().to_owned()
+}
+
+/// A value in the unit in which it was declared, else in its SI unit.
+pub fn quantity_in(value: &Range, shown_in: Option<&str>, si_unit: &str) -> String {
+    let found = shown_in.and_then(|text| Some((text, parse_unit(text).ok()?)));
+    match found {
+        Some((text, found)) => {
+            let shown = Range {
+                low: found.from_si(value.low),
+                nominal: found.from_si(value.nominal),
+                high: found.from_si(value.high),
+            };
+            quantity(&shown, text)
+        }
+        None => quantity(value, si_unit),
+    }
 }
 
 #[cfg(test)]

@@ -1,10 +1,14 @@
 //! Answers in the forms that people and programs read: `text` for the terminal (with the
-//! `ruler` of decades), `json` for other programs. `words` holds the sentences that all
-//! forms share, `layout` numbers, columns and wrapping.
+//! `ruler` of decades), `json` for other programs. `words` and `standing` hold the
+//! sentences that all forms share, `layout` numbers, columns and wrapping.
 
+pub mod dimensionless;
 pub mod json;
 pub mod layout;
+pub mod mathematics;
 pub mod ruler;
+pub mod shelf;
+pub mod standing;
 pub mod text;
 pub mod words;
 

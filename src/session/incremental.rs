@@ -15,7 +15,7 @@ use crate::model::modules;
 use crate::model::{Level, Model, declarations, requests};
 use crate::session::changes::{self, Changes};
 use crate::session::merge::{self, Merged, Written};
-use crate::session::{Answering, Checked, Outcome, Session, check_model, judged, words};
+use crate::session::{Answering, Checked, Outcome, Session, Watcher, check_model, judged};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, Statement, StatementKind};
 use crate::syntax::errors::SyntaxError;
@@ -153,7 +153,7 @@ impl<'f> Page<'f> {
         let mut text = self.text.clone();
         // Each turn turns at least one request into a comment.
         for _ in 0..text.len() {
-            let outcome = self.session.check(PAGE, &text, None);
+            let outcome = self.session.run(PAGE, &text, None);
             let faults: Vec<Span> = outcome
                 .diagnostics
                 .iter()
@@ -215,7 +215,7 @@ impl<'f> Page<'f> {
         let outcome = &mut taken.outcome;
         outcome.diagnostics = found.iter().map(ModelError::diagnostic).collect();
         if mode != Mode::Unanswered && !outcome.diagnostics.iter().any(Diagnostic::is_error) {
-            answer(&self.checked, n_before, outcome);
+            answer(&self.checked, n_before, outcome, self.session.watcher);
         }
         diagnostic::sort(&mut outcome.diagnostics);
         taken.is_taken = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -315,7 +315,7 @@ impl<'f> Page<'f> {
         if mode != Mode::Unanswered {
             let n_settled = attempt.settled.len();
             sort_requests(&mut checked.model, &attempt.settled);
-            answer(&checked, n_settled, &mut outcome);
+            answer(&checked, n_settled, &mut outcome, self.session.watcher);
         }
         diagnostic::sort(&mut outcome.diagnostics);
         if outcome.diagnostics.iter().any(Diagnostic::is_error) {
@@ -557,21 +557,16 @@ fn request_errors(checked: &Checked) -> Vec<ModelError> {
 
 /// Answers the requests of a model from the `first` on; those before it only settle what
 /// they settle.
-fn answer(checked: &Checked, first: usize, outcome: &mut Outcome) {
+fn answer(checked: &Checked, first: usize, outcome: &mut Outcome, watcher: Option<&dyn Watcher>) {
     let told = std::mem::take(&mut outcome.diagnostics);
+    let mut answering = Answering::new(checked, outcome, watcher);
     for (idx, (own, request)) in checked.model.requests.iter().enumerate() {
         if idx == first {
-            outcome.answers.clear();
-            outcome.claims.clear();
-            outcome.diagnostics.clear();
+            answering.outcome.answers.clear();
+            answering.outcome.claims.clear();
+            answering.outcome.diagnostics.clear();
         }
-        let text = words(outcome.sources.slice(request.span));
-        Answering {
-            model: &checked.model,
-            cases: &checked.cases,
-            outcome,
-        }
-        .request(*own, request, &text);
+        answering.in_turn(*own, request);
     }
     if first >= checked.model.requests.len() {
         outcome.answers.clear();

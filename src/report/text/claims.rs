@@ -37,8 +37,9 @@ pub(super) fn claims(claims: &[Held], pen: &Pen, out: &mut String) {
     let n_met = claims.iter().filter(|claim| claim.met).count();
     let _ = writeln!(
         out,
-        "{} claims: {n_met} met, {} not met",
+        "{} {}: {n_met} met, {} not met",
         claims.len(),
+        if claims.len() == 1 { "claim" } else { "claims" },
         claims.len() - n_met
     );
 }

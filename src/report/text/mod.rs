@@ -1,7 +1,14 @@
 //! The report for a terminal: at most 80 columns, readable without colour. Here stand what
 //! all answers share and the audit of what was given; each request has a file of its own.
 
+mod bounds;
 mod claims;
+mod columns;
+mod compare;
+mod find;
+mod groups;
+mod layers;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -14,8 +21,9 @@ use crate::analysis::claims::Held;
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
-use crate::report::CAUTION;
+use crate::diagnostic::Severity;
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
+use crate::report::{CAUTION, words};
 use crate::session::Outcome;
 
 /// Writes the whole report.
@@ -25,6 +33,7 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
     if !outcome.answers.is_empty() || !outcome.claims.is_empty() {
         audit(&outcome.symbols, &pen, &mut out);
     }
+    notes(outcome, &mut out);
     for answer in &outcome.answers {
         write_answer(answer, &pen, &mut out);
     }
@@ -126,6 +135,24 @@ fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
     }
 }
 
+/// Notes that no answer has a place for: what was overridden, what vanishes.
+fn notes(outcome: &Outcome, out: &mut String) {
+    let mut messages: Vec<&str> = Vec::new();
+    for found in &outcome.diagnostics {
+        let is_new = !messages.contains(&found.message.as_str());
+        if found.severity == Severity::Note && !words::is_in_report(found.code) && is_new {
+            messages.push(&found.message);
+        }
+    }
+    if out.is_empty() || messages.is_empty() {
+        return;
+    }
+    for message in messages {
+        out.push_str(&wrapped("note  ", message));
+    }
+    out.push('\n');
+}
+
 fn audit_words(row: &AuditRow) -> String {
     let (value, unit_text) = row.shown_value();
     let mut text = value
@@ -146,9 +173,11 @@ fn audit_words(row: &AuditRow) -> String {
 // Answers -------------------------------------------------------------------------------------
 
 fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
+    // The phenomenon is named once, whatever the request says behind `for`.
+    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
     let title = match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
-        (Some(name), None) => format!("{}, {name}", answer.text),
+        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
+        (Some(name), None) => format!("{asked}, {name}"),
         (None, _) => answer.text.clone(),
     };
     if let Body::Show(shown) = &answer.body {
@@ -160,10 +189,18 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
     let _ = writeln!(out, "── {} {rule}\n", pen.head(&title));
     match &answer.body {
         Body::Show(_) => {}
+        Body::Groups(found) => groups::groups(found, pen, out),
+        Body::Nondimensionalize(equations) => equations
+            .iter()
+            .for_each(|equation| nondimensional::equation(equation, pen, out)),
         Body::Rank(equations) => equations
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Find(balances) => find::find(balances, pen, out),
+        Body::Layers(found) => layers::layers(found, pen, out),
+        Body::Bounds(found) => bounds::bounds(found, pen, out),
+        Body::Compare(comparison) => compare::compare(comparison, pen, out),
     }
     for left in &answer.left_out {
         let text = format!("{}: open {}", left.equation, left.open.join(", "));

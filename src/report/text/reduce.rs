@@ -2,7 +2,7 @@
 
 use crate::analysis::reduce::{Kind, ReducedEquation, ReducedTerm, Reduction};
 use crate::analysis::sizes::Verdict;
-use crate::report::layout::{padded, percent, wrapped};
+use crate::report::layout::{padded, percent, wrapped, wrapped_equation};
 use crate::report::text::{Pen, equation_head};
 use crate::report::words;
 
@@ -36,7 +36,11 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         (None, false) => "unnamed".to_owned(),
     };
     out.push_str(&wrapped("  leading order  ", &order));
-    out.push_str(&wrapped("      ", &equation.reduced));
+    out.push_str(&wrapped_equation("      ", &equation.reduced));
+    if equation.is_base_state {
+        let text = "a base state alone: `using` takes it out of other equations";
+        out.push_str(&wrapped("  base     ", text));
+    }
     depends(equation, out);
     dropped(equation, out);
     if let Some(text) = &equation.first_neglected {
