@@ -392,15 +392,20 @@ impl<'a> Answering<'a> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = one_line(self.outcome.sources.slice(request.span));
-            if let RequestKind::Limit { small, places } = &request.kind {
-                self.limit = Some((small, places));
-            }
-            if self.is_interrupted {
-                break;
-            }
-            self.request(*own, request, &text);
+            self.in_turn(*own, request);
         }
+    }
+
+    /// Answers a request of the script; what it settles holds for those behind it.
+    fn in_turn(&mut self, own: Option<usize>, request: &'a ast::Request) {
+        if self.is_interrupted {
+            return;
+        }
+        if let RequestKind::Limit { small, places } = &request.kind {
+            self.limit = Some((small, places));
+        }
+        let text = one_line(self.outcome.sources.slice(request.span));
+        self.request(own, request, &text);
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {

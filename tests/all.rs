@@ -6,6 +6,7 @@ mod finding;
 mod harness;
 mod language;
 mod polyhedra;
+mod prompt;
 mod properties;
 mod published;
 mod reference;
