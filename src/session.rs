@@ -577,6 +577,13 @@ impl<'a> Answering<'a> {
             .iter()
             .filter_map(|(wanted, solved)| solved.as_deref().or(given(*wanted)))
             .collect();
+        let mut is_sound = true;
+        for equation in named.iter().flat_map(|case| &case.equations) {
+            is_sound &= self.is_sound(equation);
+        }
+        if !is_sound {
+            return;
+        }
         match compare::compare(self.model, &named, matching) {
             Ok((comparison, left_out)) => {
                 let matching = comparison.matching.iter();
