@@ -1,5 +1,7 @@
 //! The command line: words to library calls, nothing else.
 
+mod progress;
+
 use std::fs;
 use std::io::{self, IsTerminal as _, Read as _, Write as _};
 use std::path::{Path, PathBuf};
@@ -223,6 +225,7 @@ fn outcomes(
     scripts: &Scripts,
     take: impl Fn(&Session<'_>, &Input, &str) -> Outcome,
 ) -> Vec<Outcome> {
+    let terminal = progress::Terminal::new();
     scripts
         .names
         .iter()
@@ -231,6 +234,7 @@ fn outcomes(
             let session = Session::new()
                 .with_files(&Disk, input.folder.clone())
                 .with_root(scripts.root.clone())
+                .with_watcher(&terminal)
                 .with_strictness(scripts.strict);
             match &input.text {
                 Ok(text) => take(&session, &input, text),

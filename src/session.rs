@@ -392,15 +392,20 @@ impl<'a> Answering<'a> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = one_line(self.outcome.sources.slice(request.span));
-            if let RequestKind::Limit { small, places } = &request.kind {
-                self.limit = Some((small, places));
-            }
-            if self.is_interrupted {
-                break;
-            }
-            self.request(*own, request, &text);
+            self.in_turn(*own, request);
         }
+    }
+
+    /// Answers a request of the script; what it settles holds for those behind it.
+    fn in_turn(&mut self, own: Option<usize>, request: &'a ast::Request) {
+        if self.is_interrupted {
+            return;
+        }
+        if let RequestKind::Limit { small, places } = &request.kind {
+            self.limit = Some((small, places));
+        }
+        let text = one_line(self.outcome.sources.slice(request.span));
+        self.request(own, request, &text);
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
@@ -529,7 +534,9 @@ impl<'a> Answering<'a> {
             },
             RequestKind::Bounds { symbols } => {
                 if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
-                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                    let found = self.found.get(&case.setting.phenomenon);
+                    let balances = found.map_or(&[][..], |found| &found.balances);
+                    match bounds::bounds(self.model, case, &wanted, symbols, balances) {
                         Ok(found) => {
                             self.warn_of_lone_terms(case, &found);
                             self.outcome.answers.push(answer(
@@ -538,7 +545,7 @@ impl<'a> Answering<'a> {
                                 Body::Bounds(found),
                             ));
                         }
-                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                        Err(fault) => self.fault(fault, case, request.span),
                     }
                 }
             }
@@ -650,6 +657,7 @@ impl<'a> Answering<'a> {
                 .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
                 .collect()
         };
+        let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
         let mut is_faulty = false;
         for (idx, place) in indices {
@@ -785,6 +793,16 @@ impl<'a> Answering<'a> {
             }
         }
     }
+}
+
+/// The equations without components of a vector of which nothing is left, unless there are
+/// no others.
+fn with_terms(model: &Model, case: &Case, all: Vec<(usize, Span)>) -> Vec<(usize, Span)> {
+    let is_empty = |idx: usize| model.is_component(idx) && case.equations[idx].terms.is_empty();
+    if all.iter().all(|(idx, _)| is_empty(*idx)) {
+        return all;
+    }
+    all.into_iter().filter(|(idx, _)| !is_empty(*idx)).collect()
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.

@@ -2,9 +2,11 @@
 
 mod answers;
 mod exact;
+mod finding;
 mod harness;
 mod language;
 mod polyhedra;
+mod prompt;
 mod properties;
 mod published;
 mod reference;

@@ -131,7 +131,7 @@ impl Checker<'_> {
                 }
             }
             RequestKind::Layers | RequestKind::Groups => {}
-            RequestKind::Limit { .. } => self.unavailable("limit", request.span),
+            RequestKind::Limit { small, places } => self.limit(small, places),
             RequestKind::Expand { .. } => self.unavailable("expand", request.span),
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
             RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
@@ -152,6 +152,25 @@ impl Checker<'_> {
         for name in equations {
             if let Err(error) = dimensions::equation(self.model, name) {
                 self.errors.push(error);
+            }
+        }
+    }
+
+    /// Groups and the powers that they are placed at have no dimension.
+    fn limit(&mut self, small: &ast::Expr, places: &[ast::LimitPlace]) {
+        let pairs = places.iter().flat_map(|place| match place {
+            ast::LimitPlace::Others(_) => Vec::new(),
+            ast::LimitPlace::Group(group, power) => vec![group, power],
+        });
+        for expr in pairs.chain([small]) {
+            if let Dim::Known(dimension, span) = self.dimension(expr)
+                && !dimension.is_one()
+            {
+                self.errors.push(ModelError::NotDimensionless {
+                    dimension,
+                    span,
+                    what: "a group of a limit",
+                });
             }
         }
     }

@@ -2,6 +2,7 @@
 
 use num_integer::Integer as _;
 
+use crate::analysis::balances::Balances;
 use crate::analysis::claims::{Astray, Held, Measured};
 use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation, ReducedTerm};
 use crate::analysis::{Exponents, Factors};
@@ -305,23 +306,23 @@ pub fn measured(held: &Held) -> String {
 }
 
 /// That no balance is consistent, and why.
-pub fn no_balance(contradiction: &[String]) -> String {
-    let listed: Vec<String> = contradiction
+pub fn no_balance(found: &Balances) -> String {
+    let listed: Vec<String> = found
+        .contradiction
         .iter()
         .map(|name| format!("`{name}`"))
         .collect();
-    match listed.as_slice() {
+    let why = match listed.as_slice() {
         [] => "no balance is consistent".to_owned(),
-        [single] => {
-            format!("no balance is consistent: nothing in {single} can balance its largest process")
-        }
-        [first, second] => {
-            format!("no balance is consistent: {first} and {second} contradict one another")
-        }
+        [single] => format!("{single} alone has no consistent balance"),
         [others @ .., last] => format!(
             "no balance is consistent: {} and {last} contradict one another",
             others.join(", ")
         ),
+    };
+    match found.is_conditioned {
+        true => format!("{why}, with the processes that `where` asks for"),
+        false => why,
     }
 }
 

@@ -15,9 +15,7 @@ use crate::model::modules;
 use crate::model::{Level, Model, declarations, requests};
 use crate::session::changes::{self, Changes};
 use crate::session::merge::{self, Merged, Written};
-use crate::session::{
-    Answering, Checked, Outcome, Session, Watcher, check_model, judged, one_line,
-};
+use crate::session::{Answering, Checked, Outcome, Session, Watcher, check_model, judged};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, Statement, StatementKind};
 use crate::syntax::errors::SyntaxError;
@@ -46,6 +44,8 @@ pub struct Taken {
     pub outcome: Outcome,
     /// Whether the page holds the entry now; not so if it was at fault.
     pub is_taken: bool,
+    /// Whether it declares something, rather than asking alone.
+    pub declares: bool,
     /// What gave way to it.
     pub replaced: Vec<Replaced>,
     /// What it changed.
@@ -153,7 +153,7 @@ impl<'f> Page<'f> {
         let mut text = self.text.clone();
         // Each turn turns at least one request into a comment.
         for _ in 0..text.len() {
-            let outcome = self.session.check(PAGE, &text, None);
+            let outcome = self.session.run(PAGE, &text, None);
             let faults: Vec<Span> = outcome
                 .diagnostics
                 .iter()
@@ -330,6 +330,7 @@ impl<'f> Page<'f> {
         Taken {
             outcome,
             is_taken: true,
+            declares: true,
             replaced: attempt.replaced,
             changes,
             requests: attempt.requests,
@@ -565,8 +566,7 @@ fn answer(checked: &Checked, first: usize, outcome: &mut Outcome, watcher: Optio
             answering.outcome.claims.clear();
             answering.outcome.diagnostics.clear();
         }
-        let text = one_line(answering.outcome.sources.slice(request.span));
-        answering.request(*own, request, &text);
+        answering.in_turn(*own, request);
     }
     if first >= checked.model.requests.len() {
         outcome.answers.clear();
@@ -610,7 +610,9 @@ fn comment_out(text: &mut String, span: Span) {
         true => "",
         false => "\n",
     };
-    let behind = match text[end..].starts_with('\n') || end == text.len() {
+    let blanks = text[end..].len() - text[end..].trim_start_matches([' ', '\t']).len();
+    let rest = &text[end + blanks..];
+    let behind = match rest.is_empty() || rest.starts_with('\n') {
         true => "",
         false => "\n",
     };
@@ -618,7 +620,7 @@ fn comment_out(text: &mut String, span: Span) {
         "{before}# no longer answered:\n{}{behind}",
         lines.join("\n")
     );
-    text.replace_range(start..end, &comment);
+    text.replace_range(start..end + blanks, &comment);
 }
 
 impl Checked {

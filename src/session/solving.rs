@@ -40,6 +40,8 @@ pub trait Watcher: Send + Sync {
 /// The state of one phenomenon once a `find` gave formulas for open scales.
 pub(super) struct Found {
     formulas: Adopted,
+    /// The processes that balance by them, by equation.
+    pub(super) balances: Vec<(String, Vec<String>)>,
     /// The phenomenon with these formulas.
     pub(super) case: Rc<Case>,
 }
@@ -130,7 +132,7 @@ impl Answering<'_> {
             }
         };
         if found.candidates.is_empty() && found.ending == Ending::Complete {
-            let message = words::no_balance(&found.contradiction);
+            let message = words::no_balance(&found);
             let whose = case.setting.name.as_ref().map(|name| format!("{name}: "));
             let message = format!("{}{message}", whose.unwrap_or_default());
             let warning = Diagnostic::warning("no-balance", words.span, message);
@@ -275,7 +277,16 @@ impl Answering<'_> {
         match made {
             Some(made) => {
                 let case = Rc::new(made);
-                self.found.insert(target, Found { formulas, case });
+                let before = self.found.remove(&target);
+                let mut balances = before.map(|found| found.balances).unwrap_or_default();
+                balances.retain(|(name, _)| only.balances.iter().all(|(new, _)| new != name));
+                balances.extend(only.balances.iter().cloned());
+                let found = Found {
+                    formulas,
+                    balances,
+                    case,
+                };
+                self.found.insert(target, found);
             }
             None => {
                 let found = errors.first().map(ModelError::diagnostic);
@@ -470,7 +481,7 @@ fn closed_diagnostics(
     };
     if !is_error {
         let message =
-            format!("nothing is looked for{whose}: not all of these scales are open there");
+            format!("`find` finds nothing{whose}: not all of these scales are open there");
         return Some(Diagnostic::note("not-open", span, message));
     }
     Some(match first {

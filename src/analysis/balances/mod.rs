@@ -48,6 +48,8 @@ pub struct Balances {
     pub candidates: Vec<Candidate>,
     /// Where there is none: equations that contradict one another.
     pub contradiction: Vec<String>,
+    /// Whether the request asks for certain processes.
+    pub is_conditioned: bool,
     /// The small parameter by whose powers scales were compared.
     pub small: Option<String>,
     /// How the search ended.
@@ -208,18 +210,29 @@ pub fn find(
     if let ([only], Ending::Complete) = (candidates.as_mut_slice(), found.ending) {
         only.is_adopted = true;
     }
-    let contradiction = match (candidates.is_empty(), found.ending) {
-        (true, Ending::Complete) => contradiction(&query, &prepared, watch)?,
-        (_, Ending::Complete | Ending::Stopped | Ending::TooLarge) => Vec::new(),
-    };
+    let mut ending = found.ending;
+    let mut contradiction = Vec::new();
+    if candidates.is_empty() && ending == Ending::Complete {
+        let mut is_stopped = false;
+        let mut watched = |n_found| {
+            let step = watch(n_found);
+            is_stopped |= step.is_break();
+            step
+        };
+        contradiction = contradicting(&query, &prepared, &mut watched)?;
+        if is_stopped {
+            ending = Ending::Stopped;
+        }
+    }
     let balances = Balances {
         unknowns: (wanted.unknowns.iter())
             .map(|id| case.setting.names[id.idx()].clone())
             .collect(),
         candidates,
         contradiction,
+        is_conditioned: !wanted.conditions.is_empty(),
         small: query.powers.as_ref().map(|powers| powers.text.clone()),
-        ending: found.ending,
+        ending,
     };
     Ok((balances, left_out))
 }
@@ -237,7 +250,7 @@ fn entries<'c>(
             .conditions
             .iter()
             .find(|(idx, _)| *idx == equation.idx);
-        if !holds_unknown(equation, &wanted.unknowns) {
+        if !holds_unknown(case, equation, &wanted.unknowns) {
             if condition.is_some() {
                 return Err(FindFault::NotInvolved(equation.idx));
             }
@@ -280,19 +293,12 @@ fn entries<'c>(
     Ok((entries, left_out))
 }
 
-fn holds_unknown(equation: &EquationTerms, unknowns: &[SymbolId]) -> bool {
-    let holds = |size: &Monomial| unknowns.iter().any(|id| !size.power_of(*id).is_zero());
-    equation
-        .terms
-        .iter()
-        .any(|term| holds(&term.size.resolved) || rests_on(&term.size.resolved, unknowns))
-}
-
-/// Whether a symbol that is no product rests on an unknown.
-fn rests_on(size: &Monomial, unknowns: &[SymbolId]) -> bool {
-    size.powers().iter().any(|(symbol, _)| match symbol {
-        Symbol::Declared(_) => false,
-        Symbol::Function(function) => function.open.iter().any(|id| unknowns.contains(id)),
+fn holds_unknown(case: &Case, equation: &EquationTerms, unknowns: &[SymbolId]) -> bool {
+    let sizes = equation.terms.iter().map(|term| &term.size.resolved);
+    let mut symbols = sizes.flat_map(Monomial::powers).map(|(symbol, _)| symbol);
+    symbols.any(|symbol| {
+        let open = case.setting.symbol_value(symbol).err().unwrap_or_default();
+        open.iter().any(|id| unknowns.contains(id))
     })
 }
 
@@ -355,7 +361,7 @@ fn placing_fault(case: &Case, fault: PlacingFault) -> FindFault {
 
 /// A smallest set of equations without a common balance, at the nominal values where the
 /// ranges have one that is no part of them.
-fn contradiction(
+fn contradicting(
     query: &Query<'_>,
     prepared: &Prepared,
     watch: Watch<'_>,

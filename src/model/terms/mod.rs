@@ -482,7 +482,9 @@ impl<'a> Maker<'a> {
             .errors
             .iter()
             .any(|error| error.diagnostic().is_error());
-        if n_written <= 1 && !has_errors {
+        // Of a plane motion one component may be nothing at all.
+        let is_nothing = self.made.terms.is_empty() && self.model.is_component(self.made.idx);
+        if n_written <= 1 && !has_errors && !is_nothing {
             self.errors.push(ModelError::OneTerm {
                 equation: decl.name.text.clone(),
                 span: decl.name.span,

@@ -9,7 +9,7 @@ use crate::units::Range;
 /// Writes all balances.
 pub(super) fn find(balances: &Balances, pen: &Pen, out: &mut String) {
     if balances.candidates.is_empty() {
-        let text = words::no_balance(&balances.contradiction);
+        let text = words::no_balance(balances);
         out.push_str(&wrapped("warning   ", &text));
         out.push('\n');
         return;
@@ -168,6 +168,7 @@ fn neglected_words(neglected: &Neglected, small: Option<&str>) -> String {
             number(share)
         ),
         (Some(share), ..) => percent(share),
+        (None, Some(1.0), Some(small)) => format!("of order {small}"),
         (None, Some(power), Some(small)) => format!("of order {small}^{}", number(power)),
         (None, _, _) => "unknown".to_owned(),
     };
