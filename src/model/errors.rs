@@ -191,6 +191,14 @@ pub enum ModelError {
     NotSplit { span: Span, function: String },
     /// A split of too many parts, or nested too deep.
     SplitTooLarge { name: String, span: Span },
+    /// A field with a level and an amplitude of its own where it must be split.
+    LevelNotSplit {
+        name: String,
+        span: Span,
+        declared: Span,
+    },
+    /// An order beyond the limit.
+    OrderTooHigh { span: Span },
     /// Parts that are too large to expand about the largest.
     RatioNotSmall {
         span: Span,
@@ -355,6 +363,8 @@ pub enum Product {
     Limit,
     /// The left side of an equation behind `using`.
     Using,
+    /// A term of an equation that is expanded order by order.
+    Expanded,
 }
 
 impl ModelError {
@@ -519,6 +529,8 @@ impl ModelError {
             )
             .with_help("give the expression a size of its own, `(... ~ SIZE)`, or name a constant level"),
             E::SplitTooLarge { .. }
+            | E::LevelNotSplit { .. }
+            | E::OrderTooHigh { .. }
             | E::RatioNotSmall { .. }
             | E::SingularExpansion { .. }
             | E::NotARelation { .. }
@@ -757,6 +769,28 @@ impl ModelError {
                     crate::limits::SPLIT_DEPTH
                 ),
             ),
+            ModelError::LevelNotSplit {
+                name,
+                span,
+                declared,
+            } => Diagnostic::error(
+                "not-split",
+                *span,
+                format!("`{name}` has a level and varies by less, so it has no single size to expand with"),
+            )
+            .with_related(*declared, format!("`{name}` is declared here"))
+            .with_help(format!(
+                "split it into its level and what varies: `field {name} = {name}_0 + {name}'`"
+            )),
+            ModelError::OrderTooHigh { span } => Diagnostic::error(
+                "order-too-high",
+                *span,
+                format!(
+                    "`expand` goes to order {} at most",
+                    crate::limits::HIERARCHY_ORDER
+                ),
+            )
+            .with_help("ask for a lower order"),
             ModelError::SingularExpansion { span, what } => Diagnostic::error(
                 "singular-expansion",
                 *span,
@@ -1020,6 +1054,10 @@ fn not_a_product(span: Span, what: Product) -> Diagnostic {
         Product::Using => (
             "the left side of an equation behind `using` must be a single product",
             "write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`",
+        ),
+        Product::Expanded => (
+            "a term that is expanded order by order must be a product of fields and derivatives",
+            "leave its size out: the cancellation must come out by itself",
         ),
         Product::Limit => (
             "a limit must be a product of powers of named groups",
