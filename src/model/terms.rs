@@ -14,6 +14,7 @@ use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Unavailable};
 use crate::model::names::{self, Call, Function};
 use crate::model::settings::Setting;
+use crate::model::spelling;
 use crate::model::values::{self, Fault, Names, Value};
 use crate::model::{Meaning, Model};
 use crate::number::{Exponent, Number, TooLarge};
@@ -36,6 +37,8 @@ pub enum Side {
 pub struct Term {
     /// Its text, without a leading minus.
     pub text: String,
+    /// The same as a tree, without process names.
+    pub expr: ast::Expr,
     /// Whether a minus stands before the text.
     pub is_negative: bool,
     /// What it is, with its sign on its side.
@@ -72,6 +75,8 @@ pub struct Summand {
     pub is_whole: bool,
     /// The expression, without process names.
     pub expr: ast::Expr,
+    /// The expression as written, with the process that a name around it gives.
+    pub named: ast::Expr,
 }
 
 /// An equation in one setting.
@@ -381,6 +386,7 @@ impl<'a> Maker<'a> {
             is_negative,
             side,
             expr: plain,
+            named: spelling::named(expr, tag.map(|tag| tag.name.as_str())),
         };
         let idx = self.made.summands.len();
         let is_single = pieces.len() == 1;
@@ -406,11 +412,14 @@ impl<'a> Maker<'a> {
         if product.number.is_zero() {
             return None;
         }
-        let (text, is_negative) = if is_single {
-            (summand.text.clone(), summand.is_negative)
+        let (text, expr, is_negative) = if is_single {
+            let expr = summand.expr.clone();
+            (summand.text.clone(), expr, summand.is_negative)
         } else {
-            let text = self.speller().product(&product);
-            (text, summand.is_negative != product.number.is_negative())
+            let speller = self.speller();
+            let expr = spelling::product(&product, &speller);
+            let is_negative = summand.is_negative != product.number.is_negative();
+            (speller.product(&product), expr, is_negative)
         };
         let size = match product.size(&self.setting.quantities) {
             Ok(size) => size,
@@ -450,6 +459,7 @@ impl<'a> Maker<'a> {
         };
         Some(Term {
             text,
+            expr,
             is_negative,
             product,
             size: Size {

@@ -3,6 +3,7 @@
 //! forms share, `layout` numbers, columns and wrapping.
 
 pub mod json;
+pub mod latex;
 pub mod layout;
 pub mod ruler;
 pub mod text;

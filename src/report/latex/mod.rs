@@ -1,0 +1,3 @@
+//! x
+pub mod escape;
+pub mod math;
