@@ -31,6 +31,9 @@ enum Command {
         /// The form of the answers
         #[arg(long, value_enum, default_value_t = Format::Text)]
         format: Format,
+        /// With --format latex: a whole document, which compiles as it is
+        #[arg(long)]
+        document: bool,
         /// Write the answers to this file instead of standard output
         #[arg(long, value_name = "FILE")]
         output: Option<PathBuf>,
@@ -64,6 +67,10 @@ struct Scripts {
 enum Format {
     /// For reading at a terminal
     Text,
+    /// Tables and equations for documents in Markdown
+    Markdown,
+    /// A part of a paper, or with --document a whole one
+    Latex,
     /// For other programs
     Json,
 }

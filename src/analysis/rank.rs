@@ -71,6 +71,16 @@ pub struct RankedProcess {
     pub verdict: Verdict,
 }
 
+impl RankedEquation {
+    /// The places of its terms, the nominally largest first.
+    pub fn largest_first(&self) -> Vec<usize> {
+        let mut order: Vec<usize> = (0..self.terms.len()).collect();
+        let nominal = |idx: &usize| self.terms[*idx].size.nominal;
+        order.sort_by(|a, b| nominal(b).total_cmp(&nominal(a)));
+        order
+    }
+}
+
 /// Ranks an equation; `None` while a scale of it is open or no term is left.
 pub fn rank(case: &Case, equation: &EquationTerms, namer: &Namer<'_>) -> Option<RankedEquation> {
     let shares = Shares::of(&case.setting, equation)?;

@@ -2,9 +2,11 @@
 //! `ruler` of decades), `json` for other programs. `words` holds the sentences that all
 //! forms share, `layout` numbers, columns and wrapping.
 
+pub mod given;
 pub mod json;
 pub mod latex;
 pub mod layout;
+pub mod markdown;
 pub mod ruler;
 pub mod text;
 pub mod words;

@@ -8,7 +8,9 @@
 use crate::analysis::Exponents;
 use crate::number::{Exponent, Number};
 use crate::report::latex::escape;
+use crate::source::FileId;
 use crate::syntax::ast::{self, Expr, ExprKind, Name, Operator, Sign};
+use crate::syntax::parser;
 
 /// A piece of mathematics.
 #[derive(Debug, Clone, PartialEq)]
@@ -201,30 +203,42 @@ pub fn product(factor: &Number, exponents: &Exponents, style: Style) -> Math {
             .filter(|(_, power)| power.is_negative() == is_below)
             .map(|(text, power)| {
                 let power = if is_below { power.negated() } else { *power };
-                raised(symbol(text), power)
+                raised(read(text, Style::Inline), power)
             })
             .collect()
     };
     let mut above = side(false);
     if !factor.is_one() || above.is_empty() {
-        above.insert(0, exact(factor));
+        above.insert(0, read(&factor.to_string(), Style::Inline));
     }
     Setter { style }.quotient(above, side(true))
 }
 
-/// A declared name, or a function of constants by its text.
-fn symbol(text: &str) -> Math {
-    let (expr, errors) =
-        crate::syntax::parser::parse_expression(text, crate::source::FileId::default());
-    if errors.is_empty() {
-        expression(&expr, Style::Inline)
-    } else {
-        name(text)
+/// A text of the language, as answers carry formulas: read, then set.
+pub fn read(text: &str, style: Style) -> Math {
+    let (expr, errors) = parser::parse_expression(text, FileId::default());
+    match errors.is_empty() {
+        true => expression(&expr, style),
+        false => Math::new(
+            format!("\\text{{{}}}", escape::text(text)),
+            LETTER * text.len() as f64,
+        ),
     }
 }
 
-fn exact(number: &Number) -> Math {
-    symbol(&number.to_string())
+/// Words with numbers among them, as the reports print them: `2 .. 27.7 %`.
+pub fn numbers(words: &str) -> String {
+    let words: Vec<String> = words
+        .split(' ')
+        .map(|word| match word {
+            ".." => "\\dots".to_owned(),
+            word if word.starts_with(|c: char| c.is_ascii_digit() || c == '-') => {
+                format!("${}$", number(word).text)
+            }
+            word => escape::text(word),
+        })
+        .collect();
+    words.join(" ").replace(" \\%", "~\\%")
 }
 
 fn raised(base: Math, power: Exponent) -> Math {
@@ -465,9 +479,9 @@ impl Setter {
             "mean" => self.over(argument, "\\overline"),
             "sqrt" => self.over(argument, "\\sqrt"),
             "abs" => {
-                let bar = || Math::new("|", 0.7);
+                let bar = |side: &str| Math::new(format!("\\{side}vert "), 0.7);
                 let inside = self.expr(unbracketed(argument));
-                bar().then(inside).then(bar())
+                bar("l").then(inside).then(bar("r"))
             }
             "exp" if order.is_none() => {
                 let inline = Setter {

@@ -13,7 +13,7 @@ use anstyle::{AnsiColor, Effects, Style};
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
-use crate::report::CAUTION;
+use crate::report::{CAUTION, given, words};
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
 use crate::session::Outcome;
 
@@ -24,15 +24,26 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
     if !outcome.answers.is_empty() || !outcome.claims.is_empty() {
         audit(&outcome.symbols, &pen, &mut out);
     }
-    for answer in &outcome.answers {
-        write_answer(answer, &pen, &mut out);
-    }
-    claims::claims(&outcome.claims, &pen, &mut out);
+    write_answers(outcome, &pen, &mut out);
     if !out.is_empty() {
         out.push('\n');
         out.push_str(&wrapped("", CAUTION));
     }
     out
+}
+
+/// The answers and claims alone.
+pub fn answers(outcome: &Outcome) -> String {
+    let mut out = String::new();
+    write_answers(outcome, &Pen { colour: false }, &mut out);
+    out
+}
+
+fn write_answers(outcome: &Outcome, pen: &Pen, out: &mut String) {
+    for answer in &outcome.answers {
+        write_answer(answer, pen, out);
+    }
+    claims::claims(&outcome.claims, pen, out);
 }
 
 /// Colours, which only add.
@@ -76,36 +87,16 @@ impl Pen {
 // What was given ------------------------------------------------------------------------------
 
 fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
-    let shown: Vec<&AuditRow> = rows
-        .iter()
-        .filter(|row| {
-            matches!(row.kind, "scale" | "constant") && row.value.is_some() && row.is_used
-        })
-        .collect();
-    if shown.is_empty() {
-        return;
-    }
-    let mut groups: Vec<Option<&str>> = Vec::new();
-    for row in &shown {
-        let phenomenon = row.phenomenon.as_deref();
-        if !groups.contains(&phenomenon) {
-            groups.push(phenomenon);
-        }
-    }
-    let names = shown.iter().map(|row| width(&row.name)).max().unwrap_or(0);
-    for phenomenon in groups {
-        let title = match phenomenon {
+    let given = given::values(rows);
+    let all = given.iter().flat_map(|given| &given.rows);
+    let names = all.map(|row| width(&row.name)).max().unwrap_or(0);
+    for given in given {
+        let title = match given.phenomenon {
             Some(name) => format!("given for {name}"),
             None => "given".to_owned(),
         };
         let _ = writeln!(out, "{}", pen.head(&title));
-        let mut own: Vec<&&AuditRow> = shown
-            .iter()
-            .filter(|row| row.phenomenon.as_deref() == phenomenon)
-            .collect();
-        // As they were declared; what follows from them comes behind.
-        own.sort_by_key(|row| (row.formula.is_some() && phenomenon.is_some(), row.place));
-        for row in own {
+        for row in given.rows {
             let label = format!("  {}  ", padded(&row.name, names.min(24)));
             out.push_str(&wrapped(&label, &audit_words(row)));
         }
@@ -133,11 +124,7 @@ fn audit_words(row: &AuditRow) -> String {
 // Answers -------------------------------------------------------------------------------------
 
 fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
-    let title = match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
-        (Some(name), None) => format!("{}, {name}", answer.text),
-        (None, _) => answer.text.clone(),
-    };
+    let title = words::heading(answer);
     if let Body::Show(shown) = &answer.body {
         show::show(&title, shown, pen, out);
         return;

@@ -1,6 +1,6 @@
 //! `reduce` for a terminal.
 
-use crate::analysis::reduce::{Kind, ReducedEquation, ReducedTerm, Reduction};
+use crate::analysis::reduce::{ReducedEquation, ReducedTerm, Reduction};
 use crate::analysis::sizes::Verdict;
 use crate::report::layout::{padded, percent, wrapped};
 use crate::report::text::{Pen, equation_head};
@@ -27,14 +27,7 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         pen,
         out,
     );
-    let order = match (&equation.balance, equation.by_construction) {
-        (Some(name), true) => {
-            format!("{name}, by construction: derived scales put this balance in")
-        }
-        (Some(name), false) => name.clone(),
-        (None, true) => "unnamed, by construction: derived scales put this balance in".to_owned(),
-        (None, false) => "unnamed".to_owned(),
-    };
+    let order = words::leading_order(equation);
     out.push_str(&wrapped("  leading order  ", &order));
     out.push_str(&wrapped("      ", &equation.reduced));
     depends(equation, out);
@@ -47,7 +40,10 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         );
         out.push_str(&wrapped("  error    ", &sum));
     }
-    kinds(equation, out);
+    let kinds = words::kinds(equation);
+    if !kinds.is_empty() {
+        out.push_str(&wrapped("  fields   ", &kinds));
+    }
     for warning in words::warnings(equation) {
         let label = padded(&format!("  {}", warning.severity.word()), 11);
         out.push_str(&wrapped(&label, &warning.message));
@@ -90,24 +86,4 @@ fn dropped(equation: &ReducedEquation, out: &mut String) {
         texts.join(", ")
     };
     out.push_str(&wrapped("  dropped  ", &text));
-}
-
-fn kinds(equation: &ReducedEquation, out: &mut String) {
-    let of = |wanted: Kind| -> Vec<&str> {
-        let kinds = equation.kinds.iter().filter(|(_, kind)| *kind == wanted);
-        kinds.map(|(field, _)| field.as_str()).collect()
-    };
-    let mut texts = Vec::new();
-    for (kind, word) in [
-        (Kind::Prognostic, "prognostic"),
-        (Kind::Diagnostic, "diagnostic"),
-    ] {
-        let fields = of(kind);
-        if !fields.is_empty() {
-            texts.push(format!("{} {word}", fields.join(", ")));
-        }
-    }
-    if !texts.is_empty() {
-        out.push_str(&wrapped("  fields   ", &texts.join("; ")));
-    }
 }

@@ -1,0 +1,114 @@
+//! `reduce` in LaTeX.
+
+use crate::analysis::reduce::{Inequality, ReducedEquation, ReducedTerm, Reduction};
+use crate::report::latex::escape::{breakable, text};
+use crate::report::latex::math::{self, Style};
+use crate::report::latex::table::table;
+use crate::report::latex::{equation, equation_head};
+use crate::report::layout::{number, percent, range};
+use crate::report::words;
+
+/// Writes a reduced system.
+pub(super) fn reduce(reduction: &Reduction, out: &mut String) {
+    for equation in &reduction.equations {
+        reduced(equation, out);
+    }
+    if !reduction.undetermined.is_empty() {
+        let message = words::undetermined(&reduction.undetermined);
+        out.push_str(&format!("\\textbf{{Warning:}} {}.\n\n", text(&message)));
+    }
+}
+
+fn reduced(equation: &ReducedEquation, out: &mut String) {
+    out.push_str(&equation_head(&equation.name, equation.title.as_ref()));
+    out.push_str(&format!(
+        "Leading order: \\textbf{{{}}}. Tolerance {}.\n",
+        text(&words::leading_order(equation)),
+        text(&percent(equation.tolerance))
+    ));
+    out.push_str(&equation::display(equation));
+    let head = [
+        ("term", 0.18),
+        ("process", 0.18),
+        ("share", 0.1),
+        ("over the ranges", 0.17),
+        ("what becomes of it", 0.36),
+    ];
+    let terms = equation.kept.iter().chain(&equation.dropped);
+    let rows: Vec<Vec<String>> = terms.map(term_row).collect();
+    out.push_str(&table(&head, &rows));
+    remarks(equation, out);
+}
+
+fn term_row(term: &ReducedTerm) -> Vec<String> {
+    let conditions: Vec<String> = term.conditions.iter().map(inequality).collect();
+    let verdict = match conditions.is_empty() {
+        true => term.verdict.word().to_owned(),
+        false => format!(
+            "{}: may go where {}",
+            term.verdict.word(),
+            conditions.join(" or ")
+        ),
+    };
+    vec![
+        math::inline(&term.expr),
+        breakable(term.process.as_deref().unwrap_or("")),
+        math::numbers(&percent(term.share.nominal)),
+        math::numbers(&words::share(&term.share)),
+        verdict,
+    ]
+}
+
+/// `Ro <= 0.1 (now 0.03 .. 0.28)`.
+fn inequality(condition: &Inequality) -> String {
+    let left = match &condition.groups {
+        Some((rest, groups)) => math::product(rest, groups, Style::Inline),
+        None => {
+            let factors = &condition.factors;
+            math::product(&factors.number, &factors.exponents, Style::Inline)
+        }
+    };
+    format!(
+        "${} \\le {}$ (now {})",
+        left.text,
+        math::number(&number(condition.limit)).text,
+        math::numbers(&range(&condition.value))
+    )
+}
+
+fn remarks(equation: &ReducedEquation, out: &mut String) {
+    let mut items: Vec<String> = Vec::new();
+    if let Some(first) = first_neglected(equation) {
+        items.push(format!(
+            "\\textbf{{Error:}} at most {} of the largest term, from {}, the first neglected \
+             term; {} in all.",
+            math::numbers(&percent(equation.error)),
+            math::inline(&first.expr),
+            math::numbers(&percent(equation.error_sum))
+        ));
+    }
+    let kinds = words::kinds(equation);
+    if !kinds.is_empty() {
+        items.push(format!("\\textbf{{Fields:}} {}.", text(&kinds)));
+    }
+    for warning in words::warnings(equation) {
+        let word = words::capital(warning.severity.word());
+        items.push(format!(
+            "\\textbf{{{word}:}} {}.",
+            text(&warning.message.replace('`', ""))
+        ));
+    }
+    if items.is_empty() {
+        return;
+    }
+    out.push_str("\\begin{itemize}\n");
+    for item in items {
+        out.push_str(&format!("\\item {item}\n"));
+    }
+    out.push_str("\\end{itemize}\n\n");
+}
+
+fn first_neglected(equation: &ReducedEquation) -> Option<&ReducedTerm> {
+    let text = equation.first_neglected.as_ref()?;
+    equation.dropped.iter().find(|term| term.text == *text)
+}
