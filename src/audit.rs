@@ -80,8 +80,8 @@ pub fn rows(model: &Model, cases: &[Case]) -> Vec<AuditRow> {
         rows.extend(common.filter(|_| !is_told));
         rows.extend(own);
     };
-    for idx in 0..model.symbols.len() {
-        add(&|setting| symbol_row(model, setting, SymbolId(idx as u32), used[idx]));
+    for (idx, is_used) in used.into_iter().enumerate() {
+        add(&|setting| symbol_row(model, setting, SymbolId(idx as u32), is_used));
     }
     for idx in 0..model.coordinates.len() {
         add(&|setting| coordinate_row(model, setting, idx));

@@ -161,7 +161,11 @@ pub fn draw(diagnostics: &[Diagnostic], sources: &Sources, colour: bool) -> Stri
         let rest = diagnostics.len() - DRAWN;
         out.extend_from_slice(format!("and {rest} more\n").as_bytes());
     }
-    let text = String::from_utf8_lossy(&out);
+    let mut text = String::from_utf8_lossy(&out).into_owned();
+    if !colour {
+        // Some parts are coloured whatever the configuration says.
+        text = anstream::adapter::strip_str(&text).to_string();
+    }
     let lines: Vec<&str> = text.lines().map(str::trim_end).collect();
     if lines.is_empty() {
         String::new()

@@ -39,7 +39,7 @@ pub mod source;
 pub mod syntax;
 pub mod units;
 
-pub use session::{Outcome, Session, Status};
+pub use session::{Outcome, Saved, Session, Status};
 
 /// Runs a script that uses no files and gives its answers as one JSON object.
 pub fn run_to_json(name: &str, text: &str) -> serde_json::Value {

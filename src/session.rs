@@ -33,6 +33,19 @@ pub struct Outcome {
     pub answers: Vec<Answer>,
     /// The claims in order.
     pub claims: Vec<Held>,
+    /// The files that requests ask to be written; a session writes none itself.
+    pub saved: Vec<Saved>,
+}
+
+/// A module that `reduce ... save` asks to be written.
+#[derive(Debug, Clone)]
+pub struct Saved {
+    /// Where to.
+    pub path: PathBuf,
+    /// Its text.
+    pub text: String,
+    /// Where the request names it.
+    pub span: Span,
 }
 
 /// How a script ended.
@@ -165,6 +178,7 @@ impl<'f> Session<'f> {
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
         let main_span = main_span(&outcome.sources);
         let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+        let is_whole = errors.iter().all(|found| !is_of_module(found));
         let has_form = errors.iter().all(|found| !found.is_error());
         outcome.diagnostics.extend(errors);
         let (model, errors) = declarations::gather(scripts);
@@ -172,7 +186,7 @@ impl<'f> Session<'f> {
         outcome.diagnostics.extend(
             errors
                 .iter()
-                .filter(|error| !is_echo(error, &unreadable))
+                .filter(|error| !is_echo(error, &unreadable, is_whole))
                 .map(ModelError::diagnostic),
         );
         let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -246,11 +260,19 @@ fn unreadable_names(
         .collect()
 }
 
-fn is_echo(error: &ModelError, unreadable: &[String]) -> bool {
+/// Whether a module or file is missing, whose names then are too.
+fn is_of_module(found: &Diagnostic) -> bool {
+    matches!(
+        found.code,
+        "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
+    )
+}
+
+fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
     match error {
         ModelError::UnknownName { name, .. }
         | ModelError::UnknownEquation { name, .. }
-        | ModelError::UnknownPhenomenon { name, .. } => unreadable.contains(name),
+        | ModelError::UnknownPhenomenon { name, .. } => !is_whole || unreadable.contains(name),
         _ => false,
     }
 }

@@ -1,5 +1,6 @@
 //! The tests of the whole, in one binary; the folders say what they prove.
 
+mod answers;
 mod harness;
 mod language;
 mod polyhedra;

@@ -34,10 +34,15 @@ fn phenomena(model: &Model) -> Vec<Option<usize>> {
 /// The faults of values and ranges alone, for a model that has other faults: a script with
 /// five mistakes tells of five.
 pub fn value_errors(model: &Model) -> Vec<ModelError> {
-    let found = phenomena(model).into_iter().flat_map(|idx| settings::build(model, idx).1);
+    let found = phenomena(model)
+        .into_iter()
+        .flat_map(|idx| settings::build(model, idx).1);
     let mut errors: Vec<ModelError> = Vec::new();
     for error in found.filter(ModelError::is_of_value) {
-        if errors.iter().all(|known| known.diagnostic() != error.diagnostic()) {
+        if errors
+            .iter()
+            .all(|known| known.diagnostic() != error.diagnostic())
+        {
             errors.push(error);
         }
     }

@@ -3,10 +3,11 @@
 use crate::algebra::monomial::{Monomial, SymbolId};
 use crate::analysis::sizes::{self, order_of_magnitude};
 use crate::analysis::{Case, Factors};
+use crate::model::errors::ModelError;
 use crate::model::names;
 use crate::model::settings::Variable;
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator};
 use crate::units::Range;
@@ -54,6 +55,14 @@ impl Names for CaseNames<'_> {
             Variable::Known(value) => Ok(value.clone()),
             Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.case
+            .setting
+            .group_formulas
+            .get(id.0 as usize)?
+            .as_ref()
     }
 
     fn process(&self, equation: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
@@ -114,6 +123,11 @@ pub fn quotient(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<Quotient, Fau
             };
             for (operator, factor) in factors {
                 let next = quotient(factor, names)?;
+                let is_zero = next.above.iter().all(|size| size.number.is_zero());
+                if *operator == Operator::Over && is_zero {
+                    let span = factor.span;
+                    return Err(Fault::Error(ModelError::DividesByZero { span }));
+                }
                 let (above, below) = match operator {
                     Operator::Times => (next.above, next.below),
                     Operator::Over => (next.below, next.above),
@@ -164,8 +178,8 @@ fn resolved(written: &Monomial, names: &CaseNames<'_>, span: Span) -> Result<Mon
     let size = setting
         .quantities
         .size(written.clone())
-        .map_err(|_| Fault::Error(crate::model::errors::ModelError::TooLarge { span }))?;
-    let is_zero = size.resolved.number.is_zero()
+        .map_err(|_| Fault::Error(ModelError::TooLarge { span }))?;
+    let is_zero = size.resolved.number.is_zero() && !size.resolved.is_number()
         || size
             .resolved
             .powers()
@@ -196,7 +210,7 @@ fn products(left: &[Monomial], right: &[Monomial], span: Span) -> Result<Vec<Mon
         for b in right {
             let product = a
                 .times(b)
-                .map_err(|_| Fault::Error(crate::model::errors::ModelError::TooLarge { span }))?;
+                .map_err(|_| Fault::Error(ModelError::TooLarge { span }))?;
             if !all.contains(&product) {
                 all.push(product);
             }
@@ -214,14 +228,12 @@ pub fn value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), F
     match quotient(expr, names) {
         Ok(found) => match (found.above.as_slice(), found.below.as_slice()) {
             ([], _) => Ok((Range::exact(0.0), false)),
-            (_, []) => Err(Fault::Error(
-                crate::model::errors::ModelError::DividesByZero { span: expr.span },
-            )),
+            (_, []) => Err(Fault::Error(ModelError::DividesByZero { span: expr.span })),
             // Alone, a monomial keeps its sign.
             ([above], [below]) => {
                 let single = above
                     .over(below)
-                    .map_err(|_| crate::model::errors::ModelError::TooLarge { span: expr.span })?;
+                    .map_err(|_| ModelError::TooLarge { span: expr.span })?;
                 let range = setting.monomial_range(&single).map_err(Fault::Open)?;
                 Ok((range, false))
             }

@@ -160,7 +160,7 @@ fn value_dimension(
                 Some(_) | None => dimension(nominal, model, phenomenon, place, errors),
             };
             spread_dimension(model, spread, found, phenomenon, place, errors);
-            found
+            whole_value(found, spread)
         }
     }
 }
@@ -273,12 +273,7 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
         for (_, decl) in &info.entries {
             if !std::ptr::eq(decl, defining) {
                 let found = value_dimension(model, decl, info.local_to, errors);
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
@@ -291,22 +286,14 @@ fn other_entries(model: &Model, errors: &mut Vec<ModelError>) {
             }
             let found = value_dimension(model, decl, Some(idx), errors);
             if let Some(expected) = effective_dimension(info.dimension, defining) {
-                alike(
-                    expected,
-                    whole_value(found, decl),
-                    Alike::Value(info.name.clone()),
-                    errors,
-                );
+                alike(expected, found, Alike::Value(info.name.clone()), errors);
             }
         }
     }
 }
 
 /// A range such as `5 .. 20 m/s` has the dimension of its end.
-fn whole_value(found: Dim, decl: &ast::ValueDecl) -> Dim {
-    let ast::Value::Given { spread, .. } = &decl.value else {
-        return found;
-    };
+fn whole_value(found: Dim, spread: &ast::Spread) -> Dim {
     let end = match spread {
         ast::Spread::To(end) | ast::Spread::Margin(end) => end,
         ast::Spread::None | ast::Spread::Within(_) => return found,
@@ -569,18 +556,19 @@ fn groups(model: &Model, errors: &mut Vec<ModelError>) {
             });
         }
     }
-    let uses: Vec<Vec<usize>> = model
-        .groups
-        .iter()
-        .map(|info| groups_in(&info.value, model))
-        .collect();
-    if let Err(ring) = order(&uses) {
+    if let Err(ring) = order(&group_uses(model)) {
         let name = |idx: &usize| &model.groups[*idx].name;
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
         });
     }
+}
+
+/// For each group, those that its formula names.
+pub fn group_uses(model: &Model) -> Vec<Vec<usize>> {
+    let formulas = model.groups.iter();
+    formulas.map(|info| groups_in(&info.value, model)).collect()
 }
 
 fn groups_in(expr: &ast::Expr, model: &Model) -> Vec<usize> {

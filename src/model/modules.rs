@@ -138,7 +138,11 @@ impl Loader<'_> {
     }
 
     fn file(&mut self, path: &ast::Text, folder: &Path) {
-        let wanted = folder.join(&path.text);
+        let folder = self
+            .files
+            .canonical(folder)
+            .unwrap_or_else(|_| folder.to_owned());
+        let wanted = plain(&folder.join(&path.text));
         let unreadable = |reason: String| ModelError::UnreadableFile {
             path: path.text.clone(),
             reason,
@@ -153,7 +157,7 @@ impl Loader<'_> {
             .canonical(&self.main.root)
             .unwrap_or_else(|_| self.main.root.clone());
         // A path that climbs out is refused before anything is looked for.
-        if !plain(&wanted).starts_with(plain(&self.main.root)) {
+        if !wanted.starts_with(&root) {
             self.fault(&outside());
             return;
         }

@@ -7,10 +7,10 @@ use num_rational::BigRational;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::quantities::{CoordinateId, Quantities, Quantity, Size, Variation};
-use crate::model::dimensions::{circular, literal_unit, order};
+use crate::model::dimensions::{circular, group_uses, literal_unit, order};
 use crate::model::errors::{ModelError, Product};
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{FieldInfo, Meaning, Model, declarations, names};
+use crate::model::{FieldInfo, GroupId, Meaning, Model, declarations, names};
 use crate::number::{Exponent, Number, rational_to_f64};
 use crate::syntax::ast;
 use crate::units::Range;
@@ -37,6 +37,8 @@ pub struct Setting {
     pub quantities: Quantities,
     /// The named groups, in order of declaration.
     pub groups: Vec<Group>,
+    /// The formula of each declared group in the user's own scales, where it has one.
+    pub group_formulas: Vec<Option<Monomial>>,
     /// Names of the scales and constants.
     pub names: Arc<Vec<String>>,
 }
@@ -168,6 +170,7 @@ pub fn build(model: &Model, phenomenon: Option<usize>) -> (Option<Setting>, Vec<
                 ..Quantities::default()
             },
             groups: Vec::new(),
+            group_formulas: vec![None; model.groups.len()],
             names: Arc::new(model.symbols.iter().map(|info| info.name.clone()).collect()),
         },
         errors: Vec::new(),
@@ -209,6 +212,10 @@ impl Names for Builder<'_> {
             Variable::Known(value) => Ok(value.clone()),
             Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
     }
 
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
@@ -541,20 +548,31 @@ impl Builder<'_> {
         variations
     }
 
+    /// Groups in an order in which each comes after those it names.
     fn groups(&mut self) {
-        for info in &self.model.groups {
-            let size = values::monomial(&info.value, self).and_then(|written| {
-                let span = info.value.span;
-                let size = self.setting.quantities.size(written);
-                size.map_err(|_| Fault::Error(ModelError::TooLarge { span }))
-            });
-            match size {
+        let Ok(order) = order(&group_uses(self.model)) else {
+            // A ring was reported by the check.
+            return;
+        };
+        for idx in order {
+            match values::monomial(&self.model.groups[idx].value, self) {
+                Ok(written) => self.setting.group_formulas[idx] = Some(written),
+                Err(fault) => self.errors.extend(fault.error(Product::Group)),
+            }
+        }
+        for (idx, info) in self.model.groups.iter().enumerate() {
+            let Some(written) = self.setting.group_formulas[idx].clone() else {
+                continue;
+            };
+            match self.setting.quantities.size(written) {
                 Ok(size) => self.setting.groups.push(Group {
                     name: info.name.text.clone(),
                     title: info.notes.title.as_ref().map(|title| title.text.clone()),
                     size,
                 }),
-                Err(fault) => self.errors.extend(fault.error(Product::Group)),
+                Err(_) => self.errors.push(ModelError::TooLarge {
+                    span: info.value.span,
+                }),
             }
         }
     }
@@ -637,7 +655,14 @@ impl<N: Names> Spreading<'_, N> {
                 span,
             }));
         }
-        let nominal = low.signum() * (low.abs().sqrt() * high.abs().sqrt());
+        // One root rounds less than two, unless the product leaves the range of numbers.
+        let product = low * high;
+        let mean = if product.is_normal() {
+            product.sqrt()
+        } else {
+            low.abs().sqrt() * high.abs().sqrt()
+        };
+        let nominal = low.signum() * mean;
         self.range(low, nominal, high)
     }
 

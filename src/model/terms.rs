@@ -7,16 +7,16 @@ use std::sync::Arc;
 use num_traits::ToPrimitive;
 
 use crate::algebra::calculus;
-use crate::algebra::monomial::Symbol;
+use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Base, Derivative, Factor, Product, Sized, Speller};
 use crate::algebra::quantities::{CoordinateId, FieldId, Size, Variation};
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Unavailable};
 use crate::model::names::{self, Call, Function};
-use crate::model::settings::Setting;
+use crate::model::settings::{Setting, Variable};
 use crate::model::spelling;
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::number::{Exponent, Number, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator, Sign};
@@ -273,14 +273,15 @@ impl Names for Maker<'_> {
         None
     }
 
-    fn symbol(
-        &self,
-        id: crate::algebra::monomial::SymbolId,
-    ) -> Result<Value, Vec<crate::algebra::monomial::SymbolId>> {
+    fn symbol(&self, id: SymbolId) -> Result<Value, Vec<SymbolId>> {
         match &self.setting.variables[id.idx()] {
-            crate::model::settings::Variable::Known(value) => Ok(value.clone()),
-            crate::model::settings::Variable::Open(open) => Err(open.clone()),
+            Variable::Known(value) => Ok(value.clone()),
+            Variable::Open(open) => Err(open.clone()),
         }
+    }
+
+    fn group(&self, id: GroupId) -> Option<&Monomial> {
+        self.setting.group_formulas.get(id.0 as usize)?.as_ref()
     }
 
     fn process(&self, _: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {

@@ -9,7 +9,7 @@ use crate::algebra::monomial::{self, Monomial, Symbol, SymbolId};
 use crate::model::dimensions::is_offset;
 use crate::model::errors::{ModelError, Product};
 use crate::model::names::{self, Call, Function};
-use crate::model::{Meaning, Model};
+use crate::model::{GroupId, Meaning, Model};
 use crate::number::{Exponent, Number, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Operator, Sign};
@@ -86,6 +86,8 @@ pub trait Names {
     /// # Errors
     /// The open names it rests on.
     fn symbol(&self, id: SymbolId) -> Result<Value, Vec<SymbolId>>;
+    /// The formula of a group in scales and constants; none where it has none.
+    fn group(&self, id: GroupId) -> Option<&Monomial>;
     /// The size of a process over the box, in SI units.
     ///
     /// # Errors
@@ -161,10 +163,33 @@ pub fn evaluate(expr: &ast::Expr, names: &impl Names) -> Result<Value, Fault> {
 fn evaluate_name(name: &str, span: Span, names: &impl Names) -> Result<Value, Fault> {
     match names.model().meaning(name, names.phenomenon()) {
         Some(Meaning::Symbol(id)) => names.symbol(id).map_err(Fault::Open),
-        Some(Meaning::Group(id)) => evaluate(&names.model().groups[id.0 as usize].value, names),
+        Some(Meaning::Group(id)) => {
+            let formula = names.group(id).ok_or(Fault::NotAProduct(span))?;
+            evaluate_monomial(formula, names, span)
+        }
         None if names::is_pi(name) => Ok(Value::exact(Number::pi())),
         Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
     }
+}
+
+/// The value of a monomial, symbol by symbol.
+fn evaluate_monomial(monomial: &Monomial, names: &impl Names, span: Span) -> Result<Value, Fault> {
+    let mut product = Value::exact(monomial.number.clone());
+    for (symbol, exponent) in monomial.powers() {
+        let value = match symbol {
+            Symbol::Declared(id) => names.symbol(*id).map_err(Fault::Open)?,
+            Symbol::Function(function) => match function.value {
+                Some(range) => Value::inexact(range),
+                None => return Err(Fault::Open(function.open.clone())),
+            },
+        };
+        let factor = power(&value, *exponent, span)?;
+        product = match (&product.exact, &factor.exact) {
+            (Some(a), Some(b)) => Value::exact(a.times(b).map_err(too_large(span))?),
+            _ => Value::inexact(ranged(product.range.times(&factor.range), span)?),
+        };
+    }
+    Ok(product)
 }
 
 fn evaluate_sum(
@@ -393,7 +418,7 @@ fn exact_exponent(expr: &ast::Expr, names: &impl Names) -> Result<Exponent, Faul
 fn monomial_name(name: &str, span: Span, names: &impl Names) -> Result<Monomial, Fault> {
     match names.model().meaning(name, names.phenomenon()) {
         Some(Meaning::Symbol(id)) => Ok(Monomial::symbol(Symbol::Declared(id))),
-        Some(Meaning::Group(id)) => monomial(&names.model().groups[id.0 as usize].value, names),
+        Some(Meaning::Group(id)) => names.group(id).cloned().ok_or(Fault::NotAProduct(span)),
         None if names::is_pi(name) => Ok(Monomial::number(Number::pi())),
         Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
     }

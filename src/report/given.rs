@@ -5,8 +5,8 @@
 use std::collections::BTreeSet;
 
 use crate::audit::AuditRow;
-use crate::report::layout;
-use crate::report::text;
+use crate::diagnostic::Severity;
+use crate::report::{layout, text, words};
 use crate::session::Outcome;
 
 /// The values of one phenomenon, or those common to all.
@@ -26,7 +26,10 @@ pub fn values(rows: &[AuditRow]) -> Vec<Given<'_>> {
     let mut given: Vec<Given<'_>> = Vec::new();
     for row in shown {
         let phenomenon = row.phenomenon.as_deref();
-        match given.iter_mut().find(|found| found.phenomenon == phenomenon) {
+        match given
+            .iter_mut()
+            .find(|found| found.phenomenon == phenomenon)
+        {
             Some(found) => found.rows.push(row),
             None => given.push(Given {
                 phenomenon,
@@ -89,4 +92,16 @@ pub fn range(row: &AuditRow) -> Option<String> {
 /// The unit in which it is shown; `1` of a plain number.
 pub fn unit(row: &AuditRow) -> String {
     row.shown_value().1
+}
+
+/// What is worth saying about the script and stands nowhere else in a report.
+pub fn notes(outcome: &Outcome) -> Vec<&str> {
+    let mut messages: Vec<&str> = Vec::new();
+    for found in &outcome.diagnostics {
+        let is_new = !messages.contains(&found.message.as_str());
+        if found.severity == Severity::Note && !words::is_in_report(found.code) && is_new {
+            messages.push(&found.message);
+        }
+    }
+    messages
 }

@@ -4,6 +4,7 @@
 
 pub mod given;
 pub mod json;
+pub mod junit;
 pub mod latex;
 pub mod layout;
 pub mod markdown;

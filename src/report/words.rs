@@ -1,7 +1,9 @@
 //! The sentences that all report forms share.
 
 use crate::analysis::claims::{Held, Measured};
-use crate::analysis::reduce::{Inequality, Kind, Lone, LostDerivative, ReducedEquation, ReducedTerm};
+use crate::analysis::reduce::{
+    Inequality, Kind, Lone, LostDerivative, ReducedEquation, ReducedTerm,
+};
 use crate::analysis::show::Shown;
 use crate::analysis::{Answer, Body, Exponents, Factors};
 use crate::diagnostic::Severity;

@@ -141,7 +141,6 @@ pub struct ValueDecl {
 
 /// What a scale or constant is set to.
 #[derive(Debug, Clone)]
-#[expect(clippy::large_enum_variant, reason = "there is one a statement")]
 pub enum Value {
     /// `= expression` with an optional range.
     Given {
@@ -495,7 +494,6 @@ pub struct FindCondition {
 
 /// One place behind `limit ... with`.
 #[derive(Debug, Clone)]
-#[expect(clippy::large_enum_variant, reason = "there is one a statement")]
 pub enum LimitPlace {
     /// `others ~ 1`, with its place in the text.
     Others(Span),
@@ -516,7 +514,6 @@ pub struct Axis {
 
 /// What a claim says.
 #[derive(Debug, Clone)]
-#[expect(clippy::large_enum_variant, reason = "there is one a statement")]
 pub enum Claim {
     /// `leading EQ = P, Q`, `kept ...`, `dropped ...`.
     Verdict {

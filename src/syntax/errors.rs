@@ -4,7 +4,7 @@ use crate::diagnostic::Diagnostic;
 use crate::limits;
 use crate::source::Span;
 use crate::syntax::forms::form;
-use crate::syntax::token::{Kind, Kinds, RESERVED, SIGNS};
+use crate::syntax::token::{Kind, Kinds, RESERVED, SIGNS, is_reserved};
 
 /// A fault in the form of a script.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -240,7 +240,16 @@ impl SyntaxError {
                 mend,
                 ..
             } => {
-                let message = format!("expected {}, found {}", list(*expected), quoted(found));
+                let kind = if is_reserved(found) {
+                    "the reserved word "
+                } else {
+                    ""
+                };
+                let message = format!(
+                    "expected {}, found {kind}{}",
+                    list(*expected),
+                    quoted(found)
+                );
                 mended(Diagnostic::error("unexpected-word", at, message), mend)
             }
             SyntaxError::Unfinished {

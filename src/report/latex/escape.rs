@@ -203,7 +203,10 @@ mod tests {
     #[test]
     fn letters_of_other_alphabets_are_composed_or_numbered() {
         assert_eq!(text("Éø"), "\\'{E}\\o{}");
-        assert_eq!(text("ρ₀ m²"), "\\ensuremath{\\rho }\\ensuremath{_{0}} m\\ensuremath{^{2}}");
+        assert_eq!(
+            text("ρ₀ m²"),
+            "\\ensuremath{\\rho }\\ensuremath{_{0}} m\\ensuremath{^{2}}"
+        );
         assert_eq!(text("海"), "{[}U+6D77{]}");
     }
 }

@@ -32,6 +32,10 @@ pub(super) fn given(outcome: &Outcome, out: &mut String) {
     }
     letters(outcome, out);
     groups(outcome, out);
+    for note in given::notes(outcome) {
+        let note = text(&note.replace('`', ""));
+        out.push_str(&format!("\\textbf{{Note:}} {note}.\n\n"));
+    }
 }
 
 fn value_row(row: &AuditRow) -> Vec<String> {

@@ -264,7 +264,10 @@ impl Setter {
             ExprKind::Name(text) => name(text),
             ExprKind::Process { equation, process } => {
                 let text = format!("{}.{}", equation.text, process.text);
-                Math::new(format!("\\text{{{}}}", escape::text(&text)), text.len() as f64)
+                Math::new(
+                    format!("\\text{{{}}}", escape::text(&text)),
+                    text.len() as f64,
+                )
             }
             ExprKind::Sum(terms) => self.sum(terms),
             ExprKind::Product(factors) => self.product(factors),
@@ -385,14 +388,26 @@ impl Setter {
         }
         if self.style == Style::Inline {
             let is_single = below.len() == 1;
-            let above = if above.is_empty() { one() } else { self.times(above) };
+            let above = if above.is_empty() {
+                one()
+            } else {
+                self.times(above)
+            };
             let below = self.times(below);
-            let below = if is_single { below } else { self.brackets(below) };
+            let below = if is_single {
+                below
+            } else {
+                self.brackets(below)
+            };
             return above.then(Math::new("/", 1.0)).then(below);
         }
         let (beside, above): (Vec<Math>, Vec<Math>) =
             above.into_iter().partition(|factor| factor.is_tall);
-        let above = if above.is_empty() { one() } else { self.times(above) };
+        let above = if above.is_empty() {
+            one()
+        } else {
+            self.times(above)
+        };
         let fraction = fraction(above, self.times(below));
         if beside.is_empty() {
             return fraction;
@@ -523,7 +538,11 @@ impl Setter {
                 _ => sign.then(self.brackets(self.expr(unbracketed(argument)))),
             },
             [left, right] if function == "cross" || function == "dot" => {
-                let between = if function == "cross" { "\\times " } else { "\\cdot " };
+                let between = if function == "cross" {
+                    "\\times "
+                } else {
+                    "\\cdot "
+                };
                 let (left, right) = (self.factor(left), self.factor(right));
                 self.brackets(left.then(Math::new(between, OPERATOR)).then(right))
             }
@@ -541,7 +560,9 @@ impl Setter {
             by.extend(more);
             operand = inner;
         }
-        let total: u32 = by.iter().fold(0, |sum, (_, order)| sum.saturating_add(*order));
+        let total: u32 = by
+            .iter()
+            .fold(0, |sum, (_, order)| sum.saturating_add(*order));
         let below = by
             .iter()
             .map(|(coordinate, order)| {
@@ -553,7 +574,11 @@ impl Setter {
             })
             .reduce(|below, next| below.space().then(next))
             .unwrap_or(Math::new("", 0.0));
-        self.rate(ordered(Math::new("\\partial ", LETTER), total), operand, below)
+        self.rate(
+            ordered(Math::new("\\partial ", LETTER), total),
+            operand,
+            below,
+        )
     }
 
     fn material(self, operand: &Expr, order: u32) -> Math {
@@ -569,10 +594,7 @@ impl Setter {
             _ => self.brackets(self.expr(unbracketed(operand))),
         };
         match self.style {
-            Style::Inline => sign
-                .then(inside)
-                .then(Math::new("/", 1.0))
-                .then(below),
+            Style::Inline => sign.then(inside).then(Math::new("/", 1.0)).then(below),
             Style::Display if inside.is_tall => fraction(sign, below).then(inside),
             Style::Display => fraction(sign.then(inside), below),
         }
@@ -697,12 +719,21 @@ mod tests {
     fn derivatives_stand_over_one_bar() {
         for (text, wanted) in [
             ("∂u/∂t", "\\frac{\\partial u}{\\partial t}"),
-            ("d_x(d_z(u))", "\\frac{\\partial ^{2}u}{\\partial x\\,\\partial z}"),
+            (
+                "d_x(d_z(u))",
+                "\\frac{\\partial ^{2}u}{\\partial x\\,\\partial z}",
+            ),
             ("d_z^2(u)", "\\frac{\\partial ^{2}u}{\\partial z^{2}}"),
             ("∂(rho*u)/∂x", "\\frac{\\partial (\\rho \\,u)}{\\partial x}"),
-            ("∂p/∂x/rho", "\\frac{1}{\\rho }\\,\\frac{\\partial p}{\\partial x}"),
+            (
+                "∂p/∂x/rho",
+                "\\frac{1}{\\rho }\\,\\frac{\\partial p}{\\partial x}",
+            ),
             ("D_t(u)", "\\frac{\\mathrm{D}u}{\\mathrm{D}t}"),
-            ("(∂u/∂z)^2", "\\Bigl(\\frac{\\partial u}{\\partial z}\\Bigr)^{2}"),
+            (
+                "(∂u/∂z)^2",
+                "\\Bigl(\\frac{\\partial u}{\\partial z}\\Bigr)^{2}",
+            ),
         ] {
             assert_eq!(set(text, Style::Display), wanted, "{text}");
         }
@@ -722,6 +753,9 @@ mod tests {
         ] {
             assert_eq!(set(text, Style::Display), wanted, "{text}");
         }
-        assert_eq!(set("dP/(rho*L)", Style::Inline), "\\mathit{dP}/(\\rho \\,\\allowbreak L)");
+        assert_eq!(
+            set("dP/(rho*L)", Style::Inline),
+            "\\mathit{dP}/(\\rho \\,\\allowbreak L)"
+        );
     }
 }

@@ -72,7 +72,10 @@ fn write_report(outcome: &Outcome, out: &mut String) {
         write_answer(answer, out);
     }
     claims::claims(&outcome.claims, out);
-    out.push_str(&format!("\\bigskip\\noindent\\emph{{{}}}\n\n", text(CAUTION)));
+    out.push_str(&format!(
+        "\\bigskip\\noindent\\emph{{{}}}\n\n",
+        text(CAUTION)
+    ));
 }
 
 fn write_answer(answer: &Answer, out: &mut String) {
@@ -112,5 +115,8 @@ fn equation_head(name: &str, title: Option<&String>) -> String {
     let title = title
         .map(|title| format!(": {}", text(title)))
         .unwrap_or_default();
-    format!("\\subsubsection*{{\\texttt{{{}}}{title}}}\n\n", breakable(name))
+    format!(
+        "\\subsubsection*{{\\texttt{{{}}}{title}}}\n\n",
+        breakable(name)
+    )
 }

@@ -4,7 +4,7 @@
 use crate::audit::AuditRow;
 use crate::report::given;
 use crate::report::layout;
-use crate::report::markdown::table::{Align, code, table, text};
+use crate::report::markdown::table::{Align, backticked, code, table, text};
 use crate::session::Outcome;
 
 /// Writes the audit.
@@ -32,6 +32,9 @@ pub(super) fn given(outcome: &Outcome, out: &mut String) {
     }
     letters(outcome, out);
     groups(outcome, out);
+    for note in given::notes(outcome) {
+        out.push_str(&format!("**Note:** {}.\n\n", backticked(note)));
+    }
 }
 
 fn value_row(row: &AuditRow) -> Vec<String> {

@@ -23,7 +23,10 @@ pub fn report(outcome: &Outcome) -> String {
     }
     given::given(outcome, &mut out);
     if outcome.answers.iter().any(words::has_verdicts) {
-        out.push_str(&format!("## How to read the answers\n\n{}\n\n", words::LEGEND));
+        out.push_str(&format!(
+            "## How to read the answers\n\n{}\n\n",
+            words::LEGEND
+        ));
     }
     for answer in &outcome.answers {
         write_answer(answer, &mut out);
@@ -53,7 +56,11 @@ fn write_answer(answer: &Answer, out: &mut String) {
 
 fn heading(answer: &Answer) -> String {
     let heading = words::asked(answer);
-    format!("## {}{}\n\n", code(&heading.request), text(&heading.subject))
+    format!(
+        "## {}{}\n\n",
+        code(&heading.request),
+        text(&heading.subject)
+    )
 }
 
 /// Names set as code, in a row.

@@ -4,7 +4,7 @@ use crate::analysis::reduce::{ReducedEquation, ReducedTerm, Reduction};
 use crate::report::latex::equation;
 use crate::report::layout::percent;
 use crate::report::markdown::equation_head;
-use crate::report::markdown::table::{Align, code, table, text};
+use crate::report::markdown::table::{Align, backticked, code, table, text};
 use crate::report::words;
 
 /// Writes a reduced system.
@@ -43,11 +43,7 @@ fn term_row(term: &ReducedTerm) -> Vec<String> {
     let condition = words::condition_with_values(term);
     let verdict = match condition.as_str() {
         "" => term.verdict.word().to_owned(),
-        condition => format!(
-            "{}: may go where {}",
-            term.verdict.word(),
-            text(condition)
-        ),
+        condition => format!("{}: may go where {}", term.verdict.word(), text(condition)),
     };
     vec![
         code(&term.text),
@@ -74,19 +70,11 @@ fn remarks(equation: &ReducedEquation) -> String {
     }
     for warning in words::warnings(equation) {
         let word = words::capital(warning.severity.word());
-        out.push_str(&format!("- **{word}:** {}.\n", backticked(&warning.message)));
+        out.push_str(&format!(
+            "- **{word}:** {}.\n",
+            backticked(&warning.message)
+        ));
     }
     out.push('\n');
-    out
-}
-
-/// A message of the program, which sets names in backticks itself.
-fn backticked(message: &str) -> String {
-    let mut parts = message.split('`');
-    let mut out = text(parts.next().unwrap_or(""));
-    while let (Some(name), rest) = (parts.next(), parts.next()) {
-        out.push_str(&code(name));
-        out.push_str(&text(rest.unwrap_or("")));
-    }
     out
 }

@@ -33,10 +33,13 @@ pub(super) fn table(head: &[(&str, Align)], rows: &[Vec<String>]) -> String {
         line(cells.collect())
     };
     let titles: Vec<String> = head.iter().map(|(title, _)| (*title).to_owned()).collect();
-    let rules = head.iter().zip(&columns).map(|((_, align), columns)| match align {
-        Align::Left => "-".repeat(*columns),
-        Align::Right => format!("{}:", "-".repeat(columns - 1)),
-    });
+    let rules = head
+        .iter()
+        .zip(&columns)
+        .map(|((_, align), columns)| match align {
+            Align::Left => "-".repeat(*columns),
+            Align::Right => format!("{}:", "-".repeat(columns - 1)),
+        });
     let mut out = filled(&titles);
     out.push_str(&line(rules.collect()));
     for row in rows {
@@ -82,6 +85,17 @@ pub(super) fn code(text: &str) -> String {
         true => format!("`` {plain} ``"),
         false => format!("`{plain}`"),
     }
+}
+
+/// A message of the program, which sets names in backticks itself.
+pub(super) fn backticked(message: &str) -> String {
+    let mut parts = message.split('`');
+    let mut out = text(parts.next().unwrap_or(""));
+    while let (Some(name), rest) = (parts.next(), parts.next()) {
+        out.push_str(&code(name));
+        out.push_str(&text(rest.unwrap_or("")));
+    }
+    out
 }
 
 /// Lines set as they are.

@@ -13,8 +13,8 @@ use anstyle::{AnsiColor, Effects, Style};
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
-use crate::report::{CAUTION, given, words};
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
+use crate::report::{CAUTION, given, words};
 use crate::session::Outcome;
 
 /// Writes the whole report.
@@ -24,6 +24,7 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
     if !outcome.answers.is_empty() || !outcome.claims.is_empty() {
         audit(&outcome.symbols, &pen, &mut out);
     }
+    notes(outcome, &mut out);
     write_answers(outcome, &pen, &mut out);
     if !out.is_empty() {
         out.push('\n');
@@ -102,6 +103,18 @@ fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
         }
         out.push('\n');
     }
+}
+
+/// Notes that no answer has a place for: what was overridden, what vanishes.
+fn notes(outcome: &Outcome, out: &mut String) {
+    let messages = given::notes(outcome);
+    if out.is_empty() || messages.is_empty() {
+        return;
+    }
+    for message in messages {
+        out.push_str(&wrapped("note  ", message));
+    }
+    out.push('\n');
 }
 
 fn audit_words(row: &AuditRow) -> String {
