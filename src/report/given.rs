@@ -91,7 +91,7 @@ pub fn range(row: &AuditRow) -> Option<String> {
 
 /// The unit in which it is shown; `1` of a plain number.
 pub fn unit(row: &AuditRow) -> String {
-    row.shown_value().1
+    layout::named_unit(&row.shown_value().1).to_owned()
 }
 
 /// What is worth saying about the script and stands nowhere else in a report.

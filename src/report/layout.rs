@@ -21,9 +21,11 @@ pub fn significant(value: f64, digits: usize) -> String {
     }
 }
 
-/// Whether a number reads well without a power of ten.
+/// Whether a number reads well without a power of ten: one that it would show more exactly
+/// than it is known does not.
 fn is_plain(value: f64) -> bool {
-    value == 0.0 || (1e-3..1e6).contains(&value.abs())
+    let amount = value.abs();
+    value == 0.0 || (1e-3..1e4).contains(&amount) || (amount < 1e6 && amount % 1e3 == 0.0)
 }
 
 fn scientific(value: f64, digits: usize) -> String {
@@ -187,10 +189,15 @@ const NAMED: [(&str, &str); 4] = [
     ("kg.m^2/s^3", "W"),
 ];
 
+/// A unit by the name of its own, where it has one: `Pa`.
+pub fn named_unit(unit_text: &str) -> &str {
+    let named = NAMED.iter().find(|(long, _)| *long == unit_text);
+    named.map_or(unit_text, |(_, short)| short)
+}
+
 /// A value with its unit.
 pub fn quantity(value: &Range, unit_text: &str) -> String {
-    let named = NAMED.iter().find(|(long, _)| *long == unit_text);
-    let text = named.map_or_else(|| unit(unit_text), |(_, short)| (*short).to_owned());
+    let text = unit(named_unit(unit_text));
     format!("{} {text}", range(value)).trim_end().to_owned()
 }
 

@@ -5,6 +5,7 @@ use crate::analysis::reduce::{
     Inequality, Kind, Lone, LostDerivative, ReducedEquation, ReducedTerm,
 };
 use crate::analysis::show::Shown;
+use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body, Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
@@ -396,21 +397,47 @@ pub fn measured(held: &Held) -> String {
             )
         }
         Measured::Processes { word, found, share } => {
-            let listed = if found.is_empty() {
-                "nothing".to_owned()
-            } else {
-                found.join(", ")
+            let listed = match found.as_slice() {
+                [] => "nothing".to_owned(),
+                [one] => one.clone(),
+                [first @ .., last] => format!("{} and {last}", first.join(", ")),
             };
+            let is_one = found.len() <= 1;
+            let verb = |one: &'static str, several| if is_one { one } else { several };
             match (word, share) {
-                (ClaimWord::Leading, _) => format!("{listed} leads"),
-                (ClaimWord::Kept, _) => format!("{listed} is kept"),
-                (ClaimWord::Dropped, Some(share)) => {
-                    format!("{listed} stays, at up to {}", percent(*share))
-                }
+                (ClaimWord::Leading, _) => format!("{listed} {}", verb("leads", "lead")),
+                (ClaimWord::Kept, _) => format!("{listed} {} kept", verb("is", "are")),
+                (ClaimWord::Dropped, Some(share)) => format!(
+                    "{listed} {}, at up to {}",
+                    verb("stays", "stay"),
+                    percent(*share)
+                ),
                 (ClaimWord::Dropped, None) => "all of it drops".to_owned(),
             }
         }
     }
+}
+
+/// The conditions under which terms may go, each with the terms that it holds for.
+pub fn conditions(equation: &ReducedEquation) -> Vec<Vec<&ReducedTerm>> {
+    let mut found: Vec<Vec<&ReducedTerm>> = Vec::new();
+    let depends = |term: &&ReducedTerm| term.verdict == Verdict::Depends;
+    for term in equation.kept.iter().filter(depends) {
+        let text = condition_with_values(term);
+        let like = |terms: &&mut Vec<&ReducedTerm>| condition_with_values(terms[0]) == text;
+        match found.iter_mut().find(like) {
+            Some(terms) => terms.push(term),
+            None => found.push(vec![term]),
+        }
+    }
+    found
+}
+
+/// The dropped terms, the one with the highest share first.
+pub fn dropped(equation: &ReducedEquation) -> Vec<&ReducedTerm> {
+    let mut terms: Vec<&ReducedTerm> = equation.dropped.iter().collect();
+    terms.sort_by(|a, b| b.share.high.total_cmp(&a.share.high));
+    terms
 }
 
 /// Whether the reports say in their own place what a diagnostic of this code says.

@@ -26,6 +26,16 @@ pub fn breakable(name: &str) -> String {
         .replace('.', ".\\allowbreak{}")
 }
 
+/// A message of the program, which sets names in backticks.
+pub fn backticked(message: &str) -> String {
+    let parts = message.split('`').enumerate();
+    let parts = parts.map(|(idx, part)| match idx % 2 {
+        0 => text(part),
+        _ => format!("\\texttt{{{}}}", breakable(part)),
+    });
+    parts.collect()
+}
+
 fn character(c: char) -> String {
     let plain = match c {
         '\\' => "\\textbackslash{}",

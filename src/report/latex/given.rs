@@ -3,7 +3,7 @@
 
 use crate::audit::AuditRow;
 use crate::report::given;
-use crate::report::latex::escape::text;
+use crate::report::latex::escape::{backticked, text};
 use crate::report::latex::math::{self, Style};
 use crate::report::latex::table::table;
 use crate::session::Outcome;
@@ -33,8 +33,7 @@ pub(super) fn given(outcome: &Outcome, out: &mut String) {
     letters(outcome, out);
     groups(outcome, out);
     for note in given::notes(outcome) {
-        let note = text(&note.replace('`', ""));
-        out.push_str(&format!("\\textbf{{Note:}} {note}.\n\n"));
+        out.push_str(&format!("\\textbf{{Note:}} {}.\n\n", backticked(note)));
     }
 }
 
@@ -91,9 +90,10 @@ fn letters(outcome: &Outcome, out: &mut String) {
     out.push_str("The other letters:\n\n");
     let head = [
         ("name", 0.1),
-        ("kind", 0.15),
-        ("size", 0.25),
-        ("what it is", 0.5),
+        ("kind", 0.13),
+        ("size", 0.17),
+        ("varies by", 0.2),
+        ("what it is", 0.4),
     ];
     let rows: Vec<Vec<String>> = coordinates
         .iter()
@@ -103,6 +103,7 @@ fn letters(outcome: &Outcome, out: &mut String) {
                 name(row),
                 row.kind.to_owned(),
                 row.formula.as_deref().map(formula_math).unwrap_or_default(),
+                text(row.varying.as_deref().unwrap_or("")),
                 text(row.title.as_deref().unwrap_or("")),
             ]
         })

@@ -4,8 +4,7 @@ use crate::analysis::rank::{RankedEquation, RankedTerm};
 use crate::report::latex::escape::{breakable, text};
 use crate::report::latex::table::table;
 use crate::report::latex::{equation_head, math, ruler};
-use crate::report::layout::percent;
-use crate::report::layout::range;
+use crate::report::layout::{self, percent};
 use crate::report::ruler::Ruler;
 use crate::report::words;
 use crate::units::Range;
@@ -27,7 +26,7 @@ pub(super) fn ranked(equation: &RankedEquation, out: &mut String) {
     let order = equation.largest_first();
     let terms: Vec<&RankedTerm> = order.iter().map(|idx| &equation.terms[*idx]).collect();
     out.push_str(&rulers(&terms));
-    out.push_str(&sizes(&terms));
+    out.push_str(&sizes(equation, &terms));
 }
 
 fn rulers(terms: &[&RankedTerm]) -> String {
@@ -56,20 +55,34 @@ fn rulers(terms: &[&RankedTerm]) -> String {
     table(&head, &rows)
 }
 
-fn sizes(terms: &[&RankedTerm]) -> String {
+fn sizes(equation: &RankedEquation, terms: &[&RankedTerm]) -> String {
+    let unit = match equation.unit.as_str() {
+        "1" | "" => String::new(),
+        unit => format!(", ${}$", math::unit(unit).text),
+    };
+    let size = format!("size{unit}");
     let head = [
-        ("term", 0.22),
-        ("scale", 0.22),
-        ("size", 0.36),
-        ("share over the ranges", 0.2),
+        ("term", 0.2),
+        ("scale", 0.2),
+        (size.as_str(), 0.14),
+        ("lowest", 0.14),
+        ("highest", 0.14),
+        ("share over the ranges", 0.18),
     ];
+    let number = |value: f64| math::numbers(&layout::number(value));
     let rows: Vec<Vec<String>> = terms
         .iter()
         .map(|term| {
+            let (low, high) = match term.size.is_exact() {
+                true => (String::new(), String::new()),
+                false => (number(term.size.low), number(term.size.high)),
+            };
             vec![
                 math::inline(&term.expr),
                 math::inline(&term.scale_expr),
-                math::numbers(&range(&term.size)),
+                number(term.size.nominal),
+                low,
+                high,
                 math::numbers(&words::share(&term.share)),
             ]
         })

@@ -1,7 +1,7 @@
 //! `reduce` in LaTeX.
 
 use crate::analysis::reduce::{Inequality, ReducedEquation, ReducedTerm, Reduction};
-use crate::report::latex::escape::{breakable, text};
+use crate::report::latex::escape::{backticked, breakable, text};
 use crate::report::latex::math::{self, Style};
 use crate::report::latex::table::table;
 use crate::report::latex::{equation, equation_head};
@@ -28,34 +28,25 @@ fn reduced(equation: &ReducedEquation, out: &mut String) {
     ));
     out.push_str(&equation::display(equation));
     let head = [
-        ("term", 0.18),
-        ("process", 0.18),
-        ("share", 0.1),
-        ("over the ranges", 0.17),
-        ("what becomes of it", 0.36),
+        ("term", 0.28),
+        ("process", 0.24),
+        ("share", 0.13),
+        ("over the ranges", 0.22),
+        ("verdict", 0.15),
     ];
-    let terms = equation.kept.iter().chain(&equation.dropped);
+    let terms = equation.kept.iter().chain(words::dropped(equation));
     let rows: Vec<Vec<String>> = terms.map(term_row).collect();
     out.push_str(&table(&head, &rows));
     remarks(equation, out);
 }
 
 fn term_row(term: &ReducedTerm) -> Vec<String> {
-    let conditions: Vec<String> = term.conditions.iter().map(inequality).collect();
-    let verdict = match conditions.is_empty() {
-        true => term.verdict.word().to_owned(),
-        false => format!(
-            "{}: may go where {}",
-            term.verdict.word(),
-            conditions.join(" or ")
-        ),
-    };
     vec![
         math::inline(&term.expr),
         breakable(term.process.as_deref().unwrap_or("")),
         math::numbers(&percent(term.share.nominal)),
         math::numbers(&words::share(&term.share)),
-        verdict,
+        term.verdict.word().to_owned(),
     ]
 }
 
@@ -77,7 +68,10 @@ fn inequality(condition: &Inequality) -> String {
 }
 
 fn remarks(equation: &ReducedEquation, out: &mut String) {
-    let mut items: Vec<String> = Vec::new();
+    let mut items: Vec<String> = words::conditions(equation)
+        .iter()
+        .map(|terms| depends(terms))
+        .collect();
     if let Some(first) = first_neglected(equation) {
         items.push(format!(
             "\\textbf{{Error:}} at most {} of the largest term, from {}, the first neglected \
@@ -95,17 +89,25 @@ fn remarks(equation: &ReducedEquation, out: &mut String) {
         let word = words::capital(warning.severity.word());
         items.push(format!(
             "\\textbf{{{word}:}} {}.",
-            text(&warning.message.replace('`', ""))
+            backticked(&warning.message)
         ));
     }
-    if items.is_empty() {
-        return;
-    }
-    out.push_str("\\begin{itemize}\n");
     for item in items {
-        out.push_str(&format!("\\item {item}\n"));
+        out.push_str(&format!("\\noindent {item}\n\n"));
     }
-    out.push_str("\\end{itemize}\n\n");
+}
+
+fn depends(terms: &[&ReducedTerm]) -> String {
+    let texts: Vec<String> = terms.iter().map(|term| math::inline(&term.expr)).collect();
+    let texts = texts.join(", ");
+    let conditions: Vec<String> = terms[0].conditions.iter().map(inequality).collect();
+    match conditions.is_empty() {
+        true => format!("\\textbf{{Depends:}} {texts}."),
+        false => format!(
+            "\\textbf{{Depends:}} {texts} may go where {}.",
+            conditions.join(" or ")
+        ),
+    }
 }
 
 fn first_neglected(equation: &ReducedEquation) -> Option<&ReducedTerm> {

@@ -7,7 +7,7 @@ const GAP: f64 = 0.02;
 /// A table; the widths are parts of the whole, the cells LaTeX.
 pub(super) fn table(head: &[(&str, f64)], rows: &[Vec<String>]) -> String {
     let whole: f64 = head.iter().map(|(_, width)| width).sum();
-    let room = 1.0 - GAP * (head.len() as f64 - 1.0);
+    let room = 0.997 - GAP * (head.len() as f64 - 1.0);
     let columns: Vec<String> = head
         .iter()
         .map(|(_, width)| format!("p{{{:.3}\\linewidth}}", room * width / whole))
@@ -16,6 +16,7 @@ pub(super) fn table(head: &[(&str, f64)], rows: &[Vec<String>]) -> String {
     let titles = line(&titles);
     let mut out = format!(
         "{{\\small\\setlength{{\\tabcolsep}}{{{:.3}\\linewidth}}\n\
+         \\renewcommand{{\\arraystretch}}{{1.2}}\n\
          \\begin{{longtable}}{{@{{}}{}@{{}}}}\n\\hline\n{titles}\\hline\n\\endhead\n",
         GAP / 2.0,
         columns.join("")

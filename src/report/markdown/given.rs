@@ -73,6 +73,7 @@ fn letters(outcome: &Outcome, out: &mut String) {
         ("name", Align::Left),
         ("kind", Align::Left),
         ("size", Align::Left),
+        ("varies by", Align::Left),
         ("what it is", Align::Left),
     ];
     let rows: Vec<Vec<String>> = coordinates
@@ -83,6 +84,7 @@ fn letters(outcome: &Outcome, out: &mut String) {
                 code(&row.name),
                 row.kind.to_owned(),
                 code(row.formula.as_deref().unwrap_or("")),
+                text(row.varying.as_deref().unwrap_or("")),
                 text(row.title.as_deref().unwrap_or("")),
             ]
         })

@@ -10,6 +10,8 @@ use crate::units::Range;
 
 /// Columns of the ruler.
 const RULER: usize = 50;
+/// Columns of a share.
+const SHARE: usize = 10;
 /// Columns of a term beside it.
 const LABEL: usize = 20;
 
@@ -64,7 +66,7 @@ fn rulers(equation: &RankedEquation, order: &[usize]) -> String {
     let labels = equation.terms.iter().map(|term| width(&term.text));
     let column = labels.max().unwrap_or(0).min(LABEL);
     let head = format!("{}  {}", " ".repeat(column), ruler.head());
-    let end = column + 2 + ruler.width() + 9;
+    let end = column + 2 + ruler.width() + SHARE;
     let share = right("share", end.saturating_sub(width(&head)));
     let mut out = format!("{head}{share}\n");
     for idx in order {
@@ -73,7 +75,7 @@ fn rulers(equation: &RankedEquation, order: &[usize]) -> String {
             "{}  {}{}  {}\n",
             padded(&cut(&term.text, column), column),
             ruler.line(&term.size),
-            right(&percent(term.share.nominal), 9),
+            right(&percent(term.share.nominal), SHARE),
             term.verdict.word()
         ));
     }

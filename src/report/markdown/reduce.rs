@@ -31,31 +31,37 @@ fn reduced(equation: &ReducedEquation, out: &mut String) {
         ("process", Align::Left),
         ("share", Align::Right),
         ("over the ranges", Align::Right),
-        ("what becomes of it", Align::Left),
+        ("verdict", Align::Left),
     ];
-    let terms = equation.kept.iter().chain(&equation.dropped);
+    let terms = equation.kept.iter().chain(words::dropped(equation));
     let rows: Vec<Vec<String>> = terms.map(term_row).collect();
     out.push_str(&table(&head, &rows));
     out.push_str(&remarks(equation));
 }
 
 fn term_row(term: &ReducedTerm) -> Vec<String> {
-    let condition = words::condition_with_values(term);
-    let verdict = match condition.as_str() {
-        "" => term.verdict.word().to_owned(),
-        condition => format!("{}: may go where {}", term.verdict.word(), text(condition)),
-    };
     vec![
         code(&term.text),
         text(term.process.as_deref().unwrap_or("")),
         percent(term.share.nominal),
         words::share(&term.share),
-        verdict,
+        term.verdict.word().to_owned(),
     ]
 }
 
 fn remarks(equation: &ReducedEquation) -> String {
     let mut out = String::new();
+    for terms in words::conditions(equation) {
+        let texts: Vec<String> = terms.iter().map(|term| code(&term.text)).collect();
+        let texts = texts.join(", ");
+        out.push_str(&match words::condition_with_values(terms[0]).as_str() {
+            "" => format!("- **Depends:** {texts}.\n"),
+            condition => format!(
+                "- **Depends:** {texts} may go where {}.\n",
+                text(&condition.replace("<=", "≤"))
+            ),
+        });
+    }
     if let Some(first) = &equation.first_neglected {
         out.push_str(&format!(
             "- **Error:** at most {} of the largest term, from {}, the first neglected term; {} in all.\n",

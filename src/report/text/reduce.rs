@@ -1,7 +1,6 @@
 //! `reduce` for a terminal.
 
-use crate::analysis::reduce::{ReducedEquation, ReducedTerm, Reduction};
-use crate::analysis::sizes::Verdict;
+use crate::analysis::reduce::{ReducedEquation, Reduction};
 use crate::report::layout::{padded, percent, wrapped};
 use crate::report::text::{Pen, equation_head};
 use crate::report::words;
@@ -52,20 +51,9 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
 }
 
 fn depends(equation: &ReducedEquation, out: &mut String) {
-    let mut conditions: Vec<(String, Vec<&str>)> = Vec::new();
-    for term in equation
-        .kept
-        .iter()
-        .filter(|term| term.verdict == Verdict::Depends)
-    {
-        let condition = words::condition_with_values(term);
-        match conditions.iter_mut().find(|(found, _)| *found == condition) {
-            Some((_, texts)) => texts.push(&term.text),
-            None => conditions.push((condition, vec![&term.text])),
-        }
-    }
-    for (condition, texts) in conditions {
-        let text = match condition.as_str() {
+    for terms in words::conditions(equation) {
+        let texts: Vec<&str> = terms.iter().map(|term| term.text.as_str()).collect();
+        let text = match words::condition_with_values(terms[0]).as_str() {
             "" => texts.join(", "),
             condition => format!("{}: may go where {condition}", texts.join(", ")),
         };
@@ -74,8 +62,7 @@ fn depends(equation: &ReducedEquation, out: &mut String) {
 }
 
 fn dropped(equation: &ReducedEquation, out: &mut String) {
-    let mut terms: Vec<&ReducedTerm> = equation.dropped.iter().collect();
-    terms.sort_by(|a, b| b.share.high.total_cmp(&a.share.high));
+    let terms = words::dropped(equation);
     let texts: Vec<String> = terms
         .iter()
         .map(|term| format!("{} {}", term.text, percent(term.share.high)))
