@@ -34,6 +34,7 @@ pub mod model;
 pub mod number;
 pub mod polyhedra;
 pub mod report;
+mod saving;
 pub mod session;
 pub mod source;
 pub mod syntax;

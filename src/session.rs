@@ -3,6 +3,8 @@
 
 use std::path::{Path, PathBuf};
 
+use num_rational::BigRational;
+
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
@@ -15,6 +17,8 @@ use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
+use crate::report::module::Origin;
+use crate::saving::{self, Folders};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
 
@@ -145,6 +149,12 @@ impl<'f> Session<'f> {
                 model: &checked.model,
                 cases: &checked.cases,
                 outcome: &mut outcome,
+                folders: Folders {
+                    files: self.files,
+                    folder: &self.folder,
+                    root: self.root.as_ref().unwrap_or(&self.folder),
+                    script: path,
+                },
             }
             .all();
         }
@@ -283,6 +293,7 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    folders: Folders<'a>,
 }
 
 impl Answering<'_> {
@@ -359,17 +370,21 @@ impl Answering<'_> {
                 }
             }
             RequestKind::Reduce {
-                equations, within, ..
+                equations,
+                within,
+                save,
             } => {
                 if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
                     let tolerance = within
                         .as_ref()
                         .and_then(|within| declarations::tolerance_value(within).ok())
-                        .map_or(case.setting.tolerance(), |info| {
-                            rational_to_f64(&info.value)
-                        });
-                    let reduction = reduce::reduce(self.model, case, &wanted, tolerance);
+                        .map_or(case.setting.tolerance.clone(), |info| info.value);
+                    let share = rational_to_f64(&tolerance);
+                    let reduction = reduce::reduce(self.model, case, &wanted, share);
                     self.warn(case, &reduction);
+                    if let Some(save) = save {
+                        self.save(case, &reduction, &tolerance, text, save);
+                    }
                     self.outcome
                         .answers
                         .push(answer("reduce", left_out, Body::Reduce(reduction)));
@@ -396,6 +411,30 @@ impl Answering<'_> {
             | RequestKind::Sweep(_)
             | RequestKind::Regimes(..)
             | RequestKind::Compare { .. } => {}
+        }
+    }
+
+    /// Makes the module of a reduced system, for whoever runs the session to write.
+    fn save(
+        &mut self,
+        case: &Case,
+        reduction: &reduce::Reduction,
+        tolerance: &BigRational,
+        request: &str,
+        save: &ast::Text,
+    ) {
+        let origin = Origin {
+            model: self.model,
+            case,
+            reduction,
+            tolerance,
+            request,
+            script: &self.outcome.script,
+            sources: &self.outcome.sources,
+        };
+        match saving::saved(&origin, save, &self.folders, &self.outcome.saved) {
+            Ok(saved) => self.outcome.saved.push(saved),
+            Err(fault) => self.outcome.diagnostics.push(fault),
         }
     }
 

@@ -216,7 +216,7 @@ impl Loader<'_> {
 }
 
 /// A path with its `.` and `..` worked out by their spelling.
-fn plain(path: &Path) -> PathBuf {
+pub(crate) fn plain(path: &Path) -> PathBuf {
     let mut plain = PathBuf::new();
     for part in path.components() {
         match part {

@@ -38,11 +38,13 @@ pub fn check(model: &Model) -> Vec<ModelError> {
             }
         }
         let mut found: Vec<Vec<ModelError>> = Vec::new();
-        for target in targets(model, *own, request) {
+        let targets = targets(model, *own, request);
+        for target in &targets {
             let mut own_errors = Vec::new();
             Checker {
                 model,
-                phenomenon: target,
+                phenomenon: *target,
+                n_targets: targets.len(),
                 errors: &mut own_errors,
             }
             .request(request);
@@ -77,6 +79,8 @@ fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
 struct Checker<'a> {
     model: &'a Model,
     phenomenon: Option<usize>,
+    /// For how many phenomena the request is answered.
+    n_targets: usize,
     errors: &'a mut Vec<ModelError>,
 }
 
@@ -106,9 +110,7 @@ impl Checker<'_> {
                 {
                     self.errors.push(error);
                 }
-                if let Some(save) = save {
-                    self.unavailable("save", save.span);
-                }
+                self.save(save.as_ref());
             }
             RequestKind::Claim(claim) => self.claim(claim),
             RequestKind::Nondimensionalize { .. } => {
@@ -123,6 +125,17 @@ impl Checker<'_> {
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
             RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
             RequestKind::Compare { .. } => self.unavailable("compare", request.span),
+        }
+    }
+
+    /// A saved system is that of one phenomenon.
+    fn save(&mut self, save: Option<&ast::Text>) {
+        if let Some(save) = save.filter(|_| self.n_targets > 1) {
+            self.errors.push(ModelError::WrongForm {
+                found: "several phenomena",
+                wanted: "one phenomenon for `save`, named with `for`",
+                span: save.span,
+            });
         }
     }
 

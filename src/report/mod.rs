@@ -8,6 +8,7 @@ pub mod junit;
 pub mod latex;
 pub mod layout;
 pub mod markdown;
+pub mod module;
 pub mod ruler;
 pub mod text;
 pub mod words;

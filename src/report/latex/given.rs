@@ -15,17 +15,17 @@ pub(super) fn given(outcome: &Outcome, out: &mut String) {
         out.push_str("\\subsection*{What was given}\n\n");
     }
     let head = [
-        ("name", 0.07),
-        ("nominal", 0.14),
-        ("range", 0.17),
+        ("name", 0.09),
+        ("nominal", 0.13),
+        ("range", 0.16),
         ("unit", 0.09),
         ("what it is", 0.24),
         ("source", 0.28),
     ];
     for given in values {
         out.push_str(&match given.phenomenon {
-            Some(phenomenon) => format!("For {}:\n\n", text(phenomenon)),
-            None => "For all:\n\n".to_owned(),
+            Some(phenomenon) => format!("For {}:\\nopagebreak\n\n", text(phenomenon)),
+            None => "For all:\\nopagebreak\n\n".to_owned(),
         });
         let rows: Vec<Vec<String>> = given.rows.iter().map(|row| value_row(row)).collect();
         out.push_str(&table(&head, &rows));
@@ -87,7 +87,7 @@ fn letters(outcome: &Outcome, out: &mut String) {
     if fields.is_empty() && coordinates.is_empty() {
         return;
     }
-    out.push_str("The other letters:\n\n");
+    out.push_str("The other letters:\\nopagebreak\n\n");
     let head = [
         ("name", 0.1),
         ("kind", 0.13),
@@ -116,11 +116,11 @@ fn groups(outcome: &Outcome, out: &mut String) {
     if groups.is_empty() {
         return;
     }
-    out.push_str("Groups:\n\n");
+    out.push_str("Groups:\\nopagebreak\n\n");
     let head = [
-        ("name", 0.08),
-        ("phenomenon", 0.18),
-        ("formula", 0.18),
+        ("name", 0.09),
+        ("phenomenon", 0.15),
+        ("formula", 0.2),
         ("nominal", 0.12),
         ("range", 0.18),
         ("what it is", 0.24),

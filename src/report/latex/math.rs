@@ -39,7 +39,7 @@ const OPERATOR: f64 = 2.5;
 const RAISED: f64 = 0.75;
 
 /// A name longer than this may be broken.
-const LONG_NAME: usize = 24;
+const LONG_NAME: usize = 10;
 
 /// An expression.
 pub fn expression(expr: &Expr, style: Style) -> Math {
@@ -492,7 +492,12 @@ impl Setter {
         match text {
             "D_t" => self.material(argument, order.unwrap_or(1)),
             "mean" => self.over(argument, "\\overline"),
-            "sqrt" => self.over(argument, "\\sqrt"),
+            "sqrt" if self.style == Style::Display => self.over(argument, "\\sqrt"),
+            // A root cannot be broken; a power can.
+            "sqrt" => {
+                let inside = self.brackets(self.expr(unbracketed(argument)));
+                inside.then(Math::new("^{1/2}", 2.0))
+            }
             "abs" => {
                 let bar = |side: &str| Math::new(format!("\\{side}vert "), 0.7);
                 let inside = self.expr(unbracketed(argument));
