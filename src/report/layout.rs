@@ -68,6 +68,10 @@ pub fn range(range: &Range) -> String {
     } else {
         ends.map(|end| scientific(end, 3))
     };
+    if texts[0] == texts[1] && texts[1] == texts[2] {
+        // The range is one of rounding.
+        return number(range.nominal);
+    }
     texts.join(" .. ")
 }
 
@@ -115,27 +119,44 @@ pub fn cut(text: &str, columns: usize) -> String {
 }
 
 /// A paragraph behind a label, wrapped to the width of a terminal; later lines begin
-/// under the first word. A word that fits no line stands alone.
+/// under the first word. A word that fits no line stands alone; ranges and per cents are
+/// not torn apart.
 pub fn wrapped(label: &str, text: &str) -> String {
+    let mut words: Vec<String> = Vec::new();
+    for word in text.split(' ').filter(|word| !word.is_empty()) {
+        match words.last_mut() {
+            Some(last) if belongs_before(word) || last.ends_with(" ..") => {
+                last.push(' ');
+                last.push_str(word);
+            }
+            Some(_) | None => words.push(word.to_owned()),
+        }
+    }
+    wrapped_words(label, &words)
+}
+
+/// Whether a word stays on the line of the one before it.
+fn belongs_before(word: &str) -> bool {
+    word == ".." || word.starts_with('%')
+}
+
+/// The same for words that may have blanks in them.
+pub fn wrapped_words(label: &str, words: &[String]) -> String {
     let indent = width(label);
     let mut out = String::from(label);
     let mut column = indent;
-    let mut is_first = true;
-    for word in text.split(' ').filter(|word| !word.is_empty()) {
+    for (idx, word) in words.iter().enumerate() {
         let needed = width(word);
-        if !is_first && column + 1 + needed > WIDTH {
+        if idx > 0 && column + 1 + needed > WIDTH {
             out.push('\n');
             out.push_str(&" ".repeat(indent));
             column = indent;
-            is_first = true;
-        }
-        if !is_first {
+        } else if idx > 0 {
             out.push(' ');
             column += 1;
         }
         out.push_str(word);
         column += needed;
-        is_first = false;
     }
     out.push('\n');
     out

@@ -20,7 +20,7 @@ use crate::report::module::needs::Needs;
 use crate::report::module::shelves::Shelves;
 use crate::report::words;
 use crate::source::Sources;
-use crate::syntax::ast::{self, ExprKind, Sign, StatementKind};
+use crate::syntax::ast::{self, StatementKind};
 use crate::syntax::print;
 
 mod needs;
@@ -91,7 +91,7 @@ fn head(origin: &Origin<'_>, kept: &[&ReducedEquation]) -> String {
     comment("", "", &mut out);
     let tolerance = format!(
         "A term was left out where its share of the largest stays at or below {} % over all \
-         values below. They are the scales under which the system was reduced; a script that \
+         values below and in the modules in use. They are the scales under which the system was reduced; a script that \
          uses this module may give others, but then nothing says that it stands.",
         in_percent(origin.tolerance)
     );
@@ -280,8 +280,8 @@ fn equation_text(origin: &Origin<'_>, equation: &ReducedEquation) -> String {
         .unwrap_or_default();
     let [left, right] = equation.sides.each_ref().map(|parts| side(parts));
     let mut out = format!("equation {}{title}:\n", equation.name);
-    out.push_str(&layout::wrapped("    ", &left));
-    out.push_str(&layout::wrapped("  = ", &right));
+    out.push_str(&layout::wrapped_words("    ", &left));
+    out.push_str(&layout::wrapped_words("  = ", &right));
     let whose = match &origin.case.setting.name {
         Some(name) => format!("reduced for {name}"),
         None => "reduced".to_owned(),
@@ -297,21 +297,8 @@ fn equation_text(origin: &Origin<'_>, equation: &ReducedEquation) -> String {
 }
 
 /// One side, each part with the name of its process.
-fn side(parts: &[Part]) -> String {
-    if parts.is_empty() {
-        return "0".to_owned();
-    }
-    let terms = parts.iter().map(|part| {
-        let sign = match part.is_negative {
-            true => Sign::Minus,
-            false => Sign::Plus,
-        };
-        (sign, part.named.clone())
-    });
-    print::expression(&ast::Expr {
-        kind: ExprKind::Sum(terms.collect()),
-        span: crate::source::Span::default(),
-    })
+fn side(parts: &[Part]) -> Vec<String> {
+    words::signed(parts, |part| print::expression(&part.named))
 }
 
 /// The balances that speak of the equations written: one of several equations keeps its

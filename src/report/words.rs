@@ -2,7 +2,7 @@
 
 use crate::analysis::claims::{Held, Measured};
 use crate::analysis::reduce::{
-    Inequality, Kind, Lone, LostDerivative, ReducedEquation, ReducedTerm,
+    Inequality, Kind, Lone, LostDerivative, Part, ReducedEquation, ReducedTerm,
 };
 use crate::analysis::show::Shown;
 use crate::analysis::sizes::Verdict;
@@ -128,6 +128,26 @@ pub fn share(share: &Range) -> String {
         percent(share.low).trim_end_matches(" %"),
         percent(share.high)
     )
+}
+
+/// The parts of one side of an equation, each with the sign before it; none of a side
+/// that is 0.
+pub fn signed(parts: &[Part], text: impl Fn(&Part) -> String) -> Vec<String> {
+    if parts.is_empty() {
+        return vec!["0".to_owned()];
+    }
+    let parts = parts.iter().enumerate();
+    parts
+        .map(|(idx, part)| {
+            let sign = match (idx, part.is_negative) {
+                (0, false) => "",
+                (0, true) => "-",
+                (_, false) => "+ ",
+                (_, true) => "- ",
+            };
+            format!("{sign}{}", text(part))
+        })
+        .collect()
 }
 
 /// Which balance leads, and whether it was put in.

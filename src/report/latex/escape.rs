@@ -19,11 +19,11 @@ pub fn text(text: &str) -> String {
     out
 }
 
-/// A name in a table cell: it may break behind an underscore or a dot.
+/// A name in a table cell: it may break behind a dot or a slash too.
 pub fn breakable(name: &str) -> String {
     text(name)
-        .replace("\\_", "\\_\\allowbreak{}")
         .replace('.', ".\\allowbreak{}")
+        .replace('/', "/\\allowbreak{}")
 }
 
 /// A message of the program, which sets names in backticks.
@@ -45,7 +45,7 @@ fn character(c: char) -> String {
         '&' => "\\&",
         '#' => "\\#",
         '%' => "\\%",
-        '_' => "\\_",
+        '_' => "\\_\\allowbreak{}",
         '^' => "\\textasciicircum{}",
         '~' => "\\textasciitilde{}",
         // Without braces these join into other signs or ligatures.
@@ -206,7 +206,7 @@ mod tests {
     fn nothing_in_a_text_is_a_command() {
         assert_eq!(
             text("50 % of a_b & {c} #1 \\x ~ ^"),
-            "50 \\% of a\\_b \\& \\{c\\} \\#1 \\textbackslash{}x \\textasciitilde{} \\textasciicircum{}"
+            "50 \\% of a\\_\\allowbreak{}b \\& \\{c\\} \\#1 \\textbackslash{}x \\textasciitilde{} \\textasciicircum{}"
         );
     }
 

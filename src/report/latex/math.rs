@@ -38,8 +38,10 @@ const THIN: f64 = 0.35;
 const OPERATOR: f64 = 2.5;
 const RAISED: f64 = 0.75;
 
-/// A name longer than this may be broken.
-const LONG_NAME: usize = 10;
+/// A name longer than this is set so that it may be broken.
+const LONG_NAME: usize = 12;
+/// Letters of a long name between two places where it may be broken.
+const PIECE: usize = 6;
 
 /// An expression.
 pub fn expression(expr: &Expr, style: Style) -> Math {
@@ -78,6 +80,9 @@ impl Math {
 pub fn name(name: &str) -> Math {
     let stem = name.trim_end_matches('\'');
     let primes = &name[stem.len()..];
+    if stem.chars().count() > LONG_NAME && stem.contains('_') {
+        return long_name(name);
+    }
     let (base, index) = split_index(stem);
     let mut math = letters(&base, "\\mathit");
     if !index.is_empty() {
@@ -90,6 +95,21 @@ pub fn name(name: &str) -> Math {
         ));
     }
     math.then(Math::new(primes, 0.5 * primes.len() as f64))
+}
+
+/// A name too long for an index: on one line, where it may be broken.
+fn long_name(name: &str) -> Math {
+    let chars: Vec<char> = name.chars().collect();
+    let pieces: Vec<String> = chars
+        .chunks(PIECE)
+        .map(|piece| {
+            format!(
+                "\\text{{{}}}",
+                escape::text(&piece.iter().collect::<String>())
+            )
+        })
+        .collect();
+    Math::new(pieces.join("\\allowbreak "), LETTER * chars.len() as f64)
 }
 
 /// What stands before the first `_`, and the parts behind it; small digits at the end are
@@ -136,8 +156,13 @@ fn letters(word: &str, font: &str) -> Math {
         return Math::new(word, n_letters as f64);
     }
     let chars: Vec<char> = word.chars().collect();
+    let piece = if n_letters > LONG_NAME {
+        PIECE
+    } else {
+        LONG_NAME
+    };
     let pieces: Vec<String> = chars
-        .chunks(LONG_NAME)
+        .chunks(piece)
         .map(|piece| format!("{font}{{{}}}", piece.iter().collect::<String>()))
         .collect();
     Math::new(pieces.join("\\allowbreak "), width)
@@ -399,7 +424,7 @@ impl Setter {
             } else {
                 self.brackets(below)
             };
-            return above.then(Math::new("/", 1.0)).then(below);
+            return above.then(slash()).then(below);
         }
         let (beside, above): (Vec<Math>, Vec<Math>) =
             above.into_iter().partition(|factor| factor.is_tall);
@@ -456,7 +481,7 @@ impl Setter {
         };
         let exponent = inline.expr(unbracketed(exponent));
         base.then(Math::new(
-            format!("^{{{}}}", exponent.text),
+            format!("^{{{}}}", exponent.text.replace("\\allowbreak ", "")),
             RAISED * exponent.width,
         ))
     }
@@ -599,11 +624,16 @@ impl Setter {
             _ => self.brackets(self.expr(unbracketed(operand))),
         };
         match self.style {
-            Style::Inline => sign.then(inside).then(Math::new("/", 1.0)).then(below),
+            Style::Inline => sign.then(inside).then(slash()).then(below),
             Style::Display if inside.is_tall => fraction(sign, below).then(inside),
             Style::Display => fraction(sign.then(inside), below),
         }
     }
+}
+
+/// A slash, behind which a line may be broken.
+fn slash() -> Math {
+    Math::new("/\\allowbreak ", 1.0)
 }
 
 fn fraction(above: Math, below: Math) -> Math {
@@ -760,7 +790,7 @@ mod tests {
         }
         assert_eq!(
             set("dP/(rho*L)", Style::Inline),
-            "\\mathit{dP}/(\\rho \\,\\allowbreak L)"
+            "\\mathit{dP}/\\allowbreak (\\rho \\,\\allowbreak L)"
         );
     }
 }

@@ -54,7 +54,7 @@ pub fn document(outcomes: &[Outcome]) -> String {
 
 fn write_report(outcome: &Outcome, out: &mut String) {
     out.push_str(&format!(
-        "\\section*{{Scale analysis: {}}}\n\n",
+        "\\section*{{\\raggedright Scale analysis: {}}}\n\n",
         breakable(&outcome.script)
     ));
     if outcome.answers.is_empty() && outcome.claims.is_empty() {
@@ -81,7 +81,7 @@ fn write_report(outcome: &Outcome, out: &mut String) {
 fn write_answer(answer: &Answer, out: &mut String) {
     let heading = words::asked(answer);
     out.push_str(&format!(
-        "\\subsection*{{\\texttt{{{}}}{}}}\n\n",
+        "\\subsection*{{\\raggedright \\texttt{{{}}}{}}}\n\n",
         breakable(&heading.request),
         text(&heading.subject)
     ));
@@ -116,7 +116,7 @@ fn equation_head(name: &str, title: Option<&String>) -> String {
         .map(|title| format!(": {}", text(title)))
         .unwrap_or_default();
     format!(
-        "\\subsubsection*{{\\texttt{{{}}}{title}}}\n\n",
+        "\\subsubsection*{{\\raggedright \\texttt{{{}}}{title}}}\n\n",
         breakable(name)
     )
 }

@@ -15,7 +15,7 @@ pub(super) fn table(head: &[(&str, f64)], rows: &[Vec<String>]) -> String {
     let titles: Vec<String> = head.iter().map(|(title, _)| (*title).to_owned()).collect();
     let titles = line(&titles);
     let mut out = format!(
-        "{{\\small\\setlength{{\\tabcolsep}}{{{:.3}\\linewidth}}\n\
+        "{{\\footnotesize\\setlength{{\\tabcolsep}}{{{:.3}\\linewidth}}\n\
          \\renewcommand{{\\arraystretch}}{{1.2}}\n\
          \\begin{{longtable}}{{@{{}}{}@{{}}}}\n\\hline\n{titles}\\hline\n\\endhead\n",
         GAP / 2.0,

@@ -1,7 +1,7 @@
 //! `reduce` for a terminal.
 
 use crate::analysis::reduce::{ReducedEquation, Reduction};
-use crate::report::layout::{padded, percent, wrapped};
+use crate::report::layout::{padded, percent, wrapped, wrapped_words};
 use crate::report::text::{Pen, equation_head};
 use crate::report::words;
 
@@ -28,7 +28,12 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
     );
     let order = words::leading_order(equation);
     out.push_str(&wrapped("  leading order  ", &order));
-    out.push_str(&wrapped("      ", &equation.reduced));
+    let [left, mut right] = equation
+        .sides
+        .each_ref()
+        .map(|parts| words::signed(parts, |part| part.text.clone()));
+    right[0].insert_str(0, "= ");
+    out.push_str(&wrapped_words("      ", &[left, right].concat()));
     depends(equation, out);
     dropped(equation, out);
     if let Some(text) = &equation.first_neglected {
