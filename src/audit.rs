@@ -4,7 +4,7 @@
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::{self, Case};
 use crate::model::settings::{Setting, Variable};
-use crate::model::{FieldInfo, Model, names, requests};
+use crate::model::{FieldInfo, Meaning, Model, names, requests};
 use crate::source::Span;
 use crate::syntax::{ast, print};
 use crate::units::{self, Dimension, Range};
@@ -116,6 +116,28 @@ fn used(model: &Model, cases: &[Case]) -> Vec<bool> {
         requests::visit_expressions(request, &mut |expr| {
             waiting.extend(names::symbols_in(expr, model, *own));
         });
+        match &request.kind {
+            ast::RequestKind::Bounds { symbols } => {
+                let meanings = symbols.iter().map(|name| model.meaning(&name.text, *own));
+                waiting.extend(meanings.filter_map(|meaning| match meaning {
+                    Some(Meaning::Symbol(id)) => Some(id),
+                    Some(
+                        Meaning::Coordinate(_)
+                        | Meaning::Field(_)
+                        | Meaning::Group(_)
+                        | Meaning::Vector(_),
+                    )
+                    | None => None,
+                }));
+            }
+            // It shows every group.
+            ast::RequestKind::Compare { .. } => {
+                let groups = model.groups.iter();
+                waiting
+                    .extend(groups.flat_map(|group| names::symbols_in(&group.value, model, None)));
+            }
+            _ => {}
+        }
     }
     while let Some(id) = waiting.pop() {
         if std::mem::replace(&mut used[id.idx()], true) {
@@ -156,24 +178,14 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
     let opened = info
         .entries
         .iter()
+        .rev()
         .find_map(|(_, entry)| entry.notes.title.as_ref());
-    let (formula, written_unit) = match &decl.value {
-        ast::Value::Given { nominal, spread } => {
-            let formula = names::has_names(nominal).then(|| print::expression(nominal));
-            (formula, display_unit(nominal, spread))
+    let formula = match &decl.value {
+        ast::Value::Given { nominal, .. } => {
+            names::has_names(nominal).then(|| print::expression(nominal))
         }
-        ast::Value::Open(unit) => (None, Some(unit.text.clone())),
+        ast::Value::Open(_) => None,
     };
-    let written_unit = written_unit.or_else(|| {
-        let open = info
-            .entries
-            .iter()
-            .find_map(|(_, entry)| match &entry.value {
-                ast::Value::Open(unit) => Some(unit.text.clone()),
-                ast::Value::Given { .. } => None,
-            });
-        open.filter(|unit| unit != "1")
-    });
     Some(AuditRow {
         name: info.name.clone(),
         kind: match info.kind {
@@ -183,7 +195,7 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
         title: text(decl.notes.title.as_ref().or(opened)),
         source: text(decl.notes.source.as_ref()),
         unit: unit(info.dimension),
-        written_unit,
+        written_unit: written_unit(model, setting, id),
         phenomenon: None,
         value: match &setting.variables[id.idx()] {
             Variable::Known(value) => Some(value.range),
@@ -193,6 +205,22 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
         varying: None,
         is_used,
         place: decl.name.span,
+    })
+}
+
+/// The unit in which a value is written, or else the one in which its name was opened.
+pub fn written_unit(model: &Model, setting: &Setting, id: SymbolId) -> Option<String> {
+    let own = match &model.effective(id, setting.phenomenon).1.value {
+        ast::Value::Given { nominal, spread } => display_unit(nominal, spread),
+        ast::Value::Open(unit) => return Some(unit.text.clone()),
+    };
+    own.or_else(|| {
+        let entries = &model.symbols[id.idx()].entries;
+        let open = entries.iter().find_map(|(_, entry)| match &entry.value {
+            ast::Value::Open(unit) => Some(unit.text.clone()),
+            ast::Value::Given { .. } => None,
+        });
+        open.filter(|unit| unit != "1")
     })
 }
 
@@ -211,7 +239,8 @@ fn size(setting: &Setting, monomial: &Monomial) -> Option<Range> {
     setting
         .monomial_range(monomial)
         .ok()
-        .filter(|range| range.nominal.is_finite())
+        .filter(|_| setting.is_available(monomial))
+        .filter(|range| range.low.is_finite() && range.high.is_finite())
 }
 
 fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {

@@ -3,6 +3,8 @@
 //! A stage has an error type of its own, without prose; one `match` a stage turns it
 //! into a [`Diagnostic`]. The drawing, with ariadne, happens here and nowhere else.
 
+pub mod codes;
+
 use crate::source::{Sources, Span};
 
 /// How much a diagnostic weighs.
@@ -161,11 +163,12 @@ pub fn draw(diagnostics: &[Diagnostic], sources: &Sources, colour: bool) -> Stri
         let rest = diagnostics.len() - DRAWN;
         out.extend_from_slice(format!("and {rest} more\n").as_bytes());
     }
-    let mut text = String::from_utf8_lossy(&out).into_owned();
-    if !colour {
-        // Some parts are coloured whatever the configuration says.
-        text = anstream::adapter::strip_str(&text).to_string();
-    }
+    let text = String::from_utf8_lossy(&out);
+    // The word for a note is coloured whatever is asked for.
+    let text = match colour {
+        true => text,
+        false => anstream::adapter::strip_str(&text).to_string().into(),
+    };
     let lines: Vec<&str> = text.lines().map(str::trim_end).collect();
     if lines.is_empty() {
         String::new()

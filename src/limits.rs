@@ -28,8 +28,20 @@ pub const LITERAL_DECADES: i64 = 300;
 /// Most terms that one equation may have once its products are multiplied out.
 pub const TERMS: usize = 2_000;
 
+/// Most sets of scales that are tried to match groups.
+pub const MATCHING_SETS: usize = 20_000;
+
 /// Highest whole power of a sum that is multiplied out.
 pub const SUM_POWER: i64 = 12;
+
+/// Most columns that are reduced in the search for dimensionless groups: about 60 scales of
+/// two dimensions, 25 of four.
+pub const CIRCUIT_STEPS: usize = 200_000;
+/// Deepest nesting of vector operations, `curl(curl(V))`.
+pub const VECTOR_NESTING: usize = 8;
+
+/// Most nodes of the tree that one component of a vector expression may come to.
+pub const VECTOR_NODES: usize = 20_000;
 
 /// Most modules and files that one script may bring in.
 pub const MODULES: usize = 200;

@@ -9,32 +9,48 @@ use std::process::ExitCode;
 
 use clap::error::ErrorKind;
 use clap::{Args, CommandFactory as _, Parser, Subcommand, ValueEnum};
+use scalewright::analysis::shelf;
 use scalewright::diagnostic::{Diagnostic, Severity};
 use scalewright::model::errors::ModelError;
 use scalewright::model::library;
-use scalewright::model::modules::Files;
+use scalewright::model::modules::{Files, Main};
 use scalewright::model::names;
+use scalewright::prompt::layout::Sheet;
+use scalewright::prompt::terminal::Aids;
+use scalewright::prompt::{self, Start};
 use scalewright::report;
+use scalewright::source::Sources;
 use scalewright::{Outcome, Session, Status};
 
 use crate::command::writing;
 
 /// Decide, for one phenomenon, which terms of the governing equations matter.
+///
+/// Without a command it asks for statements and answers them one by one.
 #[derive(Parser)]
-#[command(version, arg_required_else_help = true)]
+#[command(version)]
 struct Words {
     #[command(subcommand)]
-    command: Command,
+    command: Option<Command>,
 }
 
 #[derive(Subcommand)]
 enum Command {
+    /// Try scales and requests one by one; without a terminal, answer what is piped in
+    Prompt {
+        /// A script to start from: a file or a bundled module
+        #[arg(value_name = "FILE")]
+        start: Option<String>,
+    },
     /// Answer scripts: files, bundled modules, or - for standard input
     Run(Run),
     /// Read and check scripts without answering them
     Check {
         #[command(flatten)]
         scripts: Scripts,
+        /// Print them in the canonical form, comments kept
+        #[arg(long)]
+        print: bool,
     },
     /// List the bundled modules, or show one
     Library {
@@ -115,9 +131,11 @@ fn reason(error: &io::Error) -> String {
 
 fn main() -> ExitCode {
     let words = Words::parse();
-    let done = match &words.command {
+    let none = Command::Prompt { start: None };
+    let done = match words.command.as_ref().unwrap_or(&none) {
+        Command::Prompt { start } => prompt(start.as_deref()),
         Command::Run(words) => run(words),
-        Command::Check { scripts } => check(scripts),
+        Command::Check { scripts, print } => check(scripts, *print),
         Command::Library { name } => show_library(name.as_deref()),
     };
     match done {
@@ -240,6 +258,69 @@ fn outcomes(
         .collect()
 }
 
+// The prompt ----------------------------------------------------------------------------------
+
+fn prompt(start: Option<&str>) -> io::Result<ExitCode> {
+    let input = start.map(read);
+    let folder = input
+        .as_ref()
+        .map(|input| input.folder.clone())
+        .unwrap_or_default();
+    let session = Session::new().with_files(&Disk, folder);
+    let start = match input.map(start_of).transpose() {
+        Ok(start) => start,
+        Err(outcome) => {
+            draw_diagnostics(&[outcome], |_| true)?;
+            return Ok(ExitCode::from(2));
+        }
+    };
+    if io::stdin().is_terminal() {
+        prompt::terminal::run(session, start.as_ref(), aids())?;
+        return Ok(ExitCode::SUCCESS);
+    }
+    let sheet = Sheet {
+        columns: report::layout::WIDTH,
+        colour: io::stderr().is_terminal()
+            && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never,
+    };
+    let (mut out, mut err) = (io::stdout().lock(), io::stderr().lock());
+    let mut input = io::stdin().lock();
+    let status = prompt::filter::run(
+        session,
+        start.as_ref(),
+        &mut input,
+        &mut out,
+        &mut err,
+        sheet,
+    )?;
+    Ok(exit_code(status))
+}
+
+fn start_of(input: Input) -> Result<Start, Outcome> {
+    match input.text {
+        Ok(text) => Ok(Start {
+            name: input.name,
+            path: input.path,
+            text,
+        }),
+        Err(error) => Err(Outcome {
+            script: input.name,
+            diagnostics: vec![error.diagnostic()],
+            ..Outcome::default()
+        }),
+    }
+}
+
+/// Completion, hints and colours, unless the terminal or the user wants none.
+fn aids() -> Aids {
+    let is_set = |name: &str| std::env::var_os(name).is_some_and(|value| !value.is_empty());
+    let is_dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb" || term.is_empty());
+    match is_set("NO_COLOR") || is_dumb && !cfg!(windows) || !io::stdout().is_terminal() {
+        true => Aids::None,
+        false => Aids::All,
+    }
+}
+
 // Answering -----------------------------------------------------------------------------------
 
 fn run(words: &Run) -> io::Result<ExitCode> {
@@ -348,7 +429,7 @@ fn draw_diagnostics(outcomes: &[Outcome], wanted: impl Fn(&Diagnostic) -> bool) 
     Ok(())
 }
 
-fn check(scripts: &Scripts) -> io::Result<ExitCode> {
+fn check(scripts: &Scripts, is_printed: bool) -> io::Result<ExitCode> {
     let outcomes = outcomes(scripts, |session, input, text| {
         session.check(&input.name, text, input.path.as_deref())
     });
@@ -358,39 +439,46 @@ fn check(scripts: &Scripts) -> io::Result<ExitCode> {
         .iter()
         .filter(|outcome| outcome.status() == Status::Ok)
     {
-        writeln!(stdout, "{}: no errors", outcome.script)?;
+        match outcome.canonical() {
+            Some(text) if is_printed => stdout.write_all(text.as_bytes())?,
+            Some(_) | None => writeln!(stdout, "{}: no errors", outcome.script)?,
+        }
     }
     Ok(exit_code(worst(&outcomes)))
 }
 
 fn show_library(name: Option<&str>) -> io::Result<ExitCode> {
-    let mut stdout = io::stdout().lock();
     let Some(name) = name else {
-        let widest = library::MODULES
-            .iter()
-            .map(|module| module.name.len())
-            .max()
-            .unwrap_or(0);
-        for module in library::MODULES {
-            let headline = report::layout::cut(
-                &library::headline(module),
-                report::layout::WIDTH - widest - 2,
-            );
-            writeln!(stdout, "{:widest$}  {headline}", module.name)?;
-        }
+        let text = report::shelf::list(library::MODULES);
+        io::stdout().lock().write_all(text.as_bytes())?;
         return Ok(ExitCode::SUCCESS);
     };
-    match read(name).text {
-        Ok(text) => stdout.write_all(text.as_bytes())?,
-        Err(error) => {
-            drop(stdout);
-            let outcome = Outcome {
-                diagnostics: vec![error.diagnostic()],
-                ..Outcome::default()
+    let input = read(name);
+    let (diagnostics, sources) = match &input.text {
+        Ok(text) => {
+            let main = Main {
+                name: input.name.clone(),
+                text: text.clone(),
+                path: input.path.clone(),
+                folder: input.folder.clone(),
+                root: input.folder.clone(),
             };
-            draw_diagnostics(&[outcome], |_| true)?;
-            return Ok(ExitCode::from(2));
+            match shelf::shelf(&main, &Disk) {
+                Ok(shelf) => {
+                    let text = report::shelf::shelf(&shelf);
+                    io::stdout().lock().write_all(text.as_bytes())?;
+                    return Ok(ExitCode::SUCCESS);
+                }
+                Err(found) => found,
+            }
         }
-    }
-    Ok(ExitCode::SUCCESS)
+        Err(error) => (vec![error.diagnostic()], Sources::default()),
+    };
+    let outcome = Outcome {
+        diagnostics,
+        sources,
+        ..Outcome::default()
+    };
+    draw_diagnostics(&[outcome], Diagnostic::is_error)?;
+    Ok(ExitCode::from(2))
 }

@@ -370,6 +370,33 @@ impl Number {
         value
     }
 
+    /// Its amount as a product of powers of positive whole numbers, primes as far as they
+    /// are small; π stands apart, in `pi_power`.
+    pub fn whole_powers(&self) -> Vec<(BigInt, BigRational)> {
+        let mut powers: BTreeMap<BigInt, BigRational> = BTreeMap::new();
+        let mut put = |base: BigInt, power: BigRational| {
+            let sum = powers.remove(&base).unwrap_or_else(BigRational::zero) + power;
+            if !sum.is_zero() {
+                powers.insert(base, sum);
+            }
+        };
+        let sides = [
+            (self.rational.numer().abs(), 1),
+            (self.rational.denom().clone(), -1),
+        ];
+        for (side, sign) in sides {
+            let (small, rest) = small_factors(side);
+            let rest = Some((rest, 1)).filter(|(rest, _)| !rest.is_one() && !rest.is_zero());
+            for (base, times) in small.into_iter().chain(rest) {
+                put(base, BigRational::from_integer((sign * times).into()));
+            }
+        }
+        for (root, power) in &self.roots {
+            put(root.clone(), power.to_rational());
+        }
+        powers.into_iter().collect()
+    }
+
     /// The natural logarithm of the amount; minus infinity for 0.
     pub fn ln_abs(&self) -> f64 {
         self.to_f64().abs().ln()
@@ -415,7 +442,7 @@ pub fn whole_power(base: &BigRational, exponent: i64) -> Result<BigRational, Too
 fn small_factors(mut value: BigInt) -> (Vec<(BigInt, i64)>, BigInt) {
     let mut factors = Vec::new();
     for candidate in 2..=SMALL_PRIME {
-        if value.is_one() {
+        if value.is_one() || value.is_zero() {
             break;
         }
         let mut times = 0;

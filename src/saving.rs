@@ -5,7 +5,7 @@ use std::path::{Path, PathBuf};
 
 use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
-use crate::model::modules::{Files, plain};
+use crate::model::modules::{Files, NoFiles, plain};
 use crate::report::module::{self, Origin};
 use crate::session::Saved;
 use crate::source::Sources;
@@ -54,6 +54,16 @@ pub(crate) fn saved(
 }
 
 impl Folders<'_> {
+    /// No folder at all: where a script is answered without files.
+    pub(crate) fn none() -> Folders<'static> {
+        Folders {
+            files: &NoFiles,
+            folder: Path::new(""),
+            root: Path::new(""),
+            script: None,
+        }
+    }
+
     /// The path of a file inside the root.
     fn path(&self, save: &ast::Text) -> Result<PathBuf, Diagnostic> {
         let outside = || {

@@ -1,26 +1,41 @@
 //! A session: takes a script, checks it, answers it. The command line and embedders go
-//! through here.
+//! through here. A session that grows line by line is in `incremental`.
 
+pub mod changes;
+pub mod incremental;
+mod merge;
+
+mod solving;
+
+use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
+use std::rc::Rc;
 
 use num_rational::BigRational;
 
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
-use crate::analysis::{self, Answer, Body, Case, LeftOut, rank, reduce};
+use crate::analysis::{
+    self, Answer, Body, Case, LeftOut, bounds, compare, groups, nondimensional, rank, reduce,
+};
 use crate::audit::{self, AuditRow};
 use crate::diagnostic::{self, Diagnostic, Severity};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{ModelError, Product};
+use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests};
 use crate::number::rational_to_f64;
 use crate::report::module::Origin;
+use crate::report::{standing, words};
 use crate::saving::{self, Folders};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
+use crate::syntax::{parser, print};
+
+pub use solving::Watcher;
 
 /// What came of a script.
 #[derive(Debug, Default)]
@@ -75,6 +90,13 @@ impl Outcome {
         }
     }
 
+    /// The script in its canonical form, comments kept; `None` if none was read.
+    pub fn canonical(&self) -> Option<String> {
+        let (file, source) = self.sources.iter().next()?;
+        let (script, _) = parser::parse(&source.text, file);
+        Some(print::print(&script, &source.text))
+    }
+
     /// The diagnostics drawn against their texts.
     pub fn drawn(&self, colour: bool, wanted: impl Fn(&Diagnostic) -> bool) -> String {
         let wanted: Vec<Diagnostic> = self
@@ -88,11 +110,13 @@ impl Outcome {
 }
 
 /// Reads and answers scripts.
+#[derive(Clone)]
 pub struct Session<'f> {
     files: &'f dyn Files,
     folder: PathBuf,
     root: Option<PathBuf>,
     is_strict: bool,
+    watcher: Option<&'f dyn Watcher>,
 }
 
 impl Default for Session<'_> {
@@ -109,6 +133,7 @@ impl<'f> Session<'f> {
             folder: PathBuf::new(),
             root: None,
             is_strict: false,
+            watcher: None,
         }
     }
 
@@ -134,29 +159,31 @@ impl<'f> Session<'f> {
         self
     }
 
+    /// Lets somebody watch long searches, and end them.
+    #[must_use]
+    pub fn with_watcher(mut self, watcher: &'f dyn Watcher) -> Session<'f> {
+        self.watcher = Some(watcher);
+        self
+    }
+
     /// Reads and checks a script, without answering it.
     pub fn check(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, _) = self.checked(name, text, path);
+        let (mut outcome, _) = self.checked(name, text, path, Purpose::Check);
         self.finish(&mut outcome);
         outcome
     }
 
     /// Reads, checks and answers a script.
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
-        let (mut outcome, checked) = self.checked(name, text, path);
+        let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering {
-                model: &checked.model,
-                cases: &checked.cases,
-                outcome: &mut outcome,
-                folders: Folders {
-                    files: self.files,
-                    folder: &self.folder,
-                    root: self.root.as_ref().unwrap_or(&self.folder),
-                    script: path,
-                },
-            }
-            .all();
+            let folders = Folders {
+                files: self.files,
+                folder: &self.folder,
+                root: self.root.as_ref().unwrap_or(&self.folder),
+                script: path,
+            };
+            Answering::new(&checked, &mut outcome, self.watcher, folders).all();
         }
         self.finish(&mut outcome);
         outcome
@@ -173,41 +200,71 @@ impl<'f> Session<'f> {
         diagnostic::sort(&mut outcome.diagnostics);
     }
 
-    fn checked(&self, name: &str, text: &str, path: Option<&Path>) -> (Outcome, Option<Checked>) {
+    fn checked(
+        &self,
+        name: &str,
+        text: &str,
+        path: Option<&Path>,
+        purpose: Purpose,
+    ) -> (Outcome, Option<Checked>) {
         let mut outcome = Outcome {
             script: name.to_owned(),
             ..Outcome::default()
         };
-        let main = Main {
-            name: name.to_owned(),
-            text: text.to_owned(),
-            path: path.map(Path::to_owned),
-            folder: self.folder.clone(),
-            root: self.root.clone().unwrap_or_else(|| self.folder.clone()),
-        };
+        let main = self.main(name, text, path);
         let (scripts, errors) = modules::load(&main, self.files, &mut outcome.sources);
-        let main_span = main_span(&outcome.sources);
-        let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
-        let is_whole = errors.iter().all(|found| !is_of_module(found));
-        let has_form = errors.iter().all(|found| !found.is_error());
-        outcome.diagnostics.extend(errors);
-        let (model, errors) = declarations::gather(scripts);
-        let (checked, errors) = check_model(model, errors, main_span, has_form);
-        outcome.diagnostics.extend(
-            errors
-                .iter()
-                .filter(|error| !is_echo(error, &unreadable, is_whole))
-                .map(ModelError::diagnostic),
-        );
-        let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
-        let checked = checked.filter(|_| is_sound);
+        let nothing_at = (purpose == Purpose::Run).then(|| main_span(&outcome.sources));
+        let checked = judged(scripts, errors, nothing_at, &mut outcome);
         if let Some(checked) = &checked {
             outcome.symbols = audit::rows(&checked.model, &checked.cases);
         }
         (outcome, checked)
     }
+
+    fn main(&self, name: &str, text: &str, path: Option<&Path>) -> Main {
+        Main {
+            name: name.to_owned(),
+            text: text.to_owned(),
+            path: path.map(Path::to_owned),
+            folder: self.folder.clone(),
+            root: self.root.clone().unwrap_or_else(|| self.folder.clone()),
+        }
+    }
 }
 
+/// What a script is read for; a shelf of declarations has nothing to answer, but can be
+/// checked.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Purpose {
+    Check,
+    Run,
+}
+
+/// Checks what was read and adds what is wrong to an outcome. A script that holds nothing
+/// to answer for is at fault at `nothing_at`, if that is given.
+fn judged(
+    scripts: Vec<(crate::model::Level, ast::Script)>,
+    errors: Vec<Diagnostic>,
+    nothing_at: Option<Span>,
+    outcome: &mut Outcome,
+) -> Option<Checked> {
+    let unreadable = unreadable_names(&scripts, &errors, &outcome.sources);
+    let is_whole = errors.iter().all(|found| !is_of_module(found));
+    let has_form = errors.iter().all(|found| !found.is_error());
+    outcome.diagnostics.extend(errors);
+    let (model, errors) = declarations::gather(scripts);
+    let (checked, errors) = check_model(model, errors, nothing_at, has_form);
+    outcome.diagnostics.extend(
+        errors
+            .iter()
+            .filter(|error| !is_echo(error, &unreadable, is_whole))
+            .map(ModelError::diagnostic),
+    );
+    let is_sound = !outcome.diagnostics.iter().any(Diagnostic::is_error);
+    checked.filter(|_| is_sound)
+}
+
+#[derive(Debug)]
 struct Checked {
     model: Model,
     cases: Vec<Case>,
@@ -221,24 +278,42 @@ fn main_span(sources: &Sources) -> Span {
 fn check_model(
     mut model: Model,
     mut errors: Vec<ModelError>,
-    main_span: Span,
+    nothing_at: Option<Span>,
     has_form: bool,
 ) -> (Option<Checked>, Vec<ModelError>) {
+    errors.extend(frames::resolve(&mut model));
     errors.extend(dimensions::check(&mut model));
     errors.extend(requests::check(&model));
-    if model.equations.is_empty() && model.requests.is_empty() && has_form {
-        errors.push(ModelError::NothingToRank { span: main_span });
+    if let Some(span) = nothing_at
+        && model.equations.is_empty()
+        && model.requests.is_empty()
+        && has_form
+    {
+        errors.push(ModelError::NothingToRank { span });
     }
     if !has_form || errors.iter().any(|error| error.diagnostic().is_error()) {
-        errors.extend(analysis::value_errors(&model));
+        for error in analysis::value_errors(&model) {
+            if errors.iter().all(|known| !overlap(known, &error)) {
+                errors.push(error);
+            }
+        }
         return (None, errors);
     }
     let (cases, found) = analysis::cases(&model);
     errors.extend(found);
     for case in &cases {
         errors.extend(requests::check_processes(&model, case));
+        errors.extend(bounds::check(&model, case));
     }
     (Some(Checked { model, cases }), errors)
+}
+
+/// Whether two faults point at one place, so that the second would repeat the first.
+fn overlap(a: &ModelError, b: &ModelError) -> bool {
+    match (a.diagnostic().span, b.diagnostic().span) {
+        (Some(a), Some(b)) => a.file == b.file && a.start < b.end && b.start < a.end,
+        (Some(_) | None, None) | (None, Some(_)) => false,
+    }
 }
 
 /// Names that stand in statements which could not be read: to call their uses unknown too
@@ -294,9 +369,34 @@ struct Answering<'a> {
     cases: &'a [Case],
     outcome: &'a mut Outcome,
     folders: Folders<'a>,
+    watcher: Option<&'a dyn Watcher>,
+    /// Phenomena in which a `find` gave formulas.
+    found: BTreeMap<Option<usize>, solving::Found>,
+    /// The `limit` in force.
+    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Whether a search was ended, and with it the rest.
+    is_interrupted: bool,
 }
 
-impl Answering<'_> {
+impl<'a> Answering<'a> {
+    fn new(
+        checked: &'a Checked,
+        outcome: &'a mut Outcome,
+        watcher: Option<&'a dyn Watcher>,
+        folders: Folders<'a>,
+    ) -> Answering<'a> {
+        Answering {
+            model: &checked.model,
+            cases: &checked.cases,
+            outcome,
+            folders,
+            watcher,
+            found: BTreeMap::new(),
+            limit: None,
+            is_interrupted: false,
+        }
+    }
+
     fn all(&mut self) {
         let model = self.model;
         if model.requests.is_empty() {
@@ -318,15 +418,46 @@ impl Answering<'_> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = words(self.outcome.sources.slice(request.span));
+            let text = one_line(self.outcome.sources.slice(request.span));
+            if let RequestKind::Limit { small, places } = &request.kind {
+                self.limit = Some((small, places));
+            }
+            if self.is_interrupted {
+                break;
+            }
             self.request(*own, request, &text);
         }
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
+        if let RequestKind::Find {
+            unknowns,
+            conditions,
+        } = &request.kind
+        {
+            let span = request.span;
+            let words = solving::FindWords {
+                unknowns,
+                conditions,
+                span,
+                text,
+            };
+            self.find(own, request, &words);
+            return;
+        }
+        if let RequestKind::Compare {
+            phenomena,
+            matching,
+        } = &request.kind
+        {
+            self.compare(phenomena, matching.as_deref(), request.span, text);
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
-            if let Some(case) = cases.iter().find(|case| case.setting.phenomenon == target) {
+            let solved = self.solved(target);
+            let given = cases.iter().find(|case| case.setting.phenomenon == target);
+            if let Some(case) = solved.as_deref().or(given) {
                 self.answer(case, request, text);
             }
         }
@@ -400,17 +531,112 @@ impl Answering<'_> {
                     Err(fault) => self.fault(fault, case, request.span),
                 }
             }
+            RequestKind::Layers => self.layers(case, request.span, text),
+            RequestKind::Nondimensionalize { equations, by } => {
+                if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
+                    let are_named = !equations.is_empty();
+                    let (divided, errors) =
+                        nondimensional::answer(self.model, case, &wanted, by.as_ref(), are_named);
+                    let errors = errors.iter().map(ModelError::diagnostic);
+                    self.outcome.diagnostics.extend(errors);
+                    let body = Body::Nondimensionalize(divided);
+                    self.outcome
+                        .answers
+                        .push(answer("nondimensionalize", left_out, body));
+                }
+            }
+            RequestKind::Groups => match groups::groups(self.model, case) {
+                Ok(found) => {
+                    self.outcome
+                        .answers
+                        .push(answer("groups", Vec::new(), Body::Groups(found)))
+                }
+                Err(groups::TooMany { n_symbols }) => {
+                    let span = request.span;
+                    let error = ModelError::TooManyGroups { n_symbols, span };
+                    self.outcome.diagnostics.push(error.diagnostic());
+                }
+            },
+            RequestKind::Bounds { symbols } => {
+                if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
+                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                        Ok(found) => {
+                            self.warn_of_lone_terms(case, &found);
+                            self.outcome.answers.push(answer(
+                                "bounds",
+                                left_out,
+                                Body::Bounds(found),
+                            ));
+                        }
+                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                    }
+                }
+            }
+            // Answered once, for all the phenomena they name.
+            RequestKind::Compare { .. } | RequestKind::Find { .. } => {}
             // The check refused these.
-            RequestKind::Nondimensionalize { .. }
-            | RequestKind::Bounds { .. }
-            | RequestKind::Find { .. }
-            | RequestKind::Layers
-            | RequestKind::Groups
-            | RequestKind::Limit { .. }
+            RequestKind::Limit { .. }
             | RequestKind::Expand { .. }
             | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..)
-            | RequestKind::Compare { .. } => {}
+            | RequestKind::Regimes(..) => {}
+        }
+    }
+
+    fn compare(
+        &mut self,
+        phenomena: &[ast::Name],
+        matching: Option<&[ast::Name]>,
+        span: Span,
+        text: &str,
+    ) {
+        let wanted = phenomena
+            .iter()
+            .map(|name| self.model.phenomenon(&name.text));
+        let solved: Vec<(Option<usize>, Option<Rc<Case>>)> =
+            wanted.map(|wanted| (wanted, self.solved(wanted))).collect();
+        let cases = self.cases;
+        let given = |wanted| cases.iter().find(|case| case.setting.phenomenon == wanted);
+        let named: Vec<&Case> = solved
+            .iter()
+            .filter_map(|(wanted, solved)| solved.as_deref().or(given(*wanted)))
+            .collect();
+        match compare::compare(self.model, &named, matching) {
+            Ok((comparison, left_out)) => {
+                let matching = comparison.matching.iter();
+                let found = matching.filter_map(|matching| standing::cannot_match(matching, span));
+                self.outcome.diagnostics.extend(found);
+                self.outcome.answers.push(Answer {
+                    request: "compare",
+                    phenomenon: None,
+                    title: None,
+                    text: text.to_owned(),
+                    left_out,
+                    body: Body::Compare(comparison),
+                });
+            }
+            Err(compare::Fault::Open(case, open)) => self.fault(Fault::Open(open), case, span),
+            Err(compare::Fault::TooMany) => {
+                let message = "matching tries more sets of scales than the limit";
+                let found = Diagnostic::error("too-large", span, message);
+                let found = found.with_help("name fewer groups behind `matching`");
+                self.outcome.diagnostics.push(found);
+            }
+        }
+    }
+
+    /// What `bounds` leaves out since nothing balances it.
+    fn warn_of_lone_terms(&mut self, case: &Case, bounds: &bounds::Bounds) {
+        for place in &bounds.lone {
+            let mut equations = case.equations.iter();
+            let span = equations
+                .find(|found| found.name == place.equation)
+                .map_or(Span::default(), |found| found.span);
+            let message = match &case.setting.name {
+                Some(name) => format!("{name}: {}", standing::left_out_lone(place)),
+                None => standing::left_out_lone(place),
+            };
+            let found = Diagnostic::warning("lone-leading-term", span, message);
+            self.outcome.diagnostics.push(found);
         }
     }
 
@@ -511,7 +737,7 @@ impl Answering<'_> {
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
         let subject = match equation {
             Some(equation) => format!("`{equation}` needs"),
-            None => "every equation needs".to_owned(),
+            None => "this request needs".to_owned(),
         };
         let whose = case
             .setting
@@ -559,7 +785,7 @@ impl Answering<'_> {
                     .iter()
                     .map(|id| case.setting.names[id.idx()].clone())
                     .collect();
-                self.open_scale(case, Some("this"), &names, span);
+                self.open_scale(case, None, &names, span);
             }
             fault => self
                 .outcome
@@ -576,7 +802,7 @@ impl Answering<'_> {
                 .iter()
                 .find(|found| found.name == equation.name)
                 .map_or(Span::default(), |found| found.span);
-            for warning in crate::report::words::warnings(equation) {
+            for warning in words::warnings(equation) {
                 let message = match &case.setting.name {
                     Some(name) => format!("{name}: {}", warning.message),
                     None => warning.message,
@@ -590,7 +816,7 @@ impl Answering<'_> {
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.
-fn words(text: &str) -> String {
+fn one_line(text: &str) -> String {
     let lines = text
         .lines()
         .map(|line| line.split('#').next().unwrap_or(""));

@@ -2,9 +2,12 @@
 
 mod answers;
 mod cli;
+mod exact;
 mod forms;
 mod harness;
 mod language;
 mod polyhedra;
+mod properties;
 mod published;
 mod reference;
+mod standing;

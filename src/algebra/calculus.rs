@@ -287,7 +287,11 @@ fn single_amplitude(
 
 /// The length over which factors vary along a coordinate; the first one's where they
 /// are products that vary alike.
-fn length_along(factors: &[Factor], along: CoordinateId, quantities: &Quantities) -> Size {
+pub(crate) fn length_along(
+    factors: &[Factor],
+    along: CoordinateId,
+    quantities: &Quantities,
+) -> Size {
     let one = || Size {
         written: Monomial::one(),
         resolved: Monomial::one(),

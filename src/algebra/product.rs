@@ -63,6 +63,9 @@ pub struct Sized {
     pub text: String,
     /// Its size.
     pub size: Size,
+    /// The sizes of its parts, the largest of which it must not exceed; none where they
+    /// cannot be told.
+    pub parts: Vec<Monomial>,
     /// How it varies, over the shortest of its parts' lengths.
     pub variations: Vec<Variation>,
     /// The fields in it.

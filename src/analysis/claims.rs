@@ -1,14 +1,17 @@
-//! `claim`: what CI holds a script to.
+//! `claim`: what CI holds a script to. Here stand the relations; `verdicts` holds the
+//! claims of what leads, is kept or drops, `mends` looks for scales that would make an
+//! unmet claim hold.
+
+mod mends;
+mod verdicts;
 
 use num_traits::ToPrimitive;
 
-use crate::algebra::monomial::{Monomial, Symbol};
-use crate::analysis::reduce::Kept;
+use crate::algebra::monomial::Monomial;
 use crate::analysis::show::{self, CaseNames, Quotient};
-use crate::analysis::sizes::{self, Verdict, at_most, same};
-use crate::model::errors::ModelError;
+use crate::analysis::sizes::{self, at_most, same};
 use crate::model::values::Fault;
-use crate::model::{declarations, requests, settings};
+use crate::model::{declarations, dimensions, settings};
 use crate::number::rational_to_f64;
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ClaimWord, Relation};
@@ -53,6 +56,8 @@ pub enum Measured {
         right: Range,
         /// The SI unit.
         unit: String,
+        /// The unit in which the claim speaks, for reports.
+        written_unit: Option<String>,
         /// The relation.
         relation: Relation,
         /// Whether interval arithmetic gave the ranges.
@@ -66,7 +71,20 @@ pub enum Measured {
         found: Vec<String>,
         /// For `dropped`: the highest share among them.
         share: Option<f64>,
+        /// The processes that are not as claimed.
+        astray: Vec<Astray>,
     },
+}
+
+/// A process that is not as a claim has it.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Astray {
+    /// The process.
+    pub process: String,
+    /// Its share; `None` where all its terms are gone.
+    pub share: Option<Range>,
+    /// Whether the claim names it.
+    pub is_claimed: bool,
 }
 
 /// Holds a claim against a case. The unit is that of its left side.
@@ -88,6 +106,7 @@ pub fn hold(
             word: ClaimWord::Kept,
             found: Vec::new(),
             share: None,
+            astray: Vec::new(),
         },
         miss: None,
         mends: Vec::new(),
@@ -98,7 +117,7 @@ pub fn hold(
             word,
             equation,
             processes,
-        } => verdict(*word, equation, processes, held, names),
+        } => verdicts::verdict(*word, equation, processes, held, names),
         Claim::Relation {
             left,
             relation,
@@ -112,117 +131,6 @@ pub fn hold(
                 comparison(left, *relation, right, within.as_ref(), unit, held, names)
             }
         },
-    }
-}
-
-// Verdicts ------------------------------------------------------------------------------------
-
-fn verdict(
-    word: ClaimWord,
-    equation: &ast::Name,
-    processes: &[ast::ProcessRef],
-    held: Held,
-    names: &CaseNames<'_>,
-) -> Result<Held, Fault> {
-    let case = names.case;
-    let Some(idx) = names.model.equation(&equation.text) else {
-        return Err(Fault::NotAProduct(equation.span));
-    };
-    let terms = &case.equations[idx];
-    let tolerance = case.setting.tolerance();
-    let Some(kept) = Kept::of(case, terms, tolerance) else {
-        let mut open = Vec::new();
-        for term in &terms.terms {
-            open.extend(
-                case.setting
-                    .monomial_range(&term.size.resolved)
-                    .err()
-                    .into_iter()
-                    .flatten(),
-            );
-        }
-        return Err(Fault::Open(open));
-    };
-    let wanted: Vec<String> = processes
-        .iter()
-        .map(|process| requests::process_label(names.model, case, idx, process))
-        .collect::<Result<_, ModelError>>()?;
-    let labels = |found: Vec<&crate::analysis::rank::RankedProcess>| -> Vec<String> {
-        found
-            .into_iter()
-            .map(|process| process.process.clone())
-            .collect()
-    };
-    Ok(match word {
-        ClaimWord::Leading => exactly(word, &wanted, labels(kept.leading()), held),
-        ClaimWord::Kept => exactly(word, &wanted, labels(kept.kept_processes()), held),
-        ClaimWord::Dropped => dropped(&wanted, &kept, tolerance, held, names),
-    })
-}
-
-fn exactly(word: ClaimWord, wanted: &[String], found: Vec<String>, held: Held) -> Held {
-    let met = wanted.iter().all(|process| found.contains(process))
-        && found.iter().all(|process| wanted.contains(process));
-    Held {
-        met,
-        measured: Measured::Processes {
-            word,
-            found,
-            share: None,
-        },
-        ..held
-    }
-}
-
-fn dropped(
-    wanted: &[String],
-    kept: &Kept<'_>,
-    tolerance: f64,
-    held: Held,
-    names: &CaseNames<'_>,
-) -> Held {
-    let stays: Vec<usize> = (0..kept.verdicts.len())
-        .filter(|idx| kept.verdicts[*idx] != Verdict::Drops)
-        .filter(|idx| {
-            wanted
-                .iter()
-                .any(|process| process == kept.equation.terms[*idx].label())
-        })
-        .collect();
-    let mut found: Vec<String> = Vec::new();
-    for idx in &stays {
-        let label = kept.equation.terms[*idx].label();
-        if !found.iter().any(|present| present == label) {
-            found.push(label.to_owned());
-        }
-    }
-    let share = stays
-        .iter()
-        .map(|idx| kept.shares.shares[*idx].high)
-        .reduce(f64::max);
-    let size = |idx: usize| kept.equation.terms[idx].size.resolved.clone();
-    let quotient = Quotient {
-        above: stays.iter().map(|idx| size(*idx)).collect(),
-        below: (0..kept.verdicts.len())
-            .filter(|idx| !stays.contains(idx))
-            .map(size)
-            .collect(),
-    };
-    let mends = if stays.is_empty() || quotient.below.is_empty() {
-        Vec::new()
-    } else {
-        mends(&quotient, tolerance, names)
-    };
-    Held {
-        met: stays.is_empty(),
-        miss: share.map(|share| share / tolerance),
-        mends,
-        measured: Measured::Processes {
-            word: ClaimWord::Dropped,
-            found,
-            share,
-        },
-        ..held
     }
 }
 
@@ -254,9 +162,9 @@ fn ratio(
     let mends = match quotient.filter(|_| !met) {
         None => Vec::new(),
         Some(quotient) => match relation {
-            Relation::MuchLess => mends(&quotient, limit, names),
-            Relation::MuchGreater => mends(&inverse(quotient), limit, names),
-            _ => similar_mends(&quotient, limit, names),
+            Relation::MuchLess => mends::of_ratio(&quotient, limit, names),
+            Relation::MuchGreater => mends::of_ratio(&inverse(quotient), limit, names),
+            _ => mends::of_nearness(&quotient, limit, names),
         },
     };
     Ok(Held {
@@ -368,9 +276,9 @@ fn comparison(
     let mends = match quotient.filter(|_| !met) {
         None => Vec::new(),
         Some(quotient) => match relation {
-            Relation::Less => mends(&quotient, 1.0, names),
-            Relation::Greater => mends(&inverse(quotient), 1.0, names),
-            _ => similar_mends(&quotient, limits.0.min(limits.1), names),
+            Relation::Less => mends::of_ratio(&quotient, 1.0, names),
+            Relation::Greater => mends::of_ratio(&inverse(quotient), 1.0, names),
+            _ => mends::of_nearness(&quotient, limits.0.min(limits.1), names),
         },
     };
     Ok(Held {
@@ -381,120 +289,12 @@ fn comparison(
             left: a,
             right: b,
             unit,
+            written_unit: dimensions::literal_unit(right)
+                .or(dimensions::literal_unit(left))
+                .map(|unit| unit.text.clone()),
             relation,
             is_bound: a_is_bound || b_is_bound,
         },
         ..held
     })
-}
-
-// Mends ---------------------------------------------------------------------------------------
-
-/// Decades within which a mend is looked for.
-const MEND_DECADES: f64 = 12.0;
-/// The step, in natural logarithms, of the search for the nearest mend.
-const MEND_STEP: f64 = 0.25;
-
-/// The scales that alone bring the highest value of a ratio to the limit, each with its
-/// factor (the whole range of the scale moves), nearest first.
-fn mends(quotient: &Quotient, limit: f64, names: &CaseNames<'_>) -> Vec<(String, f64)> {
-    let highest =
-        |shifted: &Quotient| sizes::ratio(&names.case.setting, &shifted.above, &shifted.below).high;
-    nearest_mends(quotient, names, &|shifted| highest(shifted) / limit)
-}
-
-/// The same for a nominal ratio that must lie within a factor of 1.
-fn similar_mends(quotient: &Quotient, limit: f64, names: &CaseNames<'_>) -> Vec<(String, f64)> {
-    let setting = &names.case.setting;
-    let nominal = |sizes: &[Monomial]| {
-        let sizes = sizes.iter().map(|size| setting.nominal(size));
-        sizes.fold(0.0, f64::max)
-    };
-    nearest_mends(quotient, names, &|shifted| {
-        let ratio = nominal(&shifted.above) / nominal(&shifted.below);
-        ratio.max(1.0 / ratio) / limit
-    })
-}
-
-/// `excess` is above 1 where the claim fails.
-fn nearest_mends(
-    quotient: &Quotient,
-    names: &CaseNames<'_>,
-    excess: &dyn Fn(&Quotient) -> f64,
-) -> Vec<(String, f64)> {
-    let mut symbols: Vec<Symbol> = Vec::new();
-    for (symbol, _) in quotient
-        .above
-        .iter()
-        .chain(&quotient.below)
-        .flat_map(Monomial::powers)
-    {
-        let is_scale = match symbol {
-            Symbol::Declared(id) => names.model.symbols[id.idx()].kind == ast::ValueKind::Scale,
-            Symbol::Function(_) => false,
-        };
-        if is_scale && !symbols.contains(symbol) {
-            symbols.push(symbol.clone());
-        }
-    }
-    symbols.sort();
-    let mut found: Vec<(String, f64)> = symbols
-        .iter()
-        .filter_map(|symbol| {
-            let way = nearest_way(&|way| excess(&shifted(quotient, symbol, way)))?;
-            Some((names.case.symbol_name(symbol), way.exp()))
-        })
-        .collect();
-    found.sort_by(|a, b| a.1.ln().abs().total_cmp(&b.1.ln().abs()));
-    found
-}
-
-/// The same sizes with one scale multiplied by `exp(way)`.
-fn shifted(quotient: &Quotient, symbol: &Symbol, way: f64) -> Quotient {
-    let moved = |sizes: &[Monomial]| -> Vec<Monomial> {
-        sizes
-            .iter()
-            .map(|size| {
-                let power = size.powers().iter().find(|(found, _)| found == symbol);
-                let factor = power.map_or(1.0, |(_, power)| (power.to_f64() * way).exp());
-                let mut size = size.clone();
-                if let Some(exact) = num_rational::BigRational::from_float(factor)
-                    && let Ok(number) = size.number.times(&crate::number::Number::rational(exact))
-                {
-                    size.number = number;
-                }
-                size
-            })
-            .collect()
-    };
-    Quotient {
-        above: moved(&quotient.above),
-        below: moved(&quotient.below),
-    }
-}
-
-/// The shortest way, up or down, at which the excess falls to 1.
-fn nearest_way(excess: &dyn Fn(f64) -> f64) -> Option<f64> {
-    let n_steps = (MEND_DECADES * std::f64::consts::LN_10 / MEND_STEP) as usize;
-    for step in 1..=n_steps {
-        for sign in [1.0, -1.0] {
-            let far = sign * MEND_STEP * step as f64;
-            if at_most(excess(far), 1.0) {
-                return Some(bisected(excess, far - sign * MEND_STEP, far));
-            }
-        }
-    }
-    None
-}
-
-fn bisected(excess: &dyn Fn(f64) -> f64, mut fails: f64, mut holds: f64) -> f64 {
-    for _ in 0..60 {
-        let middle = 0.5 * (fails + holds);
-        if at_most(excess(middle), 1.0) {
-            holds = middle;
-        } else {
-            fails = middle;
-        }
-    }
-    holds
 }

@@ -1,15 +1,24 @@
 //! The answers: one file a request. Each takes a [`Case`] and gives plain data, numbers
 //! and names, never prose.
 
+pub mod balances;
+pub mod bounds;
 pub mod claims;
+pub mod compare;
+pub mod groups;
+pub mod layers;
+pub mod matching;
+pub mod movable;
 pub mod names;
+pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod shelf;
 pub mod show;
 pub mod sizes;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
-use crate::model::settings::{self, Setting};
+use crate::model::settings::{self, Adopted, Setting};
 use crate::model::terms::{self, EquationTerms};
 use crate::model::{Model, errors::ModelError};
 use crate::number::{Exponent, Number};
@@ -64,7 +73,16 @@ pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
 
 /// Works out one phenomenon.
 pub fn case(model: &Model, phenomenon: Option<usize>) -> (Option<Case>, Vec<ModelError>) {
-    let (setting, mut errors) = settings::build(model, phenomenon);
+    case_with(model, phenomenon, &Adopted::new())
+}
+
+/// The same with open scales that follow the formulas found for them.
+pub fn case_with(
+    model: &Model,
+    phenomenon: Option<usize>,
+    adopted: &Adopted,
+) -> (Option<Case>, Vec<ModelError>) {
+    let (setting, mut errors) = settings::build_with(model, phenomenon, adopted);
     let Some(setting) = setting else {
         return (None, errors);
     };
@@ -157,8 +175,20 @@ pub struct Answer {
 pub enum Body {
     /// `show`.
     Show(show::Shown),
+    /// `groups`.
+    Groups(groups::Groups),
+    /// `nondimensionalize`.
+    Nondimensionalize(Vec<nondimensional::DimensionlessEquation>),
     /// `rank`.
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `find`.
+    Find(balances::Balances),
+    /// `layers`.
+    Layers(layers::Layers),
+    /// `bounds`.
+    Bounds(bounds::Bounds),
+    /// `compare`.
+    Compare(compare::Comparison),
 }

@@ -28,12 +28,15 @@ pub struct Namer<'c> {
 }
 
 impl<'c> Namer<'c> {
-    /// For a case; a group that holds an open scale is not used, nor one without symbols.
+    /// For a case; a group that holds an open scale or a constant that is 0 is not used, nor
+    /// one without symbols.
     pub fn new(case: &'c Case) -> Namer<'c> {
         let usable = (0..case.setting.groups.len())
             .filter(|idx| {
                 let size = &case.setting.groups[*idx].size.resolved;
-                !size.is_number() && case.setting.monomial_range(size).is_ok()
+                !size.is_number()
+                    && case.setting.is_available(size)
+                    && case.setting.monomial_range(size).is_ok()
             })
             .collect();
         Namer {

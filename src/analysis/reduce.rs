@@ -281,7 +281,7 @@ fn reduced_term(
 
 /// The conditions under which a term may go: against the nominally largest term first,
 /// then against each other one that is the largest somewhere.
-fn conditions(
+pub fn conditions(
     case: &Case,
     kept: &Kept<'_>,
     idx: usize,
@@ -552,7 +552,8 @@ fn lost_derivatives(case: &Case, kept: &Kept<'_>, stays: &[usize]) -> Vec<LostDe
     lost
 }
 
-fn order_along(derivative: &Derivative, along: CoordinateId) -> u32 {
+/// The order of a derivative along a coordinate, those inside it included.
+pub(crate) fn order_along(derivative: &Derivative, along: CoordinateId) -> u32 {
     let own: u32 = derivative
         .by
         .iter()

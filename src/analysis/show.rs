@@ -224,6 +224,15 @@ fn products(left: &[Monomial], right: &[Monomial], span: Span) -> Result<Vec<Mon
 /// # Errors
 /// Open names, divisions by zero and the like.
 pub fn value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), Fault> {
+    let (range, is_bound) = unchecked_value(expr, names)?;
+    let is_finite = range.low.is_finite() && range.nominal.is_finite() && range.high.is_finite();
+    if !is_finite {
+        return Err(Fault::Error(ModelError::TooLarge { span: expr.span }));
+    }
+    Ok((range, is_bound))
+}
+
+fn unchecked_value(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<(Range, bool), Fault> {
     let setting = &names.case.setting;
     match quotient(expr, names) {
         Ok(found) => match (found.above.as_slice(), found.below.as_slice()) {

@@ -15,7 +15,9 @@ const SAME: f64 = 1e-12;
 
 /// Whether two sizes are equal.
 pub fn same(a: f64, b: f64) -> bool {
-    (a - b).abs() <= SAME * a.abs().max(b.abs())
+    let largest = a.abs().max(b.abs());
+    // An infinite size, of something over 0, would be near to everything.
+    a == b || (largest.is_finite() && (a - b).abs() <= SAME * largest)
 }
 
 /// Whether a size lies at or below a limit.
@@ -92,6 +94,11 @@ impl Space {
             }
         }
         Space { symbols, bounds }
+    }
+
+    /// The symbols with their ranges, in natural logarithms of amounts.
+    pub fn ranges(&self) -> impl Iterator<Item = (&Symbol, (f64, f64))> {
+        self.symbols.iter().zip(self.bounds.iter().copied())
     }
 
     /// Whether it is a single point.
@@ -190,11 +197,52 @@ impl Shares {
             .iter()
             .map(|idx| polyhedra::highest(*idx, &self.forms, bounds))
             .fold(f64::NEG_INFINITY, f64::max);
-        Range {
-            low: snapped(low.exp()).min(nominal),
-            nominal,
-            high: snapped(high.exp()).max(nominal),
+        around(snapped(low.exp()), nominal, snapped(high.exp()))
+    }
+
+    /// The lowest share of a process over the box.
+    pub fn lowest(&self, members: &[usize]) -> f64 {
+        if self.space.is_point() {
+            return self.of_process(members).nominal;
         }
+        let low = polyhedra::lowest_of_process(members, &self.forms, &self.space.bounds);
+        snapped(low.exp())
+    }
+
+    /// The highest share of a term over the box.
+    pub fn highest(&self, term: usize) -> f64 {
+        if self.space.is_point() {
+            return self.of_process(&[term]).nominal;
+        }
+        let high = polyhedra::highest(term, &self.forms, &self.space.bounds);
+        snapped(high.exp())
+    }
+
+    /// The nominal share of a process.
+    pub fn nominal(&self, members: &[usize]) -> f64 {
+        let own = members.iter().map(|idx| self.sizes[*idx].nominal);
+        snapped(own.fold(0.0, f64::max) / self.sizes[self.largest].nominal)
+    }
+
+    /// The same with the size of each term multiplied by the exponential of its way; the
+    /// shares are worked out when they are asked for.
+    #[must_use]
+    pub fn moved(&self, ways: &[f64]) -> Shares {
+        let mut moved = Shares {
+            shares: Vec::new(),
+            ..self.clone()
+        };
+        for (idx, way) in ways.iter().enumerate() {
+            let factor = way.exp();
+            moved.forms[idx].constant += way;
+            let size = &mut moved.sizes[idx];
+            size.low *= factor;
+            size.nominal *= factor;
+            size.high *= factor;
+        }
+        let nominal = moved.sizes.iter().map(|size| size.nominal);
+        moved.largest = largest(nominal).unwrap_or(0);
+        moved
     }
 
     /// The terms that are the largest somewhere in the box.
@@ -202,6 +250,16 @@ impl Shares {
         (0..self.shares.len())
             .filter(|idx| same(self.shares[*idx].high, 1.0))
             .collect()
+    }
+}
+
+/// A range whose ends are equal to its nominal value within rounding is that value.
+fn around(low: f64, nominal: f64, high: f64) -> Range {
+    let end = |end: f64| if same(end, nominal) { nominal } else { end };
+    Range {
+        low: end(low).min(nominal),
+        nominal,
+        high: end(high).max(nominal),
     }
 }
 
@@ -244,11 +302,11 @@ pub fn ratio(setting: &Setting, above: &[Monomial], below: &[Monomial]) -> Range
             .map(|idx| polyhedra::highest_against(*idx, against, &forms, &space.bounds))
             .fold(f64::NEG_INFINITY, f64::max)
     };
-    Range {
-        low: (-highest(&rivals, &own)).exp().min(nominal),
+    around(
+        (-highest(&rivals, &own)).exp(),
         nominal,
-        high: highest(&own, &rivals).exp().max(nominal),
-    }
+        highest(&own, &rivals).exp(),
+    )
 }
 
 #[cfg(test)]
@@ -262,6 +320,14 @@ mod tests {
         assert_eq!(order_of_magnitude(3.0), Some(0));
         assert_eq!(order_of_magnitude(3.2), Some(1));
         assert_eq!(order_of_magnitude(0.0), None);
+    }
+
+    #[test]
+    fn nothing_finite_is_near_to_infinity() {
+        assert!(same(1.0, 1.0 + 1e-13));
+        assert!(!same(f64::INFINITY, 1.0));
+        assert!(!at_most(f64::INFINITY, 1.0));
+        assert!(same(f64::INFINITY, f64::INFINITY));
     }
 
     #[test]

@@ -9,9 +9,10 @@ use num_traits::{One, Signed};
 use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::model::errors::{Clash, ModelError, Unavailable};
+use crate::model::frames::FrameInfo;
 use crate::model::{
     CoordinateInfo, FieldInfo, GroupId, GroupInfo, Level, Meaning, Model, PhenomenonInfo,
-    SymbolInfo, ToleranceInfo, VelocityInfo, is_given, names,
+    SymbolInfo, ToleranceInfo, VectorId, VectorInfo, VelocityInfo, is_given, names,
 };
 use crate::source::Span;
 use crate::syntax::ast;
@@ -52,13 +53,10 @@ impl Gatherer {
             Kind::Field(decl) => self.field(decl, span),
             Kind::Velocity(decl) => self.velocity(decl, span),
             Kind::Equation(decl) => self.equation(decl),
-            Kind::Group(decl) => self.group(decl),
+            Kind::Group(decl) => self.group(level, decl),
             Kind::Balance(decl) => self.balance(decl),
-            Kind::Frame(_) => self.unavailable(Unavailable::Frames, span),
-            Kind::Vector(decl) => {
-                self.unavailable(Unavailable::Frames, span);
-                self.sizeless_field(decl.name, Vec::new(), decl.notes);
-            }
+            Kind::Frame(decl) => self.frame(decl, span),
+            Kind::Vector(decl) => self.vector(decl),
             Kind::Split(decl) => self.sizeless_field(decl.name, decl.parts, decl.notes),
             Kind::Tolerance(decl) if level == Level::Script => self.tolerance(&decl),
             Kind::Phenomenon(decl) if level == Level::Script => self.phenomenon(decl),
@@ -226,14 +224,13 @@ impl Gatherer {
 
     fn velocity(&mut self, decl: ast::VelocityDecl, span: Span) {
         match decl {
-            ast::VelocityDecl::Vector { .. } => self.unavailable(Unavailable::Frames, span),
+            ast::VelocityDecl::Vector { name, .. } => self.vector_velocity(name, span),
             ast::VelocityDecl::Components {
                 fields,
                 coordinates,
                 ..
             } => {
-                if let Some(first) = &self.model.velocity {
-                    let first = first.span;
+                if let Some(first) = self.first_velocity() {
                     self.errors.push(ModelError::SecondValue {
                         name: "velocity".to_owned(),
                         span,
@@ -250,6 +247,53 @@ impl Gatherer {
                     self.model.velocity = Some(VelocityInfo { components, span });
                 }
             }
+        }
+    }
+
+    fn first_velocity(&self) -> Option<Span> {
+        let vector = self.model.vector_velocity.as_ref().map(|(_, span)| *span);
+        let components = self.model.velocity.as_ref().map(|info| info.span);
+        vector.or(components)
+    }
+
+    fn vector_velocity(&mut self, name: ast::Name, span: Span) {
+        match self.first_velocity() {
+            Some(first) => self.errors.push(ModelError::SecondValue {
+                name: "velocity".to_owned(),
+                span,
+                first,
+            }),
+            None => self.model.vector_velocity = Some((name, span)),
+        }
+    }
+
+    fn frame(&mut self, decl: ast::FrameDecl, span: Span) {
+        match &self.model.frame {
+            Some(first) => self.errors.push(ModelError::SecondValue {
+                name: "frame".to_owned(),
+                span,
+                first: first.span,
+            }),
+            None => self.model.frame = Some(FrameInfo::new(decl, span)),
+        }
+    }
+
+    fn vector(&mut self, decl: ast::VectorDecl) {
+        let id = VectorId(self.model.vectors.len() as u32);
+        let span = decl.value.span;
+        let components = match decl.value.kind {
+            ast::ExprKind::Tuple(parts) => parts,
+            // What could not be read was reported.
+            _ => Vec::new(),
+        };
+        if self.claim_name(&decl.name, Meaning::Vector(id)) {
+            self.model.vectors.push(VectorInfo {
+                name: decl.name,
+                components,
+                span,
+                notes: decl.notes,
+                shape: None,
+            });
         }
     }
 
@@ -272,15 +316,36 @@ impl Gatherer {
         self.model.equations.push(decl);
     }
 
-    fn group(&mut self, decl: ast::GroupDecl) {
-        let id = GroupId(self.model.groups.len() as u32);
-        if self.claim_name(&decl.name, Meaning::Group(id)) {
-            self.model.groups.push(GroupInfo {
-                name: decl.name,
-                value: decl.value,
-                notes: decl.notes,
-            });
+    fn group(&mut self, level: Level, decl: ast::GroupDecl) {
+        let info = GroupInfo {
+            name: decl.name,
+            value: decl.value,
+            notes: decl.notes,
+            level,
+        };
+        if let Some(Meaning::Group(id)) = self.model.names.get(&info.name.text).copied()
+            && self.model.groups[id.0 as usize].level < level
+        {
+            self.override_group(id, info);
+            return;
         }
+        let id = GroupId(self.model.groups.len() as u32);
+        if self.claim_name(&info.name, Meaning::Group(id)) {
+            self.model.groups.push(info);
+        }
+    }
+
+    /// A script's group takes the place of a module's.
+    fn override_group(&mut self, id: GroupId, info: GroupInfo) {
+        let place = &mut self.model.groups[id.0 as usize];
+        self.errors.push(ModelError::ValueOverridden {
+            name: info.name.text.clone(),
+            span: info.name.span,
+            first: place.name.span,
+            phenomenon: None,
+        });
+        self.places.insert(info.name.text.clone(), info.name.span);
+        *place = info;
     }
 
     fn balance(&mut self, decl: ast::BalanceDecl) {
@@ -367,7 +432,9 @@ impl Gatherer {
     fn phenomenon_value(&mut self, idx: usize, decl: ast::ValueDecl) {
         let id = match self.model.names.get(&decl.name.text).copied() {
             Some(Meaning::Symbol(id)) => id,
-            Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) => {
+            Some(
+                Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            ) => {
                 let first = self.places[&decl.name.text];
                 self.clash(&decl.name, first, Clash::Name);
                 return;

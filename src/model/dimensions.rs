@@ -5,7 +5,8 @@
 //! points at both terms.
 
 use crate::algebra::monomial::SymbolId;
-use crate::model::errors::{Alike, Clash, ModelError, Unavailable};
+use crate::model::errors::{Alike, Clash, ModelError, Shape, Unavailable};
+use crate::model::frames;
 use crate::model::names::{self, Call, Function};
 use crate::model::{Level, Meaning, Model, declarations, is_given};
 use crate::number::{Exponent, TooLarge};
@@ -54,6 +55,8 @@ pub fn check(model: &mut Model) -> Vec<ModelError> {
     let mut errors = Vec::new();
     symbols(model, &mut errors);
     coordinates_and_fields(model, &mut errors);
+    frames::check_dimensions(model, &mut errors);
+    vectors(model, &mut errors);
     velocity(model, &mut errors);
     groups(model, &mut errors);
     derivative_clashes(model, &mut errors);
@@ -212,6 +215,13 @@ fn spread_dimension(
         });
         return;
     }
+    if names::has_names(end) {
+        errors.push(ModelError::DerivedScale {
+            name: crate::syntax::print::expression(end),
+            span: end.span,
+        });
+        return;
+    }
     let found = dimension(end, model, phenomenon, place, errors);
     if borrows_unit(spread, nominal) {
         return;
@@ -339,7 +349,10 @@ fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
                 .filter_map(|(_, part)| model.meaning(&part.text, None));
             let fields = parts.filter_map(|meaning| match meaning {
                 Meaning::Field(id) => Some(id.0 as usize),
-                Meaning::Symbol(_) | Meaning::Coordinate(_) | Meaning::Group(_) => None,
+                Meaning::Symbol(_)
+                | Meaning::Coordinate(_)
+                | Meaning::Group(_)
+                | Meaning::Vector(_) => None,
             });
             fields.collect()
         })
@@ -489,12 +502,21 @@ fn out_of_place(
         Meaning::Coordinate(_) => "coordinate",
         Meaning::Field(_) => "field",
         Meaning::Group(_) => "group",
+        Meaning::Vector(_) => "vector",
     };
     ModelError::OutOfPlace {
         name: name.to_owned(),
         kind,
         wanted,
         span,
+    }
+}
+
+/// Components are expressions of an equation; their dimensions need not agree.
+fn vectors(model: &Model, errors: &mut Vec<ModelError>) {
+    let sound = model.vectors.iter().filter(|info| info.shape.is_some());
+    for part in sound.flat_map(|info| &info.components) {
+        dimension(part, model, None, Place::Equation, errors);
     }
 }
 
@@ -513,6 +535,10 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
     };
     for (field, along) in &info.components {
         let place = coordinate(along, model, errors);
+        let length = match model.meaning(&along.text, None) {
+            Some(Meaning::Coordinate(id)) => frames::length_dimension(id, model),
+            Some(_) | None => None,
+        };
         let meaning = model.meaning(&field.text, None);
         let Some(Meaning::Field(id)) = meaning else {
             errors.push(match meaning {
@@ -521,7 +547,8 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
             });
             continue;
         };
-        let (Some((_, Some(length))), Some(speed)) = (place, model.fields[id.0 as usize].dimension)
+        let (Some(_), Some(length), Some(speed)) =
+            (place, length, model.fields[id.0 as usize].dimension)
         else {
             continue;
         };
@@ -590,6 +617,7 @@ fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
             Some(Meaning::Coordinate(id)) => model.coordinates[id.0 as usize].name.span,
             Some(Meaning::Field(id)) => model.fields[id.0 as usize].name.span,
             Some(Meaning::Group(id)) => model.groups[id.0 as usize].name.span,
+            Some(Meaning::Vector(id)) => model.vectors[id.0 as usize].name.span,
             None => continue,
         };
         errors.push(ModelError::NameClash {
@@ -602,19 +630,27 @@ fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
 }
 
 fn equations(model: &mut Model, errors: &mut Vec<ModelError>) {
-    let dimensions = model
-        .equations
-        .iter()
-        .map(|equation| match &equation.body {
+    let mut dimensions = Vec::with_capacity(model.equations.len());
+    let mut found = Vec::new();
+    for equation in &model.equations {
+        let own = match &equation.body {
             ast::EquationBody::Written { left, right } => {
-                let left = dimension(left, model, None, Place::Equation, errors);
-                let right = dimension(right, model, None, Place::Equation, errors);
-                alike(left, right, Alike::Sides, errors);
+                let left = dimension(left, model, None, Place::Equation, &mut found);
+                let right = dimension(right, model, None, Place::Equation, &mut found);
+                alike(left, right, Alike::Sides, &mut found);
                 left.known().or(right.known())
             }
             ast::EquationBody::Made(_) => None,
-        })
-        .collect();
+        };
+        dimensions.push(own);
+        // What is written out in components repeats its faults.
+        for error in found.drain(..) {
+            let diagnostic = error.diagnostic();
+            if errors.iter().all(|known| known.diagnostic() != diagnostic) {
+                errors.push(error);
+            }
+        }
+    }
     model.equation_dimensions = dimensions;
 }
 
@@ -633,16 +669,25 @@ fn balances(model: &Model, errors: &mut Vec<ModelError>) {
 /// # Errors
 /// [`ModelError::UnknownEquation`].
 pub fn equation(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
-    model
-        .equation(&name.text)
-        .ok_or_else(|| ModelError::UnknownEquation {
+    let mut vectors = model.vector_equations.iter();
+    let vector = vectors.find(|found| found.name.text == name.text);
+    match (model.equation(&name.text), vector) {
+        (Some(idx), _) => Ok(idx),
+        (None, Some(vector)) => Err(ModelError::VectorEquation {
             name: name.text.clone(),
             span: name.span,
-            nearest: names::nearest(
-                &name.text,
-                model.equations.iter().map(|found| found.name.text.as_str()),
-            ),
-        })
+            components: vector.components.clone(),
+        }),
+        (None, None) => {
+            let whole = model.vector_equations.iter().map(|found| &found.name);
+            let known = model.equations.iter().map(|found| &found.name).chain(whole);
+            Err(ModelError::UnknownEquation {
+                name: name.text.clone(),
+                span: name.span,
+                nearest: names::nearest(&name.text, known.map(|name| name.text.as_str())),
+            })
+        }
+    }
 }
 
 // Order -----------------------------------------------------------------------------------
@@ -743,11 +788,13 @@ impl Walker<'_> {
                 function,
                 order,
                 arguments,
-            } => self.call(&function.text, *order, arguments, span),
+            } => self.call(expr, &function.text, *order, arguments),
             ExprKind::Derivative { operand, by } => self.derivative(operand, by, span),
-            ExprKind::Tuple(_) => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Frames,
+            ExprKind::Tuple(_) => self.fault(ModelError::WrongShape {
+                wanted: Shape::Scalar,
+                found: Shape::Vector,
                 span,
+                because: None,
             }),
             ExprKind::Sized { expr, size } => self.sized(expr, size, span),
             ExprKind::Error => Dim::Faulty,
@@ -847,7 +894,7 @@ impl Walker<'_> {
             Meaning::Group(_) if may_be_group => Some(Dimension::one()),
             Meaning::Coordinate(id) if may_vary => self.model.coordinates[id.0 as usize].dimension,
             Meaning::Field(id) if may_vary => self.model.fields[id.0 as usize].dimension,
-            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) => {
+            Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_) => {
                 let wanted = if may_be_group {
                     "a scale, a constant or a group"
                 } else {
@@ -965,11 +1012,12 @@ impl Walker<'_> {
 
     fn call(
         &mut self,
+        expr: &ast::Expr,
         function: &str,
         order: Option<u32>,
         arguments: &[ast::Expr],
-        span: Span,
     ) -> Dim {
+        let span = expr.span;
         let found = names::call(function, self.model);
         match found {
             Call::Unknown => {
@@ -990,10 +1038,7 @@ impl Walker<'_> {
                 what: Unavailable::Means,
                 span,
             }),
-            Call::Vector => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Frames,
-                span,
-            }),
+            Call::Vector => self.vector_operation(expr),
             Call::Function(found) => self.function(found, function, order, arguments, span),
             Call::Derivative(id) => {
                 let Some(inside) = self.operand(function, arguments, span) else {
@@ -1003,6 +1048,22 @@ impl Walker<'_> {
                 self.quotient(inside, along, order.unwrap_or(1), span)
             }
             Call::Material => self.material(function, arguments, span),
+        }
+    }
+
+    /// A vector operation that gives a scalar, in the coordinates of the frame.
+    fn vector_operation(&mut self, expr: &ast::Expr) -> Dim {
+        let span = expr.span;
+        if self.place != Place::Equation {
+            return self.fault(ModelError::WrongForm {
+                found: "a vector operation",
+                wanted: "no derivative outside an equation",
+                span,
+            });
+        }
+        match frames::expanded(expr, self.model) {
+            Ok(written_out) => self.dimension(&written_out),
+            Err(error) => self.fault(error),
         }
     }
 
@@ -1070,7 +1131,7 @@ impl Walker<'_> {
                 return None;
             };
             let speed = self.model.fields[field.0 as usize].dimension?;
-            let length = self.model.coordinates[along.0 as usize].dimension?;
+            let length = frames::length_dimension(along, self.model)?;
             length.over(&speed).ok()
         });
         self.quotient(inside, rate, 1, span)

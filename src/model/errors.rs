@@ -131,10 +131,24 @@ pub enum ModelError {
     ShareAsMargin { span: Span, text: String },
     /// A range behind a value that follows others.
     DerivedScale { name: String, span: Span },
+    /// A derived name where one is wanted that moves by itself.
+    MovesWithParts {
+        name: String,
+        span: Span,
+        parts: Vec<String>,
+    },
+    /// A name that would move a symbol which is no product with it.
+    MovesOthers {
+        name: String,
+        span: Span,
+        holders: Vec<String>,
+    },
     /// Something that is no product of powers where one is needed.
     NotAProduct { span: Span, what: Product },
     /// A number or exponent beyond the limits.
     TooLarge { span: Span },
+    /// More scales than dimensionless groups are looked for among.
+    TooManyGroups { n_symbols: usize, span: Span },
     /// A division by 0.
     DividesByZero { span: Span },
     /// A value outside the domain of a function, or not a real number.
@@ -150,6 +164,27 @@ pub enum ModelError {
     OneTerm { equation: String, span: Span },
     /// `D_t` without a velocity.
     NoVelocity { span: Span },
+    /// Vectors without a frame.
+    NoFrame { span: Span },
+    /// A vector where a scalar is needed, or the other way round.
+    WrongShape {
+        wanted: Shape,
+        found: Shape,
+        span: Span,
+        because: Option<Span>,
+    },
+    /// A tuple of another number than three, or six for a stress.
+    ComponentCount { found: usize, span: Span },
+    /// Vector operations nested beyond the limit.
+    DeepVectors { span: Span },
+    /// A vector expression that comes to too much.
+    TooManyTerms { span: Span },
+    /// A vector equation where one component is needed.
+    VectorEquation {
+        name: String,
+        span: Span,
+        components: Vec<String>,
+    },
     /// Without a time coordinate `D_t` has no tendency.
     NoTime { span: Span },
     /// A function of something that varies.
@@ -223,11 +258,20 @@ pub enum ModelError {
     OutsideFolder { path: String, span: Span },
 }
 
+/// What an expression is.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Shape {
+    /// One value.
+    Scalar,
+    /// Three components.
+    Vector,
+    /// A symmetric stress, of six components.
+    Stress,
+}
+
 /// What this version does not answer.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Unavailable {
-    /// `frame`, `vector`, `grad` and their like.
-    Frames,
     /// `fluctuation`, `mean`.
     Means,
     /// `coordinate ... about`.
@@ -315,7 +359,12 @@ impl ModelError {
             E::NotAvailable { what, span } => not_available(*what, *span),
             E::UnknownName { name, span, nearest } => {
                 let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
-                with_nearest(found, nearest, "declare it, or check its spelling")
+                match (nearest, crate::units::find_unit(name)) {
+                (None, Some(_)) => found.with_help(format!(
+                    "`{name}` is a unit only right behind a number: a unit has no blank inside, as in `10 m/s`"
+                )),
+                _ => with_nearest(found, nearest, "declare it, or check its spelling"),
+            }
             }
             E::NotAFunction { name, span, is_declared, nearest } => {
                 not_a_function(name, *span, *is_declared, nearest.as_ref())
@@ -402,13 +451,23 @@ impl ModelError {
             | E::MarginTooWide { .. }
             | E::ShareAsMargin { .. }
             | E::DerivedScale { .. } => self.value_diagnostic(),
+            E::MovesWithParts { name, span, parts } => moves_with_parts(name, *span, parts),
+            E::MovesOthers { name, span, holders } => moves_others(name, *span, holders),
             E::NotAProduct { span, what } => not_a_product(*span, *what),
             E::TooLarge { span } => Diagnostic::error("too-large", *span, "a number or exponent here grows beyond the limit")
                 .with_help(format!(
-                    "exponents go up to {}, exact numbers up to {} binary digits",
+                    "exponents go up to {}, exact numbers up to {} binary digits, powers of sums up to {}, one equation up to {} terms, sizes from 1e-300 to 1e300",
                     crate::limits::EXPONENT,
-                    crate::limits::NUMBER_BITS
+                    crate::limits::NUMBER_BITS,
+                    crate::limits::SUM_POWER,
+                    crate::limits::TERMS
                 )),
+            E::TooManyGroups { n_symbols, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!("there are too many groups among {n_symbols} scales and constants"),
+            )
+            .with_help("ask in a script whose equations hold fewer of them"),
             E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
             E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
             E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),
@@ -427,6 +486,12 @@ impl ModelError {
                 *span,
                 "there is no coordinate `t`, so `D_t` has no tendency here",
             ),
+            E::NoFrame { .. }
+            | E::WrongShape { .. }
+            | E::ComponentCount { .. }
+            | E::DeepVectors { .. }
+            | E::TooManyTerms { .. }
+            | E::VectorEquation { .. } => self.vector_diagnostic(),
             E::NotSplit { span, function } => Diagnostic::error(
                 "not-split",
                 *span,
@@ -517,6 +582,53 @@ impl ModelError {
                 ),
             )
             .with_label(described(dimension)),
+            other => unreachable_words(other),
+        }
+    }
+
+    fn vector_diagnostic(&self) -> Diagnostic {
+        use ModelError as E;
+        match self {
+            E::NoFrame { span } => {
+                Diagnostic::error("no-frame", *span, "vectors need to know their coordinates")
+                    .with_help("declare `frame cartesian (x, y, z)`, `cylindrical (r, theta, z)` or `spherical (lambda, phi, r)`")
+            }
+            E::WrongShape {
+                wanted,
+                found,
+                span,
+                because,
+            } => wrong_shape(*wanted, *found, *span, *because),
+            E::ComponentCount { found, span } => Diagnostic::error(
+                "not-a-vector",
+                *span,
+                format!("expected three components, found {found}"),
+            )
+            .with_help("write 0 for a component that is missing; a symmetric stress has six, in the order 11 12 13 22 23 33"),
+            E::DeepVectors { span } => Diagnostic::error(
+                "too-deep",
+                *span,
+                format!(
+                    "vector operations are nested more than {} deep",
+                    crate::limits::VECTOR_NESTING
+                ),
+            ),
+            E::TooManyTerms { span } => Diagnostic::error(
+                "too-large",
+                *span,
+                "this vector expression comes to too many terms",
+            )
+            .with_help("name parts of it: a `field` of its own for each"),
+            E::VectorEquation {
+                name,
+                span,
+                components,
+            } => Diagnostic::error(
+                "unknown-equation",
+                *span,
+                format!("`{name}` is a vector equation, and one component is needed here"),
+            )
+            .with_help(format!("name one of its components: {}", listed(components))),
             other => unreachable_words(other),
         }
     }
@@ -685,9 +797,36 @@ fn unreachable_words(error: &ModelError) -> Diagnostic {
     Diagnostic::without_place("not-available", format!("{error:?}"))
 }
 
+fn wrong_shape(wanted: Shape, found: Shape, span: Span, because: Option<Span>) -> Diagnostic {
+    let code = match wanted {
+        Shape::Vector | Shape::Stress => "not-a-vector",
+        Shape::Scalar => "unexpected-word",
+    };
+    let word = |shape: Shape| match shape {
+        Shape::Scalar => "a scalar",
+        Shape::Vector => "a vector",
+        Shape::Stress => "a stress",
+    };
+    let message = format!("expected {}, found {}", word(wanted), word(found));
+    let diagnostic = Diagnostic::error(code, span, message).with_label(word(found));
+    let diagnostic = match because {
+        Some(because) => diagnostic.with_related(because, word(wanted)),
+        None => diagnostic,
+    };
+    match (wanted, found) {
+        (Shape::Vector, Shape::Scalar) => {
+            diagnostic.with_help("write its components, `(u, v, w)`, or name a `vector`")
+        }
+        (Shape::Scalar, Shape::Vector) => {
+            diagnostic.with_help("name a component, or make a scalar of it with `dot` or `div`")
+        }
+        (_, Shape::Stress) => diagnostic.with_help("of a stress only `div` can be taken"),
+        (Shape::Scalar | Shape::Vector, _) | (Shape::Stress, _) => diagnostic,
+    }
+}
+
 fn not_available(what: Unavailable, span: Span) -> Diagnostic {
     let subject = match what {
-        Unavailable::Frames => "vectors and frames are",
         Unavailable::Means => "fluctuations and means are",
         Unavailable::Origins => "a coordinate about an origin is",
         Unavailable::MadeEquations => "equations made of others are",
@@ -747,6 +886,46 @@ fn name_clash(name: &str, span: Span, first: Option<Span>, what: Clash) -> Diagn
             .with_related(first, "declared here first"),
         None => found,
     }
+}
+
+fn moves_with_parts(name: &str, span: Span, parts: &[String]) -> Diagnostic {
+    let found = Diagnostic::error(
+        "derived-scale",
+        span,
+        format!("`{name}` follows its parts and cannot be moved alone"),
+    );
+    match quoted(parts) {
+        listed if listed.is_empty() => found,
+        listed => found.with_help(format!("take one of its parts: {listed}")),
+    }
+}
+
+fn moves_others(name: &str, span: Span, holders: &[String]) -> Diagnostic {
+    let named: Vec<String> = holders
+        .iter()
+        .filter(|holder| !holder.contains('('))
+        .cloned()
+        .collect();
+    let help = match (named.as_slice(), holders.first()) {
+        ([], Some(function)) => {
+            format!("name the function, `constant k = {function}`, and take `k`")
+        }
+        (_, _) => format!("take {} instead", quoted(&named)),
+    };
+    Diagnostic::error(
+        "not-a-product",
+        span,
+        format!(
+            "`{name}` cannot be moved alone: {} would change along no power law",
+            quoted(holders)
+        ),
+    )
+    .with_help(help)
+}
+
+fn quoted(names: &[String]) -> String {
+    let quoted: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+    quoted.join(", ")
 }
 
 fn not_a_product(span: Span, what: Product) -> Diagnostic {

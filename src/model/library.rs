@@ -39,6 +39,7 @@ pub const MODULES: &[Module] = modules! {
     "constants": "constants.scl";
     "demo.boundary_current": "demo/boundary_current.scl";
     "demo.coastal_current": "demo/coastal_current.scl";
+    "demo.ekman": "demo/ekman.scl";
     "demo.harbour_surge": "demo/harbour_surge.scl";
     "demo.oil_drift": "demo/oil_drift.scl";
     "demo.ridge_wind": "demo/ridge_wind.scl";
@@ -73,16 +74,23 @@ pub fn find(name: &str) -> Option<&'static Module> {
 
 /// The first sentence of a module's head comment.
 pub fn headline(module: &Module) -> String {
-    let head: Vec<&str> = module
-        .text
+    let head = head(module.text).into_iter().next().unwrap_or_default();
+    let end = head.find([':', '.', '?']).unwrap_or(head.len());
+    head[..end].to_owned()
+}
+
+/// The paragraphs of the comment that a text begins with.
+pub fn head(text: &str) -> Vec<String> {
+    let lines: Vec<&str> = text
         .lines()
         .map_while(|line| line.strip_prefix('#'))
         .map(str::trim)
-        .take_while(|line| !line.is_empty())
         .collect();
-    let head = head.join(" ");
-    let end = head.find([':', '.', '?']).unwrap_or(head.len());
-    head[..end].to_owned()
+    lines
+        .split(|line| line.is_empty())
+        .filter(|paragraph| !paragraph.is_empty())
+        .map(|paragraph| paragraph.join(" "))
+        .collect()
 }
 
 #[cfg(test)]

@@ -1,6 +1,6 @@
 //! From syntax tree to a checked model: declarations are gathered (`declarations`),
-//! names resolved (`names`), modules brought in (`modules`, `library`), dimensions
-//! checked (`dimensions`), values worked out per phenomenon (`settings`, `values`) and
+//! vector equations rewritten into components (`frames`), names resolved (`names`),
+//! modules brought in (`modules`, `library`), dimensions checked (`dimensions`), values worked out per phenomenon (`settings`, `values`) and
 //! equations turned into terms (`terms`).
 //!
 //! Comes in: the scripts. Goes out: a [`Model`] and, per phenomenon, a
@@ -9,6 +9,7 @@
 pub mod declarations;
 pub mod dimensions;
 pub mod errors;
+pub mod frames;
 pub mod library;
 pub mod modules;
 pub mod names;
@@ -24,6 +25,8 @@ use num_rational::BigRational;
 
 use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
+use crate::model::errors::Shape;
+use crate::model::frames::FrameInfo;
 use crate::source::Span;
 use crate::syntax::ast;
 use crate::units::Dimension;
@@ -31,6 +34,10 @@ use crate::units::Dimension;
 /// A group, by its place in order of declaration.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct GroupId(pub u32);
+
+/// A vector, by its place in order of declaration.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub struct VectorId(pub u32);
 
 /// What a name in the one space of names stands for.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -43,6 +50,8 @@ pub enum Meaning {
     Field(FieldId),
     /// A named group.
     Group(GroupId),
+    /// A vector.
+    Vector(VectorId),
 }
 
 /// Everything that a script and its modules declare.
@@ -62,8 +71,16 @@ pub struct Model {
     pub fields: Vec<FieldInfo>,
     /// Groups in order of declaration.
     pub groups: Vec<GroupInfo>,
+    /// The frame of the vectors.
+    pub frame: Option<FrameInfo>,
+    /// Vectors in order of declaration.
+    pub vectors: Vec<VectorInfo>,
     /// What `D_t` carries with.
     pub velocity: Option<VelocityInfo>,
+    /// The vector named by `velocity V`, until it is resolved.
+    vector_velocity: Option<(ast::Name, Span)>,
+    /// Vector equations, whose components stand among the equations.
+    pub vector_equations: Vec<VectorEquationInfo>,
     /// Equations in order of declaration.
     pub equations: Vec<ast::EquationDecl>,
     /// The dimension of each equation; `None` if both sides are 0 or an error was reported.
@@ -147,6 +164,33 @@ pub struct GroupInfo {
     pub value: ast::Expr,
     /// Title and source.
     pub notes: ast::Notes,
+    /// The level at which it is declared; a script's overrides a module's.
+    pub level: Level,
+}
+
+/// `vector V = (u, v, w)`, or a symmetric stress of six.
+#[derive(Debug)]
+pub struct VectorInfo {
+    /// Its name.
+    pub name: ast::Name,
+    /// Its components along the coordinates of the frame; those of a stress in the order
+    /// 11 12 13 22 23 33.
+    pub components: Vec<ast::Expr>,
+    /// Where they stand.
+    pub span: Span,
+    /// Title and source.
+    pub notes: ast::Notes,
+    /// Vector or stress; `None` if an error was reported instead.
+    pub shape: Option<Shape>,
+}
+
+/// A vector equation.
+#[derive(Debug)]
+pub struct VectorEquationInfo {
+    /// Its name.
+    pub name: ast::Name,
+    /// The names of its component equations.
+    pub components: Vec<String>,
 }
 
 /// `velocity (u, v, w) along (x, y, z)`.
@@ -197,6 +241,13 @@ impl Model {
         self.equation_names.get(name).copied()
     }
 
+    /// Whether an equation is a component of a vector equation.
+    pub fn is_component(&self, idx: usize) -> bool {
+        let name = &self.equations[idx].name.text;
+        let mut vectors = self.vector_equations.iter();
+        vectors.any(|vector| vector.components.contains(name))
+    }
+
     /// The index of a phenomenon.
     pub fn phenomenon(&self, name: &str) -> Option<usize> {
         self.phenomena
@@ -238,6 +289,7 @@ impl Model {
         names.extend(self.coordinates.iter().map(|info| info.name.text.as_str()));
         names.extend(self.fields.iter().map(|info| info.name.text.as_str()));
         names.extend(self.groups.iter().map(|info| info.name.text.as_str()));
+        names.extend(self.vectors.iter().map(|info| info.name.text.as_str()));
         names.sort_unstable();
         names
     }

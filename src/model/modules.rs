@@ -12,7 +12,7 @@ use crate::syntax::ast::{self, StatementKind};
 use crate::syntax::parser;
 
 /// Where scripts read the files that they use.
-pub trait Files {
+pub trait Files: Sync {
     /// The one spelling of a path, links followed.
     ///
     /// # Errors
@@ -60,6 +60,16 @@ pub fn load(
     files: &dyn Files,
     sources: &mut Sources,
 ) -> (Vec<(Level, ast::Script)>, Vec<Diagnostic>) {
+    load_with(main, &[], files, sources)
+}
+
+/// The same for a script with further texts behind it, each under a name of its own.
+pub fn load_with(
+    main: &Main,
+    behind: &[(&str, &str)],
+    files: &dyn Files,
+    sources: &mut Sources,
+) -> (Vec<(Level, ast::Script)>, Vec<Diagnostic>) {
     let mut loader = Loader {
         main,
         files,
@@ -78,6 +88,10 @@ pub fn load(
         .open
         .push((identity, Span::new(file, 0, 0), main.name.clone()));
     loader.script(file, &main.text, &main.folder, Level::Script);
+    for (name, text) in behind {
+        let file = loader.sources.add(*name, *text);
+        loader.script(file, text, &main.folder, Level::Script);
+    }
     (loader.scripts, loader.errors)
 }
 

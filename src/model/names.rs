@@ -79,6 +79,14 @@ pub fn is_reserved_function(name: &str) -> bool {
     is_pi(name) || OPERATIONS.contains(&name) || FUNCTIONS.iter().any(|(found, _)| *found == name)
 }
 
+/// Whether a name is an operation on vectors, or one that needs their frame.
+pub fn is_vector_operation(name: &str) -> bool {
+    matches!(
+        name,
+        "grad" | "div" | "curl" | "laplacian" | "cross" | "dot"
+    )
+}
+
 /// Whether a name is the number π.
 pub fn is_pi(name: &str) -> bool {
     matches!(name, "pi" | "π")
@@ -109,7 +117,7 @@ pub fn call(function: &str, model: &Model) -> Call {
     match function {
         "D_t" => return Call::Material,
         "mean" => return Call::Mean,
-        "grad" | "div" | "curl" | "laplacian" | "cross" | "dot" => return Call::Vector,
+        name if is_vector_operation(name) => return Call::Vector,
         _ => {}
     }
     let along = function
@@ -117,7 +125,8 @@ pub fn call(function: &str, model: &Model) -> Call {
         .and_then(|name| model.meaning(name, None));
     match along {
         Some(Meaning::Coordinate(id)) => Call::Derivative(id),
-        Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => Call::Unknown,
+        Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_))
+        | None => Call::Unknown,
     }
 }
 
@@ -255,13 +264,26 @@ pub fn has_names(expr: &ast::Expr) -> bool {
 /// each once.
 pub fn symbols_in(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) -> Vec<SymbolId> {
     let mut found = Vec::new();
-    visit_names(expr, &mut |name, _| {
-        if let Some(Meaning::Symbol(id)) = model.meaning(name, phenomenon)
-            && !found.contains(&id)
-        {
-            found.push(id);
-        }
-    });
+    // Groups may name groups, in a chain as long as a script.
+    let mut seen = Vec::new();
+    let mut waiting = vec![expr];
+    while let Some(expr) = waiting.pop() {
+        visit_names(expr, &mut |name, _| match model.meaning(name, phenomenon) {
+            Some(Meaning::Symbol(id)) if !found.contains(&id) => found.push(id),
+            Some(Meaning::Group(id)) if !seen.contains(&id) => {
+                seen.push(id);
+                waiting.push(&model.groups[id.0 as usize].value);
+            }
+            Some(
+                Meaning::Symbol(_)
+                | Meaning::Group(_)
+                | Meaning::Coordinate(_)
+                | Meaning::Field(_)
+                | Meaning::Vector(_),
+            )
+            | None => {}
+        });
+    }
     found
 }
 

@@ -1,10 +1,13 @@
 //! Checks requests and claims: that what they name is there and that their expressions
 //! have fitting dimensions; and finds the phenomena that a request answers for.
 
-use crate::analysis::Case;
+use num_rational::BigRational;
+use num_traits::One;
+
+use crate::analysis::{Case, compare};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
-use crate::model::{Model, declarations, names, terms};
+use crate::model::{Meaning, Model, declarations, names, terms};
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ExprKind, ProcessRef, RequestKind};
 
@@ -63,7 +66,11 @@ pub fn check(model: &Model) -> Vec<ModelError> {
     errors
 }
 
-fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
+/// A phenomenon by its name.
+///
+/// # Errors
+/// [`ModelError::UnknownPhenomenon`].
+pub fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> {
     model
         .phenomenon(&name.text)
         .ok_or_else(|| ModelError::UnknownPhenomenon {
@@ -113,18 +120,26 @@ impl Checker<'_> {
                 self.save(save.as_ref());
             }
             RequestKind::Claim(claim) => self.claim(claim),
-            RequestKind::Nondimensionalize { .. } => {
-                self.unavailable("nondimensionalize", request.span)
+            RequestKind::Nondimensionalize { equations, .. } => self.equations(equations),
+            // What may be moved is known case by case.
+            RequestKind::Bounds { .. } => {}
+            RequestKind::Find {
+                unknowns,
+                conditions,
+            } => {
+                unknowns.iter().for_each(|name| self.open_name(name));
+                for condition in conditions {
+                    self.equations(std::slice::from_ref(&condition.equation));
+                }
             }
-            RequestKind::Bounds { .. } => self.unavailable("bounds", request.span),
-            RequestKind::Find { .. } => self.unavailable("find", request.span),
-            RequestKind::Layers => self.unavailable("layers", request.span),
-            RequestKind::Groups => self.unavailable("groups", request.span),
+            RequestKind::Layers | RequestKind::Groups => {}
             RequestKind::Limit { .. } => self.unavailable("limit", request.span),
             RequestKind::Expand { .. } => self.unavailable("expand", request.span),
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
             RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
-            RequestKind::Compare { .. } => self.unavailable("compare", request.span),
+            RequestKind::Compare { .. } => {
+                self.errors.extend(compare::check(self.model, request));
+            }
         }
     }
 
@@ -152,6 +167,32 @@ impl Checker<'_> {
                 self.errors.push(error);
             }
         }
+    }
+
+    /// A name that may be looked for: a scale or a constant.
+    fn open_name(&mut self, name: &ast::Name) {
+        let kind = match self.model.meaning(&name.text, self.phenomenon) {
+            Some(Meaning::Symbol(_)) => return,
+            Some(Meaning::Coordinate(_)) => "coordinate",
+            Some(Meaning::Field(_)) => "field",
+            Some(Meaning::Vector(_)) => "vector",
+            Some(Meaning::Group(_)) => "group",
+            None => {
+                let known = self.model.visible_names(self.phenomenon);
+                self.errors.push(ModelError::UnknownName {
+                    name: name.text.clone(),
+                    span: name.span,
+                    nearest: names::nearest(&name.text, known),
+                });
+                return;
+            }
+        };
+        self.errors.push(ModelError::OutOfPlace {
+            name: name.text.clone(),
+            kind,
+            wanted: "an open scale",
+            span: name.span,
+        });
     }
 
     fn show(&mut self, expr: &ast::Expr, unit: Option<&ast::UnitText>) {
@@ -217,7 +258,14 @@ impl Checker<'_> {
         let result = match relation {
             R::MuchLess | R::MuchGreater => declarations::tolerance_value(within).map(|_| ()),
             R::Similar => crate::model::settings::factor(within).map(|_| ()),
-            R::Equal => declarations::share(within).map(|_| ()),
+            R::Equal => match declarations::share(within) {
+                Ok(share) if share >= BigRational::one() => Err(ModelError::WrongForm {
+                    found: "a factor",
+                    wanted: "a relative margin below 1 behind `=`, such as `within 1 %`",
+                    span: within.span,
+                }),
+                other => other.map(|_| ()),
+            },
             R::Less | R::Greater => Err(ModelError::WrongForm {
                 found: "`within`",
                 wanted: "no margin behind a comparison",
@@ -304,6 +352,16 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
                 named_processes(model, case, right, &mut errors);
             }
             RequestKind::Show { expr, .. } => named_processes(model, case, expr, &mut errors),
+            RequestKind::Find { conditions, .. } => {
+                for condition in conditions {
+                    let Some(idx) = model.equation(&condition.equation.text) else {
+                        continue;
+                    };
+                    for process in [&condition.left, &condition.right] {
+                        errors.extend(process_label(model, case, idx, process).err());
+                    }
+                }
+            }
             RequestKind::Nondimensionalize {
                 equations,
                 by: Some(by),
@@ -314,6 +372,9 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
                 {
                     errors.extend(process_label(model, case, idx, by).err());
                 }
+                if equations.is_empty() {
+                    errors.extend(unknown_everywhere(model, case, by));
+                }
             }
             _ => {}
         }
@@ -321,8 +382,25 @@ pub fn check_processes(model: &Model, case: &Case) -> Vec<ModelError> {
     errors
 }
 
+/// What is wrong with a process that no equation has.
+fn unknown_everywhere(model: &Model, case: &Case, process: &ProcessRef) -> Option<ModelError> {
+    let mut unknown = None;
+    for idx in 0..case.equations.len() {
+        match process_label(model, case, idx, process) {
+            Ok(_) => return None,
+            Err(error) => unknown = unknown.or(Some(error)),
+        }
+    }
+    unknown
+}
+
 /// Checks the processes in an expression, `x_momentum.coriolis`.
-fn named_processes(model: &Model, case: &Case, expr: &ast::Expr, errors: &mut Vec<ModelError>) {
+pub(crate) fn named_processes(
+    model: &Model,
+    case: &Case,
+    expr: &ast::Expr,
+    errors: &mut Vec<ModelError>,
+) {
     match &expr.kind {
         ExprKind::Process { equation, process } => {
             if let Some(idx) = model.equation(&equation.text) {
@@ -409,15 +487,9 @@ pub fn process_label(
     if let Some(Ok(label)) = by_name {
         return Ok(label);
     }
-    let wanted = terms::products(model, &case.setting, idx, expr);
-    let found = match wanted.as_slice() {
-        [wanted] => case.equations[idx].terms.iter().find(|term| {
-            term.product.is_like(wanted) && term.product.number.abs() == wanted.number.abs()
-        }),
-        _ => None,
-    };
+    let found = term_of(model, case, idx, process);
     match (found, by_name) {
-        (Some(term), _) => Ok(term.label().to_owned()),
+        (Some(found), _) => Ok(case.equations[idx].terms[found].label().to_owned()),
         (None, Some(unknown)) => unknown,
         (None, None) => known_process(
             case,
@@ -425,5 +497,18 @@ pub fn process_label(
             &crate::syntax::print::expression(expr),
             expr.span,
         ),
+    }
+}
+
+/// The place of the term that a process is named by, matched by what it comes to.
+pub fn term_of(model: &Model, case: &Case, idx: usize, process: &ProcessRef) -> Option<usize> {
+    let ProcessRef::Term(expr) = process else {
+        return None;
+    };
+    match terms::products(model, &case.setting, idx, expr).as_slice() {
+        [wanted] => case.equations[idx].terms.iter().position(|term| {
+            term.product.is_like(wanted) && term.product.number.abs() == wanted.number.abs()
+        }),
+        _ => None,
     }
 }

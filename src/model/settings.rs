@@ -12,6 +12,7 @@ use crate::model::errors::{ModelError, Product};
 use crate::model::values::{self, Fault, Names, Value};
 use crate::model::{FieldInfo, GroupId, Meaning, Model, declarations, names};
 use crate::number::{Exponent, Number, rational_to_f64};
+use crate::source::Span;
 use crate::syntax::ast;
 use crate::units::Range;
 
@@ -94,6 +95,12 @@ impl Setting {
         }
     }
 
+    /// Whether no symbol of a monomial is 0, so that it and its powers amount to something.
+    pub fn is_available(&self, monomial: &Monomial) -> bool {
+        let mut symbols = monomial.powers().iter();
+        symbols.all(|(symbol, _)| !self.is_zero(symbol))
+    }
+
     /// The value of a monomial over the box, with its sign: exact at its corners, since
     /// it grows or falls with each symbol alone.
     ///
@@ -153,10 +160,23 @@ pub fn raised(amount: f64, power: Exponent) -> f64 {
     }
 }
 
+/// Open scales with the formulas that were found for them.
+pub type Adopted = Vec<(SymbolId, Monomial)>;
+
 /// Works out a phenomenon (`None`: the script outside all of them).
 pub fn build(model: &Model, phenomenon: Option<usize>) -> (Option<Setting>, Vec<ModelError>) {
+    build_with(model, phenomenon, &Vec::new())
+}
+
+/// The same with open scales that follow the formulas found for them.
+pub fn build_with(
+    model: &Model,
+    phenomenon: Option<usize>,
+    adopted: &Adopted,
+) -> (Option<Setting>, Vec<ModelError>) {
     let mut builder = Builder {
         model,
+        adopted,
         setting: Setting {
             phenomenon,
             name: phenomenon.map(|idx| model.phenomena[idx].name.text.clone()),
@@ -194,6 +214,7 @@ fn tolerance(model: &Model, phenomenon: Option<usize>) -> BigRational {
 
 struct Builder<'m> {
     model: &'m Model,
+    adopted: &'m Adopted,
     setting: Setting,
     errors: Vec<ModelError>,
 }
@@ -236,6 +257,9 @@ impl Builder<'_> {
                 if !self.is_seen(idx) {
                     return Vec::new();
                 }
+                if let Some(formula) = self.found_formula(SymbolId(idx as u32)) {
+                    return symbols_of(formula);
+                }
                 let (_, decl) = self
                     .model
                     .effective(SymbolId(idx as u32), self.setting.phenomenon);
@@ -259,8 +283,20 @@ impl Builder<'_> {
         }
     }
 
+    fn found_formula(&self, id: SymbolId) -> Option<&Monomial> {
+        let found = self.adopted.iter().find(|(adopted, _)| *adopted == id);
+        found.map(|(_, formula)| formula)
+    }
+
     fn symbol_definition(&mut self, id: SymbolId) {
         let (_, decl) = self.model.effective(id, self.setting.phenomenon);
+        if let Some(formula) = self.found_formula(id).cloned() {
+            match self.product(id, decl.name.span, formula) {
+                Ok(variable) => self.setting.variables[id.idx()] = variable,
+                Err(error) => self.errors.push(error),
+            }
+            return;
+        }
         let ast::Value::Given { nominal, spread } = &decl.value else {
             self.setting.variables[id.idx()] = Variable::Open(vec![id]);
             return;
@@ -373,22 +409,33 @@ impl Builder<'_> {
                 Ok(Variable::Known(value))
             };
         }
-        let range = self.setting.monomial_range(&size.resolved);
-        let open = match range {
-            Ok(range) if !range.nominal.is_finite() || range.nominal == 0.0 => {
-                return Err(Fault::Error(ModelError::TooLarge { span }));
-            }
+        match self.setting.monomial_range(&size.resolved) {
             Ok(range) if decl.kind == ast::ValueKind::Scale && range.nominal < 0.0 => {
-                return Err(not_positive(decl, nominal, range.nominal).into());
+                Err(not_positive(decl, nominal, range.nominal).into())
+            }
+            Ok(_) | Err(_) => Ok(self.product(id, span, size.resolved)?),
+        }
+    }
+
+    /// A symbol that stands for a product of others, from now on replaced by it.
+    fn product(
+        &mut self,
+        id: SymbolId,
+        span: Span,
+        resolved: Monomial,
+    ) -> Result<Variable, ModelError> {
+        let variable = match self.setting.monomial_range(&resolved) {
+            Ok(range) if !range.nominal.is_finite() || range.nominal == 0.0 => {
+                return Err(ModelError::TooLarge { span });
             }
             Ok(range) => Variable::Known(Value {
                 range,
-                exact: self.exact(&size.resolved),
+                exact: self.exact(&resolved),
             }),
             Err(open) => Variable::Open(open),
         };
-        self.setting.quantities.replacements[id.idx()] = Some(size.resolved);
-        Ok(open)
+        self.setting.quantities.replacements[id.idx()] = Some(resolved);
+        Ok(variable)
     }
 
     /// The exact value of a monomial whose symbols all have one.
@@ -576,6 +623,18 @@ impl Builder<'_> {
             }
         }
     }
+}
+
+/// The declared symbols that a product rests on.
+fn symbols_of(monomial: &Monomial) -> Vec<usize> {
+    let mut found = Vec::new();
+    for (symbol, _) in monomial.powers() {
+        match symbol {
+            Symbol::Declared(id) => found.push(id.idx()),
+            Symbol::Function(function) => found.extend(function.parts.iter().map(|id| id.idx())),
+        }
+    }
+    found
 }
 
 fn holds_function(monomial: &Monomial) -> bool {

@@ -12,6 +12,7 @@ use crate::algebra::product::{Base, Derivative, Factor, Product, Sized, Speller}
 use crate::algebra::quantities::{CoordinateId, FieldId, Size, Variation};
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Unavailable};
+use crate::model::frames;
 use crate::model::names::{self, Call, Function};
 use crate::model::settings::{Setting, Variable};
 use crate::model::spelling;
@@ -107,7 +108,8 @@ pub fn terms(model: &Model, setting: &Setting, idx: usize) -> (EquationTerms, Ve
     let decl = &model.equations[idx];
     let mut maker = Maker::new(model, setting, idx);
     if let ast::EquationBody::Written { left, right } = &decl.body {
-        maker.made.with_partials = has_partials(left) || has_partials(right);
+        maker.made.with_partials =
+            model.is_component(idx) || has_partials(left) || has_partials(right);
         process_names(left, &mut maker.made.process_names);
         process_names(right, &mut maker.made.process_names);
         maker.side(left, Side::Left);
@@ -125,9 +127,12 @@ fn has_partials(expr: &ast::Expr) -> bool {
         ExprKind::Negate(inside) | ExprKind::Bracket(inside) => has_partials(inside),
         ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => has_partials(expr),
         ExprKind::Power { base, .. } => has_partials(base),
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments.iter().any(has_partials)
-        }
+        ExprKind::Call {
+            function,
+            arguments,
+            ..
+        } => names::is_vector_operation(&function.text) || arguments.iter().any(has_partials),
+        ExprKind::Tuple(arguments) => arguments.iter().any(has_partials),
         ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
             false
         }
@@ -439,6 +444,14 @@ impl<'a> Maker<'a> {
             self.errors.push(ModelError::DividesByZero { span });
             return None;
         }
+        let range = self.setting.monomial_range(&size.resolved);
+        if zeros.is_empty()
+            && range
+                .is_ok_and(|range| !range.abs().low.is_normal() || !range.abs().high.is_finite())
+        {
+            self.errors.push(ModelError::TooLarge { span });
+            return None;
+        }
         if !zeros.is_empty() {
             let speller = self.speller();
             let names: Vec<String> = zeros
@@ -582,6 +595,7 @@ impl<'a> Maker<'a> {
             Some(Meaning::Coordinate(id)) => Base::Coordinate(id),
             Some(Meaning::Field(id)) => Base::Field(id),
             Some(Meaning::Group(_)) | None => return self.monomial(expr),
+            Some(Meaning::Vector(_)) => return Err(not_a_term(expr.span)),
         };
         Ok(vec![plain(Product::base(base))])
     }
@@ -599,7 +613,9 @@ impl<'a> Maker<'a> {
                 }
                 Some(Meaning::Field(inner)) => Base::Field(inner),
                 Some(Meaning::Symbol(inner)) => Base::Symbol(Symbol::Declared(inner)),
-                Some(Meaning::Coordinate(_) | Meaning::Group(_)) | None => continue,
+                Some(Meaning::Coordinate(_) | Meaning::Group(_) | Meaning::Vector(_)) | None => {
+                    continue;
+                }
             };
             let piece = plain(Product::base(base));
             found.push(if is_negative { negated(piece) } else { piece });
@@ -650,6 +666,10 @@ impl<'a> Maker<'a> {
         arguments: &[ast::Expr],
     ) -> Pieces {
         let span = expr.span;
+        if names::call(function, self.model) == Call::Vector {
+            let written_out = frames::expanded(expr, self.model)?;
+            return self.expand(&written_out);
+        }
         let [argument] = arguments else {
             return self.constant_call(expr, function, arguments);
         };
@@ -703,7 +723,7 @@ impl<'a> Maker<'a> {
             names::visit_names(argument, &mut |name, _| {
                 varies |= matches!(
                     self.model.meaning(name, None),
-                    Some(Meaning::Field(_) | Meaning::Coordinate(_))
+                    Some(Meaning::Field(_) | Meaning::Coordinate(_) | Meaning::Vector(_))
                 );
             });
         }
@@ -768,7 +788,10 @@ impl<'a> Maker<'a> {
                 let tendency = self.differentiated(pieces, time, 1, span)?;
                 sum.extend(named(tendency, Some(&made_tag("tendency", span))));
             }
-            Some(Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_)) | None => {
+            Some(
+                Meaning::Symbol(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            )
+            | None => {
                 self.has_no_time.get_or_insert(span);
             }
         }
@@ -784,7 +807,10 @@ impl<'a> Maker<'a> {
                 kind: ExprKind::Name(field.text.clone()),
                 span: field.span,
             };
-            let carrier = self.name(&name, &field.text)?;
+            let mut carrier = self.name(&name, &field.text)?;
+            if let Some(metric) = frames::metric(along, model, span) {
+                carrier = multiplied(&carrier, &self.expand(&metric)?, span)?;
+            }
             let gradient = self.differentiated(pieces, along, 1, span)?;
             let carried = multiplied(&carrier, &gradient, span)?;
             sum.extend(named(carried, Some(&made_tag("advection", span))));
@@ -814,12 +840,14 @@ impl<'a> Maker<'a> {
             .quantities
             .size(found.abs())
             .map_err(|_| ModelError::TooLarge { span })?;
-        self.compare_with_parts(&found, inside, size.span)?;
+        let parts = self.part_sizes(inside).unwrap_or_default();
+        self.compare_with_parts(&found, &parts, size.span)?;
         let fields = self.fields_in(inside);
         let variations = self.shortest_variations(&fields, &found);
         let sized = Sized {
             text: print::expression(&unnamed(whole)),
             size: found,
+            parts,
             variations,
             fields,
             place: whole.span.start,
@@ -831,11 +859,12 @@ impl<'a> Maker<'a> {
     fn compare_with_parts(
         &mut self,
         size: &Size,
-        inside: &ast::Expr,
+        parts: &[Monomial],
         span: Span,
     ) -> Result<(), ModelError> {
         let nominal = self.setting.nominal(&size.resolved);
-        let largest = self.largest_part(inside);
+        let sizes = parts.iter().map(|part| self.setting.nominal(part));
+        let largest = sizes.reduce(f64::max);
         let Some(largest) = largest.filter(|largest| largest.is_finite() && nominal.is_finite())
         else {
             return Ok(());
@@ -857,39 +886,52 @@ impl<'a> Maker<'a> {
         Ok(())
     }
 
-    /// The nominal size of the largest part of an expression, where it can be told.
-    fn largest_part(&mut self, inside: &ast::Expr) -> Option<f64> {
+    /// The sizes of the parts of an expression, where they can be told.
+    fn part_sizes(&mut self, inside: &ast::Expr) -> Option<Vec<Monomial>> {
         let root = match &inside.kind {
             ExprKind::Call {
                 function,
                 order: None,
                 arguments,
             } if function.text == "sqrt" => arguments.first(),
-            ExprKind::Bracket(inside) => return self.largest_part(inside),
+            ExprKind::Bracket(inside) => return self.part_sizes(inside),
             _ => None,
         };
         if let Some(argument) = root {
-            return self.largest_part(argument).map(f64::sqrt);
+            let parts = self.part_sizes(argument)?;
+            let roots = parts
+                .iter()
+                .map(|part| part.power(Exponent::ratio(1, 2)).ok());
+            return roots.collect();
         }
         let (vanished, zeros) = (self.vanished.len(), self.zeros.clone());
         let pieces = self.expand(inside).ok();
         self.vanished.truncate(vanished);
         self.zeros = zeros;
-        pieces?
+        let sizes = pieces?
             .iter()
             .filter_map(|piece| piece.product.size(&self.setting.quantities).ok())
-            .map(|size| self.setting.nominal(&size.resolved))
-            .reduce(f64::max)
+            .map(|size| size.resolved.abs())
+            .collect();
+        Some(sizes)
     }
 
     fn fields_in(&self, expr: &ast::Expr) -> Vec<FieldId> {
         let mut fields = Vec::new();
-        names::visit_names(expr, &mut |name, _| {
+        let mut add = |name: &str| {
             if let Some(Meaning::Field(id)) = self.model.meaning(name, None)
                 && !fields.contains(&id)
             {
                 fields.push(id);
             }
+        };
+        names::visit_names(expr, &mut |name, _| match self.model.meaning(name, None) {
+            Some(Meaning::Vector(id)) => {
+                for part in &self.model.vectors[id.0 as usize].components {
+                    names::visit_names(part, &mut |name, _| add(name));
+                }
+            }
+            Some(_) | None => add(name),
         });
         fields
     }

@@ -168,7 +168,9 @@ fn evaluate_name(name: &str, span: Span, names: &impl Names) -> Result<Value, Fa
             evaluate_monomial(formula, names, span)
         }
         None if names::is_pi(name) => Ok(Value::exact(Number::pi())),
-        Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
+        Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {
+            Err(Fault::NotAProduct(span))
+        }
     }
 }
 
@@ -420,7 +422,9 @@ fn monomial_name(name: &str, span: Span, names: &impl Names) -> Result<Monomial,
         Some(Meaning::Symbol(id)) => Ok(Monomial::symbol(Symbol::Declared(id))),
         Some(Meaning::Group(id)) => names.group(id).cloned().ok_or(Fault::NotAProduct(span)),
         None if names::is_pi(name) => Ok(Monomial::number(Number::pi())),
-        Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => Err(Fault::NotAProduct(span)),
+        Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {
+            Err(Fault::NotAProduct(span))
+        }
     }
 }
 
@@ -529,7 +533,9 @@ fn holds_constants_only(expr: &ast::Expr, names: &impl Names) -> bool {
     names::visit_names(expr, &mut |name, _| {
         fits &= match model.meaning(name, names.phenomenon()) {
             Some(Meaning::Symbol(id)) => model.symbols[id.idx()].kind == ast::ValueKind::Constant,
-            Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_)) => false,
+            Some(
+                Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Group(_) | Meaning::Vector(_),
+            ) => false,
             None => names::is_pi(name),
         };
     });

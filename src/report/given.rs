@@ -48,7 +48,7 @@ pub fn values(rows: &[AuditRow]) -> Vec<Given<'_>> {
 
 /// The rows of one kind (`field`, `coordinate`, `group`) that the answers speak of.
 pub fn mentioned<'o>(outcome: &'o Outcome, kind: &str) -> Vec<&'o AuditRow> {
-    let body = text::answers(outcome);
+    let body = text::answers(&outcome.answers, &outcome.claims, false);
     let words: BTreeSet<&str> = body
         .split(|c: char| !(c.is_alphanumeric() || c == '_' || c == '\''))
         .flat_map(|word| [word, word.strip_prefix("d_").unwrap_or(word)])

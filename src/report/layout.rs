@@ -2,7 +2,7 @@
 
 use unicode_width::UnicodeWidthStr;
 
-use crate::units::Range;
+use crate::units::{Range, parse_unit};
 
 /// The width of a terminal that every report fits.
 pub const WIDTH: usize = 80;
@@ -162,6 +162,15 @@ pub fn wrapped_words(label: &str, words: &[String]) -> String {
     out
 }
 
+/// An equation likewise; a line is broken before a sign, never behind it.
+pub fn wrapped_equation(label: &str, equation: &str) -> String {
+    let mut glued = equation.to_owned();
+    for sign in ["+", "-", "="] {
+        glued = glued.replace(&format!(" {sign} "), &format!(" {sign}\u{a0}"));
+    }
+    wrapped(label, &glued).replace('\u{a0}', " ")
+}
+
 /// An SI unit as people write it: `m/s²`.
 pub fn unit(unit: &str) -> String {
     if unit == "1" {
@@ -220,6 +229,22 @@ pub fn named_unit(unit_text: &str) -> &str {
 pub fn quantity(value: &Range, unit_text: &str) -> String {
     let text = unit(named_unit(unit_text));
     format!("{} {text}", range(value)).trim_end().to_owned()
+}
+
+/// A value in the unit in which it was declared, else in its SI unit.
+pub fn quantity_in(value: &Range, shown_in: Option<&str>, si_unit: &str) -> String {
+    let found = shown_in.and_then(|text| Some((text, parse_unit(text).ok()?)));
+    match found {
+        Some((text, found)) => {
+            let shown = Range {
+                low: found.from_si(value.low),
+                nominal: found.from_si(value.nominal),
+                high: found.from_si(value.high),
+            };
+            quantity(&shown, text)
+        }
+        None => quantity(value, si_unit),
+    }
 }
 
 #[cfg(test)]

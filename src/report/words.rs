@@ -1,6 +1,8 @@
 //! The sentences that all report forms share.
 
-use crate::analysis::claims::{Held, Measured};
+use num_integer::Integer as _;
+
+use crate::analysis::claims::{Astray, Held, Measured};
 use crate::analysis::reduce::{
     Inequality, Kind, Lone, LostDerivative, Part, ReducedEquation, ReducedTerm,
 };
@@ -9,9 +11,9 @@ use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body, Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
-use crate::report::layout::{number, percent, quantity, range, unit};
+use crate::report::layout::{number, percent, quantity, range, significant, unit};
 use crate::syntax::ast::{ClaimWord, Relation};
-use crate::units::Range;
+use crate::units::{self, Range};
 
 /// A warning or note of one equation.
 #[derive(Debug, Clone)]
@@ -37,13 +39,23 @@ pub fn product(factor: &Number, exponents: &Exponents) -> String {
     let mut above: Vec<String> = powers(false).collect();
     let below: Vec<String> = powers(true).collect();
     if !factor.is_one() || above.is_empty() {
-        above.insert(0, factor.to_string());
+        above.insert(0, short(factor));
     }
     let above = above.join("*");
     match below.as_slice() {
         [] => above,
         [single] => format!("{above}/{single}"),
         several => format!("{above}/({})", several.join("*")),
+    }
+}
+
+/// An exact number as it is where that is short, else in six digits.
+pub fn short(exact: &Number) -> String {
+    let text = exact.to_string();
+    if text.len() <= 9 {
+        text
+    } else {
+        significant(exact.to_f64(), 6)
     }
 }
 
@@ -61,6 +73,43 @@ fn raised(name: &str, power: Exponent) -> String {
 pub fn factors(factors: &Factors) -> String {
     product(&factors.number, &factors.exponents)
 }
+
+/// The same with what is raised to a fraction under one root: `tau_0/(rho_0*sqrt(nu*f))`.
+pub fn formula(found: &Factors) -> String {
+    let (whole, broken): (Exponents, Exponents) = found
+        .exponents
+        .iter()
+        .cloned()
+        .partition(|(_, power)| power.is_whole());
+    let degree = broken
+        .iter()
+        .fold(1, |lcm: i64, (_, power)| lcm.lcm(&power.denom()));
+    if broken.is_empty() || degree > MAX_DEGREE {
+        return factors(found);
+    }
+    let is_below = broken.iter().all(|(_, power)| power.is_negative());
+    let inside = broken.iter().map(|(name, power)| {
+        let sign = if is_below { -1 } else { 1 };
+        let times = sign * power.numer() * (degree / power.denom());
+        (name.clone(), Exponent::whole(times).unwrap_or(*power))
+    });
+    let inside = product(&Number::one(), &inside.collect());
+    let root = match degree {
+        2 => format!("sqrt({inside})"),
+        degree => format!("({inside})^(1/{degree})"),
+    };
+    let power = if is_below {
+        Exponent::ONE.negated()
+    } else {
+        Exponent::ONE
+    };
+    let mut exponents = whole;
+    exponents.push((root, power));
+    product(&found.number, &exponents)
+}
+
+/// Roots of a higher degree are written name by name.
+const MAX_DEGREE: i64 = 12;
 
 /// `Ro <= 0.1`.
 pub fn inequality(condition: &Inequality) -> String {
@@ -180,9 +229,11 @@ pub fn kinds(equation: &ReducedEquation) -> String {
 
 /// A request with its phenomenon: `rank, winter_low: mature winter low`.
 pub fn heading(answer: &Answer) -> String {
+    // The phenomenon is named once, whatever the request says behind `for`.
+    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
     match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{}, {name}: {title}", answer.text),
-        (Some(name), None) => format!("{}, {name}", answer.text),
+        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
+        (Some(name), None) => format!("{asked}, {name}"),
         (None, _) => answer.text.clone(),
     }
 }
@@ -190,8 +241,13 @@ pub fn heading(answer: &Answer) -> String {
 /// Whether an answer speaks of shares and verdicts.
 pub fn has_verdicts(answer: &Answer) -> bool {
     match answer.body {
-        Body::Rank(_) | Body::Reduce(_) => true,
-        Body::Show(_) => false,
+        Body::Rank(_) | Body::Reduce(_) | Body::Compare(_) => true,
+        Body::Show(_)
+        | Body::Groups(_)
+        | Body::Nondimensionalize(_)
+        | Body::Find(_)
+        | Body::Layers(_)
+        | Body::Bounds(_) => false,
     }
 }
 
@@ -398,6 +454,7 @@ pub fn measured(held: &Held) -> String {
             left,
             right,
             unit,
+            written_unit,
             relation,
             is_bound,
         } => {
@@ -410,31 +467,15 @@ pub fn measured(held: &Held) -> String {
                 Relation::Equal => (Range::exact(left.nominal), Range::exact(right.nominal)),
                 _ => (*left, *right),
             };
-            format!(
-                "{} against {}{bound}",
-                quantity(&left, unit),
-                quantity(&right, unit)
-            )
+            let shown = |range: &Range| in_unit(range, unit, written_unit.as_ref());
+            format!("{} against {}{bound}", shown(&left), shown(&right))
         }
-        Measured::Processes { word, found, share } => {
-            let listed = match found.as_slice() {
-                [] => "nothing".to_owned(),
-                [one] => one.clone(),
-                [first @ .., last] => format!("{} and {last}", first.join(", ")),
-            };
-            let is_one = found.len() <= 1;
-            let verb = |one: &'static str, several| if is_one { one } else { several };
-            match (word, share) {
-                (ClaimWord::Leading, _) => format!("{listed} {}", verb("leads", "lead")),
-                (ClaimWord::Kept, _) => format!("{listed} {} kept", verb("is", "are")),
-                (ClaimWord::Dropped, Some(share)) => format!(
-                    "{listed} {}, at up to {}",
-                    verb("stays", "stay"),
-                    percent(*share)
-                ),
-                (ClaimWord::Dropped, None) => "all of it drops".to_owned(),
-            }
-        }
+        Measured::Processes {
+            word,
+            found,
+            astray,
+            ..
+        } => measured_processes(*word, found, astray),
     }
 }
 
@@ -460,10 +501,89 @@ pub fn dropped(equation: &ReducedEquation) -> Vec<&ReducedTerm> {
     terms
 }
 
+/// That no balance is consistent, and why.
+pub fn no_balance(contradiction: &[String]) -> String {
+    let listed: Vec<String> = contradiction
+        .iter()
+        .map(|name| format!("`{name}`"))
+        .collect();
+    match listed.as_slice() {
+        [] => "no balance is consistent".to_owned(),
+        [single] => {
+            format!("no balance is consistent: nothing in {single} can balance its largest process")
+        }
+        [first, second] => {
+            format!("no balance is consistent: {first} and {second} contradict one another")
+        }
+        [others @ .., last] => format!(
+            "no balance is consistent: {} and {last} contradict one another",
+            others.join(", ")
+        ),
+    }
+}
+
+/// A value in the unit in which it was written, or else in SI units.
+pub fn in_unit(value: &Range, si_unit: &str, written: Option<&String>) -> String {
+    let unit = written.and_then(|text| Some((text, units::parse_unit(text).ok()?)));
+    match unit {
+        Some((text, unit)) => {
+            let [low, nominal, high] =
+                [value.low, value.nominal, value.high].map(|end| unit.from_si(end));
+            quantity(&Range { low, nominal, high }, text)
+        }
+        None => quantity(value, si_unit),
+    }
+}
+
+fn measured_processes(word: ClaimWord, found: &[String], astray: &[Astray]) -> String {
+    let verb = match word {
+        ClaimWord::Leading if found.len() > 1 => "lead",
+        ClaimWord::Leading => "leads",
+        ClaimWord::Kept if found.len() > 1 => "are kept",
+        ClaimWord::Kept => "is kept",
+        ClaimWord::Dropped if found.len() > 1 => "stay",
+        ClaimWord::Dropped => "stays",
+    };
+    let mut text = match (word, found) {
+        (ClaimWord::Dropped, []) => "all of it drops".to_owned(),
+        (_, []) => format!("nothing {verb}"),
+        (_, found) => format!("{} {verb}", found.join(", ")),
+    };
+    for astray in astray {
+        let process = &astray.process;
+        text.push_str(&match (&astray.share, astray.is_claimed) {
+            (None, _) => format!("; {process} is gone"),
+            (Some(share), true) => format!("; {process} has a share of {}", shares(share)),
+            (Some(share), false) => {
+                format!("; {process}, not claimed, has a share of {}", shares(share))
+            }
+        });
+    }
+    text
+}
+
+/// A share over the box: `2 .. 9.5 .. 27.7 %`.
+pub fn shares(share: &Range) -> String {
+    if share.is_exact() {
+        return percent(share.nominal);
+    }
+    let bare = |share: f64| percent(share).trim_end_matches(" %").to_owned();
+    format!(
+        "{} .. {} .. {}",
+        bare(share.low),
+        bare(share.nominal),
+        percent(share.high)
+    )
+}
+
 /// Whether the reports say in their own place what a diagnostic of this code says.
 pub fn is_in_report(code: &str) -> bool {
     matches!(
         code,
-        "lone-leading-term" | "lone-process" | "lost-derivative" | "undetermined-field"
+        "lone-leading-term"
+            | "lone-process"
+            | "lost-derivative"
+            | "undetermined-field"
+            | "no-balance"
     )
 }

@@ -372,6 +372,16 @@ pub enum ProcessRef {
     Term(Expr),
 }
 
+impl ProcessRef {
+    /// Where it stands.
+    pub fn span(&self) -> Span {
+        match self {
+            ProcessRef::Text(text) => text.span,
+            ProcessRef::Term(expr) => expr.span,
+        }
+    }
+}
+
 /// `tolerance 10 %`.
 #[derive(Debug, Clone)]
 pub struct ToleranceDecl {

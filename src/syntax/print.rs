@@ -12,7 +12,7 @@ use crate::syntax::ast::{Comment, PhenomenonDecl, Script, Statement, StatementKi
 use crate::syntax::print_statement::phenomenon_head;
 
 pub use crate::syntax::print_expression::expression;
-pub use crate::syntax::print_statement::{request, statement};
+pub use crate::syntax::print_statement::{process, request, spread, statement};
 
 /// The canonical text of a script; `source` is the text that it was parsed from.
 pub fn print(script: &Script, source: &str) -> String {

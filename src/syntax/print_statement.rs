@@ -176,17 +176,21 @@ fn value_decl(decl: &ValueDecl) -> String {
     };
     let value = match &decl.value {
         Value::Given { nominal, spread } => {
-            let spread = match spread {
-                Spread::None => String::new(),
-                Spread::To(end) => format!(" .. {}", expression(end)),
-                Spread::Margin(margin) => format!(" +- {}", expression(margin)),
-                Spread::Within(factor) => opt_within(Some(factor)),
-            };
-            format!("= {}{spread}", expression(nominal))
+            format!("= {}{}", expression(nominal), self::spread(spread))
         }
         Value::Open(unit) => format!("in {}", unit.text),
     };
     format!("{keyword} {} {value}{}", decl.name.text, notes(&decl.notes))
+}
+
+/// The uncertainty behind a value, with the blank before it.
+pub fn spread(spread: &Spread) -> String {
+    match spread {
+        Spread::None => String::new(),
+        Spread::To(end) => format!(" .. {}", expression(end)),
+        Spread::Margin(margin) => format!(" +- {}", expression(margin)),
+        Spread::Within(factor) => opt_within(Some(factor)),
+    }
 }
 
 fn coordinate(decl: &CoordinateDecl) -> String {
@@ -304,7 +308,8 @@ fn balance(decl: &BalanceDecl) -> String {
     )
 }
 
-fn process(process: &ProcessRef) -> String {
+/// A process as it is named.
+pub fn process(process: &ProcessRef) -> String {
     match process {
         ProcessRef::Text(named) => text(named),
         ProcessRef::Term(term) => expression(term),

@@ -1,7 +1,9 @@
-//! The US Standard Atmosphere 1976, from 5 km below sea level to 80 km.
+//! The US Standard Atmosphere 1976, from 5 km below sea level to 86 km.
 //!
 //! Heights are geometric. Up to 80 km the mean molar mass is that of the ground, so that
-//! the temperature is the one of the layers. Source: NOAA, NASA, USAF: US Standard
+//! the temperature is the one of the layers. Above, oxygen begins to part: the layers give
+//! the molecular-scale temperature, T M_0/M, and the ratio M/M_0 comes from the table of
+//! the standard; pressure and density follow from the molecular-scale one. Source: NOAA, NASA, USAF: US Standard
 //! Atmosphere 1976, from memory; checked against values of a package in `tests`.
 
 use uom::si::acceleration::meter_per_second_squared;
@@ -24,7 +26,7 @@ use super::range::Range;
 /// The lowest height covered, in m.
 const LOWEST: f64 = -5_000.0;
 /// The highest height covered, in m.
-const HIGHEST: f64 = 80_000.0;
+const HIGHEST: f64 = 86_000.0;
 
 /// Lower ends of the layers in geopotential m, and dT/dH there in K/m.
 const LAYERS: [(f64, f64); 7] = [
@@ -35,6 +37,14 @@ const LAYERS: [(f64, f64); 7] = [
     (47_000.0, 0.0),
     (51_000.0, -0.0028),
     (71_000.0, -0.002),
+];
+
+/// The mean molar mass above 80 km, over that of the ground: steps of 500 m of geometric
+/// height from 80 km to 86 km (from memory; its last entry gives the 186.8673 K that the
+/// standard states for 86 km).
+const MOLAR_MASS_RATIOS: [f64; 13] = [
+    1.000_000, 0.999_996, 0.999_989, 0.999_971, 0.999_941, 0.999_909, 0.999_870, 0.999_829,
+    0.999_786, 0.999_741, 0.999_694, 0.999_641, 0.999_579,
 ];
 
 /// A quantity of the standard atmosphere.
@@ -79,7 +89,9 @@ impl StandardAtmosphere {
         }
         let air = air_at(Length::new::<meter>(height));
         Some(match self {
-            StandardAtmosphere::Temperature => air.temperature.get::<kelvin>(),
+            StandardAtmosphere::Temperature => {
+                air.temperature.get::<kelvin>() * molar_mass_ratio(height)
+            }
             StandardAtmosphere::Pressure => air.pressure.get::<pascal>(),
             StandardAtmosphere::Density => air.density.get::<kilogram_per_cubic_meter>(),
         })
@@ -102,12 +114,24 @@ impl StandardAtmosphere {
     }
 }
 
-/// The state of the air at one height.
+/// The state of the air at one height; the temperature is the molecular-scale one.
 #[derive(Clone, Copy)]
 struct Air {
     temperature: ThermodynamicTemperature,
     pressure: Pressure,
     density: MassDensity,
+}
+
+/// The mean molar mass at a geometric height in m, over that of the ground: the table, with
+/// straight lines between its entries.
+fn molar_mass_ratio(height: f64) -> f64 {
+    let steps = ((height - 80_000.0) / 500.0).max(0.0);
+    let below = steps.floor();
+    let at = |step: f64| {
+        let last = MOLAR_MASS_RATIOS.len() - 1;
+        MOLAR_MASS_RATIOS[(step as usize).min(last)]
+    };
+    at(below) + (steps - below) * (at(below + 1.0) - at(below))
 }
 
 fn air_at(height: Length) -> Air {
@@ -196,10 +220,10 @@ mod tests {
     #[test]
     fn outside_its_heights_there_is_no_standard() {
         for quantity in StandardAtmosphere::ALL {
-            assert_eq!(quantity.at(80_001.0), None);
+            assert_eq!(quantity.at(86_001.0), None);
             assert_eq!(quantity.at(-5_001.0), None);
             assert_eq!(quantity.at(f64::NAN), None);
-            assert!(quantity.at(80_000.0).is_some());
+            assert!(quantity.at(86_000.0).is_some());
             let beyond = Range::new(0.0, 1.0, 90_000.0).unwrap();
             assert_eq!(quantity.over(&beyond), None);
         }
@@ -217,7 +241,7 @@ mod tests {
     #[test]
     fn pressure_is_continuous_across_layers_and_falls() {
         let pressure = |height: i32| StandardAtmosphere::Pressure.at(f64::from(height)).unwrap();
-        for height in (-4_990..=80_000).step_by(10) {
+        for height in (-4_990..=86_000).step_by(10) {
             let falls = pressure(height) / pressure(height - 10);
             assert!((0.998..1.0).contains(&falls), "{height}: {falls}");
         }

@@ -2,6 +2,8 @@
 //! compared, and how a run is counted and reported. The values stand beside the tests that
 //! use them.
 
+pub(crate) mod jets;
+
 use std::collections::BTreeMap;
 use std::fs;
 use std::io::Write;

@@ -8,6 +8,8 @@
 
 mod cases;
 mod checks;
+mod constants;
+mod frames;
 mod requests;
 mod span;
 mod standard_atmosphere;

@@ -32,5 +32,15 @@ fn every_height_of_the_computed_table_agrees() {
 
 #[test]
 fn the_printed_tables_agree_to_their_digits() {
-    check("printed", 1e-4, 7);
+    check("printed", 1e-4, 8);
+}
+
+#[test]
+fn oxygen_parts_above_80_km() {
+    // 186.946 K is the molecular-scale temperature at 86 km.
+    let temperature = |height| StandardAtmosphere::Temperature.at(height).unwrap();
+    assert!((temperature(86_000.0) / 186.8673 - 1.0).abs() < 1e-6);
+    assert!((temperature(86_000.0) / 186.946 - 0.999_579).abs() < 1e-6);
+    // Below the parting nothing changes.
+    assert!((temperature(80_000.0) / 198.638_576_250_868_82 - 1.0).abs() < 1e-12);
 }

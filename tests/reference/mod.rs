@@ -3,10 +3,12 @@
 //! The scripts that made them stand here too; `python NAME.py --check` makes the values anew
 //! and compares them with the stored ones (Python 3.11, `requirements.txt`):
 //!
+//! - `frames.py`: vector expressions in curved frames, from Cartesian coordinates with SymPy;
 //! - `nondimensional.py`: random equations, scaled by the rules of `scaling.py` with SymPy;
 //! - `shares.py`: shares over boxes of scales, by linear programs;
 //! - `bounds.py`: intervals over which reduced systems stand, by scanning.
 
 mod bounds;
+mod frames;
 mod nondimensional;
 mod shares;

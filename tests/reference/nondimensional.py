@@ -323,9 +323,10 @@ class Script:
 
 def needed(lines, equation):
     """The declarations that an equation needs, themselves through others too; all coordinates."""
-    names = {"x", "y", "z", "t", *NAME.findall(equation)}
-    for _ in range(4):  # field, scale, derived scale, its parts
-        names |= {found for name, text in lines if name in names for found in NAME.findall(text)}
+    names, more = set(), {"x", "y", "z", "t", *NAME.findall(equation)}
+    while more - names:
+        names |= more
+        more = {found for name, text in lines if name in names for found in NAME.findall(text)}
     return [text for name, text in lines if name in names]
 
 

@@ -1,7 +1,13 @@
 //! The answers as JSON, for other programs. It only serialises: what is said is settled
 //! by the analysis and by `words`.
 
+mod bounds;
 mod claims;
+mod compare;
+mod find;
+mod groups;
+mod layers;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -107,8 +113,16 @@ fn answer(answer: &Answer) -> Value {
     });
     let own = match &answer.body {
         Body::Show(shown) => show::show(shown),
+        Body::Groups(found) => groups::groups(found),
+        Body::Nondimensionalize(equations) => {
+            json!({ "equations": list(equations, nondimensional::equation) })
+        }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
+        Body::Find(balances) => find::find(balances),
+        Body::Layers(found) => layers::layers(found),
+        Body::Bounds(found) => bounds::bounds(found),
+        Body::Compare(comparison) => compare::compare(comparison),
     };
     if let (Value::Object(object), Value::Object(own)) = (&mut object, own) {
         object.extend(own);

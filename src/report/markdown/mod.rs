@@ -7,12 +7,13 @@ mod claims;
 mod given;
 mod rank;
 mod reduce;
+mod sheet;
 mod show;
 mod table;
 
 use crate::analysis::{Answer, Body};
 use crate::report::markdown::table::{code, text};
-use crate::report::{CAUTION, words};
+use crate::report::{CAUTION, sheets, words};
 use crate::session::Outcome;
 
 /// Writes the whole report.
@@ -44,6 +45,14 @@ fn write_answer(answer: &Answer, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, out),
+        Body::Groups(groups) => sheet::sheet(&sheets::groups(groups), out),
+        Body::Nondimensionalize(equations) => {
+            sheet::sheet(&sheets::nondimensional(equations), out);
+        }
+        Body::Find(balances) => sheet::sheet(&sheets::find(balances), out),
+        Body::Layers(layers) => sheet::sheet(&sheets::layers(layers), out),
+        Body::Bounds(bounds) => sheet::sheet(&sheets::bounds(bounds), out),
+        Body::Compare(comparison) => sheet::sheet(&sheets::compare(comparison), out),
     }
     for left in &answer.left_out {
         out.push_str(&format!(

@@ -80,6 +80,8 @@ impl<'a> Search<'a> {
                 Meaning::Coordinate(id) => &mut self.needs.coordinates[id.0 as usize],
                 Meaning::Field(id) => &mut self.needs.fields[id.0 as usize],
                 Meaning::Group(id) => &mut self.needs.groups[id.0 as usize],
+                // Terms are written out in components.
+                Meaning::Vector(_) => continue,
             };
             if !std::mem::replace(seen, true) {
                 self.declaration(meaning);
@@ -93,6 +95,7 @@ impl<'a> Search<'a> {
             Meaning::Coordinate(id) => self.coordinate(id),
             Meaning::Field(id) => self.field(id),
             Meaning::Group(GroupId(idx)) => self.expr(&self.model.groups[idx as usize].value),
+            Meaning::Vector(_) => {}
         }
     }
 
@@ -137,7 +140,7 @@ impl<'a> Search<'a> {
             {
                 Some(Meaning::Symbol(id)) => symbols.push(id),
                 Some(Meaning::Group(id)) => is_at_hand &= self.needs.groups[id.0 as usize],
-                Some(Meaning::Coordinate(_) | Meaning::Field(_)) | None => {}
+                Some(Meaning::Coordinate(_) | Meaning::Field(_) | Meaning::Vector(_)) | None => {}
             });
             is_at_hand &= symbols.iter().all(|id| self.needs.symbols[id.idx()]);
             self.needs.groups[idx] |= is_at_hand;

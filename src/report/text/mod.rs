@@ -1,7 +1,14 @@
 //! The report for a terminal: at most 80 columns, readable without colour. Here stand what
 //! all answers share and the audit of what was given; each request has a file of its own.
 
+mod bounds;
 mod claims;
+mod columns;
+mod compare;
+pub(in crate::report) mod find;
+pub(in crate::report) mod groups;
+pub(in crate::report) mod layers;
+mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
@@ -10,6 +17,7 @@ use std::fmt::Write as _;
 
 use anstyle::{AnsiColor, Effects, Style};
 
+use crate::analysis::claims::Held;
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
@@ -25,7 +33,7 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
         audit(&outcome.symbols, &pen, &mut out);
     }
     notes(outcome, &mut out);
-    write_answers(outcome, &pen, &mut out);
+    write_answers(&outcome.answers, &outcome.claims, &pen, &mut out);
     if !out.is_empty() {
         out.push('\n');
         out.push_str(&wrapped("", CAUTION));
@@ -33,18 +41,19 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
     out
 }
 
-/// The answers and claims alone.
-pub fn answers(outcome: &Outcome) -> String {
+/// Writes the answers and claims alone, without what was given and without the caution:
+/// what a prompt says to one request.
+pub fn answers(answers: &[Answer], held: &[Held], colour: bool) -> String {
     let mut out = String::new();
-    write_answers(outcome, &Pen { colour: false }, &mut out);
+    write_answers(answers, held, &Pen { colour }, &mut out);
     out
 }
 
-fn write_answers(outcome: &Outcome, pen: &Pen, out: &mut String) {
-    for answer in &outcome.answers {
+fn write_answers(answers: &[Answer], held: &[Held], pen: &Pen, out: &mut String) {
+    for answer in answers {
         write_answer(answer, pen, out);
     }
-    claims::claims(&outcome.claims, pen, out);
+    claims::claims(held, pen, out);
 }
 
 /// Colours, which only add.
@@ -147,10 +156,18 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
     let _ = writeln!(out, "── {} {rule}\n", pen.head(&title));
     match &answer.body {
         Body::Show(_) => {}
+        Body::Groups(found) => groups::groups(found, pen, out),
+        Body::Nondimensionalize(equations) => equations
+            .iter()
+            .for_each(|equation| nondimensional::equation(equation, pen, out)),
         Body::Rank(equations) => equations
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Find(balances) => find::find(balances, pen, out),
+        Body::Layers(found) => layers::layers(found, pen, out),
+        Body::Bounds(found) => bounds::bounds(found, pen, out),
+        Body::Compare(comparison) => compare::compare(comparison, pen, out),
     }
     for left in &answer.left_out {
         let text = format!("{}: open {}", left.equation, left.open.join(", "));
