@@ -54,3 +54,12 @@ pub const CELLS: usize = 200_000;
 
 /// Most corners and directions of one cell in a search for balances.
 pub const CELL_RAYS: usize = 2_000;
+
+/// Most parts of one split field, those of split parts counted instead of them.
+pub const SPLIT_PARTS: usize = 64;
+
+/// Deepest nesting of splits.
+pub const SPLIT_DEPTH: usize = 20;
+
+/// The order in small ratios to which `rank`, `reduce` and their like expand.
+pub const EXPANSION_ORDER: u32 = 2;

@@ -118,6 +118,10 @@ impl Files for Disk {
     fn read(&self, path: &Path) -> Result<Vec<u8>, String> {
         fs::read(path).map_err(|error| reason(&error))
     }
+
+    fn write(&self, path: &Path, text: &str) -> Result<(), Box<Diagnostic>> {
+        writing::whole(path, text.as_bytes())
+    }
 }
 
 fn reason(error: &io::Error) -> String {
@@ -332,10 +336,11 @@ fn run(words: &Run) -> io::Result<ExitCode> {
             )
             .exit();
     }
-    let mut outcomes = outcomes(&words.scripts, |session, input, text| {
-        session.run(&input.name, text, input.path.as_deref())
+    let outcomes = outcomes(&words.scripts, |session, input, text| {
+        let mut outcome = session.run(&input.name, text, input.path.as_deref());
+        session.write(&mut outcome);
+        outcome
     });
-    save(&mut outcomes);
     let text = report_text(words, &outcomes);
     // What a report says already is not drawn a second time beside it.
     draw_diagnostics(&outcomes, |found| {
@@ -345,11 +350,15 @@ fn run(words: &Run) -> io::Result<ExitCode> {
     let mut faults = Vec::new();
     if let Some(path) = &words.junit {
         let xml = report::junit::report(&outcomes).map_err(io::Error::other)?;
-        faults.extend(writing::whole(path, xml.as_bytes()).err());
+        let written = writing::whole(path, xml.as_bytes());
+        faults.extend(written.err().map(|fault| *fault));
     }
     match &words.output {
         None => io::stdout().lock().write_all(text.as_bytes())?,
-        Some(path) => faults.extend(writing::whole(path, text.as_bytes()).err()),
+        Some(path) => {
+            let written = writing::whole(path, text.as_bytes());
+            faults.extend(written.err().map(|fault| *fault));
+        }
     }
     if faults.is_empty() {
         return Ok(exit_code(worst(&outcomes)));
@@ -360,20 +369,6 @@ fn run(words: &Run) -> io::Result<ExitCode> {
     };
     draw_diagnostics(&[unwritten], |_| true)?;
     Ok(exit_code(Status::Invalid))
-}
-
-/// Writes the modules that scripts save.
-fn save(outcomes: &mut [Outcome]) {
-    for outcome in outcomes {
-        for saved in std::mem::take(&mut outcome.saved) {
-            if let Err(fault) = writing::whole(&saved.path, saved.text.as_bytes()) {
-                outcome.diagnostics.push(Diagnostic {
-                    span: Some(saved.span),
-                    ..fault
-                });
-            }
-        }
-    }
 }
 
 fn report_text(words: &Run, outcomes: &[Outcome]) -> String {

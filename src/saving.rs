@@ -1,15 +1,27 @@
-//! `reduce ... save`: makes the module and settles where it goes. Writing it is left to
-//! whoever runs the session.
+//! `reduce ... save`: makes the module and settles where it goes. Whoever runs the session
+//! decides whether it is written.
 
 use std::path::{Path, PathBuf};
 
 use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
-use crate::model::modules::{Files, NoFiles, plain};
+use crate::model::modules::{Files, plain};
 use crate::report::module::{self, Origin};
-use crate::session::Saved;
+use crate::session::{Outcome, Saved};
 use crate::source::Sources;
 use crate::syntax::ast;
+
+/// Writes what an outcome asks for; what cannot be written is among its errors.
+pub(crate) fn write(files: &dyn Files, outcome: &mut Outcome) {
+    for saved in std::mem::take(&mut outcome.saved) {
+        if let Err(fault) = files.write(&saved.path, &saved.text) {
+            outcome.diagnostics.push(Diagnostic {
+                span: Some(saved.span),
+                ..*fault
+            });
+        }
+    }
+}
 
 /// Where a script may write.
 pub(crate) struct Folders<'a> {
@@ -54,16 +66,6 @@ pub(crate) fn saved(
 }
 
 impl Folders<'_> {
-    /// No folder at all: where a script is answered without files.
-    pub(crate) fn none() -> Folders<'static> {
-        Folders {
-            files: &NoFiles,
-            folder: Path::new(""),
-            root: Path::new(""),
-            script: None,
-        }
-    }
-
     /// The path of a file inside the root.
     fn path(&self, save: &ast::Text) -> Result<PathBuf, Diagnostic> {
         let outside = || {

@@ -26,7 +26,7 @@ use crate::model::errors::{ModelError, Product};
 use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
-use crate::model::{Model, declarations, requests};
+use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
 use crate::report::module::Origin;
 use crate::report::{standing, words};
@@ -177,16 +177,27 @@ impl<'f> Session<'f> {
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            let folders = Folders {
-                files: self.files,
-                folder: &self.folder,
-                root: self.root.as_ref().unwrap_or(&self.folder),
-                script: path,
-            };
+            let folders = self.folders(path);
             Answering::new(&checked, &mut outcome, self.watcher, folders).all();
         }
         self.finish(&mut outcome);
         outcome
+    }
+
+    /// Writes the files that an outcome asks for; what cannot be written is then among its
+    /// errors.
+    pub fn write(&self, outcome: &mut Outcome) {
+        saving::write(self.files, outcome);
+        diagnostic::sort(&mut outcome.diagnostics);
+    }
+
+    fn folders<'a>(&'a self, script: Option<&'a Path>) -> Folders<'a> {
+        Folders {
+            files: self.files,
+            folder: &self.folder,
+            root: self.root.as_ref().unwrap_or(&self.folder),
+            script,
+        }
     }
 
     fn finish(&self, outcome: &mut Outcome) {
@@ -559,7 +570,9 @@ impl<'a> Answering<'a> {
             },
             RequestKind::Bounds { symbols } => {
                 if let Some((wanted, left_out)) = self.equations(case, &[], request.span) {
-                    match bounds::bounds(self.model, case, &wanted, symbols) {
+                    let found = self.found.get(&case.setting.phenomenon);
+                    let balances = found.map_or(&[][..], |found| &found.balances);
+                    match bounds::bounds(self.model, case, &wanted, symbols, balances) {
                         Ok(found) => {
                             self.warn_of_lone_terms(case, &found);
                             self.outcome.answers.push(answer(
@@ -568,7 +581,7 @@ impl<'a> Answering<'a> {
                                 Body::Bounds(found),
                             ));
                         }
-                        Err(open) => self.fault(Fault::Open(open), case, request.span),
+                        Err(fault) => self.fault(fault, case, request.span),
                     }
                 }
             }
@@ -697,11 +710,17 @@ impl<'a> Answering<'a> {
                 .filter_map(|name| Some((self.model.equation(&name.text)?, name.span)))
                 .collect()
         };
+        let indices = with_terms(self.model, case, indices);
         let mut is_open = false;
+        let mut is_faulty = false;
         for (idx, place) in indices {
             let open = case.open_in(&case.equations[idx]);
             if open.is_empty() {
-                known.push(idx);
+                if self.is_sound(&case.equations[idx]) {
+                    known.push(idx);
+                } else {
+                    is_faulty = true;
+                }
                 continue;
             }
             let equation = case.equations[idx].name.clone();
@@ -710,6 +729,9 @@ impl<'a> Answering<'a> {
                 self.open_scale(case, Some(&equation), &open, place);
             }
             left_out.push(LeftOut { equation, open });
+        }
+        if known.is_empty() && is_faulty {
+            return None;
         }
         if known.is_empty() && !is_open {
             is_open = true;
@@ -732,6 +754,17 @@ impl<'a> Answering<'a> {
             }
         }
         (!is_open).then_some((known, left_out))
+    }
+
+    /// Whether an equation can be answered for; tells, once, why not.
+    fn is_sound(&mut self, equation: &terms::EquationTerms) -> bool {
+        for fault in &equation.faults {
+            let fault = fault.diagnostic();
+            if !self.outcome.diagnostics.contains(&fault) {
+                self.outcome.diagnostics.push(fault);
+            }
+        }
+        equation.faults.is_empty()
     }
 
     fn open_scale(&mut self, case: &Case, equation: Option<&str>, open: &[String], span: Span) {
@@ -813,6 +846,16 @@ impl<'a> Answering<'a> {
             }
         }
     }
+}
+
+/// The equations without components of a vector of which nothing is left, unless there are
+/// no others.
+fn with_terms(model: &Model, case: &Case, all: Vec<(usize, Span)>) -> Vec<(usize, Span)> {
+    let is_empty = |idx: usize| model.is_component(idx) && case.equations[idx].terms.is_empty();
+    if all.iter().all(|(idx, _)| is_empty(*idx)) {
+        return all;
+    }
+    all.into_iter().filter(|(idx, _)| !is_empty(*idx)).collect()
 }
 
 /// A request as written, with its blanks and line breaks made single blanks.

@@ -4,10 +4,10 @@
 //! product whose factors all vary over the same length along x, none of them by an
 //! amplitude of its own, stays whole, so that flux form is kept; any other is taken
 //! apart by the product rule. A power of one field counts as a product of equal factors.
-//! The rule is applied from the inside out.
+//! The rule is applied from the inside out. A function goes by the chain rule.
 
 use crate::algebra::monomial::Monomial;
-use crate::algebra::product::{Base, Derivative, Factor, Product, factors_size};
+use crate::algebra::product::{Applied, Base, Derivative, Factor, Product, factors_size};
 use crate::algebra::quantities::{CoordinateId, Quantities, Size, Variation};
 use crate::number::{Exponent, Number, TooLarge};
 
@@ -48,7 +48,7 @@ fn base_derivative(
     match base {
         // It depends on itself alone.
         Base::Symbol(_) | Base::Coordinate(_) => Ok(vec![Product::number(Number::one())]),
-        Base::Field(_) | Base::Absolute(_) | Base::Sized(_) => {
+        Base::Field(_) | Base::Absolute(_) | Base::Sized(_) | Base::Mean(_) => {
             let factor = Factor {
                 base: base.clone(),
                 power: Exponent::ONE,
@@ -56,7 +56,23 @@ fn base_derivative(
             Ok(vec![whole(&[factor], along)])
         }
         Base::Derivative(derivative) => differentiate_again(derivative, along, quantities),
+        Base::Function(applied) => chain_rule(applied, along, quantities),
     }
+}
+
+fn chain_rule(
+    applied: &Applied,
+    along: CoordinateId,
+    quantities: &Quantities,
+) -> Result<Vec<Product>, TooLarge> {
+    let inner = differentiate(&applied.argument, along, quantities)?;
+    let mut sum = Vec::new();
+    for outer in applied.derivative()? {
+        for part in &inner {
+            sum.push(outer.times(part)?);
+        }
+    }
+    Ok(sum)
 }
 
 /// The derivative of a derivative: taken in where the rule allows it, else applied to the
@@ -152,14 +168,15 @@ fn is_single(factors: &[Factor]) -> bool {
 pub fn depends_on(base: &Base, along: CoordinateId, quantities: &Quantities) -> bool {
     match base {
         Base::Symbol(_) => false,
-        Base::Coordinate(id) => *id == along,
+        Base::Coordinate(id) => quantities.coordinate(*id).along(along).is_some(),
         Base::Field(id) => quantities.field(*id).along(along).is_some(),
         Base::Derivative(derivative) => any_depends(&derivative.operand, along, quantities),
-        Base::Absolute(inside) => any_depends(inside, along, quantities),
+        Base::Absolute(inside) | Base::Mean(inside) => any_depends(inside, along, quantities),
         Base::Sized(sized) => sized
             .variations
             .iter()
             .any(|variation| variation.coordinate == along),
+        Base::Function(applied) => any_depends(&applied.argument.factors, along, quantities),
     }
 }
 
@@ -207,7 +224,18 @@ fn common_length<'a>(
             .map(|variation| &variation.length),
         Base::Derivative(derivative) => common_length_of(&derivative.operand, along, quantities),
         Base::Absolute(inside) => common_length_of(inside, along, quantities),
+        Base::Mean(inside) => mean_length(inside, along, quantities),
+        Base::Function(_) => None,
     }
+}
+
+/// A mean varies over the coordinates' own scales, whatever lengths its factors have.
+fn mean_length<'a>(
+    inside: &[Factor],
+    along: CoordinateId,
+    quantities: &'a Quantities,
+) -> Option<&'a Size> {
+    any_depends(inside, along, quantities).then(|| quantities.coordinate(along).length(along))
 }
 
 fn common_length_of<'a>(
@@ -260,7 +288,7 @@ fn single_amplitude(
             }
             factors => return factors_size(factors, quantities),
         },
-        Base::Symbol(_) | Base::Derivative(_) => {
+        Base::Symbol(_) | Base::Derivative(_) | Base::Mean(_) | Base::Function(_) => {
             return factors_size(&derivative.operand, quantities);
         }
     };
@@ -326,5 +354,7 @@ fn any_length<'a>(
         Base::Absolute(inside) => inside
             .iter()
             .find_map(|factor| any_length(&factor.base, along, quantities)),
+        Base::Mean(inside) => mean_length(inside, along, quantities),
+        Base::Function(_) => None,
     }
 }

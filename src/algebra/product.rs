@@ -6,11 +6,12 @@ use std::sync::Arc;
 use crate::algebra::calculus;
 use crate::algebra::monomial::{Monomial, Symbol};
 use crate::algebra::quantities::{CoordinateId, FieldId, Quantities, Size, Variation};
+use crate::algebra::series::Elementary;
 use crate::number::{Exponent, Number, TooLarge};
 
 /// A number times bases to rational powers, in the order in which they were written.
 /// No base stands twice and no power is 0.
-#[derive(Debug, Clone, PartialEq, Eq)]
+#[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord)]
 pub struct Product {
     /// The exact factor, with its sign.
     pub number: Number,
@@ -42,6 +43,11 @@ pub enum Base {
     Absolute(Box<Factors>),
     /// An expression with a size of its own.
     Sized(Arc<Sized>),
+    /// The average of a product that holds fluctuations.
+    Mean(Box<Factors>),
+    /// A function of something that varies. It stands only on the way to a term: there
+    /// it is expanded about a constant level.
+    Function(Box<Applied>),
 }
 
 /// The factors of a product without a number.
@@ -54,6 +60,15 @@ pub struct Derivative {
     pub operand: Factors,
     /// Coordinates with their orders, the innermost first.
     pub by: Vec<(CoordinateId, u32)>,
+}
+
+/// A function of one product, `sin(phi)`.
+#[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord)]
+pub struct Applied {
+    /// The function.
+    pub function: Elementary,
+    /// Its argument.
+    pub argument: Product,
 }
 
 /// An expression with a size of its own, `(A + B ~ D)`.
@@ -181,17 +196,15 @@ impl Product {
         }
     }
 
-    /// Whether both are the same but for their numbers.
+    /// Whether both are the same but for their numbers, the order of their factors and
+    /// that of the coordinates of a derivative.
     pub fn is_like(&self, other: &Product) -> bool {
-        if self.factors.len() != other.factors.len() {
-            return false;
-        }
-        let sorted = |product: &Product| {
-            let mut factors = product.factors.clone();
-            factors.sort();
-            factors
-        };
-        self.factors == other.factors || sorted(self) == sorted(other)
+        self.factors == other.factors || self.likeness() == other.likeness()
+    }
+
+    /// Its factors in an order of their own: equal for like products.
+    pub fn likeness(&self) -> Factors {
+        canonical(&self.factors)
     }
 
     /// Its size: number times sizes of its factors.
@@ -222,6 +235,41 @@ impl Product {
     }
 }
 
+fn canonical(factors: &[Factor]) -> Factors {
+    let mut factors: Factors = factors
+        .iter()
+        .map(|factor| Factor {
+            base: canonical_base(&factor.base),
+            power: factor.power,
+        })
+        .collect();
+    factors.sort();
+    factors
+}
+
+fn canonical_base(base: &Base) -> Base {
+    match base {
+        Base::Derivative(derivative) => {
+            let mut by = derivative.by.clone();
+            by.sort_unstable();
+            Base::Derivative(Box::new(Derivative {
+                operand: canonical(&derivative.operand),
+                by,
+            }))
+        }
+        Base::Absolute(inside) => Base::Absolute(Box::new(canonical(inside))),
+        Base::Mean(inside) => Base::Mean(Box::new(canonical(inside))),
+        Base::Function(applied) => Base::Function(Box::new(Applied {
+            function: applied.function,
+            argument: Product {
+                number: applied.argument.number.clone(),
+                factors: canonical(&applied.argument.factors),
+            },
+        })),
+        Base::Symbol(_) | Base::Coordinate(_) | Base::Field(_) | Base::Sized(_) => base.clone(),
+    }
+}
+
 fn collect_fields(factors: &[Factor], fields: &mut Vec<FieldId>) {
     for factor in factors {
         match &factor.base {
@@ -230,6 +278,8 @@ fn collect_fields(factors: &[Factor], fields: &mut Vec<FieldId>) {
             Base::Derivative(derivative) => collect_fields(&derivative.operand, fields),
             Base::Absolute(inside) => collect_fields(inside, fields),
             Base::Sized(sized) => sized.fields.iter().for_each(|id| push_new(fields, *id)),
+            Base::Mean(inside) => collect_fields(inside, fields),
+            Base::Function(applied) => collect_fields(&applied.argument.factors, fields),
         }
     }
 }
@@ -248,7 +298,8 @@ fn collect_derivatives<'a>(factors: &'a [Factor], found: &mut Vec<&'a Derivative
                 found.push(derivative);
                 collect_derivatives(&derivative.operand, found);
             }
-            Base::Absolute(inside) => collect_derivatives(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => collect_derivatives(inside, found),
+            Base::Function(applied) => collect_derivatives(&applied.argument.factors, found),
         }
     }
 }
@@ -276,8 +327,13 @@ fn base_size(base: &Base, quantities: &Quantities) -> Result<Size, TooLarge> {
         Base::Coordinate(id) => Ok(quantities.coordinate(*id).size.clone()),
         Base::Field(id) => Ok(quantities.field(*id).size.clone()),
         Base::Derivative(derivative) => calculus::derivative_size(derivative, quantities),
-        Base::Absolute(inside) => factors_size(inside, quantities),
+        Base::Absolute(inside) | Base::Mean(inside) => factors_size(inside, quantities),
         Base::Sized(sized) => Ok(sized.size.clone()),
+        // Its level is told where it is expanded.
+        Base::Function(_) => Ok(Size {
+            written: Monomial::one(),
+            resolved: Monomial::one(),
+        }),
     }
 }
 
@@ -319,6 +375,16 @@ impl Speller<'_> {
         text
     }
 
+    /// A product with its sign.
+    pub fn signed(&self, product: &Product) -> String {
+        let sign = if product.number.is_negative() {
+            "-"
+        } else {
+            ""
+        };
+        format!("{sign}{}", self.product(product))
+    }
+
     fn factor(&self, base: &Base, power: Exponent) -> String {
         let text = match base {
             Base::Symbol(symbol) => self.symbol(symbol).to_owned(),
@@ -327,6 +393,8 @@ impl Speller<'_> {
             Base::Derivative(derivative) => self.derivative(derivative),
             Base::Absolute(inside) => format!("abs({})", self.factors(inside)),
             Base::Sized(sized) => sized.text.clone(),
+            Base::Mean(inside) => format!("mean({})", self.factors(inside)),
+            Base::Function(applied) => applied.function.text(&self.signed(&applied.argument)),
         };
         if power == Exponent::ONE {
             return text;

@@ -61,13 +61,27 @@ impl Quantity {
     }
 }
 
+/// Where a coordinate counts from.
+#[derive(Debug, Clone)]
+pub struct Origin {
+    /// The origin, with its sign.
+    pub level: Monomial,
+    /// Whether it is 0.
+    pub is_zero: bool,
+    /// The coordinate as it counts from there; itself where the origin is 0.
+    pub displacement: CoordinateId,
+}
+
 /// All fields and coordinates of a model in one setting.
 #[derive(Debug, Clone, Default)]
 pub struct Quantities {
     /// The fields in order of declaration.
     pub fields: Vec<Quantity>,
-    /// The coordinates in order of declaration.
+    /// The coordinates in order of declaration; behind them the displacements of those
+    /// about an origin, each a coordinate that varies along its own.
     pub coordinates: Vec<Quantity>,
+    /// The origins of coordinates that have one, by the place of the coordinate.
+    pub origins: Vec<Option<Origin>>,
     /// What each scale or constant stands for: itself, or a product of others.
     pub replacements: Vec<Option<Monomial>>,
 }
@@ -100,6 +114,11 @@ impl Quantities {
     /// A field.
     pub fn field(&self, id: FieldId) -> &Quantity {
         &self.fields[id.0 as usize]
+    }
+
+    /// The origin of a coordinate that has one.
+    pub fn origin(&self, id: CoordinateId) -> Option<&Origin> {
+        self.origins.get(id.0 as usize)?.as_ref()
     }
 
     /// A coordinate.

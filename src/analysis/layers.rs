@@ -303,7 +303,8 @@ impl Thinning<'_> {
             Base::Symbol(_) | Base::Coordinate(_) | Base::Sized(_) => Ok(Exponent::ZERO),
             Base::Field(id) if self.carried == Some(*id) => Ok(Exponent::ONE),
             Base::Field(_) => Ok(Exponent::ZERO),
-            Base::Absolute(inside) => self.power(inside),
+            Base::Absolute(inside) | Base::Mean(inside) => self.power(inside),
+            Base::Function(applied) => self.power(&applied.argument.factors),
             Base::Derivative(derivative) => {
                 let inner = self.power(&derivative.operand)?;
                 let length =

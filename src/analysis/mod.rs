@@ -2,6 +2,7 @@
 //! and names, never prose.
 
 pub mod balances;
+pub mod base_state;
 pub mod bounds;
 pub mod claims;
 pub mod compare;
@@ -10,6 +11,7 @@ pub mod layers;
 pub mod matching;
 pub mod movable;
 pub mod names;
+pub mod neglected;
 pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
@@ -19,7 +21,7 @@ pub mod sizes;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::model::settings::{self, Adopted, Setting};
-use crate::model::terms::{self, EquationTerms};
+use crate::model::terms::{self, Depth, EquationTerms};
 use crate::model::{Model, errors::ModelError};
 use crate::number::{Exponent, Number};
 
@@ -86,12 +88,8 @@ pub fn case_with(
     let Some(setting) = setting else {
         return (None, errors);
     };
-    let mut equations = Vec::with_capacity(model.equations.len());
-    for idx in 0..model.equations.len() {
-        let (made, found) = terms::terms(model, &setting, idx);
-        equations.push(made);
-        errors.extend(found);
-    }
+    let (equations, found) = terms::all(model, &setting, Depth::RANKED);
+    errors.extend(found);
     (Some(Case { setting, equations }), errors)
 }
 

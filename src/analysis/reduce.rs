@@ -5,7 +5,9 @@ use std::collections::BTreeSet;
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Base, Derivative, Factor};
 use crate::algebra::quantities::{CoordinateId, FieldId};
+use crate::analysis::base_state::is_base_state;
 use crate::analysis::names::Namer;
+use crate::analysis::neglected::neglected;
 use crate::analysis::rank::{self, RankedProcess};
 use crate::analysis::sizes::{Shares, Verdict, same};
 use crate::analysis::{Case, Exponents, Factors};
@@ -45,14 +47,16 @@ pub struct ReducedEquation {
     pub kept: Vec<ReducedTerm>,
     /// The terms left out.
     pub dropped: Vec<ReducedTerm>,
-    /// The highest share of a dropped term; 0 if none is.
+    /// The highest share of a term left out; 0 if none is.
     pub error: f64,
     /// The sum of the highest shares, an upper bound.
     pub error_sum: f64,
-    /// The text of the dropped term with the highest share.
+    /// The text of the term left out with the highest share.
     pub first_neglected: Option<String>,
     /// The processes that lead.
     pub leading: Vec<String>,
+    /// Whether they hold base fields of splits only.
+    pub is_base_state: bool,
     /// The declared balance that they are.
     pub balance: Option<String>,
     /// Whether derived scales put the balance in.
@@ -230,7 +234,7 @@ fn reduced_equation(
     let (stays, goes): (Vec<usize>, Vec<usize>) =
         (0..kept.verdicts.len()).partition(|idx| kept.is_kept(*idx));
     let term = |idx: &usize| reduced_term(case, kept, *idx, tolerance, namer);
-    let highest = |idx: &usize| kept.shares.shares[*idx].high;
+    let left_out = neglected(case, kept, &goes);
     let leading = kept.leading();
     let sides = [Side::Left, Side::Right].map(|side| parts(kept, side));
     ReducedEquation {
@@ -241,10 +245,10 @@ fn reduced_equation(
         sides,
         kept: stays.iter().map(term).collect(),
         dropped: goes.iter().map(term).collect(),
-        error: goes.iter().map(highest).fold(0.0, f64::max),
-        error_sum: goes.iter().map(highest).sum(),
-        first_neglected: first_neglected(kept, &goes)
-            .map(|idx| kept.equation.terms[idx].text.clone()),
+        error: left_out.error,
+        error_sum: left_out.error_sum,
+        first_neglected: left_out.first,
+        is_base_state: is_base_state(model, case, kept),
         balance: balance(model, case, kept.equation.idx, all),
         by_construction: by_construction(kept, &leading),
         leading: leading
@@ -321,19 +325,6 @@ pub fn inequality(case: &Case, ratio: &Monomial, limit: f64, namer: &Namer<'_>) 
             .unwrap_or(Range::exact(f64::NAN)),
         limit,
     }
-}
-
-fn first_neglected(kept: &Kept<'_>, dropped: &[usize]) -> Option<usize> {
-    let share = |idx: usize| kept.shares.shares[idx];
-    dropped.iter().copied().reduce(|best, idx| {
-        let (a, b) = (share(best), share(idx));
-        let is_larger = if same(a.high, b.high) {
-            b.nominal > a.nominal && !same(a.nominal, b.nominal)
-        } else {
-            b.high > a.high
-        };
-        if is_larger { idx } else { best }
-    })
 }
 
 // The text of the reduced equation ------------------------------------------------------------
@@ -503,8 +494,9 @@ fn fields_of(factors: &[Factor], found: &mut Vec<FieldId>) {
         match &factor.base {
             Base::Field(id) => found.push(*id),
             Base::Derivative(derivative) => fields_of(&derivative.operand, found),
-            Base::Absolute(inside) => fields_of(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => fields_of(inside, found),
             Base::Sized(sized) => found.extend(&sized.fields),
+            Base::Function(applied) => fields_of(&applied.argument.factors, found),
             Base::Symbol(_) | Base::Coordinate(_) => {}
         }
     }
@@ -516,7 +508,12 @@ fn plain_fields(factors: &[Factor], found: &mut Vec<FieldId>) {
         match &factor.base {
             Base::Field(id) => found.push(*id),
             Base::Absolute(inside) => plain_fields(inside, found),
-            Base::Derivative(_) | Base::Symbol(_) | Base::Coordinate(_) | Base::Sized(_) => {}
+            Base::Derivative(_)
+            | Base::Symbol(_)
+            | Base::Coordinate(_)
+            | Base::Sized(_)
+            | Base::Mean(_)
+            | Base::Function(_) => {}
         }
     }
 }

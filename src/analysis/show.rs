@@ -66,7 +66,7 @@ impl Names for CaseNames<'_> {
     }
 
     fn process(&self, equation: &ast::Name, process: &ast::ProcessName) -> Result<Range, Fault> {
-        let sizes = self.process_sizes(equation, process);
+        let sizes = self.process_sizes(equation, process)?;
         if sizes.is_empty() {
             return Ok(Range::exact(0.0));
         }
@@ -82,15 +82,23 @@ impl Names for CaseNames<'_> {
 
 impl CaseNames<'_> {
     /// The sizes of a process's terms; none where all of them are gone.
-    fn process_sizes(&self, equation: &ast::Name, process: &ast::ProcessName) -> Vec<Monomial> {
+    fn process_sizes(
+        &self,
+        equation: &ast::Name,
+        process: &ast::ProcessName,
+    ) -> Result<Vec<Monomial>, Fault> {
         let Some(idx) = self.model.equation(&equation.text) else {
-            return Vec::new();
+            return Ok(Vec::new());
         };
-        let terms = self.case.equations[idx].terms.iter();
-        terms
+        let equation = &self.case.equations[idx];
+        if let Some(fault) = equation.faults.first() {
+            return Err(Fault::Error(fault.clone()));
+        }
+        let terms = equation.terms.iter();
+        Ok(terms
             .filter(|term| term.label() == process.text)
             .map(|term| term.size.resolved.clone())
-            .collect()
+            .collect())
     }
 }
 
@@ -113,7 +121,7 @@ pub fn quotient(expr: &ast::Expr, names: &CaseNames<'_>) -> Result<Quotient, Fau
     match &expr.kind {
         ExprKind::Bracket(inside) => quotient(inside, names),
         ExprKind::Process { equation, process } => Ok(Quotient {
-            above: names.process_sizes(equation, process),
+            above: names.process_sizes(equation, process)?,
             below: vec![Monomial::one()],
         }),
         ExprKind::Product(factors) => {

@@ -10,8 +10,9 @@ use crate::number::Exponent;
 use crate::polyhedra::{self, Affine};
 use crate::units::Range;
 
-/// Sizes this near to one another, relative, are equal.
-const SAME: f64 = 1e-12;
+/// Sizes this near to one another, relative, are equal; so are logarithms of sizes this
+/// near to one another.
+pub const SAME: f64 = 1e-12;
 
 /// Whether two sizes are equal.
 pub fn same(a: f64, b: f64) -> bool {

@@ -12,8 +12,8 @@ use scalewright::diagnostic::Diagnostic;
 ///
 /// # Errors
 /// Why it could not be written, as `cannot-write`.
-pub(crate) fn whole(path: &Path, bytes: &[u8]) -> Result<(), Diagnostic> {
-    write(path, bytes).map_err(|error| cannot_write(path, &error))
+pub(crate) fn whole(path: &Path, bytes: &[u8]) -> Result<(), Box<Diagnostic>> {
+    write(path, bytes).map_err(|error| Box::new(cannot_write(path, &error)))
 }
 
 fn write(path: &Path, bytes: &[u8]) -> io::Result<()> {

@@ -8,7 +8,7 @@ use num_traits::{One, Signed};
 
 use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
-use crate::model::errors::{Clash, ModelError, Unavailable};
+use crate::model::errors::{Clash, ModelError};
 use crate::model::frames::FrameInfo;
 use crate::model::{
     CoordinateInfo, FieldInfo, GroupId, GroupInfo, Level, Meaning, Model, PhenomenonInfo,
@@ -50,7 +50,7 @@ impl Gatherer {
             Kind::Use(_) | Kind::Error => {}
             Kind::Value(decl) => self.value(level, decl),
             Kind::Coordinate(decl) => self.coordinate(decl),
-            Kind::Field(decl) => self.field(decl, span),
+            Kind::Field(decl) => self.field(decl),
             Kind::Velocity(decl) => self.velocity(decl, span),
             Kind::Equation(decl) => self.equation(decl),
             Kind::Group(decl) => self.group(level, decl),
@@ -66,10 +66,6 @@ impl Gatherer {
             // Requests, tolerance and phenomena of a used module are not taken.
             Kind::Tolerance(_) | Kind::Phenomenon(_) | Kind::Request(_) => {}
         }
-    }
-
-    fn unavailable(&mut self, what: Unavailable, span: Span) {
-        self.errors.push(ModelError::NotAvailable { what, span });
     }
 
     /// Takes a name into the one space; `false` and an error if it is taken.
@@ -159,9 +155,6 @@ impl Gatherer {
     }
 
     fn coordinate(&mut self, decl: ast::CoordinateDecl) {
-        if let Some(about) = &decl.about {
-            self.unavailable(Unavailable::Origins, about.span);
-        }
         for name in decl.names {
             let id = CoordinateId(self.model.coordinates.len() as u32);
             if self.claim_name(&name, Meaning::Coordinate(id)) {
@@ -176,10 +169,7 @@ impl Gatherer {
         }
     }
 
-    fn field(&mut self, decl: ast::FieldDecl, span: Span) {
-        if decl.is_fluctuation {
-            self.unavailable(Unavailable::Means, span);
-        }
+    fn field(&mut self, decl: ast::FieldDecl) {
         for name in decl.names {
             let id = FieldId(self.model.fields.len() as u32);
             if self.claim_name(&name, Meaning::Field(id)) {
@@ -188,6 +178,7 @@ impl Gatherer {
                     size: decl.size.clone(),
                     varying: decl.varying.clone(),
                     coordinates: decl.coordinates.clone(),
+                    is_fluctuation: decl.is_fluctuation,
                     parts: Vec::new(),
                     notes: decl.notes.clone(),
                     dimension: None,
@@ -215,6 +206,7 @@ impl Gatherer {
                 size,
                 varying: None,
                 coordinates: Vec::new(),
+                is_fluctuation: false,
                 parts,
                 notes,
                 dimension: None,
@@ -298,12 +290,6 @@ impl Gatherer {
     }
 
     fn equation(&mut self, decl: ast::EquationDecl) {
-        if let ast::EquationBody::Made(_) = &decl.body {
-            self.unavailable(Unavailable::MadeEquations, decl.name.span);
-        }
-        if let Some(name) = decl.using.first() {
-            self.unavailable(Unavailable::MadeEquations, name.span);
-        }
         if let Some(&first) = self.model.equation_names.get(&decl.name.text) {
             let first = self.model.equations[first].name.span;
             self.clash(&decl.name, first, Clash::Equation);

@@ -5,10 +5,11 @@
 //! points at both terms.
 
 use crate::algebra::monomial::SymbolId;
-use crate::model::errors::{Alike, Clash, ModelError, Shape, Unavailable};
+use crate::limits;
+use crate::model::errors::{Alike, Clash, ModelError, Shape};
 use crate::model::frames;
 use crate::model::names::{self, Call, Function};
-use crate::model::{Level, Meaning, Model, declarations, is_given};
+use crate::model::{Level, Meaning, Model, combinations, declarations, is_given};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind};
@@ -25,6 +26,8 @@ pub enum Place {
     Group,
     /// An equation: fields, coordinates and derivatives too.
     Equation,
+    /// What an equation is made of: equations too.
+    Combination,
     /// A request: scales, constants, groups, processes.
     Request,
 }
@@ -79,7 +82,7 @@ pub fn dimension(
         place,
         whole: match place {
             Place::Constant | Place::Size => Some(expr.span),
-            Place::Group | Place::Equation | Place::Request => None,
+            Place::Group | Place::Equation | Place::Combination | Place::Request => None,
         },
         errors,
     };
@@ -358,17 +361,49 @@ fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
         })
         .collect();
     match order(&needs) {
-        Ok(order) => order.into_iter().for_each(|idx| {
-            if !model.fields[idx].parts.is_empty() {
-                model.fields[idx].dimension = split_dimension(model, idx, errors);
+        Ok(order) => {
+            split_sizes(model, &order, &needs, errors);
+            for idx in order {
+                if !model.fields[idx].parts.is_empty() {
+                    model.fields[idx].dimension = split_dimension(model, idx, errors);
+                }
             }
-        }),
+        }
         Err(ring) => {
             let name = |idx: &usize| &model.fields[*idx].name;
             errors.push(ModelError::Circular {
                 names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
                 spans: ring.iter().map(|idx| name(idx).span).collect(),
             });
+        }
+    }
+}
+
+/// Refuses splits of too many parts, or nested too deep.
+fn split_sizes(model: &Model, order: &[usize], needs: &[Vec<usize>], errors: &mut Vec<ModelError>) {
+    let mut n_parts = vec![1usize; needs.len()];
+    let mut depth = vec![0usize; needs.len()];
+    for &idx in order {
+        let info = &model.fields[idx];
+        if info.parts.is_empty() {
+            continue;
+        }
+        let n_constants = info.parts.len() - needs[idx].len().min(info.parts.len());
+        let inner: usize = needs[idx].iter().map(|part| n_parts[*part]).sum();
+        n_parts[idx] = n_constants + inner;
+        depth[idx] = 1 + needs[idx]
+            .iter()
+            .map(|part| depth[*part])
+            .max()
+            .unwrap_or(0);
+        if n_parts[idx] > limits::SPLIT_PARTS || depth[idx] > limits::SPLIT_DEPTH {
+            errors.push(ModelError::SplitTooLarge {
+                name: info.name.text.clone(),
+                span: info.name.span,
+            });
+            // One report is enough.
+            n_parts[idx] = 1;
+            depth[idx] = 0;
         }
     }
 }
@@ -630,19 +665,12 @@ fn derivative_clashes(model: &Model, errors: &mut Vec<ModelError>) {
 }
 
 fn equations(model: &mut Model, errors: &mut Vec<ModelError>) {
-    let mut dimensions = Vec::with_capacity(model.equations.len());
+    errors.extend(combinations::check(model));
+    model.equation_dimensions = vec![None; model.equations.len()];
     let mut found = Vec::new();
-    for equation in &model.equations {
-        let own = match &equation.body {
-            ast::EquationBody::Written { left, right } => {
-                let left = dimension(left, model, None, Place::Equation, &mut found);
-                let right = dimension(right, model, None, Place::Equation, &mut found);
-                alike(left, right, Alike::Sides, &mut found);
-                left.known().or(right.known())
-            }
-            ast::EquationBody::Made(_) => None,
-        };
-        dimensions.push(own);
+    for idx in combinations::order(model) {
+        let own = equation_dimension(model, idx, &mut found);
+        model.equation_dimensions[idx] = own.known();
         // What is written out in components repeats its faults.
         for error in found.drain(..) {
             let diagnostic = error.diagnostic();
@@ -651,7 +679,21 @@ fn equations(model: &mut Model, errors: &mut Vec<ModelError>) {
             }
         }
     }
-    model.equation_dimensions = dimensions;
+}
+
+fn equation_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> Dim {
+    match &model.equations[idx].body {
+        ast::EquationBody::Written { left, right } => {
+            let left = dimension(left, model, None, Place::Equation, errors);
+            let right = dimension(right, model, None, Place::Equation, errors);
+            alike(left, right, Alike::Sides, errors);
+            match left {
+                Dim::Known(..) => left,
+                Dim::Any | Dim::Faulty => right,
+            }
+        }
+        ast::EquationBody::Made(expr) => dimension(expr, model, None, Place::Combination, errors),
+    }
 }
 
 fn balances(model: &Model, errors: &mut Vec<ModelError>) {
@@ -753,6 +795,10 @@ struct Walker<'a> {
 }
 
 impl Walker<'_> {
+    fn is_in_equation(&self) -> bool {
+        matches!(self.place, Place::Equation | Place::Combination)
+    }
+
     fn fault(&mut self, error: ModelError) -> Dim {
         self.errors.push(error);
         Dim::Faulty
@@ -777,7 +823,7 @@ impl Walker<'_> {
             }
             ExprKind::Product(factors) => self.product(factors, span),
             ExprKind::Negate(inside) | ExprKind::Bracket(inside) => self.dimension(inside),
-            ExprKind::As { expr, .. } if self.place == Place::Equation => self.dimension(expr),
+            ExprKind::As { expr, .. } if self.is_in_equation() => self.dimension(expr),
             ExprKind::As { process, .. } => self.fault(ModelError::WrongForm {
                 found: "a process name",
                 wanted: "no `as` outside an equation",
@@ -881,14 +927,23 @@ impl Walker<'_> {
     }
 
     fn name(&mut self, name: &str, span: Span) -> Dim {
+        if self.place == Place::Combination
+            && let Some(idx) = self.model.equation(name)
+        {
+            return match self.model.equation_dimensions[idx] {
+                Some(dimension) => Dim::Known(dimension, span),
+                None => Dim::Faulty,
+            };
+        }
         let Some(meaning) = self.model.meaning(name, self.phenomenon) else {
             if names::is_pi(name) {
                 return Dim::Known(Dimension::one(), span);
             }
             return self.fault(unknown(name, span, self.model, self.phenomenon));
         };
-        let may_vary = self.place == Place::Equation;
-        let may_be_group = matches!(self.place, Place::Group | Place::Equation | Place::Request);
+        let may_vary = self.is_in_equation();
+        let may_be_group =
+            self.is_in_equation() || matches!(self.place, Place::Group | Place::Request);
         let found = match meaning {
             Meaning::Symbol(id) => self.model.symbols[id.idx()].dimension,
             Meaning::Group(_) if may_be_group => Some(Dimension::one()),
@@ -1034,14 +1089,14 @@ impl Walker<'_> {
                     nearest,
                 })
             }
-            Call::Mean => self.fault(ModelError::NotAvailable {
-                what: Unavailable::Means,
-                span,
-            }),
+            Call::Mean => match self.operand("a mean", function, arguments, span) {
+                Some(inside) => inside,
+                None => Dim::Faulty,
+            },
             Call::Vector => self.vector_operation(expr),
             Call::Function(found) => self.function(found, function, order, arguments, span),
             Call::Derivative(id) => {
-                let Some(inside) = self.operand(function, arguments, span) else {
+                let Some(inside) = self.operand("a derivative", function, arguments, span) else {
                     return Dim::Faulty;
                 };
                 let along = self.model.coordinates[id.0 as usize].dimension;
@@ -1068,11 +1123,17 @@ impl Walker<'_> {
     }
 
     /// The one argument of an operation that only an equation may hold.
-    fn operand(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Option<Dim> {
-        if self.place != Place::Equation {
+    fn operand(
+        &mut self,
+        found: &'static str,
+        function: &str,
+        arguments: &[ast::Expr],
+        span: Span,
+    ) -> Option<Dim> {
+        if !self.is_in_equation() {
             self.fault(ModelError::WrongForm {
-                found: "a derivative",
-                wanted: "no derivative outside an equation",
+                found,
+                wanted: "no derivative and no mean outside an equation",
                 span,
             });
             return None;
@@ -1116,7 +1177,7 @@ impl Walker<'_> {
     }
 
     fn material(&mut self, function: &str, arguments: &[ast::Expr], span: Span) -> Dim {
-        let Some(inside) = self.operand(function, arguments, span) else {
+        let Some(inside) = self.operand("a derivative", function, arguments, span) else {
             return Dim::Faulty;
         };
         let Some(velocity) = &self.model.velocity else {
@@ -1198,7 +1259,7 @@ impl Walker<'_> {
     }
 
     fn derivative(&mut self, operand: &ast::Expr, by: &[(ast::Name, u32)], span: Span) -> Dim {
-        if self.place != Place::Equation {
+        if !self.is_in_equation() {
             return self.fault(ModelError::WrongForm {
                 found: "a derivative",
                 wanted: "no derivative outside an equation",
@@ -1215,7 +1276,7 @@ impl Walker<'_> {
     }
 
     fn sized(&mut self, expr: &ast::Expr, size: &ast::Expr, span: Span) -> Dim {
-        if self.place != Place::Equation {
+        if !self.is_in_equation() {
             return self.fault(ModelError::WrongForm {
                 found: "a size behind `~`",
                 wanted: "no `~` outside an equation",
@@ -1227,9 +1288,9 @@ impl Walker<'_> {
                 .push(ModelError::ProcessInside { span: process });
         }
         let inside = self.dimension(expr);
-        self.place = Place::Size;
+        let place = std::mem::replace(&mut self.place, Place::Size);
         let found = self.dimension(size);
-        self.place = Place::Equation;
+        self.place = place;
         alike(inside, found, Alike::Size, self.errors);
         match (inside, found) {
             (Dim::Known(dimension, _), _) | (_, Dim::Known(dimension, _)) => {

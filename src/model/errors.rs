@@ -189,6 +189,23 @@ pub enum ModelError {
     NoTime { span: Span },
     /// A function of something that varies.
     NotSplit { span: Span, function: String },
+    /// A split of too many parts, or nested too deep.
+    SplitTooLarge { name: String, span: Span },
+    /// Parts that are too large to expand about the largest.
+    RatioNotSmall {
+        span: Span,
+        small: String,
+        large: String,
+        ratio: f64,
+        declared: Option<(String, Span)>,
+    },
+    /// An expansion about a place where it has none.
+    SingularExpansion { span: Span, what: String },
+    /// An expression that is no linear combination of equations, or an equation that
+    /// says nothing to put in elsewhere.
+    NotARelation { span: Span, what: Relation },
+    /// A relation whose right side holds its left one.
+    HoldsItself { relation: String, span: Span },
     /// A derivative along a coordinate on which its field does not depend.
     ZeroDerivative {
         equation: String,
@@ -272,16 +289,17 @@ pub enum Shape {
 /// What this version does not answer.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Unavailable {
-    /// `fluctuation`, `mean`.
-    Means,
-    /// `coordinate ... about`.
-    Origins,
-    /// `equation ... from`, `using`.
-    MadeEquations,
-    /// A power of a sum that is not whole, in an equation.
-    PowersOfSums,
     /// A request, by its keyword.
     Request(&'static str),
+}
+
+/// What is no relation.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Relation {
+    /// What stands behind `from`.
+    Combination,
+    /// An equation behind `using` whose left side holds nothing to replace.
+    Using,
 }
 
 /// What clashes.
@@ -335,6 +353,8 @@ pub enum Product {
     Term,
     /// A limit.
     Limit,
+    /// The left side of an equation behind `using`.
+    Using,
 }
 
 impl ModelError {
@@ -498,6 +518,11 @@ impl ModelError {
                 format!("`{function}` of something that varies has no size by itself"),
             )
             .with_help("give the expression a size of its own, `(... ~ SIZE)`, or name a constant level"),
+            E::SplitTooLarge { .. }
+            | E::RatioNotSmall { .. }
+            | E::SingularExpansion { .. }
+            | E::NotARelation { .. }
+            | E::HoldsItself { .. } => self.expansion_diagnostic(),
             E::ZeroDerivative { equation, texts, span } => Diagnostic::note(
                 "zero-derivative",
                 *span,
@@ -701,6 +726,67 @@ impl ModelError {
         }
     }
 
+    fn expansion_diagnostic(&self) -> Diagnostic {
+        match self {
+            ModelError::RatioNotSmall {
+                span,
+                small,
+                large,
+                ratio,
+                declared,
+            } => {
+                let found = Diagnostic::error(
+                    "ratio-not-small",
+                    *span,
+                    format!("`{small}` is {ratio:.3} of `{large}`, too much to expand in it"),
+                );
+                let help = "an expansion needs a ratio of at most 0.316";
+                match declared {
+                    Some((name, place)) => found
+                        .with_related(*place, format!("`{name}` is declared here"))
+                        .with_help(format!("{help}: change the declaration of `{name}`")),
+                    None => found.with_help(help),
+                }
+            }
+            ModelError::SplitTooLarge { name, span } => Diagnostic::error(
+                "too-large",
+                *span,
+                format!(
+                    "`{name}` is split into more than {} parts, or more than {} times over",
+                    crate::limits::SPLIT_PARTS,
+                    crate::limits::SPLIT_DEPTH
+                ),
+            ),
+            ModelError::SingularExpansion { span, what } => Diagnostic::error(
+                "singular-expansion",
+                *span,
+                format!("{what} has no expansion there"),
+            )
+            .with_help("take another origin, or give the expression a size of its own"),
+            ModelError::NotARelation { span, what } => match what {
+                Relation::Combination => Diagnostic::error(
+                    "not-a-relation",
+                    *span,
+                    "expected a linear combination of equations behind `from`",
+                )
+                .with_help("write sums of equations, their derivatives and means, each with a factor: `d_x(y_momentum) - d_y(x_momentum)`"),
+                Relation::Using => Diagnostic::error(
+                    "not-a-relation",
+                    *span,
+                    "the left side of this equation holds nothing to replace",
+                )
+                .with_help("write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`"),
+            },
+            ModelError::HoldsItself { relation, span } => Diagnostic::error(
+                "circular-definition",
+                *span,
+                format!("the right side of `{relation}` holds its left side"),
+            )
+            .with_help("write it with the wanted factor alone on the left"),
+            other => unreachable_words(other),
+        }
+    }
+
     fn lookup_diagnostic(&self) -> Diagnostic {
         use ModelError as E;
         let place = |code, span: &Option<Span>, message: String| match span {
@@ -826,24 +912,13 @@ fn wrong_shape(wanted: Shape, found: Shape, span: Span, because: Option<Span>) -
 }
 
 fn not_available(what: Unavailable, span: Span) -> Diagnostic {
-    let subject = match what {
-        Unavailable::Means => "fluctuations and means are",
-        Unavailable::Origins => "a coordinate about an origin is",
-        Unavailable::MadeEquations => "equations made of others are",
-        Unavailable::PowersOfSums => "the expansion of a power of a sum is",
-        Unavailable::Request(word) => {
-            return Diagnostic::error(
-                "not-available",
-                span,
-                format!("`{word}` is read, but not answered by this version"),
-            );
-        }
-    };
-    Diagnostic::error(
-        "not-available",
-        span,
-        format!("{subject} read, but not answered by this version"),
-    )
+    match what {
+        Unavailable::Request(word) => Diagnostic::error(
+            "not-available",
+            span,
+            format!("`{word}` is read, but not answered by this version"),
+        ),
+    }
 }
 
 fn not_a_function(
@@ -941,6 +1016,10 @@ fn not_a_product(span: Span, what: Product) -> Diagnostic {
         Product::Term => (
             "a term must be a product of powers",
             "give the expression a size of its own, `(... ~ SIZE)`, or name a constant",
+        ),
+        Product::Using => (
+            "the left side of an equation behind `using` must be a single product",
+            "write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`",
         ),
         Product::Limit => (
             "a limit must be a product of powers of named groups",

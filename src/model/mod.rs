@@ -1,11 +1,13 @@
 //! From syntax tree to a checked model: declarations are gathered (`declarations`),
 //! vector equations rewritten into components (`frames`), names resolved (`names`),
-//! modules brought in (`modules`, `library`), dimensions checked (`dimensions`), values worked out per phenomenon (`settings`, `values`) and
+//! modules brought in (`modules`, `library`), dimensions checked (`dimensions`,
+//! `combinations`), values worked out per phenomenon (`settings`, `values`) and
 //! equations turned into terms (`terms`).
 //!
 //! Comes in: the scripts. Goes out: a [`Model`] and, per phenomenon, a
 //! [`settings::Setting`] with its terms. Faults are [`errors::ModelError`]s.
 
+pub mod combinations;
 pub mod declarations;
 pub mod dimensions;
 pub mod errors;
@@ -147,6 +149,8 @@ pub struct FieldInfo {
     pub varying: Option<ast::Expr>,
     /// What it depends on.
     pub coordinates: Vec<ast::Dependence>,
+    /// Whether its mean is zero.
+    pub is_fluctuation: bool,
     /// The parts that it is split into, with their signs; empty if it is not split.
     pub parts: Vec<(ast::Sign, ast::Name)>,
     /// Title and source.

@@ -6,11 +6,11 @@ use std::sync::Arc;
 use num_rational::BigRational;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
-use crate::algebra::quantities::{CoordinateId, Quantities, Quantity, Size, Variation};
+use crate::algebra::quantities::{CoordinateId, Origin, Quantities, Quantity, Size, Variation};
 use crate::model::dimensions::{circular, group_uses, literal_unit, order};
 use crate::model::errors::{ModelError, Product};
 use crate::model::values::{self, Fault, Names, Value};
-use crate::model::{FieldInfo, GroupId, Meaning, Model, declarations, names};
+use crate::model::{CoordinateInfo, FieldInfo, GroupId, Meaning, Model, declarations, names};
 use crate::number::{Exponent, Number, rational_to_f64};
 use crate::source::Span;
 use crate::syntax::ast;
@@ -498,28 +498,86 @@ impl Builder<'_> {
     }
 
     fn coordinates(&mut self) {
+        let n_coordinates = self.model.coordinates.len() as u32;
+        let mut displacements = Vec::new();
         for (idx, info) in self.model.coordinates.iter().enumerate() {
-            let Some(size) = self.size(&info.size) else {
+            let id = CoordinateId(idx as u32);
+            let Some(scale) = self.size(&info.size) else {
+                continue;
+            };
+            let level = match &info.about {
+                None => None,
+                Some(about) => match self.level(about) {
+                    Some(level) => Some(level),
+                    None => continue,
+                },
+            };
+            let is_away = |level: &(Monomial, bool)| !level.1;
+            let size = match level.as_ref().filter(|level| is_away(level)) {
+                Some((level, _)) => self.setting.quantities.size(level.abs()),
+                None => Ok(scale.clone()),
+            };
+            let Ok(size) = size else {
+                let span = info.size.span;
+                self.errors.push(ModelError::TooLarge { span });
                 continue;
             };
             let variation = Variation {
-                coordinate: CoordinateId(idx as u32),
-                length: size.clone(),
-                nominal_amplitude: self.setting.nominal(&size.resolved),
-                amplitude: size.clone(),
-                has_own_amplitude: false,
+                coordinate: id,
+                length: scale.clone(),
+                nominal_amplitude: self.setting.nominal(&scale.resolved),
+                amplitude: scale.clone(),
+                has_own_amplitude: level.as_ref().is_some_and(is_away),
             };
-            self.setting.quantities.coordinates.push(Quantity {
+            let displaced = CoordinateId(n_coordinates + displacements.len() as u32);
+            let displacement = match level.as_ref().filter(|level| is_away(level)) {
+                Some(_) => displaced,
+                None => id,
+            };
+            if let (Some(about), true) = (&info.about, displacement != id) {
+                displacements.push(displacement_of(info, about, scale, &variation));
+            }
+            let quantities = &mut self.setting.quantities;
+            quantities.coordinates.push(Quantity {
                 name: info.name.text.clone(),
                 size,
                 variations: vec![variation],
             });
+            quantities
+                .origins
+                .push(level.map(|(level, is_zero)| Origin {
+                    level,
+                    is_zero,
+                    displacement,
+                }));
+        }
+        // A coordinate without a size was reported; the places would be off without it.
+        if self.setting.quantities.coordinates.len() == self.model.coordinates.len() {
+            self.setting.quantities.coordinates.extend(displacements);
+        }
+    }
+
+    /// The origin of a coordinate, with whether it is 0.
+    fn level(&mut self, about: &ast::Expr) -> Option<(Monomial, bool)> {
+        match values::monomial(about, self) {
+            Ok(level) => {
+                let is_zero = level.number.is_zero()
+                    || level
+                        .powers()
+                        .iter()
+                        .any(|(symbol, _)| self.setting.is_zero(symbol));
+                Some((level, is_zero))
+            }
+            Err(fault) => {
+                self.errors.extend(fault.error(Product::Size));
+                None
+            }
         }
     }
 
     fn fields(&mut self) {
         // A coordinate without a size was reported, and its index would be off.
-        if self.setting.quantities.coordinates.len() != self.model.coordinates.len() {
+        if self.setting.quantities.origins.len() != self.model.coordinates.len() {
             return;
         }
         for info in &self.model.fields {
@@ -622,6 +680,27 @@ impl Builder<'_> {
                 }),
             }
         }
+    }
+}
+
+/// A coordinate as it counts from its origin.
+fn displacement_of(
+    info: &CoordinateInfo,
+    about: &ast::Expr,
+    scale: Size,
+    variation: &Variation,
+) -> Quantity {
+    let origin = crate::syntax::print::expression(about);
+    Quantity {
+        name: match origin.strip_prefix('-') {
+            Some(amount) => format!("({} + {amount})", info.name.text),
+            None => format!("({} - {origin})", info.name.text),
+        },
+        size: scale,
+        variations: vec![Variation {
+            has_own_amplitude: false,
+            ..variation.clone()
+        }],
     }
 }
 

@@ -170,6 +170,8 @@ fn base(base: &Base, speller: &Speller<'_>) -> Expr {
         Base::Derivative(derivative) => derivative_expr(derivative, speller),
         Base::Absolute(inside) => call("abs", None, quotient(&Number::one(), inside, speller)),
         Base::Sized(sized) => read(&sized.text),
+        Base::Mean(inside) => call("mean", None, quotient(&Number::one(), inside, speller)),
+        Base::Function(applied) => read(&applied.function.text(&speller.signed(&applied.argument))),
     }
 }
 

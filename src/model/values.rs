@@ -313,7 +313,15 @@ fn evaluate_call(
     }
 }
 
-fn plain_function(function: units::Function, argument: &Value, span: Span) -> Result<Value, Fault> {
+/// A function of one plain number.
+///
+/// # Errors
+/// A pole, a value outside its domain or beyond the limits.
+pub fn plain_function(
+    function: units::Function,
+    argument: &Value,
+    span: Span,
+) -> Result<Value, Fault> {
     let trig = match function {
         units::Function::Sin => Some(Trig::Sin),
         units::Function::Cos => Some(Trig::Cos),

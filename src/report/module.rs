@@ -208,6 +208,15 @@ fn adopted(origin: &Origin<'_>, id: SymbolId) -> Option<ast::Value> {
 fn quantities(origin: &Origin<'_>, shelves: &Shelves, needs: &Needs) -> String {
     let model = origin.model;
     let mut out = String::new();
+    if let Some(frame) = &model.frame
+        && !shelves.hold(frame.span.file)
+    {
+        out.push_str(&line(StatementKind::Frame(ast::FrameDecl {
+            kind: frame.kind,
+            coordinates: frame.coordinates.clone(),
+            notes: ast::Notes::default(),
+        })));
+    }
     for (idx, info) in model.coordinates.iter().enumerate() {
         if needs.coordinates[idx] && !shelves.hold(info.name.span.file) {
             out.push_str(&line(StatementKind::Coordinate(ast::CoordinateDecl {
@@ -247,7 +256,7 @@ fn field(info: &crate::model::FieldInfo) -> StatementKind {
         });
     }
     StatementKind::Field(ast::FieldDecl {
-        is_fluctuation: false,
+        is_fluctuation: info.is_fluctuation,
         names: vec![info.name.clone()],
         coordinates: info.coordinates.clone(),
         size: info.size.clone(),

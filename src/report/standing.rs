@@ -54,6 +54,8 @@ fn what_happens(places: &[&Place], why: Why) -> String {
                 (Why::Rises, _) => "matter in",
                 (Why::Falls, 1) => "falls away in",
                 (Why::Falls, _) => "fall away in",
+                (Why::Joins, 1) => "exceeds the balance in",
+                (Why::Joins, _) => "exceed the balance in",
                 (Why::ExceedsParts, 1) => "exceeds its parts in",
                 (Why::ExceedsParts, _) => "exceed their parts in",
             };

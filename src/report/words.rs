@@ -208,6 +208,9 @@ pub fn leading_order(equation: &ReducedEquation) -> String {
     }
 }
 
+/// What a reduced equation of base fields alone is good for.
+pub const BASE_STATE: &str = "a base state alone: `using` takes it out of other equations";
+
 /// The fields that an equation steps in time, and those that it gives at any time.
 pub fn kinds(equation: &ReducedEquation) -> String {
     let of = |wanted: Kind| -> Vec<&str> {
@@ -312,14 +315,27 @@ pub const LEGEND: &str = "The size of a term follows from the scales; its share 
 
 /// What the lost derivatives of an equation mean, in one sentence.
 pub fn lost(lost: &[LostDerivative]) -> String {
-    let derivatives: Vec<String> = lost
+    let mut sets: Vec<(&str, u32, Vec<&str>)> = Vec::new();
+    for lost in lost {
+        let (field, order) = (lost.field.as_str(), lost.order);
+        let mut known = sets.iter_mut();
+        match known.find(|(found, at, _)| *found == field && *at == order) {
+            Some((_, _, along)) => along.push(&lost.coordinate),
+            None => sets.push((field, order, vec![&lost.coordinate])),
+        }
+    }
+    let derivatives: Vec<String> = sets
         .iter()
-        .map(|lost| {
+        .map(|(field, order, along)| {
+            let noun = if along.len() == 1 {
+                "derivative"
+            } else {
+                "derivatives"
+            };
             format!(
-                "the {} derivative of {} along {}",
-                ordinal(lost.order),
-                lost.field,
-                lost.coordinate
+                "the {} {noun} of {field} along {}",
+                ordinal(*order),
+                along.join(", ")
             )
         })
         .collect();
@@ -338,7 +354,7 @@ pub fn lost(lost: &[LostDerivative]) -> String {
     };
     format!(
         "{} {verb} lost, and with {} {conditions}; `layers` looks for where {them} matter again",
-        derivatives.join(", "),
+        derivatives.join(" and "),
         if lost.len() == 1 { "it" } else { "them" },
     )
     .replace("where it matter again", "where it matters again")

@@ -40,6 +40,8 @@ pub trait Watcher: Send + Sync {
 /// The state of one phenomenon once a `find` gave formulas for open scales.
 pub(super) struct Found {
     formulas: Adopted,
+    /// The processes that balance by them, by equation.
+    pub(super) balances: Vec<(String, Vec<String>)>,
     /// The phenomenon with these formulas.
     pub(super) case: Rc<Case>,
 }
@@ -268,7 +270,16 @@ impl Answering<'_> {
         match made {
             Some(made) => {
                 let case = Rc::new(made);
-                self.found.insert(target, Found { formulas, case });
+                let before = self.found.remove(&target);
+                let mut balances = before.map(|found| found.balances).unwrap_or_default();
+                balances.retain(|(name, _)| only.balances.iter().all(|(new, _)| new != name));
+                balances.extend(only.balances.iter().cloned());
+                let found = Found {
+                    formulas,
+                    balances,
+                    case,
+                };
+                self.found.insert(target, found);
             }
             None => {
                 let found = errors.first().map(ModelError::diagnostic);

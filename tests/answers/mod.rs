@@ -2,5 +2,7 @@
 //! the language one by one, bad input, and the README's own script.
 
 mod bad_input;
+mod expansions;
+mod made_equations;
 mod rules;
 mod worked_example;

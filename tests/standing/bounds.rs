@@ -312,3 +312,28 @@ fn a_term_at_the_tolerance_is_out_and_at_its_end() {
     near(&bounds["scales"][0]["low"], 1e6, 1e-12);
     near(&bounds["nearest"]["factor"], 1.0, 1e-12);
 }
+
+#[test]
+fn a_balance_that_was_found_is_marked_where_it_ends() {
+    // dP follows from rotation against pressure; from U/(f L) = 1 on, inertia is larger.
+    let script = "
+        scale U = 10 m/s   scale L = 2000 km   scale T = L/U   scale dP in Pa
+        constant f = 1e-4 1/s   constant rho = 1.2 kg/m^3
+        coordinate x ~ L   coordinate t ~ T
+        field u, v(x, t) ~ U   field p(x, t) ~ dP
+        equation momentum: d_t(u) as tendency - f*v as coriolis = -d_x(p)/rho as pressure_gradient
+        find dP where momentum: coriolis ~ pressure_gradient
+        bounds L";
+    let scale = &answer(script, "bounds")["scales"][0];
+    near(&scale["low"], 1e6, 1e-12);
+    near(&scale["balance"]["low"], 1e5, 1e-12);
+    assert_eq!(
+        ender(&scale["balance"]["limited_by"]["low"]),
+        "momentum.tendency"
+    );
+    assert_eq!(scale["balance"]["high"], Value::Null);
+    let text = report(script);
+    assert!(text.contains("tendency exceeds the balance in"), "{text}");
+    let derived = errors(&script.replace("bounds L", "bounds dP"));
+    assert_eq!(derived[0].0, "derived-scale");
+}

@@ -9,10 +9,9 @@ use crate::algebra::product::{Base, Factor, Sized};
 use crate::analysis::balances::powers::Powers;
 use crate::analysis::sizes::same;
 use crate::model::settings::{Setting, Variable};
-use crate::model::terms::{EquationTerms, Summand};
+use crate::model::terms::EquationTerms;
 use crate::number::{Exponent, Number, TooLarge};
 use crate::polyhedra::prevariety::{Equation, LinearForm, System, Term};
-use crate::syntax::ast::{self, ExprKind};
 
 /// The grid of logarithms: exact sums of rounded ones keep exact products exact.
 const GRID: f64 = (1_u64 << 48) as f64;
@@ -159,7 +158,8 @@ fn sized_in<'a>(factors: &'a [Factor], found: &mut Vec<&'a Sized>) {
         match &factor.base {
             Base::Sized(sized) => found.push(sized),
             Base::Derivative(derivative) => sized_in(&derivative.operand, found),
-            Base::Absolute(inside) => sized_in(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => sized_in(inside, found),
+            Base::Function(applied) => sized_in(&applied.argument.factors, found),
             Base::Symbol(_) | Base::Coordinate(_) | Base::Field(_) => {}
         }
     }
@@ -449,34 +449,10 @@ fn is_one_derivative(entry: &Entry<'_>, formulas: &[Monomial]) -> bool {
     of("tendency").any(|(a, tendency)| {
         of("advection").any(|(b, advection)| {
             tendency.summand == advection.summand
-                && is_material(&entry.equation.summands[tendency.summand])
+                && entry.equation.summands[tendency.summand].is_material
                 && formulas[a] == formulas[b]
         })
     })
-}
-
-fn is_material(summand: &Summand) -> bool {
-    fn holds(expr: &ast::Expr) -> bool {
-        match &expr.kind {
-            ExprKind::Call {
-                function,
-                arguments,
-                ..
-            } => function.text == "D_t" || arguments.iter().any(holds),
-            ExprKind::Sum(terms) => terms.iter().any(|(_, term)| holds(term)),
-            ExprKind::Product(factors) => factors.iter().any(|(_, factor)| holds(factor)),
-            ExprKind::Negate(inside) | ExprKind::Bracket(inside) => holds(inside),
-            ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => holds(expr),
-            ExprKind::Power { base, .. } => holds(base),
-            ExprKind::Derivative { operand, .. } => holds(operand),
-            ExprKind::Tuple(parts) => parts.iter().any(holds),
-            ExprKind::Number(_)
-            | ExprKind::Name(_)
-            | ExprKind::Process { .. }
-            | ExprKind::Error => false,
-        }
-    }
-    holds(&summand.expr)
 }
 
 /// The power of a symbol; 0 if it does not occur.

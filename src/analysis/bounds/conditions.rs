@@ -7,10 +7,10 @@ use num_traits::{One, Zero};
 use crate::algebra::monomial::Monomial;
 use crate::analysis::Case;
 use crate::analysis::bounds::Place;
-use crate::analysis::bounds::standing::{Reduced, SAME, Threat, Why};
+use crate::analysis::bounds::standing::{Reduced, Threat, Why};
 use crate::analysis::names::Namer;
 use crate::analysis::reduce::{self, Inequality, Kept};
-use crate::analysis::sizes::{Space, Verdict, at_most};
+use crate::analysis::sizes::{SAME, Space, Verdict, at_most};
 use crate::number::rational_to_f64;
 use crate::polyhedra::{self, Affine, Outcome, Program, Relation};
 
@@ -176,7 +176,7 @@ fn failing(
     let (term, role) = match threat.why {
         Why::Rises => (threat.upper.term, Role::StaysOut),
         Why::Falls => (lower.term, Role::StaysIn),
-        Why::ExceedsParts => (threat.upper.term, Role::WithinParts),
+        Why::ExceedsParts | Why::Joins => (threat.upper.term, Role::WithinParts),
     };
     Some(Condition {
         place: super::place(&systems[threat.equation], term),

@@ -11,11 +11,13 @@ pub mod standing;
 use crate::algebra::monomial::{Symbol, SymbolId};
 use crate::analysis::Case;
 use crate::analysis::bounds::conditions::Condition;
-use crate::analysis::bounds::standing::{Reduced, SAME, Threat, Why};
+use crate::analysis::bounds::standing::{Reduced, Threat, Why};
 use crate::analysis::movable;
 use crate::analysis::names::Namer;
+use crate::analysis::sizes::SAME;
 use crate::audit;
 use crate::model::errors::ModelError;
+use crate::model::values::Fault;
 use crate::model::{Model, requests};
 use crate::syntax::ast::{self, RequestKind};
 
@@ -56,6 +58,8 @@ pub struct Bound {
     pub stands: Interval,
     /// Where it stays the same.
     pub unchanged: Interval,
+    /// Where the balance that gave open scales their formulas stands, if one did.
+    pub balance: Option<Interval>,
 }
 
 /// The connected piece that holds the nominal value.
@@ -128,24 +132,29 @@ pub fn check(model: &Model, case: &Case) -> Vec<ModelError> {
     errors
 }
 
-/// Answers for the equations at these places, all of whose scales are known.
+/// Answers for the equations at these places, all of whose scales are known. `balances`
+/// are the processes that gave open scales their formulas, by equation.
 ///
 /// # Errors
-/// The named scales and constants that have no value.
+/// Named scales and constants that have no value or cannot be moved alone.
 pub fn bounds(
     model: &Model,
     case: &Case,
     wanted: &[usize],
     named: &[ast::Name],
-) -> Result<Bounds, Vec<SymbolId>> {
+    balances: &[(String, Vec<String>)],
+) -> Result<Bounds, Fault> {
     let tolerance = case.setting.tolerance();
     let (systems, lone) = systems(case, wanted, tolerance);
     let symbols = symbols(model, case, &systems, named)?;
-    let endings = standing::endings(case, &systems, tolerance);
-    let changes = standing::changes(&systems, tolerance);
+    let threats = Threats {
+        endings: standing::endings(case, &systems, tolerance),
+        changes: standing::changes(&systems, tolerance),
+        balance: (!balances.is_empty()).then(|| standing::joins(&systems, balances)),
+    };
     let scales: Vec<Bound> = symbols
         .iter()
-        .map(|id| bound(model, case, *id, &systems, &endings, &changes))
+        .map(|id| bound(model, case, *id, &systems, &threats))
         .collect();
     let namer = Namer::new(case);
     Ok(Bounds {
@@ -156,7 +165,7 @@ pub fn bounds(
         dropped: systems.iter().flat_map(dropped).collect(),
         lone,
         has_ranges: conditions::has_ranges(case, &systems),
-        fails_first: conditions::fails_first(case, &systems, &endings, &namer),
+        fails_first: conditions::fails_first(case, &systems, &threats.endings, &namer),
     })
 }
 
@@ -199,13 +208,13 @@ fn symbols(
     case: &Case,
     systems: &[Reduced<'_>],
     named: &[ast::Name],
-) -> Result<Vec<SymbolId>, Vec<SymbolId>> {
+) -> Result<Vec<SymbolId>, Fault> {
     if !named.is_empty() {
         let mut found: Vec<SymbolId> = Vec::new();
         for name in named {
-            if let Ok(id) = movable::movable(model, case, name)
-                && !found.contains(&id)
-            {
+            // A formula found meanwhile may have made it follow others.
+            let id = movable::movable(model, case, name)?;
+            if !found.contains(&id) {
                 found.push(id);
             }
         }
@@ -217,7 +226,7 @@ fn symbols(
         return if open.is_empty() {
             Ok(found)
         } else {
-            Err(open)
+            Err(Fault::Open(open))
         };
     }
     let mut found: Vec<SymbolId> = Vec::new();
@@ -238,6 +247,13 @@ fn symbols(
     Ok(found)
 }
 
+/// What may end or change the system.
+struct Threats<'c> {
+    endings: Vec<Threat<'c>>,
+    changes: Vec<Threat<'c>>,
+    balance: Option<Vec<Threat<'c>>>,
+}
+
 // One scale -----------------------------------------------------------------------------------
 
 fn bound(
@@ -245,8 +261,7 @@ fn bound(
     case: &Case,
     id: SymbolId,
     systems: &[Reduced<'_>],
-    endings: &[Threat<'_>],
-    changes: &[Threat<'_>],
+    threats: &Threats<'_>,
 ) -> Bound {
     let nominal = case
         .setting
@@ -263,8 +278,12 @@ fn bound(
             .map_or_else(|| "1".to_owned(), |dimension| dimension.unit_text()),
         written_unit: audit::written_unit(model, &case.setting, id),
         nominal,
-        stands: interval(&mut endings.iter()),
-        unchanged: interval(&mut endings.iter().chain(changes)),
+        stands: interval(&mut threats.endings.iter()),
+        unchanged: interval(&mut threats.endings.iter().chain(&threats.changes)),
+        balance: threats
+            .balance
+            .as_ref()
+            .map(|joins| interval(&mut joins.iter())),
     }
 }
 

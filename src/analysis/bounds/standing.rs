@@ -9,12 +9,9 @@ use crate::algebra::monomial::{Monomial, SymbolId};
 use crate::algebra::product::{Base, Factor, Sized};
 use crate::analysis::Case;
 use crate::analysis::rank;
-use crate::analysis::sizes::{self, Space};
+use crate::analysis::sizes::{self, SAME, Space};
 use crate::model::terms::EquationTerms;
 use crate::number::Exponent;
-
-/// Logarithms of sizes this near to one another are equal.
-pub const SAME: f64 = 1e-12;
 
 /// What happens where a reduced system ends, or changes.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -25,6 +22,8 @@ pub enum Why {
     Falls,
     /// An expression with a size of its own would exceed its largest part.
     ExceedsParts,
+    /// A term grows beyond the processes whose balance gave an open scale its formula.
+    Joins,
 }
 
 /// An equation reduced at the nominal values.
@@ -163,6 +162,11 @@ impl<'c> Threat<'c> {
         is_some.then_some((low, high))
     }
 
+    /// Whether it is true at the nominal values.
+    fn is_true(&self) -> bool {
+        self.lowers.iter().all(|lower| self.excess(lower) > 0.0)
+    }
+
     /// The logarithm of `upper` over `limit` times a lower one, at the nominal values.
     fn excess(&self, lower: &Form<'c>) -> f64 {
         let excess = self.upper.log - lower.log - self.limit.ln();
@@ -173,7 +177,7 @@ impl<'c> Threat<'c> {
     /// ones there, which falls last.
     pub fn term_at(&self, id: SymbolId, moved: f64) -> usize {
         match self.why {
-            Why::Rises | Why::ExceedsParts => self.upper.term,
+            Why::Rises | Why::ExceedsParts | Why::Joins => self.upper.term,
             Why::Falls => {
                 let at = |form: &Form<'_>| form.log + form.monomial.power_of(id).to_f64() * moved;
                 let lowers = self.lowers.iter();
@@ -303,7 +307,8 @@ fn sized_in<'c>(factors: &'c [Factor], found: &mut Vec<&'c Sized>) {
         match &factor.base {
             Base::Sized(sized) => found.push(sized),
             Base::Derivative(derivative) => sized_in(&derivative.operand, found),
-            Base::Absolute(inside) => sized_in(inside, found),
+            Base::Absolute(inside) | Base::Mean(inside) => sized_in(inside, found),
+            Base::Function(applied) => sized_in(&applied.argument.factors, found),
             Base::Symbol(_) | Base::Coordinate(_) | Base::Field(_) => {}
         }
     }
@@ -326,5 +331,36 @@ pub fn changes<'c>(systems: &'c [Reduced<'c>], tolerance: f64) -> Vec<Threat<'c>
             }));
         }
     }
+    threats
+}
+
+/// What ends the balances that gave open scales their formulas: a term of another process
+/// above every term of theirs.
+pub fn joins<'c>(
+    systems: &'c [Reduced<'c>],
+    balances: &[(String, Vec<String>)],
+) -> Vec<Threat<'c>> {
+    let mut threats = Vec::new();
+    for (equation, reduced) in systems.iter().enumerate() {
+        let mut balances = balances.iter();
+        let Some((_, processes)) = balances.find(|(name, _)| *name == reduced.equation.name) else {
+            continue;
+        };
+        let terms = 0..reduced.kept.len();
+        let label = |idx: usize| reduced.equation.terms[idx].label();
+        let (balanced, others): (Vec<usize>, Vec<usize>) =
+            terms.partition(|idx| processes.iter().any(|process| process == label(*idx)));
+        let lowers: Vec<Form<'c>> = balanced.iter().map(|idx| reduced.form(*idx)).collect();
+        threats.extend(others.iter().map(|idx| Threat {
+            equation,
+            why: Why::Joins,
+            upper: reduced.form(*idx),
+            lowers: lowers.clone(),
+            limit: 1.0,
+            is_closed: false,
+        }));
+    }
+    // Beyond already at the nominal values: the answer to `find` says so.
+    threats.retain(|threat| !threat.is_true());
     threats
 }

@@ -29,6 +29,9 @@ pub(super) fn verdict(
         return Err(Fault::NotAProduct(equation.span));
     };
     let terms = &case.equations[idx];
+    if let Some(fault) = terms.faults.first() {
+        return Err(Fault::Error(fault.clone()));
+    }
     let mut open = Vec::new();
     for term in &terms.terms {
         open.extend(case.setting.monomial_range(&term.size.resolved).err());

@@ -43,6 +43,7 @@ fn bound(bound: &Bound) -> Value {
     object["unit"] = json!(bound.unit);
     object["nominal"] = json!(bound.nominal);
     object["unchanged"] = interval(&bound.unchanged);
+    object["balance"] = bound.balance.as_ref().map_or(Value::Null, interval);
     object
 }
 

@@ -42,6 +42,7 @@ fn reduced(equation: &ReducedEquation) -> Value {
         "first_neglected": equation.first_neglected,
         "balance": equation.balance,
         "by_construction": equation.by_construction,
+        "base_state": equation.is_base_state,
         "kind": Value::Object(kinds.collect()),
         "lost_derivatives": list(&equation.lost, |lost| json!({
             "coordinate": lost.coordinate,

@@ -72,13 +72,19 @@ fn remarks(equation: &ReducedEquation, out: &mut String) {
         .iter()
         .map(|terms| depends(terms))
         .collect();
-    if let Some(first) = first_neglected(equation) {
+    if let Some(first) = &equation.first_neglected {
         items.push(format!(
             "\\textbf{{Error:}} at most {} of the largest term, from {}, the first neglected \
              term; {} in all.",
             math::numbers(&percent(equation.error)),
-            math::inline(&first.expr),
+            format_args!("${}$", math::read(first, Style::Inline).text),
             math::numbers(&percent(equation.error_sum))
+        ));
+    }
+    if equation.is_base_state {
+        items.push(format!(
+            "\\textbf{{Base:}} {}.",
+            backticked(words::BASE_STATE)
         ));
     }
     let kinds = words::kinds(equation);
@@ -108,9 +114,4 @@ fn depends(terms: &[&ReducedTerm]) -> String {
             conditions.join(" or ")
         ),
     }
-}
-
-fn first_neglected(equation: &ReducedEquation) -> Option<&ReducedTerm> {
-    let text = equation.first_neglected.as_ref()?;
-    equation.dropped.iter().find(|term| term.text == *text)
 }

@@ -70,6 +70,9 @@ fn remarks(equation: &ReducedEquation) -> String {
             percent(equation.error_sum)
         ));
     }
+    if equation.is_base_state {
+        out.push_str(&format!("- **Base:** {}.\n", backticked(words::BASE_STATE)));
+    }
     let kinds = words::kinds(equation);
     if !kinds.is_empty() {
         out.push_str(&format!("- **Fields:** {}.\n", text(&kinds)));

@@ -44,6 +44,8 @@ impl Needs {
                 search.name(name);
             }
         }
+        let frame = model.frame.iter().flat_map(|frame| &frame.coordinates);
+        frame.for_each(|coordinate| search.name(&coordinate.text));
         for (field, coordinate) in model.velocity.iter().flat_map(|info| &info.components) {
             search.name(&field.text);
             search.name(&coordinate.text);

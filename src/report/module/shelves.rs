@@ -33,7 +33,7 @@ impl Shelves {
         let overridden = overridden(origin);
         let mut shelves: BTreeSet<FileId> = files
             .iter()
-            .skip(1)
+            .filter(|file| file.name != origin.script)
             .filter(|file| file.is_bundled && !file.has_equations)
             .map(|file| file.id)
             .filter(|id| !overridden.contains(id))

@@ -2,8 +2,8 @@
 
 use std::fmt::Write as _;
 
-use crate::analysis::bounds::standing::SAME;
 use crate::analysis::bounds::{Bound, Bounds, End};
+use crate::analysis::sizes::SAME;
 use crate::report::layout::{padded, width, wrapped};
 use crate::report::standing;
 use crate::report::text::Pen;
@@ -93,6 +93,10 @@ fn ends(bound: &Bound) -> Vec<[String; 4]> {
         add("changes above", same.high.as_ref());
     }
     add("stands up to", stands.high.as_ref());
+    if let Some(balance) = &bound.balance {
+        add("balanced down to", balance.low.as_ref());
+        add("balanced up to", balance.high.as_ref());
+    }
     rows
 }
 

@@ -12,15 +12,30 @@ pub(super) fn claims(claims: &[Held], pen: &Pen, out: &mut String) {
     if claims.is_empty() {
         return;
     }
-    let _ = writeln!(out, "{}", pen.head("claims"));
+    // One phenomenon for all is named once.
+    let first = claims[0].phenomenon.as_ref();
+    let common = first.filter(|_| {
+        claims
+            .iter()
+            .all(|claim| claim.phenomenon.as_ref() == first)
+    });
+    let head = match common {
+        Some(name) => format!("claims for {name}"),
+        None => "claims".to_owned(),
+    };
+    let _ = writeln!(out, "{}", pen.head(&head));
     for claim in claims {
         let text = words::claim(claim);
+        let text = match common {
+            Some(name) => text.trim_end_matches(&format!(" for {name}")),
+            None => &text,
+        };
         let label = if claim.met {
             "  met      "
         } else {
             "  not met  "
         };
-        let block = wrapped(label, &text);
+        let block = wrapped(label, text);
         out.push_str(&if claim.met {
             block
         } else {

@@ -34,6 +34,9 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         .map(|parts| words::signed(parts, |part| part.text.clone()));
     right[0].insert_str(0, "= ");
     out.push_str(&wrapped_words("      ", &[left, right].concat()));
+    if equation.is_base_state {
+        out.push_str(&wrapped("  base     ", words::BASE_STATE));
+    }
     depends(equation, out);
     dropped(equation, out);
     if let Some(text) = &equation.first_neglected {

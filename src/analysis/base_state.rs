@@ -1,0 +1,55 @@
+//! Whether an equation's leading order speaks of a base state alone, as hydrostatic
+//! balance does.
+
+use crate::algebra::quantities::FieldId;
+use crate::analysis::Case;
+use crate::analysis::reduce::Kept;
+use crate::analysis::sizes::Verdict;
+use crate::model::{Meaning, Model};
+
+/// Whether the terms that lead hold fields, and base fields only: the largest parts of
+/// fields that are split.
+pub fn is_base_state(model: &Model, case: &Case, kept: &Kept<'_>) -> bool {
+    let base = base_fields(model, case);
+    if base.is_empty() {
+        return false;
+    }
+    let leading = kept
+        .equation
+        .terms
+        .iter()
+        .zip(&kept.verdicts)
+        .filter(|(_, verdict)| **verdict == Verdict::Leads);
+    let fields: Vec<FieldId> = leading
+        .flat_map(|(term, _)| term.product.fields())
+        .collect();
+    !fields.is_empty() && fields.iter().all(|field| base.contains(field))
+}
+
+/// The largest part, at the nominal values, of each field that is split.
+fn base_fields(model: &Model, case: &Case) -> Vec<FieldId> {
+    let size = |name: &str| match model.meaning(name, None) {
+        Some(Meaning::Field(id)) => {
+            let size = &case.setting.quantities.field(id).size.resolved;
+            Some((Some(id), case.setting.nominal(size)))
+        }
+        Some(Meaning::Symbol(id)) => {
+            let size = case
+                .setting
+                .quantities
+                .symbol_size(&crate::algebra::monomial::Symbol::Declared(id));
+            Some((None, case.setting.nominal(&size.resolved)))
+        }
+        Some(Meaning::Coordinate(_) | Meaning::Group(_) | Meaning::Vector(_)) | None => None,
+    };
+    let largest = |parts: &[(crate::syntax::ast::Sign, crate::syntax::ast::Name)]| {
+        let sizes: Vec<(Option<FieldId>, f64)> = parts
+            .iter()
+            .filter_map(|(_, part)| size(&part.text))
+            .collect();
+        let idx = crate::analysis::sizes::largest(sizes.iter().map(|(_, size)| *size))?;
+        sizes[idx].0
+    };
+    let split = model.fields.iter().filter(|info| !info.parts.is_empty());
+    split.filter_map(|info| largest(&info.parts)).collect()
+}
