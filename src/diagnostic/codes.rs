@@ -189,6 +189,9 @@ pub const CODES: &[Explained] = codes! {
     "order-too-high":
         "The expansion is asked for to a higher order than the limit."
         "Ask for a lower order.";
+    "not-open":
+        "`find` is asked for a scale that has a value."
+        "Leave the scale open, `scale W in m/s`, or ask for another one.";
     "no-balance":
         "`find` sees no set of balances that fixes the open scales: some equations contradict each other."
         "Look at the equations that are named; one may lack a term, or a given scale may be far off.";
