@@ -44,9 +44,9 @@ fn ten_claims_end_with_1_and_name_the_two() {
     assert_eq!(run.status, Some(1), "{}", run.err);
     assert!(
         run.out
-            .contains("not met  x_momentum.friction >> x_momentum.coriolis")
+            .contains("not met  leading x_momentum = coriolis, pressure_gradient")
     );
-    assert!(run.out.contains("not met  U < 15 m/s"));
+    assert!(run.out.contains("not met  U < 90 km/h"));
     assert!(run.out.contains("10 claims: 8 met, 2 not met"));
     let suites =
         junit_parser::from_reader(folder.read("claims.xml").as_bytes()).expect("it is JUnit");
