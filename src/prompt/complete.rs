@@ -244,7 +244,7 @@ impl<'a> Place<'a> {
     /// The last reserved word before the cursor: it says what is wanted.
     fn clause(&self) -> Option<Kind> {
         let kinds = self.statement.iter().map(|token| token.kind);
-        kinds.filter(|kind| kind.is_reserved()).last()
+        kinds.rev().find(|kind| kind.is_reserved())
     }
 
     /// The clause words of the statement.
