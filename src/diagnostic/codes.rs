@@ -175,11 +175,11 @@ pub const CODES: &[Explained] = codes! {
         "A part that should be small beside another for an expansion is not small."
         "Choose scales for which it is, or expand about the larger part.";
     "singular-expansion":
-        "The highest order of the expansion loses a derivative or divides by nothing."
-        "Look at the thin layers first: `layers`.";
+        "An expression is expanded about a place where it is infinite or not defined."
+        "Take another origin, or write the expression's size: `(... ~ SIZE)`.";
     "not-a-relation":
-        "A claim or condition needs a relation between two sides."
-        "Write one of `<<`, `>>`, `~`, `<`, `>`, `=`.";
+        "What stands behind `from` is no linear combination of equations, or an equation behind `using` has nothing to replace."
+        "Write `from d_x(y_momentum) - d_y(x_momentum)`; behind `using` one factor on the left.";
     "free-groups":
         "The limit does not say how some groups go with the small one."
         "Place those that are listed behind `with`, or write `others ~ 1`.";
