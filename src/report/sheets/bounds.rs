@@ -25,11 +25,20 @@ pub fn bounds(bounds: &Bounds) -> Vec<Block> {
         let rows = bounds.scales.iter().flat_map(ends).collect();
         blocks.push(Block::Table(head(&columns), rows));
     }
-    let conditions = standing::conditions(&bounds.conditions);
-    if !conditions.is_empty() {
-        blocks.push(Block::Paragraph(words(
+    for (title, conditions) in [
+        (
             "It stands while all of these hold:",
-        )));
+            standing::needed(&bounds.conditions),
+        ),
+        (
+            "Where one of these holds, more may go:",
+            standing::may_go(&bounds.conditions),
+        ),
+    ] {
+        if conditions.is_empty() {
+            continue;
+        }
+        blocks.push(Block::Paragraph(words(title)));
         let columns = [("condition", 0.45), ("what rests on it", 0.55)];
         let rows = conditions
             .into_iter()
