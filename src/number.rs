@@ -497,6 +497,24 @@ impl fmt::Display for Number {
     }
 }
 
+/// A digit or minus sign as superscript; anything else as it is.
+pub fn raised_digit(digit: char) -> char {
+    match digit {
+        '-' => '⁻',
+        '0' => '⁰',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        '4' => '⁴',
+        '5' => '⁵',
+        '6' => '⁶',
+        '7' => '⁷',
+        '8' => '⁸',
+        '9' => '⁹',
+        other => other,
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use super::*;

@@ -2,6 +2,7 @@
 
 use unicode_width::UnicodeWidthStr;
 
+use crate::number::raised_digit;
 use crate::units::{Range, parse_unit};
 
 /// The width of a terminal that every report fits.
@@ -184,21 +185,10 @@ pub fn unit(unit: &str) -> String {
                 is_power = true;
                 continue;
             }
-            '0' => '⁰',
-            '1' => '¹',
-            '2' => '²',
-            '3' => '³',
-            '4' => '⁴',
-            '5' => '⁵',
-            '6' => '⁶',
-            '7' => '⁷',
-            '8' => '⁸',
-            '9' => '⁹',
-            '-' => '⁻',
             // A rational exponent stays as it is written.
             '(' if is_power => return unit.to_owned(),
             '.' => '·',
-            other => other,
+            other => raised_digit(other),
         };
         let is_digit = c.is_ascii_digit() || c == '-';
         if is_digit && !is_power {
