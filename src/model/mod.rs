@@ -15,6 +15,7 @@ pub mod frames;
 pub mod library;
 pub mod modules;
 pub mod names;
+pub mod order;
 pub mod requests;
 pub mod settings;
 pub mod spelling;
