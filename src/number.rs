@@ -224,6 +224,11 @@ impl Number {
         self.pi
     }
 
+    /// Its roots: numbers to powers between 0 and 1, in order.
+    pub fn roots(&self) -> impl Iterator<Item = (&BigInt, Exponent)> {
+        self.roots.iter().map(|(root, power)| (root, *power))
+    }
+
     /// The part without π and roots.
     pub fn rational_part(&self) -> &BigRational {
         &self.rational
@@ -489,6 +494,24 @@ impl fmt::Display for Number {
             });
         }
         f.write_str(&parts.join("*"))
+    }
+}
+
+/// A digit or minus sign as superscript; anything else as it is.
+pub fn raised_digit(digit: char) -> char {
+    match digit {
+        '-' => '⁻',
+        '0' => '⁰',
+        '1' => '¹',
+        '2' => '²',
+        '3' => '³',
+        '4' => '⁴',
+        '5' => '⁵',
+        '6' => '⁶',
+        '7' => '⁷',
+        '8' => '⁸',
+        '9' => '⁹',
+        other => other,
     }
 }
 

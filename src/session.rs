@@ -12,6 +12,8 @@ use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
+use num_rational::BigRational;
+
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
@@ -27,7 +29,9 @@ use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests, terms};
 use crate::number::{Exponent, rational_to_f64};
+use crate::report::module::Origin;
 use crate::report::{standing, words};
+use crate::saving::{self, Folders};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
 use crate::syntax::{parser, print};
@@ -49,6 +53,19 @@ pub struct Outcome {
     pub answers: Vec<Answer>,
     /// The claims in order.
     pub claims: Vec<Held>,
+    /// The files that requests ask to be written; a session writes none itself.
+    pub saved: Vec<Saved>,
+}
+
+/// A module that `reduce ... save` asks to be written.
+#[derive(Debug, Clone)]
+pub struct Saved {
+    /// Where to.
+    pub path: PathBuf,
+    /// Its text.
+    pub text: String,
+    /// Where the request names it.
+    pub span: Span,
 }
 
 /// How a script ended.
@@ -161,10 +178,27 @@ impl<'f> Session<'f> {
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering::new(&checked, &mut outcome, self.watcher).all();
+            let folders = self.folders(path);
+            Answering::new(&checked, &mut outcome, self.watcher, folders).all();
         }
         self.finish(&mut outcome);
         outcome
+    }
+
+    /// Writes the files that an outcome asks for; what cannot be written is then among its
+    /// errors.
+    pub fn write(&self, outcome: &mut Outcome) {
+        saving::write(self.files, outcome);
+        diagnostic::sort(&mut outcome.diagnostics);
+    }
+
+    fn folders<'a>(&'a self, script: Option<&'a Path>) -> Folders<'a> {
+        Folders {
+            files: self.files,
+            folder: &self.folder,
+            root: self.root.as_ref().unwrap_or(&self.folder),
+            script,
+        }
     }
 
     fn finish(&self, outcome: &mut Outcome) {
@@ -346,6 +380,7 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    folders: Folders<'a>,
     watcher: Option<&'a dyn Watcher>,
     /// Phenomena in which a `find` gave formulas.
     found: BTreeMap<Option<usize>, solving::Found>,
@@ -360,11 +395,13 @@ impl<'a> Answering<'a> {
         checked: &'a Checked,
         outcome: &'a mut Outcome,
         watcher: Option<&'a dyn Watcher>,
+        folders: Folders<'a>,
     ) -> Answering<'a> {
         Answering {
             model: &checked.model,
             cases: &checked.cases,
             outcome,
+            folders,
             watcher,
             found: BTreeMap::new(),
             limit: None,
@@ -488,17 +525,21 @@ impl<'a> Answering<'a> {
                 }
             }
             RequestKind::Reduce {
-                equations, within, ..
+                equations,
+                within,
+                save,
             } => {
                 if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
                     let tolerance = within
                         .as_ref()
                         .and_then(|within| declarations::tolerance_value(within).ok())
-                        .map_or(case.setting.tolerance(), |info| {
-                            rational_to_f64(&info.value)
-                        });
-                    let reduction = reduce::reduce(self.model, case, &wanted, tolerance);
+                        .map_or(case.setting.tolerance.clone(), |info| info.value);
+                    let share = rational_to_f64(&tolerance);
+                    let reduction = reduce::reduce(self.model, case, &wanted, share);
                     self.warn(case, &reduction);
+                    if let Some(save) = save {
+                        self.save(case, &reduction, &tolerance, text, save);
+                    }
                     self.outcome
                         .answers
                         .push(answer("reduce", left_out, Body::Reduce(reduction)));
@@ -627,6 +668,30 @@ impl<'a> Answering<'a> {
             };
             let found = Diagnostic::warning("lone-leading-term", span, message);
             self.outcome.diagnostics.push(found);
+        }
+    }
+
+    /// Makes the module of a reduced system, for whoever runs the session to write.
+    fn save(
+        &mut self,
+        case: &Case,
+        reduction: &reduce::Reduction,
+        tolerance: &BigRational,
+        request: &str,
+        save: &ast::Text,
+    ) {
+        let origin = Origin {
+            model: self.model,
+            case,
+            reduction,
+            tolerance,
+            request,
+            script: &self.outcome.script,
+            sources: &self.outcome.sources,
+        };
+        match saving::saved(&origin, save, &self.folders, &self.outcome.saved) {
+            Ok(saved) => self.outcome.saved.push(saved),
+            Err(fault) => self.outcome.diagnostics.push(fault),
         }
     }
 

@@ -7,7 +7,7 @@ use crate::algebra::calculus;
 use crate::algebra::monomial::{Monomial, Symbol};
 use crate::algebra::quantities::{CoordinateId, FieldId, Quantities, Size, Variation};
 use crate::algebra::series::Elementary;
-use crate::number::{Exponent, Number, TooLarge};
+use crate::number::{Exponent, Number, TooLarge, raised_digit};
 
 /// A number times bases to rational powers, in the order in which they were written.
 /// No base stands twice and no power is 0.
@@ -504,7 +504,8 @@ impl Speller<'_> {
     }
 }
 
-fn symbol_factors(monomial: &Monomial) -> Vec<Factor> {
+/// The symbols of a monomial as factors, in order.
+pub fn symbol_factors(monomial: &Monomial) -> Vec<Factor> {
     monomial
         .powers()
         .iter()
@@ -520,20 +521,5 @@ pub fn superscript(order: u32) -> String {
     if order == 1 {
         return String::new();
     }
-    order
-        .to_string()
-        .chars()
-        .map(|digit| match digit {
-            '0' => '⁰',
-            '1' => '¹',
-            '2' => '²',
-            '3' => '³',
-            '4' => '⁴',
-            '5' => '⁵',
-            '6' => '⁶',
-            '7' => '⁷',
-            '8' => '⁸',
-            _ => '⁹',
-        })
-        .collect()
+    order.to_string().chars().map(raised_digit).collect()
 }

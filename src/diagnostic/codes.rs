@@ -189,6 +189,9 @@ pub const CODES: &[Explained] = codes! {
     "order-too-high":
         "The expansion is asked for to a higher order than the limit."
         "Ask for a lower order.";
+    "not-open":
+        "`find` is asked for a scale that has a value."
+        "Leave the scale open, `scale W in m/s`, or ask for another one.";
     "no-balance":
         "`find` sees no set of balances that fixes the open scales: some equations contradict each other."
         "Look at the equations that are named; one may lack a term, or a given scale may be far off.";
@@ -223,7 +226,13 @@ mod tests {
     use super::*;
 
     /// Hyphenated words in the source that are no codes.
-    const OTHER_WORDS: [&str; 4] = ["pound-force", "pounds-force", "acre-foot", "acre-feet"];
+    const OTHER_WORDS: [&str; 5] = [
+        "pound-force",
+        "pounds-force",
+        "acre-foot",
+        "acre-feet",
+        "claim-not-met",
+    ];
 
     #[test]
     fn every_code_stands_once_with_two_sentences() {

@@ -3,7 +3,7 @@
 
 use crate::model::errors::{ModelError, Product, Relation};
 use crate::model::names::{self, Call};
-use crate::model::{Model, dimensions};
+use crate::model::{Model, dimensions, order};
 use crate::source::Span;
 use crate::syntax::ast::{self, EquationBody, ExprKind, Operator};
 
@@ -16,7 +16,7 @@ pub fn is_made(decl: &ast::EquationDecl) -> bool {
 /// The equations in an order in which each comes after those it needs.
 pub fn order(model: &Model) -> Vec<usize> {
     // A ring was reported by the check.
-    dimensions::order(&needs(model)).unwrap_or_else(|_| (0..model.equations.len()).collect())
+    order::order(&needs(model)).unwrap_or_else(|_| (0..model.equations.len()).collect())
 }
 
 /// For each equation those it is made of or uses.
@@ -47,7 +47,7 @@ pub fn check(model: &Model) -> Vec<ModelError> {
             }
         }
     }
-    if let Err(ring) = dimensions::order(&needs(model)) {
+    if let Err(ring) = order::order(&needs(model)) {
         let name = |idx: &usize| &model.equations[*idx].name;
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),

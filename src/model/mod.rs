@@ -16,8 +16,10 @@ pub mod library;
 pub mod limit;
 pub mod modules;
 pub mod names;
+pub mod order;
 pub mod requests;
 pub mod settings;
+pub mod spelling;
 pub mod terms;
 pub mod values;
 

@@ -7,8 +7,9 @@ use num_rational::BigRational;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::quantities::{CoordinateId, Origin, Quantities, Quantity, Size, Variation};
-use crate::model::dimensions::{circular, group_uses, literal_unit, order};
+use crate::model::dimensions::{circular, group_uses, literal_unit};
 use crate::model::errors::{ModelError, Product};
+use crate::model::order::order;
 use crate::model::values::{self, Fault, Names, Value};
 use crate::model::{CoordinateInfo, FieldInfo, GroupId, Meaning, Model, declarations, names};
 use crate::number::{Exponent, Number, rational_to_f64};

@@ -2,6 +2,7 @@
 //! with the Greek letters, raised exponents and lowered indices that there are.
 
 use crate::algebra::product::superscript;
+use crate::report::latex::escape::GREEK;
 use crate::syntax::ast::{Expr, ExprKind, Name, Operator, Sign};
 use crate::syntax::print;
 
@@ -267,43 +268,6 @@ fn raised(exponent: &str) -> Option<String> {
     })
 }
 
-/// The Greek letters under their ASCII names.
-const GREEK: [(&str, char); 33] = [
-    ("alpha", 'α'),
-    ("beta", 'β'),
-    ("gamma", 'γ'),
-    ("delta", 'δ'),
-    ("epsilon", 'ε'),
-    ("eps", 'ε'),
-    ("zeta", 'ζ'),
-    ("eta", 'η'),
-    ("theta", 'θ'),
-    ("iota", 'ι'),
-    ("kappa", 'κ'),
-    ("lambda", 'λ'),
-    ("mu", 'μ'),
-    ("nu", 'ν'),
-    ("xi", 'ξ'),
-    ("pi", 'π'),
-    ("rho", 'ρ'),
-    ("sigma", 'σ'),
-    ("tau", 'τ'),
-    ("upsilon", 'υ'),
-    ("phi", 'φ'),
-    ("chi", 'χ'),
-    ("psi", 'ψ'),
-    ("omega", 'ω'),
-    ("Gamma", 'Γ'),
-    ("Delta", 'Δ'),
-    ("Theta", 'Θ'),
-    ("Lambda", 'Λ'),
-    ("Xi", 'Ξ'),
-    ("Sigma", 'Σ'),
-    ("Phi", 'Φ'),
-    ("Psi", 'Ψ'),
-    ("Omega", 'Ω'),
-];
-
 /// A name as a symbol: `ρ₀` for `rho_0`, `θ'` for `theta'`.
 pub fn symbol(name: &str) -> String {
     let (name, primes) = match name.find('\'') {
@@ -314,7 +278,9 @@ pub fn symbol(name: &str) -> String {
         Some((head, index)) => (head, Some(index)),
         None => (name, None),
     };
-    let greek = GREEK.iter().find(|(ascii, _)| *ascii == head);
+    // The usual short name of a letter that has a long one.
+    let spelt = if head == "eps" { "epsilon" } else { head };
+    let greek = GREEK.iter().find(|(ascii, _)| *ascii == spelt);
     let head = greek.map_or_else(|| head.to_owned(), |(_, letter)| letter.to_string());
     let index = match index {
         None => String::new(),

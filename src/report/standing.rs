@@ -121,11 +121,28 @@ pub fn end(bound: &Bound, end: Option<&End>) -> [String; 3] {
     }
 }
 
+/// The conditions on which the system stands, each with what happens where it fails.
+pub fn needed(conditions: &[Condition]) -> Vec<(String, String)> {
+    told(
+        conditions
+            .iter()
+            .filter(|condition| condition.role != Role::MayGo),
+    )
+}
+
+/// The conditions under which more terms may go, each with those terms.
+pub fn may_go(conditions: &[Condition]) -> Vec<(String, String)> {
+    told(
+        conditions
+            .iter()
+            .filter(|condition| condition.role == Role::MayGo),
+    )
+}
+
 /// Conditions that read alike, told once and those nearest to their limit first: the
-/// inequality with its present value, and what happens where it fails, or, of a term that
-/// may go, where it holds.
-pub fn conditions(conditions: &[Condition]) -> Vec<(String, String)> {
-    let mut order: Vec<&Condition> = conditions.iter().collect();
+/// inequality with its present value, and what rests on it.
+fn told<'a>(conditions: impl Iterator<Item = &'a Condition>) -> Vec<(String, String)> {
+    let mut order: Vec<&Condition> = conditions.collect();
     let room = |condition: &Condition| {
         let inequality = &condition.inequality;
         (inequality.value.nominal / inequality.limit).ln().abs()
@@ -168,7 +185,7 @@ fn rests(role: Role, places: &[&Place]) -> String {
                     format!("{} of {}", terms.join(", "), equations.join(", "))
                 })
                 .collect();
-            return format!("where it holds, out may go {}", texts.join("; "));
+            return format!("then {} may go", texts.join("; "));
         }
     };
     format!("else {}", what_happens(places, why))

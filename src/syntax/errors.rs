@@ -167,6 +167,9 @@ pub enum Mend {
     Word(&'static str),
     /// A product sign between two factors, which are as written.
     Product(String, String),
+    /// A unit with a blank inside: the number, the unit so far and what stands behind the
+    /// blank.
+    OneUnit(String, String, String),
     /// A product sign before it.
     Sign,
     /// `show` before it.
@@ -419,6 +422,9 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::None => return None,
         Mend::Word(word) => format!("did you mean `{word}`?"),
         Mend::Product(left, right) => format!("write `{left}*{right}` for a product"),
+        Mend::OneUnit(number, unit, rest) => format!(
+            "a unit has no blank inside: write `{number} {unit}.{rest}`, or `{number} {unit} * {rest}` for a product"
+        ),
         Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),

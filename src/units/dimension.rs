@@ -4,7 +4,7 @@
 
 use std::fmt;
 
-use crate::number::{Exponent, TooLarge};
+use crate::number::{Exponent, TooLarge, raised_digit};
 
 /// The SI base units, in the order in which units are written.
 const BASE_UNITS: [&str; 7] = ["kg", "m", "s", "A", "K", "mol", "cd"];
@@ -209,25 +209,8 @@ fn readable_power(unit: &str, exponent: Exponent) -> String {
         return unit_power(unit, exponent);
     }
     let digits = exponent.numer().to_string();
-    let raised: String = digits.chars().map(superscript).collect();
+    let raised: String = digits.chars().map(raised_digit).collect();
     format!("{unit}{raised}")
-}
-
-fn superscript(digit: char) -> char {
-    match digit {
-        '-' => '⁻',
-        '0' => '⁰',
-        '1' => '¹',
-        '2' => '²',
-        '3' => '³',
-        '4' => '⁴',
-        '5' => '⁵',
-        '6' => '⁶',
-        '7' => '⁷',
-        '8' => '⁸',
-        '9' => '⁹',
-        other => other,
-    }
 }
 
 #[cfg(test)]

@@ -5,5 +5,6 @@ mod bad_input;
 mod expansions;
 mod hierarchies;
 mod made_equations;
+mod readme;
 mod rules;
 mod worked_example;

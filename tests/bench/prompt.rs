@@ -25,7 +25,8 @@ scale L = 700 km .. 1500 km
 scale H = 10 km within 20 %
 scale T = L/U
 scale dP = 10 hPa within 1.5
-scale dRho = 0.01 kg/m^3 within 2
+scale drho = 0.01 kg/m^3 within 2
+scale H_rho = 8 km
 constant phi = 45 deg
 ";
 

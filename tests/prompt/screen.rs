@@ -55,7 +55,7 @@ fn keys_complete_recall_and_drop() {
     desk.keys(&LEFT.repeat(3));
     desk.keys("\x7f0.5");
     desk.keys("\r");
-    desk.until_shown("= 2e5");
+    desk.until_shown("= 200000");
     insta::assert_snapshot!("keys", desk.screen());
 }
 

@@ -29,16 +29,20 @@ pub(super) fn bounds(bounds: &Bounds, pen: &Pen, out: &mut String) {
 
 /// Each condition with what rests on it.
 fn conditions(bounds: &Bounds, out: &mut String) {
-    let found = standing::conditions(&bounds.conditions);
-    if found.is_empty() {
-        return;
+    for (title, found) in [
+        ("stands while", standing::needed(&bounds.conditions)),
+        ("more may go where", standing::may_go(&bounds.conditions)),
+    ] {
+        if found.is_empty() {
+            continue;
+        }
+        out.push_str(&format!("  {title}\n"));
+        for (condition, rests) in found {
+            out.push_str(&wrapped("    ", &condition));
+            out.push_str(&wrapped("        ", &rests));
+        }
+        out.push('\n');
     }
-    out.push_str("  stands while\n");
-    for (condition, rests) in found {
-        out.push_str(&wrapped("    ", &condition));
-        out.push_str(&wrapped("        ", &rests));
-    }
-    out.push('\n');
 }
 
 /// Every scale with its ends, the near ones first told.

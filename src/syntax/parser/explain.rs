@@ -162,6 +162,7 @@ fn product(at: usize, place: &Place<'_, '_>) -> Mend {
     let text = |idx: usize| place.tokens[idx].text.to_owned();
     let (before, found) = (&place.tokens[at - 1], &place.tokens[at]);
     match (before.kind, found.kind) {
+        (Kind::Unit, Kind::Name) if at >= 2 => Mend::OneUnit(text(at - 2), text(at - 1), text(at)),
         (Kind::Unit, _) if at >= 2 => Mend::Product(text(at - 2), text(at - 1)),
         (Kind::RightBracket, _) | (_, Kind::LeftBracket) => Mend::Sign,
         _ => Mend::Product(text(at - 1), text(at)),
