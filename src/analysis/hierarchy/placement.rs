@@ -7,9 +7,13 @@ use num_rational::BigRational;
 use num_traits::{One, Signed, Zero};
 
 use crate::algebra::monomial::{Monomial, Symbol};
-use crate::analysis::names::row_echelon;
+use crate::algebra::product::Speller;
+use crate::analysis::hierarchy::{HierarchyFault, Wanted};
+use crate::analysis::names::{Namer, row_echelon};
+use crate::analysis::{Case, sizes};
 use crate::model::limit::{GroupPowers, Limit};
 use crate::model::settings::Setting;
+use crate::model::terms::Term;
 use crate::number::Exponent;
 use crate::source::Span;
 
@@ -92,6 +96,83 @@ pub fn place(
     Ok(Placed {
         powers: powers.collect(),
     })
+}
+
+/// Places the groups that occur in the coefficients of equations.
+///
+/// # Errors
+/// Coefficients that no named groups give, groups that stay free, and contradictions.
+pub fn occurring(
+    case: &Case,
+    wanted: &Wanted<'_>,
+    limit: &Limit,
+    namer: &Namer<'_>,
+) -> Result<Placed, HierarchyFault> {
+    let mut occurring: Vec<usize> = Vec::new();
+    let mut unnamed: Vec<String> = Vec::new();
+    for idx in wanted.equations {
+        let equation = &case.equations[*idx];
+        let size = |term: &Term| case.setting.nominal(&term.size.resolved);
+        let Some(largest) = sizes::largest(equation.terms.iter().map(size)) else {
+            continue;
+        };
+        for term in equation.terms.iter().chain(&equation.neglected) {
+            let ratio = term
+                .size
+                .resolved
+                .over(&equation.terms[largest].size.resolved)?;
+            match namer.product(&ratio) {
+                Some(product) => occurring.extend(product.iter().map(|(group, _)| *group)),
+                None => {
+                    let speller = Speller {
+                        symbols: &case.setting.names,
+                        quantities: &case.setting.quantities,
+                        with_partials: false,
+                    };
+                    let text = speller.monomial(&ratio.without_number());
+                    if !unnamed.contains(&text) {
+                        unnamed.push(text);
+                    }
+                }
+            }
+        }
+    }
+    if !unnamed.is_empty() {
+        return Err(HierarchyFault::NoGroups(unnamed));
+    }
+    occurring.sort_unstable();
+    occurring.dedup();
+    let name = |group: usize| case.setting.groups[group].name.clone();
+    place(&case.setting, limit, &occurring).map_err(|fault| match fault {
+        PlacementFault::Free(groups) => {
+            HierarchyFault::FreeGroups(groups.into_iter().map(name).collect())
+        }
+        PlacementFault::Contradiction { place, relation } => HierarchyFault::Contradiction {
+            place,
+            relation: relation.map(|relation| relation_text(&relation, name)),
+        },
+    })
+}
+
+/// A product of groups that is a pure number, as an equation: `Bu = Ro^2/Fr^2`.
+fn relation_text(relation: &[(usize, BigRational)], name: impl Fn(usize) -> String) -> String {
+    let side = |is_left: bool| {
+        let own = relation
+            .iter()
+            .filter(|(_, power)| power.is_positive() == is_left);
+        let factors: Vec<String> = own
+            .map(|(group, power)| match power.abs() {
+                power if power == BigRational::from_integer(1.into()) => name(*group),
+                power if power.is_integer() => format!("{}^{power}", name(*group)),
+                power => format!("{}^({power})", name(*group)),
+            })
+            .collect();
+        match factors.is_empty() {
+            true => "1".to_owned(),
+            false => factors.join("*"),
+        }
+    };
+    format!("{} ~ {}", side(true), side(false))
 }
 
 /// Linear conditions on the powers of groups, in echelon form.

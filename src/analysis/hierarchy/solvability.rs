@@ -13,7 +13,10 @@ use crate::algebra::polynomial::{Matrix, Polynomial, Powers, Vector};
 use crate::algebra::product::{Base, Factor, Product};
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::algebra::series::{self, Graded, Series};
-use crate::analysis::hierarchy::{HierarchyFault, OrderEquation, Part, Solvability, View, add};
+use crate::analysis::hierarchy::elimination::Rules;
+use crate::analysis::hierarchy::expander::{Part, add};
+use crate::analysis::hierarchy::view::View;
+use crate::analysis::hierarchy::{Condition, HierarchyFault, OrderEquation, Solvability};
 use crate::analysis::sizes;
 use crate::model::terms::Side;
 use crate::number::{Exponent, Number, TooLarge};
@@ -22,7 +25,7 @@ use crate::number::{Exponent, Number, TooLarge};
 ///
 /// # Errors
 /// Something beyond the limits.
-pub(crate) fn look(
+pub(super) fn look(
     view: &View<'_>,
     equations: &[Vec<Part>],
     degrees: &[u32],
@@ -37,13 +40,26 @@ pub(crate) fn look(
     };
     let setting = &view.expander.case.setting;
     let name = |column: usize| setting.quantities.field(system.fields[column]).name.clone();
+    let rules = Rules::of(view, equations)?;
     let mut conditions = Vec::new();
     for vector in &vectors {
         for degree in degrees.iter().filter(|degree| **degree > 0) {
             let sum = system.applied(view, equations, vector, *degree)?;
             if !sum.is_empty() {
                 let name = condition_name(conditions.len(), vectors.len());
-                conditions.push(condition(view, &name, sum, *degree)?);
+                let simplified = rules.put_into(view, &sum)?;
+                let changes = simplified.len() != sum.len()
+                    || simplified
+                        .iter()
+                        .zip(&sum)
+                        .any(|(own, old)| own.product != old.product);
+                conditions.push(Condition {
+                    equation: condition(view, &name, sum, *degree)?,
+                    simplified: match changes {
+                        true => Some(condition(view, &name, simplified, *degree)?),
+                        false => None,
+                    },
+                });
                 break;
             }
         }
@@ -330,7 +346,7 @@ fn symbols_of(rows: &[Vec<Linear<'_>>]) -> Result<Symbols, TooLarge> {
 }
 
 /// A product with derived scales and constants replaced.
-fn resolved(view: &View<'_>, product: &Product) -> Result<Product, TooLarge> {
+pub(super) fn resolved(view: &View<'_>, product: &Product) -> Result<Product, TooLarge> {
     let quantities = &view.expander.case.setting.quantities;
     let mut found = Product::number(product.number.clone());
     for factor in &product.factors {
@@ -376,6 +392,9 @@ fn condition(
     degree: u32,
 ) -> Result<OrderEquation, HierarchyFault> {
     let expander = view.expander;
+    if sum.is_empty() {
+        return Ok(view.equation(name, false, &[]));
+    }
     let quantities = &view.coefficients.quantities;
     let sizes: Vec<Monomial> = sum
         .iter()

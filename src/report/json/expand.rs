@@ -24,7 +24,11 @@ pub(super) fn expand(hierarchy: &Hierarchy) -> Value {
         })),
         "looked": matches!(hierarchy.solvability, Solvability::Looked { .. }),
         "undetermined": undetermined,
-        "solvability": list(conditions, equation),
+        "solvability": list(conditions, |condition| {
+            let mut found = equation(&condition.equation);
+            found["simplified"] = condition.simplified.as_ref().map(equation).into();
+            found
+        }),
     })
 }
 

@@ -1,24 +1,16 @@
 //! `expand` for a terminal.
 
-use crate::analysis::hierarchy::{Hierarchy, OrderEquation, Solvability};
+use crate::analysis::hierarchy::{Condition, Hierarchy, OrderEquation, Solvability};
 use crate::report::layout::{wrapped, wrapped_equation};
+use crate::report::orders;
 use crate::report::text::Pen;
 
 /// Writes a hierarchy.
 pub(super) fn expand(hierarchy: &Hierarchy, pen: &Pen, out: &mut String) {
-    let small = &hierarchy.small;
-    let line = match hierarchy.has_limit {
-        true => format!("{small} -> 0{}", placed(hierarchy)),
-        false => format!("{small}, the largest ratio of what is split"),
-    };
-    out.push_str(&wrapped("small  ", &line));
+    out.push_str(&wrapped("small  ", &orders::small(hierarchy)));
     out.push('\n');
     for order in &hierarchy.orders {
-        let power = match order.order.to_string() {
-            power if power == "0" => "order 0, the leading order".to_owned(),
-            power => format!("order {power}"),
-        };
-        out.push_str(&pen.head(&power));
+        out.push_str(&pen.head(&orders::order(order)));
         out.push('\n');
         if order.equations.is_empty() {
             out.push_str("  nothing\n");
@@ -28,26 +20,33 @@ pub(super) fn expand(hierarchy: &Hierarchy, pen: &Pen, out: &mut String) {
         }
         out.push('\n');
     }
-    solvability(hierarchy, pen, out);
+    let Some(text) = orders::solvability(hierarchy) else {
+        return;
+    };
+    match &hierarchy.solvability {
+        Solvability::Looked { conditions, .. } if !conditions.is_empty() => {
+            out.push_str(&pen.head("solvability"));
+            out.push('\n');
+            out.push_str(&wrapped("  ", &text));
+            for condition in conditions {
+                write_condition(condition, out);
+            }
+        }
+        Solvability::Looked { .. } | Solvability::NotLooked => {
+            out.push_str(&wrapped("note   ", &text));
+        }
+    }
+    out.push('\n');
 }
 
-/// The other groups with their powers: `, Bu ~ 1, Ek ~ Ro^2`.
-fn placed(hierarchy: &Hierarchy) -> String {
-    let small = &hierarchy.small;
-    let base = match small.chars().all(|c| c.is_alphanumeric() || c == '_') {
-        true => small.clone(),
-        false => format!("({small})"),
+/// The simple form first; the other shows where it comes from.
+fn write_condition(condition: &Condition, out: &mut String) {
+    let Some(simplified) = &condition.simplified else {
+        return write_equation(&condition.equation, out);
     };
-    let others = hierarchy.placed.iter().filter(|(name, _)| name != small);
-    let texts: Vec<String> = others
-        .map(|(name, power)| match power.to_string().as_str() {
-            "0" => format!(", {name} ~ 1"),
-            "1" => format!(", {name} ~ {base}"),
-            power if power.contains('/') => format!(", {name} ~ {base}^({power})"),
-            power => format!(", {name} ~ {base}^{power}"),
-        })
-        .collect();
-    texts.concat()
+    write_equation(simplified, out);
+    out.push_str(&wrapped("    ", orders::BEFORE));
+    out.push_str(&wrapped_equation("      ", &condition.equation.text));
 }
 
 fn write_equation(equation: &OrderEquation, out: &mut String) {
@@ -56,43 +55,4 @@ fn write_equation(equation: &OrderEquation, out: &mut String) {
     if equation.dimensional != equation.text {
         out.push_str(&wrapped_equation("    = ", &equation.dimensional));
     }
-}
-
-fn solvability(hierarchy: &Hierarchy, pen: &Pen, out: &mut String) {
-    let text = match &hierarchy.solvability {
-        Solvability::NotLooked if hierarchy.has_limit => {
-            "the leading order is not linear with constant coefficients: whether it \
-             determines its fields is not looked for"
-        }
-        Solvability::NotLooked => return,
-        Solvability::Looked { undetermined, .. } if undetermined.is_empty() => {
-            "the leading order determines its fields"
-        }
-        Solvability::Looked {
-            undetermined,
-            conditions,
-        } => {
-            let fields = undetermined.join(", ");
-            let text = match conditions.is_empty() {
-                true => format!(
-                    "the leading order does not determine {fields}, and the next order gives \
-                     no condition on it"
-                ),
-                false => format!(
-                    "the leading order does not determine {fields}; the next order can be \
-                     solved only where"
-                ),
-            };
-            out.push_str(&pen.head("solvability"));
-            out.push('\n');
-            out.push_str(&wrapped("  ", &text));
-            for condition in conditions {
-                write_equation(condition, out);
-            }
-            out.push('\n');
-            return;
-        }
-    };
-    out.push_str(&wrapped("note   ", text));
-    out.push('\n');
 }
