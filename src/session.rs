@@ -2,6 +2,7 @@
 //! through here. A session that grows line by line is in `incremental`.
 
 pub mod changes;
+mod expanding;
 pub mod incremental;
 mod merge;
 
@@ -27,7 +28,7 @@ use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests, terms};
-use crate::number::rational_to_f64;
+use crate::number::{Exponent, rational_to_f64};
 use crate::report::module::Origin;
 use crate::report::{standing, words};
 use crate::saving::{self, Folders};
@@ -469,6 +470,13 @@ impl<'a> Answering<'a> {
             self.compare(phenomena, matching.as_deref(), request.span, text);
             return;
         }
+        if let RequestKind::Expand { equations, order } = &request.kind {
+            // The check saw that it is within the limit.
+            if let Ok(order) = Exponent::from_rational(order) {
+                self.expand(own, request, equations, order, text);
+            }
+            return;
+        }
         for target in requests::targets(self.model, own, request) {
             let cases = self.cases;
             let solved = self.solved(target);
@@ -591,12 +599,10 @@ impl<'a> Answering<'a> {
                 }
             }
             // Answered once, for all the phenomena they name.
-            RequestKind::Compare { .. } | RequestKind::Find { .. } => {}
+            RequestKind::Compare { .. } | RequestKind::Find { .. } | RequestKind::Expand { .. } => {
+            }
             // The check refused these.
-            RequestKind::Limit { .. }
-            | RequestKind::Expand { .. }
-            | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..) => {}
+            RequestKind::Limit { .. } | RequestKind::Sweep(_) | RequestKind::Regimes(..) => {}
         }
     }
 

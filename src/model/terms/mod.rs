@@ -80,6 +80,8 @@ pub struct Term {
     pub below_parts: Option<f64>,
     /// Its order in the ratios of the expansions that it comes from; 0 without any.
     pub degree: u32,
+    /// Where it, or what it comes from, is written.
+    pub span: Span,
 }
 
 impl Term {
@@ -108,6 +110,15 @@ pub struct Summand {
     pub named: ast::Expr,
 }
 
+/// A ratio in which an expansion goes.
+#[derive(Debug, Clone)]
+pub struct SmallRatio {
+    /// What is small.
+    pub small: Product,
+    /// Beside this; `None`: beside 1.
+    pub large: Option<Product>,
+}
+
 /// An equation in one setting.
 #[derive(Debug, Clone)]
 pub struct EquationTerms {
@@ -127,6 +138,8 @@ pub struct EquationTerms {
     pub neglected: Vec<Term>,
     /// Ratios that are too large to expand in: whoever asks for the equation is told.
     pub faults: Vec<ModelError>,
+    /// The ratios in which it was expanded.
+    pub ratios: Vec<SmallRatio>,
     /// Its summands as written, in order.
     pub summands: Vec<Summand>,
     /// Every process that is named in it, those whose terms are all gone included.
@@ -159,6 +172,7 @@ pub fn all(
             process_names: maker.made.process_names.clone(),
             with_partials: maker.made.with_partials,
             faults: maker.made.faults.clone(),
+            ratios: maker.made.ratios.clone(),
         });
         found[idx] = Some((maker.made, maker.errors));
     }
@@ -190,6 +204,7 @@ struct Source {
     process_names: Vec<String>,
     with_partials: bool,
     faults: Vec<ModelError>,
+    ratios: Vec<SmallRatio>,
 }
 
 struct Maker<'a> {
@@ -260,6 +275,7 @@ impl<'a> Maker<'a> {
                 terms: Vec::new(),
                 neglected: Vec::new(),
                 faults: Vec::new(),
+                ratios: Vec::new(),
                 summands: Vec::new(),
                 process_names: Vec::new(),
                 with_partials: false,
@@ -456,6 +472,7 @@ impl<'a> Maker<'a> {
             summand: idx,
             below_parts: if is_single { self.below_parts } else { None },
             degree,
+            span,
         })
     }
 
