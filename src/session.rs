@@ -376,6 +376,9 @@ fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
 
 // Answering -----------------------------------------------------------------------------------
 
+/// A `limit` as it stands in the script: what is small, and what stands behind `with`.
+type LimitWords<'a> = (&'a ast::Expr, &'a [ast::LimitPlace]);
+
 struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
@@ -384,8 +387,8 @@ struct Answering<'a> {
     watcher: Option<&'a dyn Watcher>,
     /// Phenomena in which a `find` gave formulas.
     found: BTreeMap<Option<usize>, solving::Found>,
-    /// The `limit` in force.
-    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Every `limit` so far, with the phenomena it is for.
+    limits: Vec<(Vec<Option<usize>>, LimitWords<'a>)>,
     /// Whether a search was ended, and with it the rest.
     is_interrupted: bool,
 }
@@ -404,7 +407,7 @@ impl<'a> Answering<'a> {
             folders,
             watcher,
             found: BTreeMap::new(),
-            limit: None,
+            limits: Vec::new(),
             is_interrupted: false,
         }
     }
@@ -440,7 +443,11 @@ impl<'a> Answering<'a> {
             return;
         }
         if let RequestKind::Limit { small, places } = &request.kind {
-            self.limit = Some((small, places));
+            let mut targets = requests::targets(self.model, own, request);
+            if own.is_none() && request.phenomena.is_empty() {
+                targets.push(None);
+            }
+            self.limits.push((targets, (small, places)));
         }
         let text = one_line(self.outcome.sources.slice(request.span));
         self.request(own, request, &text);

@@ -5,6 +5,9 @@ use crate::analysis::hierarchy::{Hierarchy, Order, Solvability};
 /// Stands between a condition and the form that it comes from.
 pub const BEFORE: &str = "before the fields that the leading order gives are put in:";
 
+/// Stands before equations that look otherwise with dimensions.
+pub const WITH_DIMENSIONS: &str = "with dimensions";
+
 /// What is small and how the other groups go with it: `Ro -> 0, Bu ~ 1, Ek ~ Ro^2`.
 pub fn small(hierarchy: &Hierarchy) -> String {
     let small = &hierarchy.small;
@@ -40,33 +43,34 @@ pub fn order(order: &Order) -> String {
     }
 }
 
-/// What is known of whether the leading order determines its fields; `None` where there is
-/// nothing to tell.
-pub fn solvability(hierarchy: &Hierarchy) -> Option<String> {
+/// What is known of whether the leading order determines its fields, or why nothing is.
+pub fn solvability(hierarchy: &Hierarchy) -> String {
     let (undetermined, conditions) = match &hierarchy.solvability {
         Solvability::NotLooked if hierarchy.has_limit => {
-            return Some(
-                "the leading order is not linear with constant coefficients: whether it \
+            return "the leading order is not linear with constant coefficients: whether it \
                  determines its fields is not looked for"
-                    .to_owned(),
-            );
+                .to_owned();
         }
-        Solvability::NotLooked => return None,
+        Solvability::NotLooked => {
+            return "without a `limit` the fields are no series: each order adds its terms to \
+                 those of the orders below it"
+                .to_owned();
+        }
         Solvability::Looked {
             undetermined,
             conditions,
         } => (undetermined, conditions),
     };
     let open = match undetermined.is_empty() {
-        true => "the leading order determines its fields".to_owned(),
+        true => "the leading order of these equations determines its fields".to_owned(),
         false => format!(
-            "the leading order does not determine {}",
+            "the leading order of these equations does not determine {}",
             undetermined.join(", ")
         ),
     };
-    Some(match (undetermined.is_empty(), conditions.is_empty()) {
+    match (undetermined.is_empty(), conditions.is_empty()) {
         (true, true) => open,
         (false, true) => format!("{open}, and the orders asked for give no condition on it"),
         (_, false) => format!("{open}; a later order can be solved only where"),
-    })
+    }
 }

@@ -8,7 +8,7 @@ use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
 use crate::model::limit;
 use crate::number::Exponent;
-use crate::session::Answering;
+use crate::session::{Answering, LimitWords};
 use crate::source::Span;
 use crate::syntax::ast;
 
@@ -31,7 +31,7 @@ impl Answering<'_> {
         let Some((wanted, left_out)) = self.equations(&case, equations, span) else {
             return;
         };
-        let limit = match self.limit {
+        let limit = match self.limit_for(target) {
             None => None,
             Some((small, places)) => match limit::read(self.model, small, places) {
                 Ok(limit) => Some(limit),
@@ -61,6 +61,13 @@ impl Answering<'_> {
                 }
             }
         }
+    }
+
+    /// The `limit` in force for a phenomenon, or for the script outside all of them.
+    pub(super) fn limit_for(&self, target: Option<usize>) -> Option<LimitWords<'_>> {
+        let mut last_first = self.limits.iter().rev();
+        let found = last_first.find(|(targets, _)| targets.contains(&target));
+        found.map(|(_, limit)| *limit)
     }
 
     /// A phenomenon, or the script outside all of them.

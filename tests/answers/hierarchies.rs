@@ -236,3 +236,82 @@ fn what_cannot_be_expanded_is_told() {
         ["open-scale"]
     );
 }
+
+#[test]
+fn the_shear_of_the_geostrophic_current_is_the_thermal_wind() {
+    let output = output(&read("../stdlib/demo/qg_shelf.scl"));
+    // Vallis 2006, from memory: f*dv/dz = db/dx, f*du/dz = -db/dy.
+    assert_eq!(
+        texts(&answers_to(&output, "expand")[1], "0"),
+        ["-d_z(v_0) = -d_x(b_0)", "d_z(u_0) = -d_y(b_0)"]
+    );
+}
+
+#[test]
+fn density_off_the_state_of_rest_counts_in_the_weight_alone() {
+    let answer = expanded(&read("../stdlib/demo/boussinesq.scl"));
+    let dimensional = |order: &str| -> Vec<String> {
+        let order = entry(&answer["orders"], "order", order);
+        let equations = list(&order["equations"]).iter();
+        let texts = equations.map(|equation| text(&equation["dimensional"]));
+        texts.collect()
+    };
+    // Spiegel & Veronis 1960, from memory: the first order in the density off the state of
+    // rest holds its weight; its inertia is one order smaller.
+    assert_eq!(
+        dimensional("0")[1],
+        "rho_0*d_t(w) + rho_0*u*d_x(w) + rho_0*v*d_y(w) + rho_0*w*d_z(w) \
+         = -d_z(p') - rho'*g + rho_0*nu*d_z^2(w)"
+    );
+    assert_eq!(
+        dimensional("1")[1],
+        "rho'*d_t(w) + rho'*u*d_x(w) + rho'*v*d_y(w) + rho'*w*d_z(w) = rho'*nu*d_z^2(w)"
+    );
+}
+
+#[test]
+fn a_limit_holds_for_the_phenomena_that_it_names() {
+    let output = output(
+        "constant eps = 0.01\ncoordinate x ~ 1\nfield y(x) ~ 1\ngroup e = eps\n\
+         equation ode: eps*d_x^2(y) + d_x(y) + y = 0\n\
+         phenomenon a { constant eps = 0.02 }\n\
+         phenomenon b { constant eps = 0.03\n limit e^2 -> 0 }\n\
+         limit e -> 0 for a\nexpand to order 1 for a\nexpand to order 1 for b",
+    );
+    let small: Vec<String> = answers_to(&output, "expand")
+        .iter()
+        .map(|answer| text(&answer["small"]))
+        .collect();
+    assert_eq!(small, ["e", "e^2"]);
+}
+
+#[test]
+fn a_coefficient_that_no_group_gives_stands_in_scales() {
+    let answer = expanded(
+        "constant g = 9.81 m/s^2\nconstant D = 30 m\nscale a = 0.5 m\nscale L = 20 km\n\
+         scale T = 1 h\nscale U = 0.3 m/s\ncoordinate x ~ L\ncoordinate t ~ T\n\
+         field u(x, t) ~ U\nfield eta(x, t) ~ a\nfield h = D + eta\n\
+         equation volume: d_t(h) + d_x(h*u) = 0\nexpand to order 1",
+    );
+    assert_eq!(
+        texts(&answer, "0"),
+        ["(a*L/(D*T*U))*d_t(eta) + d_x(u) = 0"]
+    );
+    let terms = list(&answer["orders"][0]["equations"][0]["terms"]);
+    assert_eq!(terms[0]["groups"], Value::Null);
+}
+
+#[test]
+fn what_is_left_of_a_split_is_spelt_by_its_part() {
+    let output = output(
+        "scale L = 1 km\nscale H = 100 m\nscale P = 1e6 Pa\nscale p_d = 1 kPa\nscale U = 1 m/s\n\
+         constant rho = 1000 kg/m^3\ncoordinate x ~ L\ncoordinate z ~ H\nfield u(x) ~ U\n\
+         field p_0(z) ~ P\nfield p'(x, z) ~ p_d\nfield p = p_0 + p'\n\
+         equation alongside: u*d_x(u) = -d_x(p)/rho\nreduce",
+    );
+    let equation = &answers_to(&output, "reduce")[0]["equations"][0];
+    assert!(
+        text(&equation["text"]).ends_with("-d_x(p')/rho"),
+        "{equation}"
+    );
+}

@@ -30,10 +30,19 @@ struct PlacedTerm<'c> {
     term: &'c Term,
     /// Its power of the small parameter, against the largest of its equation.
     power: BigRational,
-    /// Its coefficient over the largest, as groups with the small parameter taken out, and
+    /// Its coefficient over the largest, the small parameter taken out, and
     /// the number that is left.
-    groups: Option<GroupProduct>,
+    coefficient: Coefficient,
     number: Number,
+}
+
+/// What stands before a term beside its number.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) enum Coefficient {
+    /// A product of named groups.
+    Groups(GroupProduct),
+    /// Scales and constants, where no named groups give it.
+    Scales(Monomial),
 }
 
 /// A part of a term at one order.
@@ -45,10 +54,20 @@ pub(super) struct Part {
     pub product: Product,
     /// The dimensionless number over that of the product.
     pub factor: Number,
-    /// The groups of its coefficient, the small parameter taken out.
-    pub groups: Option<GroupProduct>,
+    /// Its coefficient, the small parameter taken out.
+    pub coefficient: Coefficient,
     /// Its order, in steps.
     pub degree: u32,
+}
+
+impl Part {
+    /// Its number without dimensions.
+    ///
+    /// # Errors
+    /// [`TooLarge`] beyond the limits.
+    pub(super) fn number(&self) -> Result<Number, TooLarge> {
+        self.product.number.times(&self.factor)
+    }
 }
 
 /// How the small parameter is told.
@@ -162,11 +181,10 @@ impl<'a> Expander<'a> {
         let mut found = Vec::with_capacity(equation.terms.len());
         if let Some(reference) = self.reference(equation)? {
             for term in &equation.terms {
-                found.push(self.place_term(term, &reference)?);
+                found.push(self.place_term(term, &reference, &equation.terms)?);
             }
             for term in &equation.neglected {
-                let ratio = term.size.resolved.over(&reference)?;
-                let power = self.power(&ratio, term.degree)?;
+                let power = self.power_of_term(term, &reference, &equation.terms)?;
                 if self.left_out.as_ref().is_none_or(|least| power < *least) {
                     self.left_out = Some(power);
                 }
@@ -180,24 +198,52 @@ impl<'a> Expander<'a> {
         &self,
         term: &'a Term,
         reference: &Monomial,
+        others: &[Term],
     ) -> Result<PlacedTerm<'a>, HierarchyFault> {
         let ratio = term.size.resolved.over(reference)?;
-        let power = self.power(&ratio, term.degree)?;
-        let (groups, number) = self.coefficient(&ratio, &power)?;
+        let power = self.power_of_term(term, reference, others)?;
+        let (coefficient, number) = self.coefficient(&ratio, &power)?;
         Ok(PlacedTerm {
             term,
             power,
-            groups,
+            coefficient,
             number,
         })
     }
 
-    /// A ratio over a power of the small parameter: as groups, and the number left.
+    /// The power of a term of an equation: beside the largest coefficient, or, where that
+    /// is no power of a ratio of parts, beside the largest term of which it is one.
+    fn power_of_term(
+        &self,
+        term: &Term,
+        reference: &Monomial,
+        others: &[Term],
+    ) -> Result<BigRational, HierarchyFault> {
+        let ratio = term.size.resolved.over(reference)?;
+        let Small::Ratio(small) = &self.small else {
+            return self.power(&ratio, term.degree);
+        };
+        if let Some(power) = small.power_of(&ratio) {
+            return Ok(power);
+        }
+        let mut beside = BigRational::from_integer(term.degree.into());
+        let mut farthest = BigRational::zero();
+        for other in others {
+            let power = small.power_of(&term.size.resolved.over(&other.size.resolved)?);
+            if let Some(power) = power.filter(|power| *power > farthest) {
+                beside = &power + BigRational::from_integer(other.degree.into());
+                farthest = power;
+            }
+        }
+        Ok(beside)
+    }
+
+    /// A ratio over a power of the small parameter, and the number left.
     pub(super) fn coefficient(
         &self,
         ratio: &Monomial,
         power: &BigRational,
-    ) -> Result<(Option<GroupProduct>, Number), HierarchyFault> {
+    ) -> Result<(Coefficient, Number), HierarchyFault> {
         let exponent = Exponent::from_rational(power)?;
         match &self.small {
             Small::Limit(limit, _) => {
@@ -206,16 +252,21 @@ impl<'a> Expander<'a> {
                     .product(ratio)
                     .ok_or_else(|| self.no_groups(ratio))?;
                 let number = self.namer.rest(ratio, &product).ok_or(TooLarge)?;
-                Ok((Some(over(&product, &limit.small, exponent)?), number))
+                let groups = over(&product, &limit.small, exponent)?;
+                Ok((Coefficient::Groups(groups), number))
             }
             Small::Ratio(small) => {
                 let rest = ratio.over(&small.size.power(exponent)?)?;
-                let product = self.namer.product(&rest);
-                let number = match &product {
-                    Some(product) => self.namer.rest(&rest, product).ok_or(TooLarge)?,
-                    None => rest.number.clone(),
-                };
-                Ok((product, number))
+                Ok(match self.namer.product(&rest) {
+                    Some(product) => {
+                        let number = self.namer.rest(&rest, &product).ok_or(TooLarge)?;
+                        (Coefficient::Groups(product), number)
+                    }
+                    None => {
+                        let number = rest.number.clone();
+                        (Coefficient::Scales(rest.without_number()), number)
+                    }
+                })
             }
         }
     }
@@ -367,13 +418,16 @@ impl<'a> Expander<'a> {
                         side: placed.term.side,
                         product: term.product,
                         factor: factor.clone(),
-                        groups: placed.groups.clone(),
+                        coefficient: placed.coefficient.clone(),
                         degree: term.degree,
                     },
                 );
             }
         }
         parts.retain(|part| !part.product.number.is_zero());
+        for part in &parts {
+            part.number()?;
+        }
         Ok(parts)
     }
 }
@@ -383,7 +437,7 @@ pub(super) fn add(parts: &mut Vec<Part>, part: Part) {
     let like = parts.iter_mut().find(|found| {
         found.side == part.side
             && found.degree == part.degree
-            && found.groups == part.groups
+            && found.coefficient == part.coefficient
             && found.factor == part.factor
             && found.product.is_like(&part.product)
     });

@@ -419,7 +419,7 @@ fn condition(
     let mut parts: Vec<Part> = Vec::new();
     for (term, (size, power)) in sum.into_iter().zip(sizes.iter().zip(&powers)) {
         let ratio = size.over(&reference)?;
-        let (groups, number) = expander.coefficient(&ratio, &(power - &least))?;
+        let (coefficient, number) = expander.coefficient(&ratio, &(power - &least))?;
         let factor = number.abs().over(&term.product.number.abs())?;
         add(
             &mut parts,
@@ -427,10 +427,13 @@ fn condition(
                 side: Side::Left,
                 product: term.product,
                 factor: factor.ok_or(TooLarge)?,
-                groups,
+                coefficient,
                 degree,
             },
         );
+    }
+    for part in &parts {
+        part.number()?;
     }
     let with_partials = expander
         .wanted

@@ -6,7 +6,7 @@ use std::sync::Arc;
 use crate::algebra::monomial::{Function, Symbol};
 use crate::algebra::product::{Base, Factor, Product};
 use crate::algebra::quantities::{CoordinateId, FieldId};
-use crate::analysis::hierarchy::expander::{Expander, Part, Small, order_of};
+use crate::analysis::hierarchy::expander::{Coefficient, Expander, Part, Small, order_of};
 use crate::analysis::hierarchy::series::Coefficients;
 use crate::analysis::hierarchy::{HierarchyFault, Order, OrderEquation, OrderFactor, OrderTerm};
 use crate::analysis::names::GroupProduct;
@@ -138,14 +138,26 @@ impl View<'_> {
         if is_dimensional {
             return speller.product(&part.product);
         }
-        let number = part.product.number.times(&part.factor);
-        let mut dimensionless = Product::number(number.unwrap_or_else(|_| Number::one()));
-        for (group, power) in part.groups.iter().flatten() {
-            let name = expander.case.setting.groups[*group].name.clone();
-            dimensionless.factors.push(Factor {
-                base: Base::Symbol(named_symbol(name)),
-                power: *power,
-            });
+        let mut dimensionless = Product::number(self.number(part));
+        let symbol = |symbol: Symbol, power: Exponent| Factor {
+            base: Base::Symbol(symbol),
+            power,
+        };
+        match &part.coefficient {
+            Coefficient::Groups(groups) => {
+                let groups = groups.iter().map(|(group, power)| {
+                    let name = expander.case.setting.groups[*group].name.clone();
+                    symbol(named_symbol(name), *power)
+                });
+                dimensionless.factors.extend(groups);
+            }
+            Coefficient::Scales(scales) if scales.is_number() => {}
+            Coefficient::Scales(scales) => {
+                let text = format!("({})", speller.monomial(scales));
+                dimensionless
+                    .factors
+                    .push(symbol(named_symbol(text), Exponent::ONE));
+            }
         }
         let varying = part
             .product
@@ -156,9 +168,15 @@ impl View<'_> {
         speller.product(&dimensionless)
     }
 
+    /// The number without dimensions.
+    fn number(&self, part: &Part) -> Number {
+        // Whoever made the part saw that it is within the limits.
+        part.number()
+            .unwrap_or_else(|_| part.product.number.clone())
+    }
+
     fn term(&self, part: &Part) -> OrderTerm {
         let expander = self.expander;
-        let number = part.product.number.times(&part.factor);
         let factors: Vec<OrderFactor> = part
             .product
             .factors
@@ -173,14 +191,16 @@ impl View<'_> {
             Small::Limit(..) | Small::Ratio(_) => Vec::new(),
         };
         OrderTerm {
-            number: number.unwrap_or_else(|_| part.product.number.clone()),
+            number: self.number(part),
             side: part.side,
-            groups: part.groups.as_ref().map(|product| {
-                let own = product.iter().filter(|(group, _)| !small.contains(group));
-                expander
-                    .namer
-                    .named(&own.copied().collect::<GroupProduct>())
-            }),
+            groups: match &part.coefficient {
+                Coefficient::Groups(groups) => {
+                    let own = groups.iter().filter(|(group, _)| !small.contains(group));
+                    let own: GroupProduct = own.copied().collect();
+                    Some(expander.namer.named(&own))
+                }
+                Coefficient::Scales(_) => None,
+            },
             is_forcing: self.has_series && part.degree > 0 && !factors.iter().any(is_own),
             factors,
         }

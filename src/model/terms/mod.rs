@@ -21,7 +21,7 @@ use crate::model::errors::ModelError;
 use crate::model::settings::{Setting, Variable};
 use crate::model::spelling;
 use crate::model::values::{Fault, Names, Value};
-use crate::model::{GroupId, Model, combinations};
+use crate::model::{GroupId, Meaning, Model, combinations, names};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Sign};
@@ -398,12 +398,14 @@ impl<'a> Maker<'a> {
         let (within, beyond): (Vec<Piece>, Vec<Piece>) = pieces.into_iter().partition(is_within);
         let within = merged(within);
         let is_single = within.len() == 1;
+        let is_as_written = is_single && !self.holds_split(&summand.expr);
         for piece in within {
-            if let Some(term) = self.term(piece, &summand, idx, is_single, span) {
+            if let Some(mut term) = self.term(piece, &summand, idx, is_as_written, span) {
+                term.below_parts = self.below_parts.filter(|_| is_single);
                 self.made.terms.push(term);
             }
         }
-        summand.is_whole = self.zeros.0.len() == n_zeros;
+        summand.is_whole = self.zeros.0.len() == n_zeros && is_single == is_as_written;
         for piece in merged(beyond) {
             if let Some(term) = self.term(piece, &summand, idx, false, span) {
                 self.made.neglected.push(term);
@@ -412,13 +414,24 @@ impl<'a> Maker<'a> {
         self.made.summands.push(summand);
     }
 
+    /// Whether an expression names a split field: one part of it may be all that is left.
+    fn holds_split(&self, expr: &ast::Expr) -> bool {
+        let mut holds = false;
+        names::visit_names(expr, &mut |name, _| {
+            let meaning = self.model.meaning(name, self.setting.phenomenon);
+            holds |= matches!(meaning, Some(Meaning::Field(id))
+                if !self.model.fields[id.0 as usize].parts.is_empty());
+        });
+        holds
+    }
+
     /// A term out of a piece; none if a 0 takes it out.
     fn term(
         &mut self,
         piece: Piece,
         summand: &Summand,
         idx: usize,
-        is_single: bool,
+        is_as_written: bool,
         span: Span,
     ) -> Option<Term> {
         let Piece {
@@ -429,7 +442,7 @@ impl<'a> Maker<'a> {
         if product.number.is_zero() {
             return None;
         }
-        let (text, expr, is_negative) = if is_single {
+        let (text, expr, is_negative) = if is_as_written {
             let expr = summand.expr.clone();
             (summand.text.clone(), expr, summand.is_negative)
         } else {
@@ -470,7 +483,7 @@ impl<'a> Maker<'a> {
             process: tag.map(|tag| tag.name),
             side: summand.side,
             summand: idx,
-            below_parts: if is_single { self.below_parts } else { None },
+            below_parts: None,
             degree,
             span,
         })

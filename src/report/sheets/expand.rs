@@ -16,9 +16,11 @@ pub fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
             write_equation(equation, &mut blocks);
         }
     }
-    if let Some(text) = orders::solvability(hierarchy) {
-        blocks.push(labelled("Solvability", text));
-    }
+    let label = match &hierarchy.solvability {
+        Solvability::Looked { .. } => "Solvability",
+        Solvability::NotLooked => "Note",
+    };
+    blocks.push(labelled(label, orders::solvability(hierarchy)));
     if let Solvability::Looked { conditions, .. } = &hierarchy.solvability {
         for condition in conditions {
             write_condition(condition, &mut blocks);
@@ -47,7 +49,10 @@ fn write_equation(equation: &OrderEquation, blocks: &mut Vec<Block>) {
     blocks.push(Block::Heading(equation.name.clone(), None));
     blocks.push(Block::Equation(equation.text.clone()));
     if equation.dimensional != equation.text {
-        blocks.push(Block::Paragraph(words("With dimensions:")));
+        blocks.push(Block::Paragraph(words(format!(
+            "{}:",
+            capital(orders::WITH_DIMENSIONS)
+        ))));
         blocks.push(Block::Equation(equation.dimensional.clone()));
     }
 }
