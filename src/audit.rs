@@ -30,6 +30,8 @@ pub struct AuditRow {
     pub value: Option<Range>,
     /// Its formula, where it follows others.
     pub formula: Option<String>,
+    /// Of a field: by how much it varies, where that differs from its size.
+    pub varying: Option<String>,
     /// Whether a term, a request or something used rests on it.
     pub is_used: bool,
     /// Where its value is declared.
@@ -200,6 +202,7 @@ fn symbol_row(model: &Model, setting: &Setting, id: SymbolId, is_used: bool) -> 
             Variable::Open(_) => None,
         },
         formula,
+        varying: None,
         is_used,
         place: decl.name.span,
     })
@@ -255,6 +258,7 @@ fn coordinate_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditR
             &setting.quantities.coordinates.get(idx)?.size.resolved,
         ),
         formula: Some(print::expression(&info.size)),
+        varying: None,
         is_used: true,
         place: info.name.span,
     })
@@ -275,9 +279,28 @@ fn field_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
             false => None,
         },
         formula: Some(field_formula(info)),
+        varying: varying(info),
         is_used: true,
         place: info.name.span,
     })
+}
+
+/// `dP; along z P_0`.
+fn varying(info: &FieldInfo) -> Option<String> {
+    let common = info.varying.as_ref().map(print::expression);
+    let own = info.coordinates.iter().filter_map(|dependence| {
+        let along = &dependence.coordinate.text;
+        let amount = dependence.varying.as_ref().map(print::expression);
+        let length = dependence.length.as_ref().map(print::expression);
+        match (amount, length) {
+            (Some(amount), Some(length)) => Some(format!("along {along} {amount} over {length}")),
+            (Some(amount), None) => Some(format!("along {along} {amount}")),
+            (None, Some(length)) => Some(format!("along {along} over {length}")),
+            (None, None) => None,
+        }
+    });
+    let parts: Vec<String> = common.into_iter().chain(own).collect();
+    (!parts.is_empty()).then(|| parts.join("; "))
 }
 
 /// The size of a field, or the parts that it is split into.
@@ -309,6 +332,7 @@ fn group_row(model: &Model, setting: &Setting, idx: usize) -> Option<AuditRow> {
         phenomenon: None,
         value: size(setting, &group.size.resolved),
         formula: Some(print::expression(&info.value)),
+        varying: None,
         is_used: true,
         place: info.name.span,
     })

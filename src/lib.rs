@@ -35,12 +35,13 @@ pub mod number;
 pub mod polyhedra;
 pub mod prompt;
 pub mod report;
+mod saving;
 pub mod session;
 pub mod source;
 pub mod syntax;
 pub mod units;
 
-pub use session::{Outcome, Session, Status, Watcher};
+pub use session::{Outcome, Saved, Session, Status, Watcher};
 
 /// Runs a script that uses no files and gives its answers as one JSON object.
 pub fn run_to_json(name: &str, text: &str) -> serde_json::Value {

@@ -1,5 +1,6 @@
 //! The command line: words to library calls, nothing else.
 
+mod command;
 mod progress;
 
 use std::fs;
@@ -7,7 +8,8 @@ use std::io::{self, IsTerminal as _, Read as _, Write as _};
 use std::path::{Path, PathBuf};
 use std::process::ExitCode;
 
-use clap::{Args, Parser, Subcommand, ValueEnum};
+use clap::error::ErrorKind;
+use clap::{Args, CommandFactory as _, Parser, Subcommand, ValueEnum};
 use scalewright::analysis::shelf;
 use scalewright::diagnostic::{Diagnostic, Severity};
 use scalewright::model::errors::ModelError;
@@ -20,6 +22,8 @@ use scalewright::prompt::{self, Start};
 use scalewright::report;
 use scalewright::source::Sources;
 use scalewright::{Outcome, Session, Status};
+
+use crate::command::writing;
 
 /// Decide, for one phenomenon, which terms of the governing equations matter.
 ///
@@ -40,16 +44,7 @@ enum Command {
         start: Option<String>,
     },
     /// Answer scripts: files, bundled modules, or - for standard input
-    Run {
-        #[command(flatten)]
-        scripts: Scripts,
-        /// The form of the answers
-        #[arg(long, value_enum, default_value_t = Format::Text)]
-        format: Format,
-        /// Write the answers to this file instead of standard output
-        #[arg(long, value_name = "FILE")]
-        output: Option<PathBuf>,
-    },
+    Run(Run),
     /// Read and check scripts without answering them
     Check {
         #[command(flatten)]
@@ -63,6 +58,24 @@ enum Command {
         /// The module, as atmosphere.momentum
         name: Option<String>,
     },
+}
+
+#[derive(Args)]
+struct Run {
+    #[command(flatten)]
+    scripts: Scripts,
+    /// The form of the answers
+    #[arg(long, value_enum, default_value_t = Format::Text)]
+    format: Format,
+    /// With --format latex: a whole document, which compiles as it is
+    #[arg(long)]
+    document: bool,
+    /// Write the answers to this file instead of standard output
+    #[arg(long, value_name = "FILE")]
+    output: Option<PathBuf>,
+    /// Write the claims to this file too, as JUnit XML
+    #[arg(long, value_name = "FILE")]
+    junit: Option<PathBuf>,
 }
 
 #[derive(Args)]
@@ -82,6 +95,10 @@ struct Scripts {
 enum Format {
     /// For reading at a terminal
     Text,
+    /// Tables and equations for documents in Markdown
+    Markdown,
+    /// A part of a paper, or with --document a whole one
+    Latex,
     /// For other programs
     Json,
 }
@@ -102,6 +119,10 @@ impl Files for Disk {
     fn read(&self, path: &Path) -> Result<Vec<u8>, String> {
         fs::read(path).map_err(|error| reason(&error))
     }
+
+    fn write(&self, path: &Path, text: &str) -> Result<(), Box<Diagnostic>> {
+        writing::whole(path, text.as_bytes())
+    }
 }
 
 fn reason(error: &io::Error) -> String {
@@ -118,11 +139,7 @@ fn main() -> ExitCode {
     let none = Command::Prompt { start: None };
     let done = match words.command.as_ref().unwrap_or(&none) {
         Command::Prompt { start } => prompt(start.as_deref()),
-        Command::Run {
-            scripts,
-            format,
-            output,
-        } => run(scripts, *format, output.as_deref()),
+        Command::Run(words) => run(words),
         Command::Check { scripts, print } => check(scripts, *print),
         Command::Library { name } => show_library(name.as_deref()),
     };
@@ -313,26 +330,60 @@ fn aids() -> Aids {
 
 // Answering -----------------------------------------------------------------------------------
 
-fn run(scripts: &Scripts, format: Format, output: Option<&Path>) -> io::Result<ExitCode> {
-    let outcomes = outcomes(scripts, |session, input, text| {
-        session.run(&input.name, text, input.path.as_deref())
+fn run(words: &Run) -> io::Result<ExitCode> {
+    if words.document && words.format != Format::Latex {
+        Words::command()
+            .error(
+                ErrorKind::ArgumentConflict,
+                "--document goes with --format latex",
+            )
+            .exit();
+    }
+    let outcomes = outcomes(&words.scripts, |session, input, text| {
+        let mut outcome = session.run(&input.name, text, input.path.as_deref());
+        session.write(&mut outcome);
+        outcome
     });
-    let colour = output.is_none()
-        && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never;
-    let text = match format {
-        Format::Text => text_report(&outcomes, colour),
-        Format::Json => json_report(&outcomes),
-    };
+    let text = report_text(words, &outcomes);
     // What a report says already is not drawn a second time beside it.
     draw_diagnostics(&outcomes, |found| {
         let is_told = found.severity == Severity::Note || report::words::is_in_report(found.code);
         found.is_error() || !is_told
     })?;
-    match output {
-        None => io::stdout().lock().write_all(text.as_bytes())?,
-        Some(path) => write_whole(path, &text)?,
+    let mut faults = Vec::new();
+    if let Some(path) = &words.junit {
+        let xml = report::junit::report(&outcomes).map_err(io::Error::other)?;
+        let written = writing::whole(path, xml.as_bytes());
+        faults.extend(written.err().map(|fault| *fault));
     }
-    Ok(exit_code(worst(&outcomes)))
+    match &words.output {
+        None => io::stdout().lock().write_all(text.as_bytes())?,
+        Some(path) => {
+            let written = writing::whole(path, text.as_bytes());
+            faults.extend(written.err().map(|fault| *fault));
+        }
+    }
+    if faults.is_empty() {
+        return Ok(exit_code(worst(&outcomes)));
+    }
+    let unwritten = Outcome {
+        diagnostics: faults,
+        ..Outcome::default()
+    };
+    draw_diagnostics(&[unwritten], |_| true)?;
+    Ok(exit_code(Status::Invalid))
+}
+
+fn report_text(words: &Run, outcomes: &[Outcome]) -> String {
+    let colour = words.output.is_none()
+        && anstream::AutoStream::choice(&io::stdout()) != anstream::ColorChoice::Never;
+    match words.format {
+        Format::Text => text_report(outcomes, colour),
+        Format::Markdown => outcomes.iter().map(report::markdown::report).collect(),
+        Format::Latex if words.document => report::latex::document(outcomes),
+        Format::Latex => outcomes.iter().map(report::latex::fragment).collect(),
+        Format::Json => json_report(outcomes),
+    }
 }
 
 fn worst(outcomes: &[Outcome]) -> Status {
@@ -374,18 +425,6 @@ fn draw_diagnostics(outcomes: &[Outcome], wanted: impl Fn(&Diagnostic) -> bool) 
         stderr.write_all(outcome.drawn(colour, &wanted).as_bytes())?;
     }
     Ok(())
-}
-
-/// Writes a file whole or not at all: beside its place first, then under its name.
-fn write_whole(path: &Path, text: &str) -> io::Result<()> {
-    let mut beside = path.as_os_str().to_owned();
-    beside.push(".part");
-    let beside = PathBuf::from(beside);
-    let written = fs::write(&beside, text).and_then(|()| fs::rename(&beside, path));
-    written.map_err(|error| {
-        let _ = fs::remove_file(&beside);
-        io::Error::other(format!("`{}`: {}", path.display(), reason(&error)))
-    })
 }
 
 fn check(scripts: &Scripts, is_printed: bool) -> io::Result<ExitCode> {

@@ -224,6 +224,11 @@ impl Number {
         self.pi
     }
 
+    /// Its roots: numbers to powers between 0 and 1, in order.
+    pub fn roots(&self) -> impl Iterator<Item = (&BigInt, Exponent)> {
+        self.roots.iter().map(|(root, power)| (root, *power))
+    }
+
     /// The part without π and roots.
     pub fn rational_part(&self) -> &BigRational {
         &self.rational

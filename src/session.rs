@@ -11,6 +11,8 @@ use std::collections::BTreeMap;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
+use num_rational::BigRational;
+
 use crate::analysis::claims::{self, Held};
 use crate::analysis::names::Namer;
 use crate::analysis::show::{self, CaseNames};
@@ -26,7 +28,9 @@ use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests, terms};
 use crate::number::rational_to_f64;
+use crate::report::module::Origin;
 use crate::report::{standing, words};
+use crate::saving::{self, Folders};
 use crate::source::{Sources, Span};
 use crate::syntax::ast::{self, Claim, RequestKind};
 use crate::syntax::{parser, print};
@@ -48,6 +52,19 @@ pub struct Outcome {
     pub answers: Vec<Answer>,
     /// The claims in order.
     pub claims: Vec<Held>,
+    /// The files that requests ask to be written; a session writes none itself.
+    pub saved: Vec<Saved>,
+}
+
+/// A module that `reduce ... save` asks to be written.
+#[derive(Debug, Clone)]
+pub struct Saved {
+    /// Where to.
+    pub path: PathBuf,
+    /// Its text.
+    pub text: String,
+    /// Where the request names it.
+    pub span: Span,
 }
 
 /// How a script ended.
@@ -160,10 +177,27 @@ impl<'f> Session<'f> {
     pub fn run(&self, name: &str, text: &str, path: Option<&Path>) -> Outcome {
         let (mut outcome, checked) = self.checked(name, text, path, Purpose::Run);
         if let Some(checked) = checked {
-            Answering::new(&checked, &mut outcome, self.watcher).all();
+            let folders = self.folders(path);
+            Answering::new(&checked, &mut outcome, self.watcher, folders).all();
         }
         self.finish(&mut outcome);
         outcome
+    }
+
+    /// Writes the files that an outcome asks for; what cannot be written is then among its
+    /// errors.
+    pub fn write(&self, outcome: &mut Outcome) {
+        saving::write(self.files, outcome);
+        diagnostic::sort(&mut outcome.diagnostics);
+    }
+
+    fn folders<'a>(&'a self, script: Option<&'a Path>) -> Folders<'a> {
+        Folders {
+            files: self.files,
+            folder: &self.folder,
+            root: self.root.as_ref().unwrap_or(&self.folder),
+            script,
+        }
     }
 
     fn finish(&self, outcome: &mut Outcome) {
@@ -345,6 +379,7 @@ struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
     outcome: &'a mut Outcome,
+    folders: Folders<'a>,
     watcher: Option<&'a dyn Watcher>,
     /// Phenomena in which a `find` gave formulas.
     found: BTreeMap<Option<usize>, solving::Found>,
@@ -359,11 +394,13 @@ impl<'a> Answering<'a> {
         checked: &'a Checked,
         outcome: &'a mut Outcome,
         watcher: Option<&'a dyn Watcher>,
+        folders: Folders<'a>,
     ) -> Answering<'a> {
         Answering {
             model: &checked.model,
             cases: &checked.cases,
             outcome,
+            folders,
             watcher,
             found: BTreeMap::new(),
             limit: None,
@@ -392,15 +429,20 @@ impl<'a> Answering<'a> {
             self.request(None, &reduce, "reduce");
         }
         for (own, request) in &model.requests {
-            let text = one_line(self.outcome.sources.slice(request.span));
-            if let RequestKind::Limit { small, places } = &request.kind {
-                self.limit = Some((small, places));
-            }
-            if self.is_interrupted {
-                break;
-            }
-            self.request(*own, request, &text);
+            self.in_turn(*own, request);
         }
+    }
+
+    /// Answers a request of the script; what it settles holds for those behind it.
+    fn in_turn(&mut self, own: Option<usize>, request: &'a ast::Request) {
+        if self.is_interrupted {
+            return;
+        }
+        if let RequestKind::Limit { small, places } = &request.kind {
+            self.limit = Some((small, places));
+        }
+        let text = one_line(self.outcome.sources.slice(request.span));
+        self.request(own, request, &text);
     }
 
     fn request(&mut self, own: Option<usize>, request: &ast::Request, text: &str) {
@@ -475,17 +517,21 @@ impl<'a> Answering<'a> {
                 }
             }
             RequestKind::Reduce {
-                equations, within, ..
+                equations,
+                within,
+                save,
             } => {
                 if let Some((wanted, left_out)) = self.equations(case, equations, request.span) {
                     let tolerance = within
                         .as_ref()
                         .and_then(|within| declarations::tolerance_value(within).ok())
-                        .map_or(case.setting.tolerance(), |info| {
-                            rational_to_f64(&info.value)
-                        });
-                    let reduction = reduce::reduce(self.model, case, &wanted, tolerance);
+                        .map_or(case.setting.tolerance.clone(), |info| info.value);
+                    let share = rational_to_f64(&tolerance);
+                    let reduction = reduce::reduce(self.model, case, &wanted, share);
                     self.warn(case, &reduction);
+                    if let Some(save) = save {
+                        self.save(case, &reduction, &tolerance, text, save);
+                    }
                     self.outcome
                         .answers
                         .push(answer("reduce", left_out, Body::Reduce(reduction)));
@@ -572,6 +618,13 @@ impl<'a> Answering<'a> {
             .iter()
             .filter_map(|(wanted, solved)| solved.as_deref().or(given(*wanted)))
             .collect();
+        let mut is_sound = true;
+        for equation in named.iter().flat_map(|case| &case.equations) {
+            is_sound &= self.is_sound(equation);
+        }
+        if !is_sound {
+            return;
+        }
         match compare::compare(self.model, &named, matching) {
             Ok((comparison, left_out)) => {
                 let matching = comparison.matching.iter();
@@ -609,6 +662,30 @@ impl<'a> Answering<'a> {
             };
             let found = Diagnostic::warning("lone-leading-term", span, message);
             self.outcome.diagnostics.push(found);
+        }
+    }
+
+    /// Makes the module of a reduced system, for whoever runs the session to write.
+    fn save(
+        &mut self,
+        case: &Case,
+        reduction: &reduce::Reduction,
+        tolerance: &BigRational,
+        request: &str,
+        save: &ast::Text,
+    ) {
+        let origin = Origin {
+            model: self.model,
+            case,
+            reduction,
+            tolerance,
+            request,
+            script: &self.outcome.script,
+            sources: &self.outcome.sources,
+        };
+        match saving::saved(&origin, save, &self.folders, &self.outcome.saved) {
+            Ok(saved) => self.outcome.saved.push(saved),
+            Err(fault) => self.outcome.diagnostics.push(fault),
         }
     }
 

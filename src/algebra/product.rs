@@ -504,7 +504,8 @@ impl Speller<'_> {
     }
 }
 
-fn symbol_factors(monomial: &Monomial) -> Vec<Factor> {
+/// The symbols of a monomial as factors, in order.
+pub fn symbol_factors(monomial: &Monomial) -> Vec<Factor> {
     monomial
         .powers()
         .iter()

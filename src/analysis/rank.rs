@@ -5,7 +5,9 @@ use crate::analysis::names::Namer;
 use crate::analysis::sizes::{Shares, Verdict, order_of_magnitude};
 use crate::analysis::{Case, Exponents, Factors};
 use crate::model::settings::Setting;
+use crate::model::spelling;
 use crate::model::terms::{EquationTerms, Side};
+use crate::syntax::ast;
 use crate::units::Range;
 
 /// An equation with its terms ranked.
@@ -30,12 +32,16 @@ pub struct RankedEquation {
 pub struct RankedTerm {
     /// Its text, without sign.
     pub text: String,
+    /// The same as a tree.
+    pub expr: ast::Expr,
     /// Its process.
     pub process: Option<String>,
     /// Its side.
     pub side: Side,
     /// Its size in the user's own scales.
     pub scale: String,
+    /// The same as a tree.
+    pub scale_expr: ast::Expr,
     /// Its size as number and exponents.
     pub factors: Factors,
     /// Its size.
@@ -63,6 +69,16 @@ pub struct RankedProcess {
     pub share: Range,
     /// What becomes of it.
     pub verdict: Verdict,
+}
+
+impl RankedEquation {
+    /// The places of its terms, the nominally largest first.
+    pub fn largest_first(&self) -> Vec<usize> {
+        let mut order: Vec<usize> = (0..self.terms.len()).collect();
+        let nominal = |idx: &usize| self.terms[*idx].size.nominal;
+        order.sort_by(|a, b| nominal(b).total_cmp(&nominal(a)));
+        order
+    }
 }
 
 /// Ranks an equation; `None` while a scale of it is open or no term is left.
@@ -107,14 +123,15 @@ fn ranked_term(
         .ok()
         .and_then(|ratio| namer.product(&ratio))
         .map(|product| namer.named(&product));
+    let speller = speller(&case.setting, equation);
     RankedTerm {
         text: term.text.clone(),
+        expr: term.expr.clone(),
         process: term.process.clone(),
         side: term.side,
         // It was computed before, so it is within the limits.
-        scale: speller(&case.setting, equation)
-            .scale(&term.product)
-            .unwrap_or_default(),
+        scale: speller.scale(&term.product).unwrap_or_default(),
+        scale_expr: spelling::scale(&term.product, &speller).unwrap_or_else(|_| term.expr.clone()),
         factors: case.factors(&term.size.resolved),
         size: shares.sizes[idx],
         order: order_of_magnitude(shares.sizes[idx].nominal),

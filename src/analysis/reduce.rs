@@ -13,6 +13,7 @@ use crate::analysis::sizes::{Shares, Verdict, same};
 use crate::analysis::{Case, Exponents, Factors};
 use crate::model::Model;
 use crate::model::requests::process_label;
+use crate::model::spelling;
 use crate::model::terms::{EquationTerms, Side};
 use crate::number::Number;
 use crate::syntax::ast;
@@ -40,6 +41,8 @@ pub struct ReducedEquation {
     pub tolerance: f64,
     /// The reduced equation.
     pub reduced: String,
+    /// The same, side by side: the left one and the right one.
+    pub sides: [Vec<Part>; 2],
     /// Its terms.
     pub kept: Vec<ReducedTerm>,
     /// The terms left out.
@@ -66,11 +69,26 @@ pub struct ReducedEquation {
     pub lone: Option<Lone>,
 }
 
+/// What stands between two signs of a reduced equation.
+#[derive(Debug, Clone)]
+pub struct Part {
+    /// Whether a minus stands before it.
+    pub is_negative: bool,
+    /// Its text.
+    pub text: String,
+    /// The same as a tree, without process names.
+    pub expr: ast::Expr,
+    /// The same as a tree, with the names of its processes.
+    pub named: ast::Expr,
+}
+
 /// A term of a reduced equation.
 #[derive(Debug, Clone)]
 pub struct ReducedTerm {
     /// Its text, without sign.
     pub text: String,
+    /// The same as a tree.
+    pub expr: ast::Expr,
     /// Its process.
     pub process: Option<String>,
     /// Its share.
@@ -218,11 +236,13 @@ fn reduced_equation(
     let term = |idx: &usize| reduced_term(case, kept, *idx, tolerance, namer);
     let left_out = neglected(case, kept, &goes);
     let leading = kept.leading();
+    let sides = [Side::Left, Side::Right].map(|side| parts(kept, side));
     ReducedEquation {
         name: kept.equation.name.clone(),
         title: kept.equation.title.clone(),
         tolerance,
-        reduced: text(kept),
+        reduced: text(&sides),
+        sides,
         kept: stays.iter().map(term).collect(),
         dropped: goes.iter().map(term).collect(),
         error: left_out.error,
@@ -252,6 +272,7 @@ fn reduced_term(
     let verdict = kept.verdicts[idx];
     ReducedTerm {
         text: term.text.clone(),
+        expr: term.expr.clone(),
         process: term.process.clone(),
         share: kept.shares.shares[idx],
         verdict,
@@ -308,16 +329,21 @@ pub fn inequality(case: &Case, ratio: &Monomial, limit: f64, namer: &Namer<'_>) 
 
 // The text of the reduced equation ------------------------------------------------------------
 
-fn text(kept: &Kept<'_>) -> String {
-    format!(
-        "{} = {}",
-        side_text(kept, Side::Left),
-        side_text(kept, Side::Right)
-    )
+fn text(sides: &[Vec<Part>; 2]) -> String {
+    let [left, right] = sides.each_ref().map(|parts| {
+        let parts: Vec<(bool, &str)> = parts
+            .iter()
+            .map(|part| (part.is_negative, part.text.as_str()))
+            .collect();
+        joined(&parts)
+    });
+    format!("{left} = {right}")
 }
 
-fn side_text(kept: &Kept<'_>, side: Side) -> String {
-    let mut parts: Vec<(bool, &str)> = Vec::new();
+/// What is left of one side: a summand of which every term is kept stands as written,
+/// of any other the kept terms one by one.
+fn parts(kept: &Kept<'_>, side: Side) -> Vec<Part> {
+    let mut parts = Vec::new();
     for (idx, summand) in kept.equation.summands.iter().enumerate() {
         if summand.side != side {
             continue;
@@ -326,16 +352,26 @@ fn side_text(kept: &Kept<'_>, side: Side) -> String {
             .filter(|term| kept.equation.terms[*term].summand == idx)
             .collect();
         if !own.is_empty() && summand.is_whole && own.iter().all(|term| kept.is_kept(*term)) {
-            parts.push((summand.is_negative, &summand.text));
+            parts.push(Part {
+                is_negative: summand.is_negative,
+                text: summand.text.clone(),
+                expr: summand.expr.clone(),
+                named: summand.named.clone(),
+            });
             continue;
         }
         let stay = own.into_iter().filter(|term| kept.is_kept(*term));
         parts.extend(stay.map(|term| {
             let term = &kept.equation.terms[term];
-            (term.is_negative, term.text.as_str())
+            Part {
+                is_negative: term.is_negative,
+                text: term.text.clone(),
+                expr: term.expr.clone(),
+                named: spelling::named(&term.expr, term.process.as_deref()),
+            }
         }));
     }
-    joined(&parts)
+    parts
 }
 
 /// Signed texts as one side of an equation; 0 if there is none.

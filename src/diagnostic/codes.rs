@@ -175,11 +175,11 @@ pub const CODES: &[Explained] = codes! {
         "A part that should be small beside another for an expansion is not small."
         "Choose scales for which it is, or expand about the larger part.";
     "singular-expansion":
-        "The highest order of the expansion loses a derivative or divides by nothing."
-        "Look at the thin layers first: `layers`.";
+        "An expression is expanded about a place where it is infinite or not defined."
+        "Take another origin, or write the expression's size: `(... ~ SIZE)`.";
     "not-a-relation":
-        "A claim or condition needs a relation between two sides."
-        "Write one of `<<`, `>>`, `~`, `<`, `>`, `=`.";
+        "What stands behind `from` is no linear combination of equations, or an equation behind `using` has nothing to replace."
+        "Write `from d_x(y_momentum) - d_y(x_momentum)`; behind `using` one factor on the left.";
     "free-groups":
         "The limit does not say how some groups go with the small one."
         "Place those that are listed behind `with`, or write `others ~ 1`.";
@@ -189,6 +189,9 @@ pub const CODES: &[Explained] = codes! {
     "order-too-high":
         "The expansion is asked for to a higher order than the limit."
         "Ask for a lower order.";
+    "not-open":
+        "`find` is asked for a scale that has a value."
+        "Leave the scale open, `scale W in m/s`, or ask for another one.";
     "no-balance":
         "`find` sees no set of balances that fixes the open scales: some equations contradict each other."
         "Look at the equations that are named; one may lack a term, or a given scale may be far off.";
@@ -223,7 +226,13 @@ mod tests {
     use super::*;
 
     /// Hyphenated words in the source that are no codes.
-    const OTHER_WORDS: [&str; 4] = ["pound-force", "pounds-force", "acre-foot", "acre-feet"];
+    const OTHER_WORDS: [&str; 5] = [
+        "pound-force",
+        "pounds-force",
+        "acre-foot",
+        "acre-feet",
+        "claim-not-met",
+    ];
 
     #[test]
     fn every_code_stands_once_with_two_sentences() {

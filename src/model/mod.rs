@@ -17,6 +17,7 @@ pub mod modules;
 pub mod names;
 pub mod requests;
 pub mod settings;
+pub mod spelling;
 pub mod terms;
 pub mod values;
 

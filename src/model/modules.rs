@@ -1,5 +1,5 @@
 //! Brings in what a script uses: bundled modules and files, each once, before whatever
-//! uses it. Reading is left to a [`Files`].
+//! uses it. Reading and writing are left to a [`Files`].
 
 use std::path::{Component, Path, PathBuf};
 
@@ -11,7 +11,7 @@ use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, StatementKind};
 use crate::syntax::parser;
 
-/// Where scripts read the files that they use.
+/// Where scripts read the files that they use, and where what they save is written.
 pub trait Files: Sync {
     /// The one spelling of a path, links followed.
     ///
@@ -23,6 +23,15 @@ pub trait Files: Sync {
     /// # Errors
     /// Why it cannot be read.
     fn read(&self, path: &Path) -> Result<Vec<u8>, String>;
+    /// Writes a file, whole or not at all.
+    ///
+    /// # Errors
+    /// Why it cannot be written, and what to do about it.
+    fn write(&self, path: &Path, _text: &str) -> Result<(), Box<Diagnostic>> {
+        let reason = "files cannot be written here";
+        let message = format!("`{}` is not written: {reason}", path.display());
+        Err(Box::new(Diagnostic::without_place("cannot-write", message)))
+    }
 }
 
 /// No files: only bundled modules can be used.
@@ -230,7 +239,7 @@ impl Loader<'_> {
 }
 
 /// A path with its `.` and `..` worked out by their spelling.
-fn plain(path: &Path) -> PathBuf {
+pub(crate) fn plain(path: &Path) -> PathBuf {
     let mut plain = PathBuf::new();
     for part in path.components() {
         match part {

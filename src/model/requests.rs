@@ -41,11 +41,13 @@ pub fn check(model: &Model) -> Vec<ModelError> {
             }
         }
         let mut found: Vec<Vec<ModelError>> = Vec::new();
-        for target in targets(model, *own, request) {
+        let targets = targets(model, *own, request);
+        for target in &targets {
             let mut own_errors = Vec::new();
             Checker {
                 model,
-                phenomenon: target,
+                phenomenon: *target,
+                n_targets: targets.len(),
                 errors: &mut own_errors,
             }
             .request(request);
@@ -84,6 +86,8 @@ pub fn phenomenon(model: &Model, name: &ast::Name) -> Result<usize, ModelError> 
 struct Checker<'a> {
     model: &'a Model,
     phenomenon: Option<usize>,
+    /// For how many phenomena the request is answered.
+    n_targets: usize,
     errors: &'a mut Vec<ModelError>,
 }
 
@@ -113,9 +117,7 @@ impl Checker<'_> {
                 {
                     self.errors.push(error);
                 }
-                if let Some(save) = save {
-                    self.unavailable("save", save.span);
-                }
+                self.save(save.as_ref());
             }
             RequestKind::Claim(claim) => self.claim(claim),
             RequestKind::Nondimensionalize { equations, .. } => self.equations(equations),
@@ -138,6 +140,17 @@ impl Checker<'_> {
             RequestKind::Compare { .. } => {
                 self.errors.extend(compare::check(self.model, request));
             }
+        }
+    }
+
+    /// A saved system is that of one phenomenon.
+    fn save(&mut self, save: Option<&ast::Text>) {
+        if let Some(save) = save.filter(|_| self.n_targets > 1) {
+            self.errors.push(ModelError::WrongForm {
+                found: "several phenomena",
+                wanted: "one phenomenon for `save`, named with `for`",
+                span: save.span,
+            });
         }
     }
 

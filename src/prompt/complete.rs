@@ -150,7 +150,7 @@ impl<'a> Place<'a> {
         let typed = &self.before[self.typed_start()..];
         let is_glued = typed.is_empty() && !self.before.ends_with([' ', '\t']);
         if is_glued && is_behind_number {
-            return None;
+            return Some((self.before.len(), Vec::new()));
         }
         let inner = typed.rfind(['.', '/', '(', '·']).map_or(0, |at| {
             at + typed[at..].chars().next().map_or(1, char::len_utf8)
@@ -233,7 +233,9 @@ impl<'a> Place<'a> {
             _ => self.names(),
         };
         words.extend(self.clause_words());
-        if self.typed.is_some() {
+        // A clause that has just begun wants a name first.
+        let has_begun = self.last().is_some_and(|kind| !kind.is_reserved());
+        if self.typed.is_some() && has_begun {
             words.extend(statements());
         }
         words
@@ -242,7 +244,7 @@ impl<'a> Place<'a> {
     /// The last reserved word before the cursor: it says what is wanted.
     fn clause(&self) -> Option<Kind> {
         let kinds = self.statement.iter().map(|token| token.kind);
-        kinds.filter(|kind| kind.is_reserved()).last()
+        kinds.rev().find(|kind| kind.is_reserved())
     }
 
     /// The clause words of the statement.

@@ -29,10 +29,17 @@ pub struct Dialogue<'f> {
     page: Page<'f>,
     sheet: Sheet,
     last: Option<Asked>,
-    /// The texts of the page before each accepted entry.
-    earlier: Vec<String>,
+    /// What was declared, each with the text of the page before it.
+    earlier: Vec<Declared>,
     /// Files that this session may write over.
     own_files: Vec<PathBuf>,
+}
+
+/// An entry that declared something.
+#[derive(Debug, Clone)]
+struct Declared {
+    entry: String,
+    page_before: String,
 }
 
 /// The last request with its answers.
@@ -111,7 +118,7 @@ impl Reply {
 #[derive(Debug, Clone, Default)]
 pub struct Snapshot {
     text: String,
-    earlier: Vec<String>,
+    earlier: Vec<Declared>,
     own_files: Vec<PathBuf>,
 }
 
@@ -130,6 +137,11 @@ impl<'f> Dialogue<'f> {
     /// The page so far.
     pub fn page(&self) -> &Page<'f> {
         &self.page
+    }
+
+    /// How what is written is laid out.
+    pub fn sheet(&self) -> Sheet {
+        self.sheet
     }
 
     /// Fits what is written to another width.
@@ -197,10 +209,11 @@ impl<'f> Dialogue<'f> {
     /// Several statements at once, as in a script, where order does not matter; if they
     /// are at fault together, one after another.
     fn run(&mut self, run: &[String]) -> Reply {
-        let before = self.page.text().to_owned();
-        let taken = self.page.take(TYPED, &run.join("\n"));
+        let page_before = self.page.text().to_owned();
+        let entry = run.join("\n");
+        let taken = self.page.take(TYPED, &entry);
         if taken.is_taken {
-            return self.told(taken, before);
+            return self.told(taken, Declared { entry, page_before });
         }
         let mut reply = Reply::default();
         for entry in run {
@@ -213,22 +226,23 @@ impl<'f> Dialogue<'f> {
         match entry::command(text) {
             Some(command) => self.command(&command),
             None => {
-                let before = self.page.text().to_owned();
+                let page_before = self.page.text().to_owned();
                 let mut taken = self.page.take(TYPED, text);
                 mends::mend(&mut taken.outcome.diagnostics, text, &self.page);
-                self.told(taken, before)
+                let entry = text.to_owned();
+                self.told(taken, Declared { entry, page_before })
             }
         }
     }
 
     /// What is said of an entry, and what is remembered of it.
-    fn told(&mut self, taken: Taken, before: String) -> Reply {
+    fn told(&mut self, taken: Taken, declared: Declared) -> Reply {
         let mut reply = Reply::about(self.drawn(&taken), taken.outcome.status());
         if !taken.is_taken {
             return reply;
         }
-        if before != self.page.text() {
-            self.earlier.push(before);
+        if taken.declares {
+            self.earlier.push(declared);
             let n_over = self.earlier.len().saturating_sub(MOST_BACK);
             self.earlier.drain(..n_over);
         }
@@ -303,13 +317,12 @@ impl<'f> Dialogue<'f> {
     }
 
     fn back(&mut self) -> Reply {
-        let Some(text) = self.earlier.pop() else {
-            return Reply::failed("nothing was accepted yet\n".to_owned());
+        let Some(declared) = self.earlier.pop() else {
+            return Reply::failed("nothing was declared yet\n".to_owned());
         };
-        self.page = Page::restored(self.page.session().clone(), &text);
-        let n_lines = text.lines().count();
-        let said = format!("the page has {n_lines} lines again");
-        Reply::said(self.sheet.paragraph("  ", &said))
+        let session = self.page.session().clone();
+        self.page = Page::restored(session, &declared.page_before);
+        Reply::said(self.sheet.paragraph("  taken back   ", &declared.entry))
     }
 
     fn keep(&mut self, name: &str) -> Reply {

@@ -28,7 +28,7 @@ pub const OWN_WORDS: [OwnWord; 6] = [
     OwnWord {
         word: "back",
         form: "back",
-        says: "takes the last accepted entry back",
+        says: "takes the last declaration back",
     },
     OwnWord {
         word: "page",

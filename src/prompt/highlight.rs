@@ -71,7 +71,7 @@ pub fn parts(page: &Page<'_>, text: &str, cursor: usize) -> Vec<(usize, usize, P
     let mut parts: Vec<(usize, usize, Part)> = Vec::new();
     for token in &lexed.tokens {
         let (start, end) = place(token.span);
-        let is_faulty = faults.iter().any(|fault| *fault == (start, end));
+        let is_faulty = faults.contains(&(start, end));
         let part = match is_faulty {
             true => Some(Part::Fault),
             false => part(page, token, cursor),

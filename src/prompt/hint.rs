@@ -115,7 +115,7 @@ mod tests {
             ("U/(f*L)", "  = 0.1, Ro"),
             ("Ro", "  = 0.1"),
             ("U/L", "  = 1e-5 1/s"),
-            ("scale T = L/U", "  = 1e5 s"),
+            ("scale T = L/U", "  = 100000 s"),
             ("scale H = 10 km", "  length"),
             ("scale D in m^2/s", "  kinematic viscosity"),
             ("W*f", "  acceleration"),

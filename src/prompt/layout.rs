@@ -11,6 +11,9 @@ pub struct Sheet {
     pub colour: bool,
 }
 
+/// The widest label of a paragraph.
+const LONGEST_LABEL: usize = 17;
+
 /// The narrowest terminal for which lines are broken.
 const NARROWEST: usize = 24;
 
@@ -63,31 +66,65 @@ impl Sheet {
         out
     }
 
-    /// Lines that may be too wide, broken where that is best; later parts are indented.
+    /// A report of 80 columns fitted to a narrower terminal: its paragraphs are put
+    /// together again and broken anew, other lines are broken where they are too wide.
     pub fn folded(&self, text: &str) -> String {
         if !self.is_narrow() {
             return text.to_owned();
         }
         let mut out = String::new();
+        let mut open: Option<(String, String)> = None;
+        let mut was_full = false;
         for line in text.lines() {
-            if width(line) <= self.room() {
-                out.push_str(line);
-                out.push('\n');
-                continue;
+            let (label, rest) = labelled(line);
+            let goes_on = was_full && label.trim().is_empty();
+            was_full = width(line) > WIDTH * 3 / 4;
+            match &mut open {
+                Some((above, text)) if goes_on && width(above) == width(&label) => {
+                    text.push(' ');
+                    text.push_str(rest);
+                }
+                _ => self.close(open.replace((label, rest.to_owned())), &mut out),
             }
-            let bare = line.trim_start();
-            let indent = line.len() - bare.len();
-            let label = " ".repeat(indent.min(self.room() / 4));
-            let is_rule = bare.starts_with('─');
-            let bare = match is_rule {
-                true => bare.trim_matches(['─', ' ']),
-                false => bare,
-            };
-            // What goes on stands a little to the right.
-            out.push_str(&self.hanging(&label, label.len() + 2, bare));
         }
+        self.close(open, &mut out);
         out
     }
+
+    fn close(&self, paragraph: Option<(String, String)>, out: &mut String) {
+        let Some((label, text)) = paragraph else {
+            return;
+        };
+        let text = match text.starts_with('─') {
+            true => text.trim_matches(['─', ' ']),
+            false => text.as_str(),
+        };
+        if text.is_empty() {
+            out.push_str(label.trim_end());
+            out.push('\n');
+            return;
+        }
+        // What goes on stands under the text, or a little to the right without a label.
+        let is_labelled = !label.trim().is_empty();
+        let indent = width(&label).min(self.room() / 3) + if is_labelled { 0 } else { 2 };
+        out.push_str(&self.hanging(&label, indent, text));
+    }
+}
+
+/// A line as its indent, or a short label with the blanks around it, and the rest.
+fn labelled(line: &str) -> (String, &str) {
+    let bare = line.trim_start();
+    let indent = line.len() - bare.len();
+    let label = bare.find("  ").map(|at| {
+        let blanks = bare[at..].len() - bare[at..].trim_start().len();
+        indent + at + blanks
+    });
+    let is_short = |len: &usize| (1..=LONGEST_LABEL).contains(&width(&line[..*len]));
+    let len = label
+        .filter(is_short)
+        .filter(|_| indent > 0)
+        .unwrap_or(indent);
+    (line[..len].to_owned(), &line[len..])
 }
 
 /// A word cut so that each piece fits a line.

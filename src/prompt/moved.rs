@@ -18,9 +18,8 @@ const MOST_LINES: usize = 12;
 /// What differs, answer by answer.
 pub fn moved(before: (&[Answer], &[Held]), after: (&[Answer], &[Held]), sheet: &Sheet) -> String {
     let mut lines: Vec<(String, String)> = Vec::new();
-    for new in after.0 {
-        let same = |old: &&Answer| old.text == new.text && old.phenomenon == new.phenomenon;
-        if let Some(old) = before.0.iter().find(same) {
+    for (idx, new) in after.0.iter().enumerate() {
+        if let Some(old) = counterpart(before.0, after.0, idx) {
             let of = new.phenomenon.clone();
             let found = answer(old, new);
             lines.extend(
@@ -48,6 +47,15 @@ pub fn moved(before: (&[Answer], &[Held]), after: (&[Answer], &[Held]), sheet: &
         out.push_str(&sheet.paragraph("  ", &format!("{name}: {text}")));
     }
     out
+}
+
+/// The earlier answer to the same request for the same phenomenon: both lists answer the
+/// same requests in the same order, however they were spelt.
+fn counterpart<'a>(before: &'a [Answer], after: &[Answer], idx: usize) -> Option<&'a Answer> {
+    let phenomenon = &after[idx].phenomenon;
+    let is_same = |found: &&Answer| found.phenomenon == *phenomenon;
+    let nth = after[..idx].iter().filter(is_same).count();
+    before.iter().filter(is_same).nth(nth)
 }
 
 fn with_phenomenon(name: String, phenomenon: &Option<String>) -> String {

@@ -3,6 +3,7 @@
 
 use std::borrow::Cow;
 use std::io::{self, Write};
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::mpsc::{self, Receiver, Sender};
 use std::thread;
 
@@ -18,13 +19,17 @@ use rustyline::{ColorMode, CompletionType, Config, Context, Editor, Helper};
 use crate::prompt::dialogue::{Dialogue, Reply};
 use crate::prompt::layout::Sheet;
 use crate::prompt::{Start, complete, entry, highlight, hint, history};
-use crate::session::Session;
+use crate::report::layout::{cut, width};
+use crate::session::{Session, Watcher};
 
 /// The mark before an entry: what is typed scales as ...
 const MARK: &str = "~: ";
 
 /// Columns where the terminal does not tell.
 const COLUMNS: usize = 80;
+
+/// Columns below which a hint is no use.
+const LEAST_HINT: usize = 6;
 
 /// Most lines that are remembered.
 const REMEMBERED: usize = 2_000;
@@ -42,7 +47,7 @@ pub enum Aids {
 ///
 /// # Errors
 /// What the terminal meets.
-pub fn run(session: Session<'static>, start: Option<&Start>, aids: Aids) -> io::Result<()> {
+pub fn run(plain: Session<'static>, start: Option<&Start>, aids: Aids) -> io::Result<()> {
     let (events, received) = mpsc::channel();
     let on_interrupt = events.clone();
     // Without a handler Ctrl-C ends the program during an answer, which is bearable.
@@ -51,7 +56,8 @@ pub fn run(session: Session<'static>, start: Option<&Start>, aids: Aids) -> io::
     });
     let mut editor = editor(aids).map_err(io_error)?;
     let sheet = sheet(&mut editor, aids);
-    let mut dialogue = Dialogue::new(session.clone(), sheet);
+    let (session, stop) = watched(&plain);
+    let mut dialogue = Dialogue::new(session, sheet);
     greet(sheet)?;
     if let Some(start) = start {
         write(&dialogue.start(&start.name, start.path.as_deref(), &start.text))?;
@@ -66,7 +72,8 @@ pub fn run(session: Session<'static>, start: Option<&Start>, aids: Aids) -> io::
         let _ = editor.load_history(file);
     }
     let mut talk = Talk {
-        session,
+        plain,
+        stop,
         events,
         received,
         n_entries: 0,
@@ -138,8 +145,28 @@ enum Event {
     Lost(u64),
 }
 
+/// Ends the searches of an answer that was left.
+#[derive(Default)]
+struct Stop(AtomicBool);
+
+impl Watcher for Stop {
+    fn goes_on(&self, _: usize) -> bool {
+        !self.0.load(Ordering::Relaxed)
+    }
+}
+
+/// A session whose searches can be ended. The few bytes of the switch stay, since a
+/// thread that was left may look at it at any time.
+fn watched(plain: &Session<'static>) -> (Session<'static>, &'static Stop) {
+    let stop: &'static Stop = Box::leak(Box::default());
+    (plain.clone().with_watcher(stop), stop)
+}
+
 struct Talk {
-    session: Session<'static>,
+    /// The session without a watcher.
+    plain: Session<'static>,
+    /// The switch of the present one.
+    stop: &'static Stop,
     events: Sender<Event>,
     received: Receiver<Event>,
     n_entries: u64,
@@ -181,7 +208,10 @@ impl Talk {
             None => {
                 let text = "[interrupted] the answer was left; the page is as it was\n";
                 let reply = Reply::failed(text.to_owned());
-                let restored = Dialogue::restored(self.session.clone(), sheet, snapshot);
+                self.stop.0.store(true, Ordering::Relaxed);
+                let (session, stop) = watched(&self.plain);
+                self.stop = stop;
+                let restored = Dialogue::restored(session, sheet, snapshot);
                 (Box::new(restored), reply)
             }
         };
@@ -286,7 +316,11 @@ impl Hinter for Aid {
         if pos < line.len() {
             return None;
         }
-        hint::hint(self.dialogue()?.page(), line).map(Remark)
+        let dialogue = self.dialogue()?;
+        let said = hint::hint(dialogue.page(), line)?;
+        let taken = width(MARK) + width(line.rsplit('\n').next().unwrap_or(line));
+        let room = dialogue.sheet().columns.saturating_sub(taken + 1);
+        (room >= LEAST_HINT).then(|| Remark(cut(&said, room)))
     }
 }
 

@@ -21,9 +21,11 @@ pub fn significant(value: f64, digits: usize) -> String {
     }
 }
 
-/// Whether a number reads well without a power of ten.
+/// Whether a number reads well without a power of ten: one that it would show more exactly
+/// than it is known does not.
 fn is_plain(value: f64) -> bool {
-    value == 0.0 || (1e-3..1e5).contains(&value.abs())
+    let amount = value.abs();
+    value == 0.0 || (1e-3..1e4).contains(&amount) || (amount < 1e6 && amount % 1e3 == 0.0)
 }
 
 fn scientific(value: f64, digits: usize) -> String {
@@ -66,6 +68,10 @@ pub fn range(range: &Range) -> String {
     } else {
         ends.map(|end| scientific(end, 3))
     };
+    if texts[0] == texts[1] && texts[1] == texts[2] {
+        // The range is one of rounding.
+        return number(range.nominal);
+    }
     texts.join(" .. ")
 }
 
@@ -113,27 +119,44 @@ pub fn cut(text: &str, columns: usize) -> String {
 }
 
 /// A paragraph behind a label, wrapped to the width of a terminal; later lines begin
-/// under the first word. A word that fits no line stands alone.
+/// under the first word. A word that fits no line stands alone; ranges and per cents are
+/// not torn apart.
 pub fn wrapped(label: &str, text: &str) -> String {
+    let mut words: Vec<String> = Vec::new();
+    for word in text.split(' ').filter(|word| !word.is_empty()) {
+        match words.last_mut() {
+            Some(last) if belongs_before(word) || last.ends_with(" ..") => {
+                last.push(' ');
+                last.push_str(word);
+            }
+            Some(_) | None => words.push(word.to_owned()),
+        }
+    }
+    wrapped_words(label, &words)
+}
+
+/// Whether a word stays on the line of the one before it.
+fn belongs_before(word: &str) -> bool {
+    word == ".." || word.starts_with('%')
+}
+
+/// The same for words that may have blanks in them.
+pub fn wrapped_words(label: &str, words: &[String]) -> String {
     let indent = width(label);
     let mut out = String::from(label);
     let mut column = indent;
-    let mut is_first = true;
-    for word in text.split(' ').filter(|word| !word.is_empty()) {
+    for (idx, word) in words.iter().enumerate() {
         let needed = width(word);
-        if !is_first && column + 1 + needed > WIDTH {
+        if idx > 0 && column + 1 + needed > WIDTH {
             out.push('\n');
             out.push_str(&" ".repeat(indent));
             column = indent;
-            is_first = true;
-        }
-        if !is_first {
+        } else if idx > 0 {
             out.push(' ');
             column += 1;
         }
         out.push_str(word);
         column += needed;
-        is_first = false;
     }
     out.push('\n');
     out
@@ -196,10 +219,15 @@ const NAMED: [(&str, &str); 4] = [
     ("kg.m^2/s^3", "W"),
 ];
 
+/// A unit by the name of its own, where it has one: `Pa`.
+pub fn named_unit(unit_text: &str) -> &str {
+    let named = NAMED.iter().find(|(long, _)| *long == unit_text);
+    named.map_or(unit_text, |(_, short)| short)
+}
+
 /// A value with its unit.
 pub fn quantity(value: &Range, unit_text: &str) -> String {
-    let named = NAMED.iter().find(|(long, _)| *long == unit_text);
-    let text = named.map_or_else(|| unit(unit_text), |(_, short)| (*short).to_owned());
+    let text = unit(named_unit(unit_text));
     format!("{} {text}", range(value)).trim_end().to_owned()
 }
 

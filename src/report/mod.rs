@@ -3,10 +3,16 @@
 //! sentences that all forms share, `layout` numbers, columns and wrapping.
 
 pub mod dimensionless;
+pub mod given;
 pub mod json;
+pub mod junit;
+pub mod latex;
 pub mod layout;
+pub mod markdown;
 pub mod mathematics;
+pub mod module;
 pub mod ruler;
+pub mod sheets;
 pub mod shelf;
 pub mod standing;
 pub mod text;

@@ -45,6 +45,17 @@ impl Ruler {
         self.step * self.decades as usize + 1
     }
 
+    /// The powers of ten at which it has a mark.
+    pub fn decades(&self) -> std::ops::RangeInclusive<i32> {
+        self.lowest..=self.lowest + self.decades
+    }
+
+    /// How far along it a size stands, from 0 to 1; below 0 where it lies below the ruler.
+    pub fn place(&self, size: f64) -> f64 {
+        let log = size.abs().max(f64::MIN_POSITIVE).log10();
+        ((log - f64::from(self.lowest)) / f64::from(self.decades)).min(1.0)
+    }
+
     fn column(&self, size: f64) -> Option<usize> {
         let place =
             (size.abs().max(f64::MIN_POSITIVE).log10() - f64::from(self.lowest)) * self.step as f64;

@@ -4,11 +4,15 @@ use num_integer::Integer as _;
 
 use crate::analysis::balances::Balances;
 use crate::analysis::claims::{Astray, Held, Measured};
-use crate::analysis::reduce::{Inequality, Lone, LostDerivative, ReducedEquation, ReducedTerm};
-use crate::analysis::{Exponents, Factors};
+use crate::analysis::reduce::{
+    Inequality, Kind, Lone, LostDerivative, Part, ReducedEquation, ReducedTerm,
+};
+use crate::analysis::show::Shown;
+use crate::analysis::sizes::Verdict;
+use crate::analysis::{Answer, Body, Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
-use crate::report::layout::{number, percent, quantity, range, significant};
+use crate::report::layout::{number, percent, quantity, range, significant, unit};
 use crate::syntax::ast::{ClaimWord, Relation};
 use crate::units::{self, Range};
 
@@ -164,16 +168,175 @@ fn ordinal(order: u32) -> String {
     }
 }
 
+/// A share over the box: `28.9 .. 100 %`.
+pub fn share(share: &Range) -> String {
+    if share.is_exact() {
+        return percent(share.nominal);
+    }
+    format!(
+        "{} .. {}",
+        percent(share.low).trim_end_matches(" %"),
+        percent(share.high)
+    )
+}
+
+/// The parts of one side of an equation, each with the sign before it; none of a side
+/// that is 0.
+pub fn signed(parts: &[Part], text: impl Fn(&Part) -> String) -> Vec<String> {
+    if parts.is_empty() {
+        return vec!["0".to_owned()];
+    }
+    let parts = parts.iter().enumerate();
+    parts
+        .map(|(idx, part)| {
+            let sign = match (idx, part.is_negative) {
+                (0, false) => "",
+                (0, true) => "-",
+                (_, false) => "+ ",
+                (_, true) => "- ",
+            };
+            format!("{sign}{}", text(part))
+        })
+        .collect()
+}
+
+/// Which balance leads, and whether it was put in.
+pub fn leading_order(equation: &ReducedEquation) -> String {
+    let name = equation.balance.as_deref().unwrap_or("unnamed");
+    match equation.by_construction {
+        true => format!("{name}, by construction: derived scales put this balance in"),
+        false => name.to_owned(),
+    }
+}
+
+/// What a reduced equation of base fields alone is good for.
+pub const BASE_STATE: &str = "a base state alone: `using` takes it out of other equations";
+
+/// The fields that an equation steps in time, and those that it gives at any time.
+pub fn kinds(equation: &ReducedEquation) -> String {
+    let of = |wanted: Kind| -> Vec<&str> {
+        let kinds = equation.kinds.iter().filter(|(_, kind)| *kind == wanted);
+        kinds.map(|(field, _)| field.as_str()).collect()
+    };
+    let mut texts = Vec::new();
+    for (kind, word) in [
+        (Kind::Prognostic, "prognostic"),
+        (Kind::Diagnostic, "diagnostic"),
+    ] {
+        let fields = of(kind);
+        if !fields.is_empty() {
+            texts.push(format!("{} {word}", fields.join(", ")));
+        }
+    }
+    texts.join("; ")
+}
+
+/// A request with its phenomenon: `rank, winter_low: mature winter low`.
+pub fn heading(answer: &Answer) -> String {
+    // The phenomenon is named once, whatever the request says behind `for`.
+    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
+    match (&answer.phenomenon, &answer.title) {
+        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
+        (Some(name), None) => format!("{asked}, {name}"),
+        (None, _) => answer.text.clone(),
+    }
+}
+
+/// Whether an answer speaks of shares and verdicts.
+pub fn has_verdicts(answer: &Answer) -> bool {
+    match answer.body {
+        Body::Rank(_) | Body::Reduce(_) | Body::Compare(_) => true,
+        Body::Show(_)
+        | Body::Groups(_)
+        | Body::Nondimensionalize(_)
+        | Body::Find(_)
+        | Body::Layers(_)
+        | Body::Bounds(_) => false,
+    }
+}
+
+/// A heading in two parts.
+pub struct Asked {
+    /// The request, without the phenomena that it names.
+    pub request: String,
+    /// For what it was answered: ` for winter_low, mature winter low`.
+    pub subject: String,
+}
+
+/// The heading of an answer in two parts.
+pub fn asked(answer: &Answer) -> Asked {
+    let request = answer.text.split(" for ").next().unwrap_or(&answer.text);
+    let title = answer.title.as_ref().map(|title| format!(", {title}"));
+    let subject = answer
+        .phenomenon
+        .as_ref()
+        .map(|name| format!(" for {name}{}", title.unwrap_or_default()));
+    Asked {
+        request: request.to_owned(),
+        subject: subject.unwrap_or_default(),
+    }
+}
+
+/// A claim without its keyword, with the phenomenon that it was held against.
+pub fn claim(claim: &Held) -> String {
+    let text = claim.text.strip_prefix("claim ").unwrap_or(&claim.text);
+    match (&claim.phenomenon, text.contains(" for ")) {
+        (Some(name), false) => format!("{text} for {name}"),
+        _ => text.to_owned(),
+    }
+}
+
+/// What was measured for a claim that is not met, by how much it misses, and what would
+/// mend it.
+pub fn unmet(claim: &Held) -> String {
+    let mut text = measured(claim);
+    if let Some(miss) = claim.miss {
+        text.push_str(&format!("; misses by a factor {}", number(miss)));
+    }
+    if !claim.mends.is_empty() {
+        text.push_str(&format!("; would hold with {}", mends(&claim.mends)));
+    }
+    text
+}
+
+/// How many claims there are, and how many hold.
+pub fn tally(claims: &[Held]) -> String {
+    let n_met = claims.iter().filter(|claim| claim.met).count();
+    let n_unmet = claims.len() - n_met;
+    let noun = if claims.len() == 1 { "claim" } else { "claims" };
+    format!("{} {noun}: {n_met} met, {n_unmet} not met", claims.len())
+}
+
+/// What the words of the tables mean, for a reader who meets them first.
+pub const LEGEND: &str = "The size of a term follows from the scales; its share is its size \
+    over that of the largest term of its equation at the same values. Ranges run over all \
+    values that the scales may take. With its share above the tolerance over the whole range \
+    a term leads; above it over a part only, it depends; never above it, it drops and is left \
+    out.";
+
 /// What the lost derivatives of an equation mean, in one sentence.
 pub fn lost(lost: &[LostDerivative]) -> String {
-    let derivatives: Vec<String> = lost
+    let mut sets: Vec<(&str, u32, Vec<&str>)> = Vec::new();
+    for lost in lost {
+        let (field, order) = (lost.field.as_str(), lost.order);
+        let mut known = sets.iter_mut();
+        match known.find(|(found, at, _)| *found == field && *at == order) {
+            Some((_, _, along)) => along.push(&lost.coordinate),
+            None => sets.push((field, order, vec![&lost.coordinate])),
+        }
+    }
+    let derivatives: Vec<String> = sets
         .iter()
-        .map(|lost| {
+        .map(|(field, order, along)| {
+            let noun = if along.len() == 1 {
+                "derivative"
+            } else {
+                "derivatives"
+            };
             format!(
-                "the {} derivative of {} along {}",
-                ordinal(lost.order),
-                lost.field,
-                lost.coordinate
+                "the {} {noun} of {field} along {}",
+                ordinal(*order),
+                along.join(", ")
             )
         })
         .collect();
@@ -192,7 +355,7 @@ pub fn lost(lost: &[LostDerivative]) -> String {
     };
     format!(
         "{} {verb} lost, and with {} {conditions}; `layers` looks for where {them} matter again",
-        derivatives.join(", "),
+        derivatives.join(" and "),
         if lost.len() == 1 { "it" } else { "them" },
     )
     .replace("where it matter again", "where it matters again")
@@ -258,6 +421,34 @@ pub fn undetermined(fields: &[String]) -> String {
     )
 }
 
+/// A value that was asked for, with its order and the group it is.
+pub fn shown(shown: &Shown) -> String {
+    let (value, unit_text) = match &shown.shown_in {
+        Some((unit, value)) => (value, unit),
+        None => (&shown.value, &shown.unit),
+    };
+    let bound = if shown.is_bound { "at most " } else { "" };
+    let mut text = format!("{bound}{}", quantity(value, unit_text));
+    if let Some(order) = shown.order {
+        text.push_str(&format!(", order 1e{order}"));
+        if shown.shown_in.is_some() && shown.unit != "1" {
+            text.push_str(&format!(" {}", unit(&shown.unit)));
+        }
+    }
+    if let Some(group) = &shown.group {
+        let title = shown.group_title.as_ref().map(|title| format!(", {title}"));
+        text.push_str(&format!("; {group}{}", title.unwrap_or_default()));
+    }
+    text
+}
+
+/// A word with a capital letter.
+pub fn capital(word: &str) -> String {
+    let mut chars = word.chars();
+    let first = chars.next().map(|first| first.to_uppercase().chain(chars));
+    first.map(Iterator::collect).unwrap_or_default()
+}
+
 /// What was measured for a claim.
 pub fn measured(held: &Held) -> String {
     match &held.measured {
@@ -303,6 +494,28 @@ pub fn measured(held: &Held) -> String {
             ..
         } => measured_processes(*word, found, astray),
     }
+}
+
+/// The conditions under which terms may go, each with the terms that it holds for.
+pub fn conditions(equation: &ReducedEquation) -> Vec<Vec<&ReducedTerm>> {
+    let mut found: Vec<Vec<&ReducedTerm>> = Vec::new();
+    let depends = |term: &&ReducedTerm| term.verdict == Verdict::Depends;
+    for term in equation.kept.iter().filter(depends) {
+        let text = condition_with_values(term);
+        let like = |terms: &&mut Vec<&ReducedTerm>| condition_with_values(terms[0]) == text;
+        match found.iter_mut().find(like) {
+            Some(terms) => terms.push(term),
+            None => found.push(vec![term]),
+        }
+    }
+    found
+}
+
+/// The dropped terms, the one with the highest share first.
+pub fn dropped(equation: &ReducedEquation) -> Vec<&ReducedTerm> {
+    let mut terms: Vec<&ReducedTerm> = equation.dropped.iter().collect();
+    terms.sort_by(|a, b| b.share.high.total_cmp(&a.share.high));
+    terms
 }
 
 /// That no balance is consistent, and why.

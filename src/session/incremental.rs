@@ -13,11 +13,10 @@ use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::ModelError;
 use crate::model::modules;
 use crate::model::{Level, Model, declarations, requests};
+use crate::saving;
 use crate::session::changes::{self, Changes};
 use crate::session::merge::{self, Merged, Written};
-use crate::session::{
-    Answering, Checked, Outcome, Session, Watcher, check_model, judged, one_line,
-};
+use crate::session::{Answering, Checked, Outcome, Session, check_model, judged};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, Statement, StatementKind};
 use crate::syntax::errors::SyntaxError;
@@ -46,6 +45,8 @@ pub struct Taken {
     pub outcome: Outcome,
     /// Whether the page holds the entry now; not so if it was at fault.
     pub is_taken: bool,
+    /// Whether it declares something, rather than asking alone.
+    pub declares: bool,
     /// What gave way to it.
     pub replaced: Vec<Replaced>,
     /// What it changed.
@@ -153,7 +154,7 @@ impl<'f> Page<'f> {
         let mut text = self.text.clone();
         // Each turn turns at least one request into a comment.
         for _ in 0..text.len() {
-            let outcome = self.session.check(PAGE, &text, None);
+            let outcome = self.session.run(PAGE, &text, None);
             let faults: Vec<Span> = outcome
                 .diagnostics
                 .iter()
@@ -215,7 +216,7 @@ impl<'f> Page<'f> {
         let outcome = &mut taken.outcome;
         outcome.diagnostics = found.iter().map(ModelError::diagnostic).collect();
         if mode != Mode::Unanswered && !outcome.diagnostics.iter().any(Diagnostic::is_error) {
-            answer(&self.checked, n_before, outcome, self.session.watcher);
+            answer(&self.checked, n_before, outcome, &self.session);
         }
         diagnostic::sort(&mut outcome.diagnostics);
         taken.is_taken = !outcome.diagnostics.iter().any(Diagnostic::is_error);
@@ -315,7 +316,7 @@ impl<'f> Page<'f> {
         if mode != Mode::Unanswered {
             let n_settled = attempt.settled.len();
             sort_requests(&mut checked.model, &attempt.settled);
-            answer(&checked, n_settled, &mut outcome, self.session.watcher);
+            answer(&checked, n_settled, &mut outcome, &self.session);
         }
         diagnostic::sort(&mut outcome.diagnostics);
         if outcome.diagnostics.iter().any(Diagnostic::is_error) {
@@ -330,6 +331,7 @@ impl<'f> Page<'f> {
         Taken {
             outcome,
             is_taken: true,
+            declares: true,
             replaced: attempt.replaced,
             changes,
             requests: attempt.requests,
@@ -556,22 +558,27 @@ fn request_errors(checked: &Checked) -> Vec<ModelError> {
 
 /// Answers the requests of a model from the `first` on; those before it only settle what
 /// they settle.
-fn answer(checked: &Checked, first: usize, outcome: &mut Outcome, watcher: Option<&dyn Watcher>) {
+fn answer(checked: &Checked, first: usize, outcome: &mut Outcome, session: &Session<'_>) {
     let told = std::mem::take(&mut outcome.diagnostics);
-    let mut answering = Answering::new(checked, outcome, watcher);
+    let mut answering = Answering::new(checked, outcome, session.watcher, session.folders(None));
     for (idx, (own, request)) in checked.model.requests.iter().enumerate() {
         if idx == first {
             answering.outcome.answers.clear();
             answering.outcome.claims.clear();
+            answering.outcome.saved.clear();
             answering.outcome.diagnostics.clear();
         }
-        let text = one_line(answering.outcome.sources.slice(request.span));
-        answering.request(*own, request, &text);
+        answering.in_turn(*own, request);
     }
     if first >= checked.model.requests.len() {
+        outcome.saved.clear();
         outcome.answers.clear();
         outcome.diagnostics.clear();
     }
+    if outcome.diagnostics.iter().any(Diagnostic::is_error) {
+        outcome.saved.clear();
+    }
+    saving::write(session.files, outcome);
     outcome.diagnostics.splice(0..0, told);
 }
 
@@ -610,7 +617,9 @@ fn comment_out(text: &mut String, span: Span) {
         true => "",
         false => "\n",
     };
-    let behind = match text[end..].starts_with('\n') || end == text.len() {
+    let blanks = text[end..].len() - text[end..].trim_start_matches([' ', '\t']).len();
+    let rest = &text[end + blanks..];
+    let behind = match rest.is_empty() || rest.starts_with('\n') {
         true => "",
         false => "\n",
     };
@@ -618,7 +627,7 @@ fn comment_out(text: &mut String, span: Span) {
         "{before}# no longer answered:\n{}{behind}",
         lines.join("\n")
     );
-    text.replace_range(start..end, &comment);
+    text.replace_range(start..end + blanks, &comment);
 }
 
 impl Checked {

@@ -180,6 +180,13 @@ impl Answering<'_> {
         let formulas = formulas.unwrap_or_default();
         let (case, _) = analysis::case_with(self.model, target, &formulas);
         let case = Rc::new(case?);
+        let mut is_sound = true;
+        for equation in &case.equations {
+            is_sound &= self.is_sound(equation);
+        }
+        if !is_sound {
+            return None;
+        }
         let mut conditions: Vec<(usize, Vec<String>)> = Vec::new();
         for condition in words.conditions {
             let idx = self.model.equation(&condition.equation.text)?;

@@ -4,5 +4,6 @@
 mod bad_input;
 mod expansions;
 mod made_equations;
+mod readme;
 mod rules;
 mod worked_example;

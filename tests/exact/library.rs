@@ -141,3 +141,32 @@ fn a_shelf_of_declarations_can_be_checked() {
         Status::Invalid
     );
 }
+
+/// The row of the table of symbols in DEVELOPERS.md that begins with this name.
+fn has_row(table: &str, name: &str, cell: &str) -> bool {
+    let start = format!("| `{name}` |");
+    let mut rows = table.lines().filter(|line| line.starts_with(&start));
+    rows.any(|row| row.contains(&format!("| `{cell}` |")))
+}
+
+#[test]
+fn every_open_symbol_stands_in_the_table_for_developers() {
+    let table = crate::harness::read("../DEVELOPERS.md");
+    for bundled in MODULES
+        .iter()
+        .filter(|module| !module.name.starts_with("demo."))
+    {
+        let own = gathered(bundled)
+            .open
+            .into_iter()
+            .filter(|open| open.from.is_none());
+        for open in own.map(|item| item.held) {
+            assert!(
+                has_row(&table, &open.name, &open.unit),
+                "{}: {}",
+                bundled.name,
+                open.name
+            );
+        }
+    }
+}

@@ -11,7 +11,7 @@ use crate::algebra::quantities::CoordinateId;
 use crate::limits;
 use crate::model::errors::{ModelError, Product as Wanted, Relation as WantedRelation};
 use crate::model::names::{self, Call};
-use crate::model::{Meaning, combinations};
+use crate::model::{Meaning, combinations, spelling};
 use crate::number::{Exponent, Number};
 use crate::source::Span;
 use crate::syntax::ast::{self, EquationBody, ExprKind, Sign};
@@ -61,12 +61,16 @@ impl Maker<'_> {
     fn put_all(&mut self, pieces: Vec<Sided>, span: Span) {
         for (side, piece) in pieces {
             let is_negative = piece.product.number.is_negative();
+            let expr = spelling::product(&piece.product, &self.speller());
+            let process = piece.tag.as_ref().map(|tag| tag.name.as_str());
             let summand = Summand {
                 text: self.speller().product(&piece.product),
                 is_negative,
                 side,
                 is_whole: true,
                 is_material: false,
+                named: spelling::named(&expr, process),
+                expr,
             };
             let piece = match is_negative {
                 true => piece.negated(),

@@ -19,6 +19,7 @@ use crate::algebra::quantities::Size;
 use crate::limits;
 use crate::model::errors::ModelError;
 use crate::model::settings::{Setting, Variable};
+use crate::model::spelling;
 use crate::model::values::{Fault, Names, Value};
 use crate::model::{GroupId, Model, combinations};
 use crate::number::{Exponent, TooLarge};
@@ -61,6 +62,8 @@ impl Depth {
 pub struct Term {
     /// Its text, without a leading minus.
     pub text: String,
+    /// The same as a tree, without process names.
+    pub expr: ast::Expr,
     /// Whether a minus stands before the text.
     pub is_negative: bool,
     /// What it is, with its sign on its side.
@@ -99,6 +102,10 @@ pub struct Summand {
     pub is_whole: bool,
     /// Whether it holds a `D_t`.
     pub is_material: bool,
+    /// The same as a tree, without process names.
+    pub expr: ast::Expr,
+    /// The same as written, under the process that a name around it gives.
+    pub named: ast::Expr,
 }
 
 /// An equation in one setting.
@@ -351,12 +358,15 @@ impl<'a> Maker<'a> {
         if combinations::is_made(&self.model.equations[self.made.idx]) {
             return;
         }
+        let plain = unnamed(expr);
         let summand = Summand {
             is_whole: true,
-            text: print::expression(&unnamed(expr)),
+            text: print::expression(&plain),
             is_negative,
             side,
             is_material: holds_material(expr),
+            expr: plain,
+            named: spelling::named(expr, tag.map(|tag| tag.name.as_str())),
         };
         match self.resolved(pieces, expr.span) {
             Ok(pieces) => self.put(summand, pieces, expr.span),
@@ -403,11 +413,14 @@ impl<'a> Maker<'a> {
         if product.number.is_zero() {
             return None;
         }
-        let (text, is_negative) = if is_single {
-            (summand.text.clone(), summand.is_negative)
+        let (text, expr, is_negative) = if is_single {
+            let expr = summand.expr.clone();
+            (summand.text.clone(), expr, summand.is_negative)
         } else {
-            let text = self.speller().product(&product);
-            (text, summand.is_negative != product.number.is_negative())
+            let speller = self.speller();
+            let expr = spelling::product(&product, &speller);
+            let is_negative = summand.is_negative != product.number.is_negative();
+            (speller.product(&product), expr, is_negative)
         };
         let size = match product.size(&self.setting.quantities) {
             Ok(size) => size,
@@ -431,6 +444,7 @@ impl<'a> Maker<'a> {
         };
         Some(Term {
             text,
+            expr,
             is_negative,
             product,
             size: Size {

@@ -33,7 +33,8 @@ pub(super) fn find(balances: &Balances, pen: &Pen, out: &mut String) {
     }
 }
 
-fn summary(balances: &Balances) -> String {
+/// How many balances there are.
+pub(in crate::report) fn summary(balances: &Balances) -> String {
     let is_family = |candidate: &&Candidate| !candidate.free.is_empty();
     let n_families = balances.candidates.iter().filter(is_family).count();
     let n_points = balances.candidates.len() - n_families;
@@ -136,7 +137,7 @@ fn scales(candidate: &Candidate, out: &mut String) {
                 text
             }
             (None, Some(free)) => {
-                out.push_str(&wrapped(&label, &free_words(free)));
+                out.push_str(&wrapped(&label, free_words(free)));
                 ends(free, names, out);
                 continue;
             }
@@ -146,22 +147,28 @@ fn scales(candidate: &Candidate, out: &mut String) {
     }
 }
 
-fn free_words(free: &FreeScale) -> String {
+/// Where a scale is free.
+pub(in crate::report) fn free_words(free: &FreeScale) -> &'static str {
     match (free.low.is_empty(), free.high.is_empty()) {
-        (true, true) => "free, nothing bounds it".to_owned(),
-        (false, true) => "free above".to_owned(),
-        (true, false) => "free below".to_owned(),
-        (false, false) => "free between".to_owned(),
+        (true, true) => "free, nothing bounds it",
+        (false, true) => "free above",
+        (true, false) => "free below",
+        (false, false) => "free between",
     }
 }
 
 fn ends(free: &FreeScale, names: usize, out: &mut String) {
     let label = format!("  {}    ", " ".repeat(names));
-    let all =
-        (free.low.iter().map(|end| (">=", end))).chain(free.high.iter().map(|end| ("<=", end)));
-    for (sign, end) in all {
-        out.push_str(&wrapped(&label, &end_words(free, sign, end)));
+    for end in all_ends(free) {
+        out.push_str(&wrapped(&label, &end));
     }
+}
+
+/// The ends of a free scale.
+pub(in crate::report) fn all_ends(free: &FreeScale) -> Vec<String> {
+    let low = free.low.iter().map(|end| end_words(free, ">=", end));
+    let high = free.high.iter().map(|end| end_words(free, "<=", end));
+    low.chain(high).collect()
 }
 
 fn end_words(free: &FreeScale, sign: &str, end: &FamilyEnd) -> String {
@@ -182,7 +189,8 @@ fn end_words(free: &FreeScale, sign: &str, end: &FamilyEnd) -> String {
     )
 }
 
-fn neglected_words(neglected: &Neglected, small: Option<&str>) -> String {
+/// What a balance neglects.
+pub(in crate::report) fn neglected_words(neglected: &Neglected, small: Option<&str>) -> String {
     let Some((term, equation)) = &neglected.term else {
         return "nothing".to_owned();
     };

@@ -89,7 +89,8 @@ fn named(groups: &Groups, pen: &Pen, out: &mut String) {
     out.push('\n');
 }
 
-fn spanned(groups: &Groups) -> String {
+/// Which named groups are complete.
+pub(in crate::report) fn spanned(groups: &Groups) -> String {
     let names = groups.spanning.join(", ");
     let n = groups.independent.len();
     match (groups.spanning.len(), groups.is_spanned()) {

@@ -101,7 +101,8 @@ fn write_layer(layer: &Layer, out: &mut String) {
     }
 }
 
-fn outside(layer: &Layer) -> String {
+/// What balances outside a layer.
+pub(in crate::report) fn outside(layer: &Layer) -> String {
     match layer.outer_balance.as_slice() {
         [] => "no process leads over all ranges".to_owned(),
         [single] => format!("{single} alone, so it vanishes there"),

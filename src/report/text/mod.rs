@@ -5,9 +5,9 @@ mod bounds;
 mod claims;
 mod columns;
 mod compare;
-mod find;
-mod groups;
-mod layers;
+pub(in crate::report) mod find;
+pub(in crate::report) mod groups;
+pub(in crate::report) mod layers;
 mod nondimensional;
 mod rank;
 mod reduce;
@@ -21,9 +21,8 @@ use crate::analysis::claims::Held;
 use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body};
 use crate::audit::AuditRow;
-use crate::diagnostic::Severity;
 use crate::report::layout::{WIDTH, cut, padded, percent, quantity, unit, width, wrapped};
-use crate::report::{CAUTION, words};
+use crate::report::{CAUTION, given, words};
 use crate::session::Outcome;
 
 /// Writes the whole report.
@@ -34,10 +33,7 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
         audit(&outcome.symbols, &pen, &mut out);
     }
     notes(outcome, &mut out);
-    for answer in &outcome.answers {
-        write_answer(answer, &pen, &mut out);
-    }
-    claims::claims(&outcome.claims, &pen, &mut out);
+    write_answers(&outcome.answers, &outcome.claims, &pen, &mut out);
     if !out.is_empty() {
         out.push('\n');
         out.push_str(&wrapped("", CAUTION));
@@ -48,13 +44,16 @@ pub fn report(outcome: &Outcome, colour: bool) -> String {
 /// Writes the answers and claims alone, without what was given and without the caution:
 /// what a prompt says to one request.
 pub fn answers(answers: &[Answer], held: &[Held], colour: bool) -> String {
-    let pen = Pen { colour };
     let mut out = String::new();
-    for answer in answers {
-        write_answer(answer, &pen, &mut out);
-    }
-    claims::claims(held, &pen, &mut out);
+    write_answers(answers, held, &Pen { colour }, &mut out);
     out
+}
+
+fn write_answers(answers: &[Answer], held: &[Held], pen: &Pen, out: &mut String) {
+    for answer in answers {
+        write_answer(answer, pen, out);
+    }
+    claims::claims(held, pen, out);
 }
 
 /// Colours, which only add.
@@ -98,36 +97,16 @@ impl Pen {
 // What was given ------------------------------------------------------------------------------
 
 fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
-    let shown: Vec<&AuditRow> = rows
-        .iter()
-        .filter(|row| {
-            matches!(row.kind, "scale" | "constant") && row.value.is_some() && row.is_used
-        })
-        .collect();
-    if shown.is_empty() {
-        return;
-    }
-    let mut groups: Vec<Option<&str>> = Vec::new();
-    for row in &shown {
-        let phenomenon = row.phenomenon.as_deref();
-        if !groups.contains(&phenomenon) {
-            groups.push(phenomenon);
-        }
-    }
-    let names = shown.iter().map(|row| width(&row.name)).max().unwrap_or(0);
-    for phenomenon in groups {
-        let title = match phenomenon {
+    let given = given::values(rows);
+    let all = given.iter().flat_map(|given| &given.rows);
+    let names = all.map(|row| width(&row.name)).max().unwrap_or(0);
+    for given in given {
+        let title = match given.phenomenon {
             Some(name) => format!("given for {name}"),
             None => "given".to_owned(),
         };
         let _ = writeln!(out, "{}", pen.head(&title));
-        let mut own: Vec<&&AuditRow> = shown
-            .iter()
-            .filter(|row| row.phenomenon.as_deref() == phenomenon)
-            .collect();
-        // As they were declared; what follows from them comes behind.
-        own.sort_by_key(|row| (row.formula.is_some() && phenomenon.is_some(), row.place));
-        for row in own {
+        for row in given.rows {
             let label = format!("  {}  ", padded(&row.name, names.min(24)));
             out.push_str(&wrapped(&label, &audit_words(row)));
         }
@@ -137,13 +116,7 @@ fn audit(rows: &[AuditRow], pen: &Pen, out: &mut String) {
 
 /// Notes that no answer has a place for: what was overridden, what vanishes.
 fn notes(outcome: &Outcome, out: &mut String) {
-    let mut messages: Vec<&str> = Vec::new();
-    for found in &outcome.diagnostics {
-        let is_new = !messages.contains(&found.message.as_str());
-        if found.severity == Severity::Note && !words::is_in_report(found.code) && is_new {
-            messages.push(&found.message);
-        }
-    }
+    let messages = given::notes(outcome);
     if out.is_empty() || messages.is_empty() {
         return;
     }
@@ -173,13 +146,7 @@ fn audit_words(row: &AuditRow) -> String {
 // Answers -------------------------------------------------------------------------------------
 
 fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
-    // The phenomenon is named once, whatever the request says behind `for`.
-    let asked = answer.text.split(" for ").next().unwrap_or(&answer.text);
-    let title = match (&answer.phenomenon, &answer.title) {
-        (Some(name), Some(title)) => format!("{asked}, {name}: {title}"),
-        (Some(name), None) => format!("{asked}, {name}"),
-        (None, _) => answer.text.clone(),
-    };
+    let title = words::heading(answer);
     if let Body::Show(shown) = &answer.body {
         show::show(&title, shown, pen, out);
         return;

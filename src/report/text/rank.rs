@@ -6,6 +6,7 @@ use crate::analysis::rank::{RankedEquation, RankedTerm};
 use crate::report::layout::{WIDTH, cut, padded, percent, range, right, unit, width};
 use crate::report::ruler::Ruler;
 use crate::report::text::{Pen, equation_head};
+use crate::report::words;
 use crate::units::Range;
 
 const VERDICT_WIDTH: usize = 7;
@@ -21,11 +22,7 @@ pub(super) fn ranked(equation: &RankedEquation, pen: &Pen, out: &mut String) {
         pen,
         out,
     );
-    let mut order: Vec<usize> = (0..equation.terms.len()).collect();
-    order.sort_by(|a, b| {
-        let nominal = |idx: &usize| equation.terms[*idx].size.nominal;
-        nominal(b).total_cmp(&nominal(a))
-    });
+    let order = equation.largest_first();
     let widest =
         |texts: Vec<&str>, most: usize| texts.into_iter().map(width).max().unwrap_or(0).min(most);
     let processes = widest(
@@ -82,15 +79,7 @@ fn size_table(equation: &RankedEquation, order: &[usize], out: &mut String) {
         .iter()
         .map(|idx| {
             let term = &equation.terms[*idx];
-            let share = if term.share.is_exact() {
-                percent(term.share.nominal)
-            } else {
-                format!(
-                    "{} .. {}",
-                    percent(term.share.low).trim_end_matches(" %"),
-                    percent(term.share.high)
-                )
-            };
+            let share = words::share(&term.share);
             [
                 term.text.clone(),
                 term.scale.clone(),

@@ -1,8 +1,7 @@
 //! `reduce` for a terminal.
 
-use crate::analysis::reduce::{Kind, ReducedEquation, ReducedTerm, Reduction};
-use crate::analysis::sizes::Verdict;
-use crate::report::layout::{padded, percent, wrapped, wrapped_equation};
+use crate::analysis::reduce::{ReducedEquation, Reduction};
+use crate::report::layout::{padded, percent, wrapped, wrapped_words};
 use crate::report::text::{Pen, equation_head};
 use crate::report::words;
 
@@ -27,19 +26,16 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         pen,
         out,
     );
-    let order = match (&equation.balance, equation.by_construction) {
-        (Some(name), true) => {
-            format!("{name}, by construction: derived scales put this balance in")
-        }
-        (Some(name), false) => name.clone(),
-        (None, true) => "unnamed, by construction: derived scales put this balance in".to_owned(),
-        (None, false) => "unnamed".to_owned(),
-    };
+    let order = words::leading_order(equation);
     out.push_str(&wrapped("  leading order  ", &order));
-    out.push_str(&wrapped_equation("      ", &equation.reduced));
+    let [left, mut right] = equation
+        .sides
+        .each_ref()
+        .map(|parts| words::signed(parts, |part| part.text.clone()));
+    right[0].insert_str(0, "= ");
+    out.push_str(&wrapped_words("      ", &[left, right].concat()));
     if equation.is_base_state {
-        let text = "a base state alone: `using` takes it out of other equations";
-        out.push_str(&wrapped("  base     ", text));
+        out.push_str(&wrapped("  base     ", words::BASE_STATE));
     }
     depends(equation, out);
     dropped(equation, out);
@@ -51,7 +47,10 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
         );
         out.push_str(&wrapped("  error    ", &sum));
     }
-    kinds(equation, out);
+    let kinds = words::kinds(equation);
+    if !kinds.is_empty() {
+        out.push_str(&wrapped("  fields   ", &kinds));
+    }
     for warning in words::warnings(equation) {
         let label = padded(&format!("  {}", warning.severity.word()), 11);
         out.push_str(&wrapped(&label, &warning.message));
@@ -60,20 +59,9 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
 }
 
 fn depends(equation: &ReducedEquation, out: &mut String) {
-    let mut conditions: Vec<(String, Vec<&str>)> = Vec::new();
-    for term in equation
-        .kept
-        .iter()
-        .filter(|term| term.verdict == Verdict::Depends)
-    {
-        let condition = words::condition_with_values(term);
-        match conditions.iter_mut().find(|(found, _)| *found == condition) {
-            Some((_, texts)) => texts.push(&term.text),
-            None => conditions.push((condition, vec![&term.text])),
-        }
-    }
-    for (condition, texts) in conditions {
-        let text = match condition.as_str() {
+    for terms in words::conditions(equation) {
+        let texts: Vec<&str> = terms.iter().map(|term| term.text.as_str()).collect();
+        let text = match words::condition_with_values(terms[0]).as_str() {
             "" => texts.join(", "),
             condition => format!("{}: may go where {condition}", texts.join(", ")),
         };
@@ -82,8 +70,7 @@ fn depends(equation: &ReducedEquation, out: &mut String) {
 }
 
 fn dropped(equation: &ReducedEquation, out: &mut String) {
-    let mut terms: Vec<&ReducedTerm> = equation.dropped.iter().collect();
-    terms.sort_by(|a, b| b.share.high.total_cmp(&a.share.high));
+    let terms = words::dropped(equation);
     let texts: Vec<String> = terms
         .iter()
         .map(|term| format!("{} {}", term.text, percent(term.share.high)))
@@ -94,24 +81,4 @@ fn dropped(equation: &ReducedEquation, out: &mut String) {
         texts.join(", ")
     };
     out.push_str(&wrapped("  dropped  ", &text));
-}
-
-fn kinds(equation: &ReducedEquation, out: &mut String) {
-    let of = |wanted: Kind| -> Vec<&str> {
-        let kinds = equation.kinds.iter().filter(|(_, kind)| *kind == wanted);
-        kinds.map(|(field, _)| field.as_str()).collect()
-    };
-    let mut texts = Vec::new();
-    for (kind, word) in [
-        (Kind::Prognostic, "prognostic"),
-        (Kind::Diagnostic, "diagnostic"),
-    ] {
-        let fields = of(kind);
-        if !fields.is_empty() {
-            texts.push(format!("{} {word}", fields.join(", ")));
-        }
-    }
-    if !texts.is_empty() {
-        out.push_str(&wrapped("  fields   ", &texts.join("; ")));
-    }
 }

@@ -1,0 +1,3 @@
+//! What the command line does with the machine, beside reading scripts.
+
+pub(crate) mod writing;

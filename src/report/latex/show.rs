@@ -1,0 +1,10 @@
+//! `show` in LaTeX.
+
+use crate::analysis::show::Shown;
+use crate::report::latex::escape::text;
+use crate::report::words;
+
+/// Writes a value under its request.
+pub(super) fn show(shown: &Shown, out: &mut String) {
+    out.push_str(&format!("{}\n\n", text(&words::shown(shown))));
+}
