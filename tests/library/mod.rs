@@ -1,0 +1,150 @@
+//! The bundled library in use: every module has an example, `examples/NAME.scl`, whose claims
+//! hold it to something known outside the project; every demonstration holds; and modules may
+//! be used together.
+
+use std::fs;
+use std::path::PathBuf;
+
+use scalewright::model::library::{MODULES, Module};
+use serde_json::Value;
+
+use crate::harness::{answers, list, text};
+
+fn folder() -> PathBuf {
+    PathBuf::from(env!("CARGO_MANIFEST_DIR")).join("tests/library/examples")
+}
+
+fn example_of(module: &str) -> Option<String> {
+    fs::read_to_string(folder().join(format!("{module}.scl"))).ok()
+}
+
+fn has_use(script: &str, module: &str) -> bool {
+    let mut lines = script.lines().map(|line| line.split('#').next());
+    lines.any(|line| line.is_some_and(|line| line.trim() == format!("use {module}")))
+}
+
+fn is_demo(module: &&Module) -> bool {
+    module.name.starts_with("demo.")
+}
+
+/// What keeps a script from being a sound example: errors and warnings, claims that are not
+/// met, no claim at all.
+fn faults(script: &str) -> Vec<String> {
+    let output = answers(script);
+    let mut faults = Vec::new();
+    let said = list(&output["diagnostics"]).iter();
+    for found in said.filter(|found| found["severity"] != "note") {
+        let (severity, message) = (text(&found["severity"]), text(&found["message"]));
+        faults.push(format!(
+            "{severity} {}: {message}, {}",
+            found["code"], found["span"]
+        ));
+    }
+    let claims = list(&output["claims"]);
+    if claims.is_empty() {
+        faults.push("no claim".to_owned());
+    }
+    for claim in claims
+        .iter()
+        .filter(|claim| claim["met"] != Value::Bool(true))
+    {
+        let (said, measured) = (text(&claim["text"]), &claim["measured"]);
+        faults.push(format!("not met: {said} ({measured})"));
+    }
+    if faults.is_empty() && output["outcome"] != "ok" {
+        faults.push(format!("outcome {}", output["outcome"]));
+    }
+    faults
+}
+
+#[test]
+fn every_module_has_an_example_that_holds() {
+    let mut found = Vec::new();
+    let mut used = String::new();
+    for module in MODULES.iter().filter(|module| !is_demo(module)) {
+        let Some(script) = example_of(module.name) else {
+            if !module.name.starts_with("base.") {
+                found.push(format!("{}: no example", module.name));
+            }
+            continue;
+        };
+        if !has_use(&script, module.name) {
+            found.push(format!("{}: its example does not use it", module.name));
+        }
+        let faults = faults(&script);
+        found.extend(
+            faults
+                .iter()
+                .map(|fault| format!("{}: {fault}", module.name)),
+        );
+        used.push_str(&script);
+        used.push('\n');
+    }
+    for base in MODULES
+        .iter()
+        .filter(|module| module.name.starts_with("base."))
+    {
+        if !has_use(&used, base.name) {
+            found.push(format!("{}: no example uses it", base.name));
+        }
+    }
+    assert!(found.is_empty(), "{}", found.join("\n"));
+}
+
+#[test]
+fn every_example_belongs_to_a_module() {
+    let examples = fs::read_dir(folder()).expect("the examples are there");
+    for example in examples {
+        let name = example.expect("a file").file_name();
+        let name = name.to_string_lossy().into_owned();
+        let module = name.strip_suffix(".scl").unwrap_or_default();
+        assert!(
+            MODULES.iter().any(|bundled| bundled.name == module),
+            "{name}"
+        );
+    }
+}
+
+#[test]
+fn every_demonstration_holds() {
+    let mut found = Vec::new();
+    for demo in MODULES.iter().filter(is_demo) {
+        let faults = faults(demo.text);
+        found.extend(faults.iter().map(|fault| format!("{}: {fault}", demo.name)));
+    }
+    assert!(found.is_empty(), "{}", found.join("\n"));
+}
+
+/// The errors and warnings of a script that uses these modules and asks nothing of them.
+fn clashes(modules: &[&str]) -> Vec<String> {
+    let uses: Vec<String> = modules.iter().map(|name| format!("use {name}\n")).collect();
+    let output = answers(&format!("{}show 1\n", uses.concat()));
+    let said = list(&output["diagnostics"]).iter();
+    let errors = said.filter(|found| found["severity"] != "note");
+    errors.map(|found| text(&found["message"])).collect()
+}
+
+/// A module with a frame has a velocity of its own, along the coordinates of the frame.
+fn has_frame(module: &Module) -> bool {
+    module.text.lines().any(|line| line.starts_with("frame "))
+}
+
+/// Whether a module can stand beside one with a frame: it holds values and groups alone.
+fn is_of_values(module: &Module) -> bool {
+    module.name.starts_with("settings.")
+        || ["constants", "named_groups", "base.latitude"].contains(&module.name)
+}
+
+#[test]
+fn modules_can_be_used_together() {
+    let modules = || MODULES.iter().filter(|module| !is_demo(module));
+    let plain = modules().filter(|module| !has_frame(module));
+    let plain: Vec<&str> = plain.map(|module| module.name).collect();
+    assert_eq!(clashes(&plain), Vec::<String>::new());
+    for framed in modules().filter(|module| has_frame(module)) {
+        let of_values = modules().filter(|module| is_of_values(module));
+        let mut names: Vec<&str> = of_values.map(|module| module.name).collect();
+        names.push(framed.name);
+        assert_eq!(clashes(&names), Vec::<String>::new(), "{}", framed.name);
+    }
+}
