@@ -51,20 +51,35 @@ pub const MODULES: &[Module] = modules! {
     "fluid.lubrication": "fluid/lubrication.scl";
     "fluid.natural_convection": "fluid/natural_convection.scl";
     "fluid.navier_stokes": "fluid/navier_stokes.scl";
+    "fluid.obstacle": "fluid/obstacle.scl";
     "fluid.prandtl_layer": "fluid/prandtl_layer.scl";
     "fluid.rotating_tank": "fluid/rotating_tank.scl";
     "named_groups": "named_groups.scl";
+    "ocean.bed": "ocean/bed.scl";
     "ocean.boussinesq": "ocean/boussinesq.scl";
     "ocean.continuity": "ocean/continuity.scl";
     "ocean.ekman": "ocean/ekman.scl";
+    "ocean.ekman_bottom": "ocean/ekman_bottom.scl";
     "ocean.equatorial": "ocean/equatorial.scl";
+    "ocean.estuary": "ocean/estuary.scl";
+    "ocean.front": "ocean/front.scl";
+    "ocean.gravity_current": "ocean/gravity_current.scl";
     "ocean.gyre": "ocean/gyre.scl";
+    "ocean.heat_salt": "ocean/heat_salt.scl";
     "ocean.internal_waves": "ocean/internal_waves.scl";
+    "ocean.mixed_layer": "ocean/mixed_layer.scl";
     "ocean.momentum": "ocean/momentum.scl";
+    "ocean.plume": "ocean/plume.scl";
+    "ocean.reduced_gravity": "ocean/reduced_gravity.scl";
     "ocean.shallow_water": "ocean/shallow_water.scl";
+    "ocean.state": "ocean/state.scl";
     "ocean.surface": "ocean/surface.scl";
+    "ocean.tides": "ocean/tides.scl";
     "ocean.tracer": "ocean/tracer.scl";
+    "ocean.two_layers": "ocean/two_layers.scl";
     "ocean.water": "ocean/water.scl";
+    "ocean.wind": "ocean/wind.scl";
+    "seawater": "seawater.scl";
 };
 
 /// The module of this name.
