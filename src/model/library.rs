@@ -39,13 +39,17 @@ pub const MODULES: &[Module] = modules! {
     "constants": "constants.scl";
     "demo.boundary_current": "demo/boundary_current.scl";
     "demo.coastal_current": "demo/coastal_current.scl";
+    "demo.coastal_front": "demo/coastal_front.scl";
+    "demo.dense_cascade": "demo/dense_cascade.scl";
     "demo.ekman": "demo/ekman.scl";
     "demo.harbour_surge": "demo/harbour_surge.scl";
     "demo.oil_drift": "demo/oil_drift.scl";
     "demo.ridge_wind": "demo/ridge_wind.scl";
+    "demo.salt_intrusion": "demo/salt_intrusion.scl";
     "demo.sea_breeze": "demo/sea_breeze.scl";
     "demo.squall_vortex": "demo/squall_vortex.scl";
     "demo.tank_eddy": "demo/tank_eddy.scl";
+    "demo.tidal_mixing": "demo/tidal_mixing.scl";
     "demo.winter_low": "demo/winter_low.scl";
     "fluid.creeping": "fluid/creeping.scl";
     "fluid.lubrication": "fluid/lubrication.scl";
