@@ -39,7 +39,7 @@ fn sea_water_of_the_library() {
     let mut tally = Tally::default();
     tally.begin("specific heat");
     let specific_heat = values.next().flatten().into();
-    tally.number("c_p", &specific_heat, &3991.867_957_119_63.into(), 1e-14);
+    tally.number("c_p", &specific_heat, &3_991.867_957_119_63.into(), 1e-14);
     for record in &records {
         tally.begin(&text(&record["case"]));
         for (name, unit) in COLUMNS {
