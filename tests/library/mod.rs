@@ -131,16 +131,74 @@ fn has_frame(module: &Module) -> bool {
 
 /// Whether a module can stand beside one with a frame: it holds values and groups alone.
 fn is_of_values(module: &Module) -> bool {
+    let names = [
+        "constants",
+        "named_groups",
+        "base.latitude",
+        "settings.midlatitude_cyclone",
+    ];
+    names.contains(&module.name)
+}
+
+fn is_setting(module: &Module) -> bool {
     module.name.starts_with("settings.")
-        || ["constants", "named_groups", "base.latitude"].contains(&module.name)
+}
+
+/// The modules that a module of typical ranges says it goes with.
+fn goes_with(setting: &Module) -> Vec<String> {
+    let named = setting
+        .text
+        .split("# Goes with ")
+        .nth(1)
+        .unwrap_or_default();
+    let named = named.split("#\n").next().unwrap_or_default().split('`');
+    named.skip(1).step_by(2).map(str::to_owned).collect()
+}
+
+#[test]
+fn typical_ranges_rank_the_equations_they_go_with() {
+    for setting in MODULES.iter().filter(|module| is_setting(module)) {
+        let equations = goes_with(setting);
+        assert!(!equations.is_empty(), "{}", setting.name);
+        for equations in equations {
+            let script = format!("use {}\nuse {equations}\nrank\nreduce\n", setting.name);
+            let output = answers(&script);
+            let pair = format!("{} with {equations}", setting.name);
+            let said = list(&output["diagnostics"]).iter();
+            let grave: Vec<_> = said.filter(|found| found["severity"] != "note").collect();
+            assert!(grave.is_empty(), "{pair}: {grave:?}");
+            for answer in list(&output["answers"]) {
+                assert_eq!(list(&answer["left_out"]).len(), 0, "{pair}: {answer}");
+            }
+        }
+    }
+}
+
+#[test]
+fn a_value_of_a_script_takes_the_place_of_a_typical_range() {
+    let shared = "use settings.midlatitude_cyclone\nuse atmosphere.momentum\nshow U\n";
+    for own in ["scale U = 7 m/s", "phenomenon low { scale U = 7 m/s }"] {
+        let output = answers(&format!("{shared}{own}\n"));
+        let said = list(&output["diagnostics"]);
+        assert_eq!(said.len(), 1, "{said:?}");
+        assert_eq!(said[0]["code"], "value-overridden");
+        assert_eq!(said[0]["severity"], "note");
+        assert_eq!(output["answers"][0]["value"]["nominal"], 7.0, "{output}");
+    }
 }
 
 #[test]
 fn modules_can_be_used_together() {
     let modules = || MODULES.iter().filter(|module| !is_demo(module));
-    let plain = modules().filter(|module| !has_frame(module));
+    let plain = modules().filter(|module| !has_frame(module) && !is_setting(module));
     let plain: Vec<&str> = plain.map(|module| module.name).collect();
     assert_eq!(clashes(&plain), Vec::<String>::new());
+    for setting in modules().filter(|module| is_setting(module)) {
+        let equations = goes_with(setting);
+        let mut with: Vec<&str> = equations.iter().map(String::as_str).collect();
+        with.extend(["constants", "named_groups", setting.name]);
+        assert_eq!(clashes(&with), Vec::<String>::new(), "{}", setting.name);
+    }
     for framed in modules().filter(|module| has_frame(module)) {
         let of_values = modules().filter(|module| is_of_values(module));
         let mut names: Vec<&str> = of_values.map(|module| module.name).collect();

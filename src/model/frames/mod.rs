@@ -263,51 +263,117 @@ fn velocity(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec
 
 // Equations -------------------------------------------------------------------------------------
 
+/// Every equation comes out as scalar ones, at its place in the order of declarations. Those
+/// made of others come when all that they are made of is known.
 fn equations(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec<ModelError>) {
     let declared = std::mem::take(&mut model.equations);
-    let mut scalar = Vec::with_capacity(declared.len());
-    for decl in declared {
-        let EquationBody::Written { left, right } = &decl.body else {
-            scalar.push(decl);
-            continue;
-        };
-        let mut shapes = Shapes::new(model);
-        let sides = (shapes.shape(left), shapes.shape(right));
-        let found = shapes.same((sides.0, left.span), (sides.1, right.span));
-        if let Some(span) = shapes.frame_needed {
-            frame_needed.get_or_insert(span);
+    let mut waiting: Vec<(usize, ast::EquationDecl)> = declared.into_iter().enumerate().collect();
+    let mut scalar = Vec::with_capacity(waiting.len());
+    while !waiting.is_empty() {
+        // In a ring, which is told later, all are taken as they stand.
+        let next = waiting
+            .iter()
+            .position(|(_, decl)| is_ready(decl, &waiting));
+        let (place, decl) = waiting.remove(next.unwrap_or(0));
+        let made = scalar_equations(model, decl, frame_needed, errors);
+        scalar.extend(made.into_iter().map(|decl| (place, decl)));
+    }
+    scalar.sort_by_key(|(place, _)| *place);
+    let scalar = scalar.into_iter().map(|(_, decl)| decl).collect();
+    index(model, scalar, errors);
+}
+
+/// Whether an equation is made of none that wait.
+fn is_ready(decl: &ast::EquationDecl, waiting: &[(usize, ast::EquationDecl)]) -> bool {
+    let EquationBody::Made(expr) = &decl.body else {
+        return true;
+    };
+    let mut is_ready = true;
+    names::visit_names(expr, &mut |name, _| {
+        is_ready &= !waiting.iter().any(|(_, other)| other.name.text == name);
+    });
+    is_ready
+}
+
+/// What an equation stands for: itself, or the components of a vector equation.
+fn scalar_equations(
+    model: &mut Model,
+    decl: ast::EquationDecl,
+    frame_needed: &mut Option<Span>,
+    errors: &mut Vec<ModelError>,
+) -> Vec<ast::EquationDecl> {
+    let mut shapes = match decl.body {
+        EquationBody::Written { .. } => Shapes::new(model),
+        EquationBody::Made(_) => Shapes::of_equations(model),
+    };
+    let (found, span) = match &decl.body {
+        EquationBody::Written { left, right } => {
+            let sides = (shapes.shape(left), shapes.shape(right));
+            let found = shapes.same((sides.0, left.span), (sides.1, right.span));
+            (found, left.span)
         }
-        let is_faulty =
-            !shapes.errors.is_empty() || model.frame.is_none() && shapes.frame_needed.is_some();
-        errors.append(&mut shapes.errors);
-        match found {
-            Found::Known(Shape::Stress) => {
-                errors.push(ModelError::WrongShape {
-                    wanted: Shape::Vector,
-                    found: Shape::Stress,
-                    span: left.span,
-                    because: None,
+        EquationBody::Made(expr) => (shapes.shape(expr), expr.span),
+    };
+    if let Some(span) = shapes.frame_needed {
+        frame_needed.get_or_insert(span);
+    }
+    let has_operations = shapes.frame_needed.is_some();
+    let is_faulty = !shapes.errors.is_empty() || model.frame.is_none() && has_operations;
+    errors.append(&mut shapes.errors);
+    match found {
+        Found::Known(Shape::Stress) => {
+            errors.push(ModelError::WrongShape {
+                wanted: Shape::Vector,
+                found: Shape::Stress,
+                span,
+                because: None,
+            });
+            vec![silenced(decl)]
+        }
+        Found::Known(Shape::Vector) => match component_equations(model, &decl, is_faulty) {
+            Ok(made) => {
+                model.vector_equations.push(VectorEquationInfo {
+                    name: decl.name,
+                    components: made.iter().map(|made| made.name.text.clone()).collect(),
                 });
-                scalar.push(silenced(decl));
+                made
             }
-            Found::Known(Shape::Vector) => match component_equations(model, &decl, is_faulty) {
-                Ok(made) => {
-                    model.vector_equations.push(VectorEquationInfo {
-                        name: decl.name,
-                        components: made.iter().map(|made| made.name.text.clone()).collect(),
-                    });
-                    scalar.extend(made);
+            Err(error) => {
+                errors.extend(error);
+                vec![silenced(decl)]
+            }
+        },
+        Found::Known(Shape::Scalar) | Found::Any if !is_faulty => {
+            match of_operations(model, decl, has_operations) {
+                Ok(decl) => vec![decl],
+                Err((decl, error)) => {
+                    errors.push(error);
+                    vec![silenced(decl)]
                 }
-                Err(error) => {
-                    errors.extend(error);
-                    scalar.push(silenced(decl));
-                }
-            },
-            Found::Known(Shape::Scalar) | Found::Any if !is_faulty => scalar.push(decl),
-            Found::Known(Shape::Scalar) | Found::Any | Found::Faulty => scalar.push(silenced(decl)),
+            }
+        }
+        Found::Known(Shape::Scalar) | Found::Any | Found::Faulty => vec![silenced(decl)],
+    }
+}
+
+/// A made equation with its scalar operations, as `div(momentum)`, written out.
+fn of_operations(
+    model: &Model,
+    mut decl: ast::EquationDecl,
+    has_operations: bool,
+) -> Result<ast::EquationDecl, (ast::EquationDecl, ModelError)> {
+    if let (EquationBody::Made(expr), Some(frame), true) =
+        (&decl.body, &model.frame, has_operations)
+    {
+        match Writer::of_equations(model, frame).scalar(expr) {
+            Ok(made) => {
+                let span = expr.span;
+                decl.body = EquationBody::Made(made.unwrap_or_else(|| build::zero(span)));
+            }
+            Err(error) => return Err((decl, error)),
         }
     }
-    index(model, scalar, errors);
+    Ok(decl)
 }
 
 /// An equation whose faults were told: nothing more is said of what stands in it.
@@ -323,21 +389,23 @@ fn silenced(mut decl: ast::EquationDecl) -> ast::EquationDecl {
     decl
 }
 
-/// The component equations of a vector equation, those left out in which both sides are 0.
+/// The name of a component equation.
+fn component_name(equation: &str, along: &str) -> String {
+    format!("{equation}_{along}")
+}
+
+/// The component equations of a vector equation, those left out in which nothing stands.
 fn component_equations(
     model: &Model,
     decl: &ast::EquationDecl,
     is_faulty: bool,
 ) -> Result<Vec<ast::EquationDecl>, Option<ModelError>> {
     let frame = model.frame.as_ref().ok_or(None)?;
-    let EquationBody::Written { left, right } = &decl.body else {
-        return Ok(Vec::new());
-    };
     let mut made = Vec::new();
     for (axis, along) in frame.coordinates.iter().enumerate() {
         let mut component = ast::EquationDecl {
             name: ast::Name {
-                text: format!("{}_{}", decl.name.text, along.text),
+                text: component_name(&decl.name.text, &along.text),
                 span: decl.name.span,
             },
             ..decl.clone()
@@ -346,21 +414,44 @@ fn component_equations(
             made.push(silenced(component));
             continue;
         }
-        let mut writer = Writer::new(model, frame);
-        let sides = (
-            writer.component(left, axis)?,
-            writer.component(right, axis)?,
-        );
-        if let (None, None) = sides {
-            continue;
+        if let Some(body) = component_body(model, frame, &decl.body, axis)? {
+            component.body = body;
+            made.push(component);
         }
-        component.body = EquationBody::Written {
-            left: sides.0.unwrap_or_else(|| build::zero(left.span)),
-            right: sides.1.unwrap_or_else(|| build::zero(right.span)),
-        };
-        made.push(component);
     }
     Ok(made)
+}
+
+/// One component of both sides, or of a combination; none where nothing is left.
+fn component_body(
+    model: &Model,
+    frame: &FrameInfo,
+    body: &EquationBody,
+    axis: usize,
+) -> Result<Option<EquationBody>, ModelError> {
+    match body {
+        EquationBody::Written { left, right } => {
+            let mut writer = Writer::new(model, frame);
+            let sides = (
+                writer.component(left, axis)?,
+                writer.component(right, axis)?,
+            );
+            Ok(match sides {
+                (None, None) => None,
+                (one, other) => Some(EquationBody::Written {
+                    left: one.unwrap_or_else(|| build::zero(left.span)),
+                    right: other.unwrap_or_else(|| build::zero(right.span)),
+                }),
+            })
+        }
+        EquationBody::Made(expr) => {
+            let mut writer = Writer::of_equations(model, frame);
+            let Some(made) = writer.component(expr, axis)? else {
+                return Ok(None);
+            };
+            Ok(writer.scalar(&made)?.map(EquationBody::Made))
+        }
+    }
 }
 
 /// Puts the equations into the model under their names.
