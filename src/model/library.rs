@@ -108,10 +108,14 @@ pub const MODULES: &[Module] = modules! {
     "settings.estuary": "settings/estuary.scl";
     "settings.internal_wave": "settings/internal_wave.scl";
     "settings.midlatitude_cyclone": "settings/midlatitude_cyclone.scl";
+    "settings.mixed_layer": "settings/mixed_layer.scl";
     "settings.mountain_flow": "settings/mountain_flow.scl";
     "settings.ocean_eddy": "settings/ocean_eddy.scl";
+    "settings.ocean_front": "settings/ocean_front.scl";
     "settings.ocean_gyre": "settings/ocean_gyre.scl";
+    "settings.overflow": "settings/overflow.scl";
     "settings.planetary_wave": "settings/planetary_wave.scl";
+    "settings.river_plume": "settings/river_plume.scl";
     "settings.sea_breeze": "settings/sea_breeze.scl";
     "settings.shallow_convection": "settings/shallow_convection.scl";
     "settings.storm_surge": "settings/storm_surge.scl";
