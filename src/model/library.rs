@@ -53,12 +53,14 @@ pub const MODULES: &[Module] = modules! {
     "base.stratification_numbers": "base/stratification_numbers.scl";
     "constants": "constants.scl";
     "demo.boundary_current": "demo/boundary_current.scl";
+    "demo.boussinesq": "demo/boussinesq.scl";
     "demo.coastal_current": "demo/coastal_current.scl";
     "demo.coastal_front": "demo/coastal_front.scl";
     "demo.dense_cascade": "demo/dense_cascade.scl";
     "demo.ekman": "demo/ekman.scl";
     "demo.harbour_surge": "demo/harbour_surge.scl";
     "demo.oil_drift": "demo/oil_drift.scl";
+    "demo.qg_shelf": "demo/qg_shelf.scl";
     "demo.ridge_wind": "demo/ridge_wind.scl";
     "demo.salt_intrusion": "demo/salt_intrusion.scl";
     "demo.sea_breeze": "demo/sea_breeze.scl";

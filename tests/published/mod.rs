@@ -10,6 +10,7 @@ mod cases;
 mod checks;
 mod constants;
 mod frames;
+mod orders;
 mod requests;
 mod seawater;
 mod span;
