@@ -63,3 +63,12 @@ pub const SPLIT_DEPTH: usize = 20;
 
 /// The order in small ratios to which `rank`, `reduce` and their like expand.
 pub const EXPANSION_ORDER: u32 = 2;
+
+/// Highest order of `expand`.
+pub const HIERARCHY_ORDER: i64 = 8;
+
+/// Highest order in small ratios that `expand` goes to for an order that it is asked for.
+pub const HIERARCHY_DEPTH: u32 = 16;
+
+/// Most coefficients of fields, over all orders.
+pub const SERIES_FIELDS: usize = 10_000;

@@ -36,7 +36,7 @@ impl Exponent {
         Exponent::within(Ratio::from_integer(value))
     }
 
-    /// `numer/denom`, for constants of the program.
+    /// `numer/denom` in lowest terms, for constants of the program.
     ///
     /// # Panics
     /// If `denom` is 0 or either is beyond the limit: never on user input.

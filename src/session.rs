@@ -2,6 +2,7 @@
 //! through here. A session that grows line by line is in `incremental`.
 
 pub mod changes;
+mod expanding;
 pub mod incremental;
 mod merge;
 
@@ -27,7 +28,7 @@ use crate::model::frames;
 use crate::model::modules::{self, Files, Main, NoFiles};
 use crate::model::values::Fault;
 use crate::model::{Model, declarations, requests, terms};
-use crate::number::rational_to_f64;
+use crate::number::{Exponent, rational_to_f64};
 use crate::report::module::Origin;
 use crate::report::{standing, words};
 use crate::saving::{self, Folders};
@@ -375,6 +376,9 @@ fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {
 
 // Answering -----------------------------------------------------------------------------------
 
+/// A `limit` as it stands in the script: what is small, and what stands behind `with`.
+type LimitWords<'a> = (&'a ast::Expr, &'a [ast::LimitPlace]);
+
 struct Answering<'a> {
     model: &'a Model,
     cases: &'a [Case],
@@ -383,8 +387,8 @@ struct Answering<'a> {
     watcher: Option<&'a dyn Watcher>,
     /// Phenomena in which a `find` gave formulas.
     found: BTreeMap<Option<usize>, solving::Found>,
-    /// The `limit` in force.
-    limit: Option<(&'a ast::Expr, &'a [ast::LimitPlace])>,
+    /// Every `limit` so far, with the phenomena it is for.
+    limits: Vec<(Vec<Option<usize>>, LimitWords<'a>)>,
     /// Whether a search was ended, and with it the rest.
     is_interrupted: bool,
 }
@@ -403,7 +407,7 @@ impl<'a> Answering<'a> {
             folders,
             watcher,
             found: BTreeMap::new(),
-            limit: None,
+            limits: Vec::new(),
             is_interrupted: false,
         }
     }
@@ -439,7 +443,11 @@ impl<'a> Answering<'a> {
             return;
         }
         if let RequestKind::Limit { small, places } = &request.kind {
-            self.limit = Some((small, places));
+            let mut targets = requests::targets(self.model, own, request);
+            if own.is_none() && request.phenomena.is_empty() {
+                targets.push(None);
+            }
+            self.limits.push((targets, (small, places)));
         }
         let text = one_line(self.outcome.sources.slice(request.span));
         self.request(own, request, &text);
@@ -467,6 +475,13 @@ impl<'a> Answering<'a> {
         } = &request.kind
         {
             self.compare(phenomena, matching.as_deref(), request.span, text);
+            return;
+        }
+        if let RequestKind::Expand { equations, order } = &request.kind {
+            // The check saw that it is within the limit.
+            if let Ok(order) = Exponent::from_rational(order) {
+                self.expand(own, request, equations, order, text);
+            }
             return;
         }
         for target in requests::targets(self.model, own, request) {
@@ -591,12 +606,10 @@ impl<'a> Answering<'a> {
                 }
             }
             // Answered once, for all the phenomena they name.
-            RequestKind::Compare { .. } | RequestKind::Find { .. } => {}
+            RequestKind::Compare { .. } | RequestKind::Find { .. } | RequestKind::Expand { .. } => {
+            }
             // The check refused these.
-            RequestKind::Limit { .. }
-            | RequestKind::Expand { .. }
-            | RequestKind::Sweep(_)
-            | RequestKind::Regimes(..) => {}
+            RequestKind::Limit { .. } | RequestKind::Sweep(_) | RequestKind::Regimes(..) => {}
         }
     }
 

@@ -7,6 +7,7 @@ pub mod bounds;
 pub mod claims;
 pub mod compare;
 pub mod groups;
+pub mod hierarchy;
 pub mod layers;
 pub mod matching;
 pub mod movable;
@@ -181,6 +182,8 @@ pub enum Body {
     Rank(Vec<rank::RankedEquation>),
     /// `reduce`.
     Reduce(reduce::Reduction),
+    /// `expand`.
+    Expand(hierarchy::Hierarchy),
     /// `find`.
     Find(balances::Balances),
     /// `layers`.

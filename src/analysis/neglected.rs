@@ -39,7 +39,10 @@ pub fn neglected(case: &Case, kept: &Kept<'_>, dropped: &[usize]) -> Neglected {
             .iter()
             .map(|(_, share)| share.high)
             .fold(0.0, f64::max),
-        error_sum: left_out.iter().map(|(_, share)| share.high).sum(),
+        // An empty sum of floating-point numbers would be -0.
+        error_sum: left_out
+            .iter()
+            .fold(0.0, |sum, (_, share)| sum + share.high),
         first: left_out
             .into_iter()
             .reduce(larger)

@@ -374,7 +374,8 @@ impl Gatherer<'_> {
     }
 
     /// Scales that usually follow from others: the time by advection, and the size of a
-    /// component of the velocity across the first by continuity.
+    /// component of the velocity across the first by continuity. None where the script is
+    /// not asked for the speed and the length that they follow from.
     fn formulas(&self, wanted: &[String]) -> Vec<(String, String)> {
         let mut found = Vec::new();
         let Some(velocity) = &self.model.velocity else {
@@ -388,6 +389,9 @@ impl Gatherer<'_> {
         let Some((speed, length)) = sizes.first() else {
             return found;
         };
+        if self.is_left_open(speed, wanted) || self.is_left_open(length, wanted) {
+            return found;
+        }
         let time = match self.model.meaning("t", None) {
             Some(Meaning::Coordinate(id)) => self.coordinate_size(id),
             Some(
@@ -397,12 +401,20 @@ impl Gatherer<'_> {
         };
         found.extend(time.map(|time| (time, format!("{length}/{speed}"))));
         for (across, depth) in &sizes[1..] {
-            if across != speed && depth != length {
+            if across != speed && depth != length && !self.is_left_open(depth, wanted) {
                 found.push((across.clone(), format!("{speed}*{depth}/{length}")));
             }
         }
         found.retain(|(name, _)| wanted.contains(name));
         found
+    }
+
+    /// Whether a symbol has no value, and the script is not asked for one.
+    fn is_left_open(&self, name: &str, wanted: &[String]) -> bool {
+        let mut symbols = self.model.symbols.iter();
+        let at = symbols.position(|info| info.name == name);
+        let is_open = at.is_some_and(|idx| self.open(idx).is_some());
+        is_open && !wanted.iter().any(|wanted| wanted == name)
     }
 
     /// The scale that a field or coordinate is of, where it is one alone.

@@ -193,6 +193,14 @@ pub enum ModelError {
     NotSplit { span: Span, function: String },
     /// A split of too many parts, or nested too deep.
     SplitTooLarge { name: String, span: Span },
+    /// A field with a level and an amplitude of its own where it must be split.
+    LevelNotSplit {
+        name: String,
+        span: Span,
+        declared: Span,
+    },
+    /// An order beyond the limit.
+    OrderTooHigh { span: Span },
     /// Parts that are too large to expand about the largest.
     RatioNotSmall {
         span: Span,
@@ -355,6 +363,8 @@ pub enum Product {
     Term,
     /// A limit.
     Limit,
+    /// A term of an equation that is expanded order by order.
+    Expanded,
     /// The left side of an equation behind `using`.
     Using,
 }

@@ -13,6 +13,7 @@ pub mod dimensions;
 pub mod errors;
 pub mod frames;
 pub mod library;
+pub mod limit;
 pub mod modules;
 pub mod names;
 pub mod order;

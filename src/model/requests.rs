@@ -5,9 +5,10 @@ use num_rational::BigRational;
 use num_traits::One;
 
 use crate::analysis::{Case, compare};
+use crate::limits;
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::{Alike, ModelError, Unavailable};
-use crate::model::{Meaning, Model, declarations, names, terms};
+use crate::model::{Meaning, Model, declarations, limit, names, terms};
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ExprKind, ProcessRef, RequestKind};
 
@@ -134,12 +135,31 @@ impl Checker<'_> {
             }
             RequestKind::Layers | RequestKind::Groups => {}
             RequestKind::Limit { small, places } => self.limit(small, places),
-            RequestKind::Expand { .. } => self.unavailable("expand", request.span),
+            RequestKind::Expand { equations, order } => {
+                self.equations(equations);
+                self.order(order, request);
+            }
             RequestKind::Sweep(_) => self.unavailable("sweep", request.span),
             RequestKind::Regimes(..) => self.unavailable("regimes", request.span),
             RequestKind::Compare { .. } => {
                 self.errors.extend(compare::check(self.model, request));
             }
+        }
+    }
+
+    /// The order of an expansion, and that it is asked for once.
+    fn order(&mut self, order: &BigRational, request: &ast::Request) {
+        let highest = BigRational::from_integer(limits::HIERARCHY_ORDER.into());
+        if *order > highest {
+            let span = request.span;
+            self.errors.push(ModelError::OrderTooHigh { span });
+        }
+        if let [_, second, ..] = request.phenomena.as_slice() {
+            self.errors.push(ModelError::WrongForm {
+                found: "another",
+                wanted: "one phenomenon behind `for`",
+                span: second.span,
+            });
         }
     }
 
@@ -171,6 +191,7 @@ impl Checker<'_> {
 
     /// Groups and the powers that they are placed at have no dimension.
     fn limit(&mut self, small: &ast::Expr, places: &[ast::LimitPlace]) {
+        let n_errors = self.errors.len();
         let pairs = places.iter().flat_map(|place| match place {
             ast::LimitPlace::Others(_) => Vec::new(),
             ast::LimitPlace::Group(group, power) => vec![group, power],
@@ -185,6 +206,11 @@ impl Checker<'_> {
                     what: "a group of a limit",
                 });
             }
+        }
+        if self.errors.len() == n_errors
+            && let Err(errors) = limit::read(self.model, small, places)
+        {
+            self.errors.extend(errors);
         }
     }
 

@@ -11,6 +11,7 @@ pub mod layout;
 pub mod markdown;
 pub mod mathematics;
 pub mod module;
+pub mod orders;
 pub mod ruler;
 pub mod sheets;
 pub mod shelf;

@@ -257,6 +257,7 @@ pub fn has_verdicts(answer: &Answer) -> bool {
         | Body::Nondimensionalize(_)
         | Body::Find(_)
         | Body::Layers(_)
+        | Body::Expand(_)
         | Body::Bounds(_) => false,
     }
 }

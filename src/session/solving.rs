@@ -215,7 +215,7 @@ impl Answering<'_> {
 
     /// The limit in force, its names looked up in a phenomenon.
     fn placing(&self, case: &Case) -> Result<Option<Placing>, Fault> {
-        let Some((small, places)) = self.limit else {
+        let Some((small, places)) = self.limit_for(case.setting.phenomenon) else {
             return Ok(None);
         };
         let names = CaseNames {

@@ -4,6 +4,7 @@
 mod bad_input;
 mod expansions;
 mod frames;
+mod hierarchies;
 mod made_equations;
 mod readme;
 mod rules;

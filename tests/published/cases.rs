@@ -6,8 +6,7 @@ use super::checks::{Case, compare};
 use crate::harness::{Tally, answers, read, read_records, schema_faults, text};
 
 /// Checks that the program has no answer for yet: a case that holds one waits.
-const LATER: [&str; 7] = [
-    "order",
+const LATER: [&str; 6] = [
     "component",
     "largest",
     "area",
@@ -58,7 +57,7 @@ fn similarity() {
 
 #[test]
 fn hierarchy() {
-    run("hierarchy", 2, 90);
+    run("hierarchy", 10, 115);
 }
 
 #[test]

@@ -5,6 +5,7 @@ use std::collections::BTreeMap;
 
 use serde_json::Value;
 
+use super::orders;
 use super::requests;
 use crate::harness::{Tally, answers_to, entry, list, sorted_map, sorted_texts, text};
 
@@ -52,6 +53,7 @@ pub(crate) fn compare(tally: &mut Tally, case: &Case) {
             "layer" => requests::compare_layer(tally, case, check),
             // Compared with the candidate or layer that they belong to.
             "formula" | "others" => {}
+            "order" => orders::compare_order(tally, case, check),
             // Solutions of the orders: they show that the orders are right, nobody asks for them.
             "series" | "solution" | "follows" => {}
             unknown => tally.fault(format!("unknown check {unknown}")),

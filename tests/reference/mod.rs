@@ -5,12 +5,14 @@
 //!
 //! - `frames.py`: vector expressions in curved frames, from Cartesian coordinates with SymPy;
 //! - `nondimensional.py`: random equations, scaled by the rules of `scaling.py` with SymPy;
+//! - `expansions.py`: random splits and expansions, order by order with SymPy;
 //! - `shares.py`: shares over boxes of scales, by linear programs;
 //! - `bounds.py`: intervals over which reduced systems stand, by scanning;
 //! - `cells.py`: dominant balances of random systems of terms, by gfan.
 
 mod bounds;
 mod cells;
+mod expansions;
 mod frames;
 mod nondimensional;
 mod shares;

@@ -310,6 +310,28 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
                     None => found.with_help(help),
                 }
             }
+            E::LevelNotSplit {
+                name,
+                span,
+                declared,
+            } => Diagnostic::error(
+                "not-split",
+                *span,
+                format!("`{name}` has a level and varies by less, so it has no single size to expand with"),
+            )
+            .with_related(*declared, format!("`{name}` is declared here"))
+            .with_help(format!(
+                "split it into its level and what varies: `field {name} = {name}_0 + {name}'`"
+            )),
+            E::OrderTooHigh { span } => Diagnostic::error(
+                "order-too-high",
+                *span,
+                format!(
+                    "`expand` goes to order {} at most",
+                    crate::limits::HIERARCHY_ORDER
+                ),
+            )
+            .with_help("ask for a lower order"),
             E::SplitTooLarge { name, span } => Diagnostic::error(
                 "too-large",
                 *span,
@@ -582,6 +604,10 @@ fn not_a_product(span: Span, what: Product) -> Diagnostic {
         Product::Using => (
             "the left side of an equation behind `using` must be a single product",
             "write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`",
+        ),
+        Product::Expanded => (
+            "a term that is expanded order by order must be a product of fields and derivatives",
+            "leave its size out: the cancellation must come out by itself",
         ),
         Product::Limit => (
             "a limit must be a product of powers of named groups",

@@ -7,9 +7,9 @@
 
 use std::sync::Arc;
 
-use super::Maker;
 use super::expand::is_constant;
 use super::pieces::{Piece, Pieces, collected, common_tag, tagged};
+use super::{Maker, SmallRatio};
 use crate::algebra::monomial::{self, Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Applied, Base, Factor, Product};
 use crate::algebra::quantities::{CoordinateId, Origin};
@@ -29,7 +29,8 @@ fn largest_ratio() -> f64 {
 /// What is small in an expansion, for telling of a ratio that is not.
 struct Small<'a> {
     part: &'a Product,
-    whole: String,
+    /// `None`: beside 1.
+    whole: Option<&'a Product>,
     ratio: f64,
 }
 
@@ -152,23 +153,16 @@ impl Maker<'_> {
     }
 
     fn check_ratios(&mut self, leading: &Product, small: &[Graded], span: Span) {
-        let whole = self.nominal(leading);
+        let size = self.nominal(leading);
         for term in small {
-            let ratio = self.nominal(&term.product) / whole;
-            let text = self.speller().product(leading);
-            self.check_ratio(
-                Small {
-                    part: &term.product,
-                    whole: text,
-                    ratio,
-                },
-                span,
-            );
+            let ratio = self.nominal(&term.product) / size;
+            let (part, whole) = (&term.product, Some(leading));
+            self.check_ratio(Small { part, whole, ratio }, span);
         }
     }
 
-    /// Of a function's argument its change must be small, or its ratio to the rest; of a
-    /// logarithm's the ratio.
+    /// Of an angle the displacement must be small, of any other argument its change or
+    /// the ratio to the rest, of a logarithm's the ratio.
     fn check_arguments(
         &mut self,
         function: Elementary,
@@ -176,30 +170,42 @@ impl Maker<'_> {
         small: &[Graded],
         span: Span,
     ) {
-        let whole = self.nominal(leading);
+        let size = self.nominal(leading);
         let is_log = matches!(function, Elementary::Named(Function::Log | Function::Log10));
         for term in small.iter().filter(|term| term.degree <= 1) {
-            let change = self.nominal(&term.product);
-            let ratio = change / whole;
-            let (whole, ratio) = if is_log || ratio < change {
-                (self.speller().product(leading), ratio)
-            } else {
-                ("1".to_owned(), change)
-            };
             let part = &term.product;
+            let change = self.nominal(part);
+            let ratio = change / size;
+            let is_displacement = part
+                .factors
+                .iter()
+                .any(|factor| matches!(factor.base, Base::Coordinate(_)));
+            let is_angle = function.is_of_angle() && is_displacement;
+            let (whole, ratio) = match is_log || !is_angle && ratio < change {
+                true => (Some(leading), ratio),
+                false => (None, change),
+            };
             self.check_ratio(Small { part, whole, ratio }, span);
         }
     }
 
     fn check_ratio(&mut self, small: Small<'_>, span: Span) {
+        let ratio = SmallRatio {
+            small: small.part.clone(),
+            large: small.whole.cloned(),
+        };
+        self.made.ratios.push(ratio);
         // An open scale is told of where it is asked for.
         if small.ratio <= largest_ratio() || small.ratio.is_nan() {
             return;
         }
+        let large = small
+            .whole
+            .map_or_else(|| "1".to_owned(), |whole| self.speller().product(whole));
         let error = ModelError::RatioNotSmall {
             span,
             small: self.speller().product(small.part),
-            large: small.whole,
+            large,
             ratio: small.ratio,
             declared: self.declaration(small.part),
         };

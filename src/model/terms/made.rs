@@ -200,6 +200,7 @@ impl Maker<'_> {
             }
         }
         self.made.faults.extend(source.faults.iter().cloned());
+        self.made.ratios.extend(source.ratios.iter().cloned());
         Some(source)
     }
 

@@ -22,7 +22,7 @@ use crate::model::errors::ModelError;
 use crate::model::settings::{Setting, Variable};
 use crate::model::spelling;
 use crate::model::values::{Fault, Names, Value};
-use crate::model::{GroupId, Model, combinations};
+use crate::model::{GroupId, Meaning, Model, combinations, names};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Sign};
@@ -81,6 +81,8 @@ pub struct Term {
     pub below_parts: Option<f64>,
     /// Its order in the ratios of the expansions that it comes from; 0 without any.
     pub degree: u32,
+    /// Where it, or what it comes from, is written.
+    pub span: Span,
 }
 
 impl Term {
@@ -109,6 +111,15 @@ pub struct Summand {
     pub named: ast::Expr,
 }
 
+/// A ratio in which an expansion goes.
+#[derive(Debug, Clone)]
+pub struct SmallRatio {
+    /// What is small.
+    pub small: Product,
+    /// Beside this; `None`: beside 1.
+    pub large: Option<Product>,
+}
+
 /// An equation in one setting.
 #[derive(Debug, Clone)]
 pub struct EquationTerms {
@@ -128,6 +139,8 @@ pub struct EquationTerms {
     pub neglected: Vec<Term>,
     /// Ratios that are too large to expand in: whoever asks for the equation is told.
     pub faults: Vec<ModelError>,
+    /// The ratios in which it was expanded.
+    pub ratios: Vec<SmallRatio>,
     /// Its summands as written, in order.
     pub summands: Vec<Summand>,
     /// Every process that is named in it, those whose terms are all gone included.
@@ -160,6 +173,7 @@ pub fn all(
             process_names: maker.made.process_names.clone(),
             with_partials: maker.made.with_partials,
             faults: maker.made.faults.clone(),
+            ratios: maker.made.ratios.clone(),
         });
         found[idx] = Some((maker.made, maker.errors));
     }
@@ -191,6 +205,7 @@ struct Source {
     process_names: Vec<String>,
     with_partials: bool,
     faults: Vec<ModelError>,
+    ratios: Vec<SmallRatio>,
 }
 
 struct Maker<'a> {
@@ -261,6 +276,7 @@ impl<'a> Maker<'a> {
                 terms: Vec::new(),
                 neglected: Vec::new(),
                 faults: Vec::new(),
+                ratios: Vec::new(),
                 summands: Vec::new(),
                 process_names: Vec::new(),
                 with_partials: false,
@@ -383,12 +399,14 @@ impl<'a> Maker<'a> {
         let (within, beyond): (Vec<Piece>, Vec<Piece>) = pieces.into_iter().partition(is_within);
         let within = merged(within);
         let is_single = within.len() == 1;
+        let is_as_written = is_single && !self.holds_split(&summand.expr);
         for piece in within {
-            if let Some(term) = self.term(piece, &summand, idx, is_single, span) {
+            if let Some(mut term) = self.term(piece, &summand, idx, is_as_written, span) {
+                term.below_parts = self.below_parts.filter(|_| is_single);
                 self.made.terms.push(term);
             }
         }
-        summand.is_whole = self.zeros.0.len() == n_zeros;
+        summand.is_whole = self.zeros.0.len() == n_zeros && is_single == is_as_written;
         for piece in merged(beyond) {
             if let Some(term) = self.term(piece, &summand, idx, false, span) {
                 self.made.neglected.push(term);
@@ -397,13 +415,24 @@ impl<'a> Maker<'a> {
         self.made.summands.push(summand);
     }
 
+    /// Whether an expression names a split field: one part of it may be all that is left.
+    fn holds_split(&self, expr: &ast::Expr) -> bool {
+        let mut holds = false;
+        names::visit_names(expr, &mut |name, _| {
+            let meaning = self.model.meaning(name, self.setting.phenomenon);
+            holds |= matches!(meaning, Some(Meaning::Field(id))
+                if !self.model.fields[id.0 as usize].parts.is_empty());
+        });
+        holds
+    }
+
     /// A term out of a piece; none if a 0 takes it out.
     fn term(
         &mut self,
         piece: Piece,
         summand: &Summand,
         idx: usize,
-        is_single: bool,
+        is_as_written: bool,
         span: Span,
     ) -> Option<Term> {
         let Piece {
@@ -414,7 +443,7 @@ impl<'a> Maker<'a> {
         if product.number.is_zero() {
             return None;
         }
-        let (text, expr, is_negative) = if is_single {
+        let (text, expr, is_negative) = if is_as_written {
             let expr = summand.expr.clone();
             (summand.text.clone(), expr, summand.is_negative)
         } else {
@@ -455,8 +484,9 @@ impl<'a> Maker<'a> {
             process: tag.map(|tag| tag.name),
             side: summand.side,
             summand: idx,
-            below_parts: if is_single { self.below_parts } else { None },
+            below_parts: None,
             degree,
+            span,
         })
     }
 

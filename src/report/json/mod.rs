@@ -4,6 +4,7 @@
 mod bounds;
 mod claims;
 mod compare;
+mod expand;
 mod find;
 mod groups;
 mod layers;
@@ -119,6 +120,7 @@ fn answer(answer: &Answer) -> Value {
         }
         Body::Rank(equations) => json!({ "equations": list(equations, rank::ranked) }),
         Body::Reduce(reduction) => reduce::reduce(reduction),
+        Body::Expand(hierarchy) => expand::expand(hierarchy),
         Body::Find(balances) => find::find(balances),
         Body::Layers(found) => layers::layers(found),
         Body::Bounds(found) => bounds::bounds(found),

@@ -47,7 +47,7 @@ fn character(c: char) -> String {
         '%' => "\\%",
         '_' => "\\_\\allowbreak{}",
         '^' => "\\textasciicircum{}",
-        '~' => "\\textasciitilde{}",
+        '~' => "\\ensuremath{\\sim}",
         // Without braces these join into other signs or ligatures.
         '<' => "\\ensuremath{<}",
         '>' => "\\ensuremath{>}",
@@ -206,7 +206,7 @@ mod tests {
     fn nothing_in_a_text_is_a_command() {
         assert_eq!(
             text("50 % of a_b & {c} #1 \\x ~ ^"),
-            "50 \\% of a\\_\\allowbreak{}b \\& \\{c\\} \\#1 \\textbackslash{}x \\textasciitilde{} \\textasciicircum{}"
+            "50 \\% of a\\_\\allowbreak{}b \\& \\{c\\} \\#1 \\textbackslash{}x \\ensuremath{\\sim} \\textasciicircum{}"
         );
     }
 

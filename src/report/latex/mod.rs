@@ -100,6 +100,7 @@ fn write_answer(answer: &Answer, out: &mut String) {
         Body::Layers(layers) => sheet::sheet(&sheets::layers(layers), out),
         Body::Bounds(bounds) => sheet::sheet(&sheets::bounds(bounds), out),
         Body::Compare(comparison) => sheet::sheet(&sheets::compare(comparison), out),
+        Body::Expand(hierarchy) => sheet::sheet(&sheets::expand(hierarchy), out),
     }
     for left in &answer.left_out {
         out.push_str(&format!(

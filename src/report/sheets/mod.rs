@@ -3,6 +3,7 @@
 
 mod bounds;
 mod compare;
+mod expand;
 mod find;
 mod groups;
 mod layers;
@@ -10,6 +11,7 @@ mod nondimensional;
 
 pub use bounds::bounds;
 pub use compare::compare;
+pub use expand::expand;
 pub use find::find;
 pub use groups::groups;
 pub use layers::layers;

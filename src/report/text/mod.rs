@@ -5,6 +5,7 @@ mod bounds;
 mod claims;
 mod columns;
 mod compare;
+mod expand;
 pub(in crate::report) mod find;
 pub(in crate::report) mod groups;
 pub(in crate::report) mod layers;
@@ -164,6 +165,7 @@ fn write_answer(answer: &Answer, pen: &Pen, out: &mut String) {
             .iter()
             .for_each(|equation| rank::ranked(equation, pen, out)),
         Body::Reduce(reduction) => reduce::reduce(reduction, pen, out),
+        Body::Expand(hierarchy) => expand::expand(hierarchy, pen, out),
         Body::Find(balances) => find::find(balances, pen, out),
         Body::Layers(found) => layers::layers(found, pen, out),
         Body::Bounds(found) => bounds::bounds(found, pen, out),
