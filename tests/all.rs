@@ -7,6 +7,7 @@ mod finding;
 mod forms;
 mod harness;
 mod language;
+mod library;
 mod polyhedra;
 mod prompt;
 mod properties;

@@ -7,7 +7,7 @@ use crate::analysis::{self, Case};
 use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
 use crate::model::modules::{self, Files, Main};
-use crate::model::{Meaning, Model, declarations, dimensions, library};
+use crate::model::{Meaning, Model, declarations, dimensions, frames, library};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, ExprKind, StatementKind};
 
@@ -26,6 +26,8 @@ pub struct Shelf {
     pub equations: Vec<Item<ast::EquationDecl>>,
     /// What varies in them.
     pub variables: Vec<Item<Variable>>,
+    /// Vectors and stresses, each with its components.
+    pub vectors: Vec<Item<Vector>>,
     /// Scales and constants without a value.
     pub open: Vec<Item<Open>>,
     /// Scales and constants with a value.
@@ -63,6 +65,17 @@ pub struct Variable {
     pub coordinates: Vec<ast::Dependence>,
 }
 
+/// A vector or a stress.
+#[derive(Debug, Clone)]
+pub struct Vector {
+    /// Its name.
+    pub name: String,
+    /// Its components, in brackets.
+    pub components: ast::Expr,
+    /// Title and source.
+    pub notes: ast::Notes,
+}
+
 /// A scale or constant without a value.
 #[derive(Debug, Clone)]
 pub struct Open {
@@ -83,6 +96,8 @@ pub enum Start {
     Script(String),
     /// Values to fill in, and what follows from them.
     Values {
+        /// The module of equations that it takes besides, where this one holds values alone.
+        beside: Option<String>,
         /// What needs a value.
         open: Vec<Open>,
         /// What may follow from these: a scale and its formula.
@@ -107,6 +122,9 @@ pub fn shelf(main: &Main, files: &dyn Files) -> Result<Shelf, (Vec<Diagnostic>, 
     let is_script = scripts.last().is_some_and(|(_, script)| is_script(script));
     let (mut model, found) = declarations::gather(scripts);
     errors.extend(found.iter().map(ModelError::diagnostic));
+    let declared = model.equations.clone();
+    let found = frames::resolve(&mut model);
+    errors.extend(found.iter().map(ModelError::diagnostic));
     let found = dimensions::check(&mut model);
     errors.extend(found.iter().map(ModelError::diagnostic));
     let (case, found) = analysis::case(&model, None);
@@ -117,14 +135,47 @@ pub fn shelf(main: &Main, files: &dyn Files) -> Result<Shelf, (Vec<Diagnostic>, 
     let own = sources.iter().next().map(|(file, _)| file);
     let gatherer = Gatherer {
         model: &model,
+        declared: &declared,
         sources: &sources,
         own: own.unwrap_or_default(),
     };
-    let start = match is_script {
-        true => Start::Script(main.text.clone()),
-        false => gatherer.start(&case),
+    let beside = beside(&main.text);
+    let start = match (is_script, beside) {
+        (true, _) => Start::Script(main.text.clone()),
+        (false, None) => gatherer.start(&case),
+        (false, Some(equations)) => with_equations(main, files, equations)?,
     };
     Ok(gatherer.shelf(main, uses, start))
+}
+
+/// How a script begins that uses a module of values with one of equations.
+fn with_equations(
+    main: &Main,
+    files: &dyn Files,
+    equations: String,
+) -> Result<Start, (Vec<Diagnostic>, Sources)> {
+    let both = Main {
+        text: format!("{}\nuse {equations}\n", without_head(&main.text)),
+        ..main.clone()
+    };
+    let mut start = shelf(&both, files)?.start;
+    if let Start::Values { beside, .. } = &mut start {
+        *beside = Some(equations);
+    }
+    Ok(start)
+}
+
+fn without_head(text: &str) -> String {
+    let lines = text.lines().skip_while(|line| line.starts_with('#'));
+    lines.collect::<Vec<_>>().join("\n")
+}
+
+/// The first module that a head comment says its module goes with.
+fn beside(text: &str) -> Option<String> {
+    let mut about = library::head(text).into_iter();
+    let named = about.find_map(|text| text.strip_prefix("Goes with `").map(str::to_owned))?;
+    let name = named.split('`').next()?;
+    library::find(name).map(|module| module.name.to_owned())
 }
 
 /// Whether a text asks for something, so that it is a script and no shelf.
@@ -139,6 +190,8 @@ fn is_script(script: &ast::Script) -> bool {
 
 struct Gatherer<'a> {
     model: &'a Model,
+    /// The equations as they are written, vector equations whole.
+    declared: &'a [ast::EquationDecl],
     sources: &'a Sources,
     own: FileId,
 }
@@ -154,7 +207,7 @@ impl Gatherer<'_> {
 
     fn shelf(&self, main: &Main, uses: Vec<String>, start: Start) -> Shelf {
         let model = self.model;
-        let equations = model.equations.iter();
+        let equations = self.declared.iter();
         let balances = model.balances.iter();
         Shelf {
             name: main.name.clone(),
@@ -169,6 +222,7 @@ impl Gatherer<'_> {
                 .map(|decl| self.item(decl.name.span, decl.clone()))
                 .collect(),
             variables: self.variables(),
+            vectors: self.vectors(),
             open: (0..model.symbols.len())
                 .filter_map(|idx| self.open(idx))
                 .collect(),
@@ -218,6 +272,22 @@ impl Gatherer<'_> {
         coordinates.chain(fields).collect()
     }
 
+    fn vectors(&self) -> Vec<Item<Vector>> {
+        let vectors = self.model.vectors.iter();
+        let held = vectors.map(|info| {
+            let held = Vector {
+                name: info.name.text.clone(),
+                components: ast::Expr {
+                    kind: ExprKind::Tuple(info.components.clone()),
+                    span: info.span,
+                },
+                notes: info.notes.clone(),
+            };
+            self.item(info.name.span, held)
+        });
+        held.collect()
+    }
+
     fn effective(&self, idx: usize) -> &ast::ValueDecl {
         let id = crate::algebra::monomial::SymbolId(idx as u32);
         self.model.effective(id, None).1
@@ -263,6 +333,7 @@ impl Gatherer<'_> {
         let (derived, open): (Vec<Open>, Vec<Open>) =
             open.into_iter().partition(|open| formula(open).is_some());
         Start::Values {
+            beside: None,
             derived: derived
                 .into_iter()
                 .filter_map(|open| formula(&open).map(|formula| (open, formula)))
@@ -303,7 +374,8 @@ impl Gatherer<'_> {
     }
 
     /// Scales that usually follow from others: the time by advection, and the size of a
-    /// component of the velocity across the first by continuity.
+    /// component of the velocity across the first by continuity. None where the script is
+    /// not asked for the speed and the length that they follow from.
     fn formulas(&self, wanted: &[String]) -> Vec<(String, String)> {
         let mut found = Vec::new();
         let Some(velocity) = &self.model.velocity else {
@@ -312,11 +384,14 @@ impl Gatherer<'_> {
         let sizes: Vec<(String, String)> = velocity
             .components
             .iter()
-            .filter_map(|(field, along)| Some((self.size_of(field)?, self.size_of(along)?)))
+            .map_while(|(field, along)| Some((self.size_of(field)?, self.size_of(along)?)))
             .collect();
         let Some((speed, length)) = sizes.first() else {
             return found;
         };
+        if self.is_left_open(speed, wanted) || self.is_left_open(length, wanted) {
+            return found;
+        }
         let time = match self.model.meaning("t", None) {
             Some(Meaning::Coordinate(id)) => self.coordinate_size(id),
             Some(
@@ -326,12 +401,20 @@ impl Gatherer<'_> {
         };
         found.extend(time.map(|time| (time, format!("{length}/{speed}"))));
         for (across, depth) in &sizes[1..] {
-            if across != speed && depth != length {
+            if across != speed && depth != length && !self.is_left_open(depth, wanted) {
                 found.push((across.clone(), format!("{speed}*{depth}/{length}")));
             }
         }
         found.retain(|(name, _)| wanted.contains(name));
         found
+    }
+
+    /// Whether a symbol has no value, and the script is not asked for one.
+    fn is_left_open(&self, name: &str, wanted: &[String]) -> bool {
+        let mut symbols = self.model.symbols.iter();
+        let at = symbols.position(|info| info.name == name);
+        let is_open = at.is_some_and(|idx| self.open(idx).is_some());
+        is_open && !wanted.iter().any(|wanted| wanted == name)
     }
 
     /// The scale that a field or coordinate is of, where it is one alone.

@@ -247,6 +247,17 @@ impl Model {
         self.equation_names.get(name).copied()
     }
 
+    /// Whether there is an equation of this name, whole or a component.
+    pub fn has_equation(&self, name: &str) -> bool {
+        self.equation_names.contains_key(name)
+    }
+
+    /// The vector equation of this name.
+    pub fn vector_equation(&self, name: &str) -> Option<&VectorEquationInfo> {
+        let mut vectors = self.vector_equations.iter();
+        vectors.find(|found| found.name.text == name)
+    }
+
     /// Whether an equation is a component of a vector equation.
     pub fn is_component(&self, idx: usize) -> bool {
         let name = &self.equations[idx].name.text;

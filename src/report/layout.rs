@@ -126,7 +126,11 @@ pub fn wrapped(label: &str, text: &str) -> String {
     let mut words: Vec<String> = Vec::new();
     for word in text.split(' ').filter(|word| !word.is_empty()) {
         match words.last_mut() {
-            Some(last) if belongs_before(word) || last.ends_with(" ..") => {
+            Some(last)
+                if belongs_before(word)
+                    || last.ends_with(" ..")
+                    || is_in_bracketed_sum(last, word) =>
+            {
                 last.push(' ');
                 last.push_str(word);
             }
@@ -139,6 +143,13 @@ pub fn wrapped(label: &str, text: &str) -> String {
 /// Whether a word stays on the line of the one before it.
 fn belongs_before(word: &str) -> bool {
     word == ".." || word.starts_with('%')
+}
+
+/// Whether a word goes on with a sum in brackets, as in `(r - a)`.
+fn is_in_bracketed_sum(last: &str, word: &str) -> bool {
+    let is_open = last.matches('(').count() > last.matches(')').count();
+    let is_sign = |text: &str| text == "-" || text == "+";
+    is_open && (is_sign(word) || last.rsplit(' ').next().is_some_and(is_sign))
 }
 
 /// The same for words that may have blanks in them.

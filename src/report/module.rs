@@ -114,10 +114,7 @@ fn about(equation: &ReducedEquation, is_kept: bool, out: &mut String) {
         );
         comment("  left      ", &text, out);
     }
-    let dropped: Vec<String> = words::dropped(equation)
-        .iter()
-        .map(|term| format!("{} {}", term.text, percent(term.share.high)))
-        .collect();
+    let dropped = words::dropped_listed(equation);
     if !dropped.is_empty() {
         comment("  left out  ", &dropped.join(", "), out);
         let error = format!(

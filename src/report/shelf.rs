@@ -3,7 +3,7 @@
 
 use std::fmt::Write as _;
 
-use crate::analysis::shelf::{Item, Open, Shelf, Start, Variable};
+use crate::analysis::shelf::{Item, Open, Shelf, Start, Variable, Vector};
 use crate::model::library::{self, Module};
 use crate::model::names;
 use crate::report::layout::{WIDTH, cut, padded, width, wrapped};
@@ -15,10 +15,11 @@ use crate::syntax::print;
 pub const BLANK: &str = "___";
 
 /// The shelves in the order of the list, with their titles; any other comes behind.
-const SHELVES: [(&str, &str); 6] = [
+const SHELVES: [(&str, &str); 7] = [
     ("atmosphere", "atmosphere"),
     ("ocean", "ocean"),
     ("fluid", "fluids of any kind"),
+    ("settings", "typical ranges, to begin with"),
     ("base", "what these share"),
     ("", "numbers and groups"),
     ("demo", "demonstrations, each a whole script"),
@@ -89,6 +90,9 @@ pub fn shelf(shelf: &Shelf) -> String {
             pages.variables(held, out);
         },
     );
+    section("vectors", &shelf.vectors, &mut out, |held, out| {
+        pages.vectors(held, out);
+    });
     section(
         "open: a script gives these a value",
         &shelf.open,
@@ -283,6 +287,18 @@ impl Pages<'_> {
         table(&rows, out);
     }
 
+    fn vectors(&self, held: &[&Vector], out: &mut String) {
+        let rows: Vec<(String, String)> = held
+            .iter()
+            .map(|vector| {
+                let mut text = format!("= {}", self.mathematics.expression(&vector.components));
+                notes(&vector.notes, &mut text);
+                (spelt(&vector.name), text)
+            })
+            .collect();
+        table(&rows, out);
+    }
+
     fn groups(&self, held: &[&ast::GroupDecl], out: &mut String) {
         let rows: Vec<(String, String)> = held
             .iter()
@@ -391,26 +407,33 @@ fn start(shelf: &Shelf, out: &mut String) {
             out.push_str(text);
         }
         Start::Values {
+            beside,
             open,
             derived,
             requests,
         } => {
-            let _ = writeln!(
-                out,
-                "a script to begin with: put a number in place of each {BLANK}\n{}\n",
-                "─".repeat(WIDTH)
-            );
-            out.push_str(&script(&shelf.name, open, derived, requests));
+            let to_fill = match open.is_empty() {
+                true => String::new(),
+                false => format!(": put a number in place of each {BLANK}"),
+            };
+            let line = "─".repeat(WIDTH);
+            let _ = writeln!(out, "a script to begin with{to_fill}\n{line}\n");
+            let beside = beside.iter().map(|name| format!("use {name}\n"));
+            let used = used(&shelf.name) + &beside.collect::<String>();
+            out.push_str(&script(&used, open, derived, requests));
         }
     }
 }
 
-fn script(module: &str, open: &[Open], derived: &[(Open, String)], requests: &[String]) -> String {
-    let used = match module.contains('/') || module.ends_with(".scl") {
-        true => format!("use \"{module}\""),
-        false => format!("use {module}"),
-    };
-    let mut out = format!("{used}\n\n");
+fn used(module: &str) -> String {
+    match module.contains('/') || module.ends_with(".scl") {
+        true => format!("use \"{module}\"\n"),
+        false => format!("use {module}\n"),
+    }
+}
+
+fn script(used: &str, open: &[Open], derived: &[(Open, String)], requests: &[String]) -> String {
+    let mut out = format!("{used}\n");
     let lines: Vec<(String, String)> = open
         .iter()
         .map(|open| {

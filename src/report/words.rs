@@ -112,6 +112,12 @@ pub fn formula(found: &Factors) -> String {
 /// Roots of a higher degree are written name by name.
 const MAX_DEGREE: i64 = 12;
 
+/// So many dropped terms a report lists in any case.
+const ALWAYS_LISTED: usize = 8;
+
+/// Part of the tolerance below which a dropped term is far from mattering.
+const FAR_BELOW: f64 = 1e-4;
+
 /// `Ro <= 0.1`.
 pub fn inequality(condition: &Inequality) -> String {
     let left = match &condition.groups {
@@ -517,6 +523,27 @@ pub fn dropped(equation: &ReducedEquation) -> Vec<&ReducedTerm> {
     let mut terms: Vec<&ReducedTerm> = equation.dropped.iter().collect();
     terms.sort_by(|a, b| b.share.high.total_cmp(&a.share.high));
     terms
+}
+
+/// The dropped terms with their highest shares, as texts reports list them: the first few and
+/// all others that are not far below the tolerance; of the rest, how many they are.
+pub fn dropped_listed(equation: &ReducedEquation) -> Vec<String> {
+    let terms = dropped(equation);
+    let is_far = |term: &&ReducedTerm| term.share.high < FAR_BELOW * equation.tolerance;
+    let far = terms.iter().skip(ALWAYS_LISTED).filter(|term| is_far(term));
+    let listed = match far.count() {
+        0 | 1 => terms.len(),
+        far => terms.len() - far,
+    };
+    let mut texts: Vec<String> = terms[..listed]
+        .iter()
+        .map(|term| format!("{} {}", term.text, percent(term.share.high)))
+        .collect();
+    if let Some(first) = terms.get(listed) {
+        let most = percent(first.share.high);
+        texts.push(format!("{} more of at most {most}", terms.len() - listed));
+    }
+    texts
 }
 
 /// That no balance is consistent, and why.

@@ -19,7 +19,7 @@ def is_same(stored, made):
 
 def write_or_check(name, cases):
     """Writes `name`, or with `--check` as the only argument fails where it differs from `cases`."""
-    path = Path(__file__).with_name(name)
+    path = Path(__file__).parent / name
     if sys.argv[1:] != ["--check"]:
         lines = ",\n".join(json.dumps(case, ensure_ascii=False) for case in cases)
         path.write_text(f"[\n{lines}\n]\n", encoding="utf-8")

@@ -4,9 +4,10 @@
 
 use crate::limits;
 use crate::model::errors::ModelError;
+use crate::model::frames::equations::component_name;
 use crate::model::frames::{FrameInfo, build};
 use crate::model::names::{self, Call};
-use crate::model::{Meaning, Model};
+use crate::model::{Meaning, Model, VectorEquationInfo};
 use crate::source::Span;
 use crate::syntax::ast::{Expr, ExprKind, Name, Operator, ProcessName};
 
@@ -24,6 +25,8 @@ pub(super) struct Writer<'a> {
     is_named: bool,
     /// How many nodes may still be made.
     budget: usize,
+    /// Whether names of equations are meant before all others.
+    combines: bool,
 }
 
 impl<'a> Writer<'a> {
@@ -33,6 +36,16 @@ impl<'a> Writer<'a> {
             frame,
             is_named: false,
             budget: limits::VECTOR_NODES,
+            combines: false,
+        }
+    }
+
+    /// The same for what stands behind `from`: names are those of equations first, and a
+    /// component of a vector equation is an equation.
+    pub(super) fn of_equations(model: &'a Model, frame: &'a FrameInfo) -> Writer<'a> {
+        Writer {
+            combines: true,
+            ..Writer::new(model, frame)
         }
     }
 
@@ -187,6 +200,13 @@ impl<'a> Writer<'a> {
 
     /// A component of a declared vector, at the place where the vector is named.
     fn declared(&mut self, name: &str, axis: usize, span: Span) -> Made {
+        if let Some(equation) = self.vector_equation(name) {
+            let along = &self.frame.coordinates[axis].text;
+            let wanted = component_name(name, along);
+            let is_there = equation.components.contains(&wanted);
+            let kind = ExprKind::Name(wanted);
+            return Ok(is_there.then_some(Expr { kind, span }));
+        }
         let Some(Meaning::Vector(id)) = self.model.meaning(name, None) else {
             return Ok(None);
         };
@@ -199,6 +219,12 @@ impl<'a> Writer<'a> {
             }
             Some(_) | None => Ok(None),
         }
+    }
+
+    /// A vector equation, where its name means it.
+    fn vector_equation(&self, name: &str) -> Option<&'a VectorEquationInfo> {
+        let found = self.model.vector_equation(name);
+        found.filter(|_| self.combines)
     }
 
     fn components(&mut self, expr: &Expr) -> Result<Components, ModelError> {
@@ -224,6 +250,8 @@ impl<'a> Writer<'a> {
     /// Whether an expression is a scalar; it is known to have a shape.
     fn is_scalar(&self, expr: &Expr) -> bool {
         match &expr.kind {
+            ExprKind::Name(name) if self.vector_equation(name).is_some() => false,
+            ExprKind::Name(name) if self.combines && self.model.has_equation(name) => true,
             ExprKind::Name(name) => {
                 !matches!(self.model.meaning(name, None), Some(Meaning::Vector(_)))
             }

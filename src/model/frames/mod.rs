@@ -9,17 +9,18 @@
 
 mod build;
 mod components;
+mod equations;
 mod rules;
 mod shapes;
 
 use crate::algebra::quantities::CoordinateId;
-use crate::model::errors::{Clash, ModelError, Shape};
+use crate::model::errors::{ModelError, Shape};
 use crate::model::frames::components::Writer;
 use crate::model::frames::rules::Rules;
 use crate::model::frames::shapes::{Found, Shapes};
-use crate::model::{Meaning, Model, VectorEquationInfo, VelocityInfo, names};
+use crate::model::{Meaning, Model, VelocityInfo, names};
 use crate::source::Span;
-use crate::syntax::ast::{self, EquationBody, ExprKind, FrameKind, RequestKind};
+use crate::syntax::ast::{self, ExprKind, FrameKind, RequestKind};
 use crate::units::Dimension;
 
 /// The frame of a model.
@@ -54,7 +55,7 @@ pub fn resolve(model: &mut Model) -> Vec<ModelError> {
     let mut frame_needed = None;
     vectors(model, &mut frame_needed, &mut errors);
     velocity(model, &mut frame_needed, &mut errors);
-    equations(model, &mut frame_needed, &mut errors);
+    equations::resolve(model, &mut frame_needed, &mut errors);
     requests(model);
     if let (None, Some(span)) = (&model.frame, frame_needed) {
         errors.push(ModelError::NoFrame { span });
@@ -259,127 +260,6 @@ fn velocity(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec
         }
     }
     model.velocity = Some(VelocityInfo { components, span });
-}
-
-// Equations -------------------------------------------------------------------------------------
-
-fn equations(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec<ModelError>) {
-    let declared = std::mem::take(&mut model.equations);
-    let mut scalar = Vec::with_capacity(declared.len());
-    for decl in declared {
-        let EquationBody::Written { left, right } = &decl.body else {
-            scalar.push(decl);
-            continue;
-        };
-        let mut shapes = Shapes::new(model);
-        let sides = (shapes.shape(left), shapes.shape(right));
-        let found = shapes.same((sides.0, left.span), (sides.1, right.span));
-        if let Some(span) = shapes.frame_needed {
-            frame_needed.get_or_insert(span);
-        }
-        let is_faulty =
-            !shapes.errors.is_empty() || model.frame.is_none() && shapes.frame_needed.is_some();
-        errors.append(&mut shapes.errors);
-        match found {
-            Found::Known(Shape::Stress) => {
-                errors.push(ModelError::WrongShape {
-                    wanted: Shape::Vector,
-                    found: Shape::Stress,
-                    span: left.span,
-                    because: None,
-                });
-                scalar.push(silenced(decl));
-            }
-            Found::Known(Shape::Vector) => match component_equations(model, &decl, is_faulty) {
-                Ok(made) => {
-                    model.vector_equations.push(VectorEquationInfo {
-                        name: decl.name,
-                        components: made.iter().map(|made| made.name.text.clone()).collect(),
-                    });
-                    scalar.extend(made);
-                }
-                Err(error) => {
-                    errors.extend(error);
-                    scalar.push(silenced(decl));
-                }
-            },
-            Found::Known(Shape::Scalar) | Found::Any if !is_faulty => scalar.push(decl),
-            Found::Known(Shape::Scalar) | Found::Any | Found::Faulty => scalar.push(silenced(decl)),
-        }
-    }
-    index(model, scalar, errors);
-}
-
-/// An equation whose faults were told: nothing more is said of what stands in it.
-fn silenced(mut decl: ast::EquationDecl) -> ast::EquationDecl {
-    let error = |span| ast::Expr {
-        kind: ExprKind::Error,
-        span,
-    };
-    decl.body = EquationBody::Written {
-        left: error(decl.name.span),
-        right: error(decl.name.span),
-    };
-    decl
-}
-
-/// The component equations of a vector equation, those left out in which both sides are 0.
-fn component_equations(
-    model: &Model,
-    decl: &ast::EquationDecl,
-    is_faulty: bool,
-) -> Result<Vec<ast::EquationDecl>, Option<ModelError>> {
-    let frame = model.frame.as_ref().ok_or(None)?;
-    let EquationBody::Written { left, right } = &decl.body else {
-        return Ok(Vec::new());
-    };
-    let mut made = Vec::new();
-    for (axis, along) in frame.coordinates.iter().enumerate() {
-        let mut component = ast::EquationDecl {
-            name: ast::Name {
-                text: format!("{}_{}", decl.name.text, along.text),
-                span: decl.name.span,
-            },
-            ..decl.clone()
-        };
-        if is_faulty {
-            made.push(silenced(component));
-            continue;
-        }
-        let mut writer = Writer::new(model, frame);
-        let sides = (
-            writer.component(left, axis)?,
-            writer.component(right, axis)?,
-        );
-        if let (None, None) = sides {
-            continue;
-        }
-        component.body = EquationBody::Written {
-            left: sides.0.unwrap_or_else(|| build::zero(left.span)),
-            right: sides.1.unwrap_or_else(|| build::zero(right.span)),
-        };
-        made.push(component);
-    }
-    Ok(made)
-}
-
-/// Puts the equations into the model under their names.
-fn index(model: &mut Model, equations: Vec<ast::EquationDecl>, errors: &mut Vec<ModelError>) {
-    model.equation_names.clear();
-    for decl in equations {
-        let name = decl.name.text.clone();
-        if let Some(&first) = model.equation_names.get(&name) {
-            errors.push(ModelError::NameClash {
-                name,
-                span: decl.name.span,
-                first: Some(model.equations[first].name.span),
-                what: Clash::Equation,
-            });
-            continue;
-        }
-        model.equation_names.insert(name, model.equations.len());
-        model.equations.push(decl);
-    }
 }
 
 /// In a list of equations the name of a vector equation stands for its components.

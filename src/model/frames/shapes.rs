@@ -27,6 +27,8 @@ pub(super) struct Shapes<'a> {
     /// The first place that needs a frame.
     pub(super) frame_needed: Option<Span>,
     depth: usize,
+    /// Whether names of equations are meant before all others.
+    combines: bool,
 }
 
 impl<'a> Shapes<'a> {
@@ -36,6 +38,15 @@ impl<'a> Shapes<'a> {
             errors: Vec::new(),
             frame_needed: None,
             depth: 0,
+            combines: false,
+        }
+    }
+
+    /// The same for what stands behind `from`: names are those of equations first.
+    pub(super) fn of_equations(model: &'a Model) -> Shapes<'a> {
+        Shapes {
+            combines: true,
+            ..Shapes::new(model)
         }
     }
 
@@ -100,6 +111,12 @@ impl<'a> Shapes<'a> {
     }
 
     fn name(&self, name: &str) -> Found {
+        if self.combines && self.model.vector_equation(name).is_some() {
+            return Found::Known(Shape::Vector);
+        }
+        if self.combines && self.model.has_equation(name) {
+            return Found::Known(Shape::Scalar);
+        }
         match self.model.meaning(name, None) {
             Some(Meaning::Vector(id)) => match self.model.vectors[id.0 as usize].shape {
                 Some(shape) => Found::Known(shape),

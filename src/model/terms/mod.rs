@@ -12,6 +12,7 @@ mod made;
 mod means;
 mod pieces;
 mod sized;
+mod tangents;
 mod written;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};

@@ -70,11 +70,7 @@ fn depends(equation: &ReducedEquation, out: &mut String) {
 }
 
 fn dropped(equation: &ReducedEquation, out: &mut String) {
-    let terms = words::dropped(equation);
-    let texts: Vec<String> = terms
-        .iter()
-        .map(|term| format!("{} {}", term.text, percent(term.share.high)))
-        .collect();
+    let texts = words::dropped_listed(equation);
     let text = if texts.is_empty() {
         "nothing".to_owned()
     } else {
