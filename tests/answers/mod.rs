@@ -3,6 +3,7 @@
 
 mod bad_input;
 mod expansions;
+mod frames;
 mod hierarchies;
 mod made_equations;
 mod readme;

@@ -472,17 +472,13 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
 }
 
 fn wrong_shape(wanted: Shape, found: Shape, span: Span, because: Option<Span>) -> Diagnostic {
-    let code = match wanted {
-        Shape::Vector | Shape::Stress => "not-a-vector",
-        Shape::Scalar => "unexpected-word",
-    };
     let word = |shape: Shape| match shape {
         Shape::Scalar => "a scalar",
         Shape::Vector => "a vector",
         Shape::Stress => "a stress",
     };
     let message = format!("expected {}, found {}", word(wanted), word(found));
-    let diagnostic = Diagnostic::error(code, span, message).with_label(word(found));
+    let diagnostic = Diagnostic::error("not-a-vector", span, message).with_label(word(found));
     let diagnostic = match because {
         Some(because) => diagnostic.with_related(because, word(wanted)),
         None => diagnostic,

@@ -4,7 +4,8 @@
 
 use crate::limits;
 use crate::model::errors::ModelError;
-use crate::model::frames::{FrameInfo, build, component_name};
+use crate::model::frames::equations::component_name;
+use crate::model::frames::{FrameInfo, build};
 use crate::model::names::{self, Call};
 use crate::model::{Meaning, Model, VectorEquationInfo};
 use crate::source::Span;

@@ -9,17 +9,18 @@
 
 mod build;
 mod components;
+mod equations;
 mod rules;
 mod shapes;
 
 use crate::algebra::quantities::CoordinateId;
-use crate::model::errors::{Clash, ModelError, Shape};
+use crate::model::errors::{ModelError, Shape};
 use crate::model::frames::components::Writer;
 use crate::model::frames::rules::Rules;
 use crate::model::frames::shapes::{Found, Shapes};
-use crate::model::{Meaning, Model, VectorEquationInfo, VelocityInfo, names};
+use crate::model::{Meaning, Model, VelocityInfo, names};
 use crate::source::Span;
-use crate::syntax::ast::{self, EquationBody, ExprKind, FrameKind, RequestKind};
+use crate::syntax::ast::{self, ExprKind, FrameKind, RequestKind};
 use crate::units::Dimension;
 
 /// The frame of a model.
@@ -54,7 +55,7 @@ pub fn resolve(model: &mut Model) -> Vec<ModelError> {
     let mut frame_needed = None;
     vectors(model, &mut frame_needed, &mut errors);
     velocity(model, &mut frame_needed, &mut errors);
-    equations(model, &mut frame_needed, &mut errors);
+    equations::resolve(model, &mut frame_needed, &mut errors);
     requests(model);
     if let (None, Some(span)) = (&model.frame, frame_needed) {
         errors.push(ModelError::NoFrame { span });
@@ -259,218 +260,6 @@ fn velocity(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec
         }
     }
     model.velocity = Some(VelocityInfo { components, span });
-}
-
-// Equations -------------------------------------------------------------------------------------
-
-/// Every equation comes out as scalar ones, at its place in the order of declarations. Those
-/// made of others come when all that they are made of is known.
-fn equations(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec<ModelError>) {
-    let declared = std::mem::take(&mut model.equations);
-    let mut waiting: Vec<(usize, ast::EquationDecl)> = declared.into_iter().enumerate().collect();
-    let mut scalar = Vec::with_capacity(waiting.len());
-    while !waiting.is_empty() {
-        // In a ring, which is told later, all are taken as they stand.
-        let next = waiting
-            .iter()
-            .position(|(_, decl)| is_ready(decl, &waiting));
-        let (place, decl) = waiting.remove(next.unwrap_or(0));
-        let made = scalar_equations(model, decl, frame_needed, errors);
-        scalar.extend(made.into_iter().map(|decl| (place, decl)));
-    }
-    scalar.sort_by_key(|(place, _)| *place);
-    let scalar = scalar.into_iter().map(|(_, decl)| decl).collect();
-    index(model, scalar, errors);
-}
-
-/// Whether an equation is made of none that wait.
-fn is_ready(decl: &ast::EquationDecl, waiting: &[(usize, ast::EquationDecl)]) -> bool {
-    let EquationBody::Made(expr) = &decl.body else {
-        return true;
-    };
-    let mut is_ready = true;
-    names::visit_names(expr, &mut |name, _| {
-        is_ready &= !waiting.iter().any(|(_, other)| other.name.text == name);
-    });
-    is_ready
-}
-
-/// What an equation stands for: itself, or the components of a vector equation.
-fn scalar_equations(
-    model: &mut Model,
-    decl: ast::EquationDecl,
-    frame_needed: &mut Option<Span>,
-    errors: &mut Vec<ModelError>,
-) -> Vec<ast::EquationDecl> {
-    let mut shapes = match decl.body {
-        EquationBody::Written { .. } => Shapes::new(model),
-        EquationBody::Made(_) => Shapes::of_equations(model),
-    };
-    let (found, span) = match &decl.body {
-        EquationBody::Written { left, right } => {
-            let sides = (shapes.shape(left), shapes.shape(right));
-            let found = shapes.same((sides.0, left.span), (sides.1, right.span));
-            (found, left.span)
-        }
-        EquationBody::Made(expr) => (shapes.shape(expr), expr.span),
-    };
-    if let Some(span) = shapes.frame_needed {
-        frame_needed.get_or_insert(span);
-    }
-    let has_operations = shapes.frame_needed.is_some();
-    let is_faulty = !shapes.errors.is_empty() || model.frame.is_none() && has_operations;
-    errors.append(&mut shapes.errors);
-    match found {
-        Found::Known(Shape::Stress) => {
-            errors.push(ModelError::WrongShape {
-                wanted: Shape::Vector,
-                found: Shape::Stress,
-                span,
-                because: None,
-            });
-            vec![silenced(decl)]
-        }
-        Found::Known(Shape::Vector) => match component_equations(model, &decl, is_faulty) {
-            Ok(made) => {
-                model.vector_equations.push(VectorEquationInfo {
-                    name: decl.name,
-                    components: made.iter().map(|made| made.name.text.clone()).collect(),
-                });
-                made
-            }
-            Err(error) => {
-                errors.extend(error);
-                vec![silenced(decl)]
-            }
-        },
-        Found::Known(Shape::Scalar) | Found::Any if !is_faulty => {
-            match of_operations(model, decl, has_operations) {
-                Ok(decl) => vec![decl],
-                Err((decl, error)) => {
-                    errors.push(error);
-                    vec![silenced(decl)]
-                }
-            }
-        }
-        Found::Known(Shape::Scalar) | Found::Any | Found::Faulty => vec![silenced(decl)],
-    }
-}
-
-/// A made equation with its scalar operations, as `div(momentum)`, written out.
-fn of_operations(
-    model: &Model,
-    mut decl: ast::EquationDecl,
-    has_operations: bool,
-) -> Result<ast::EquationDecl, (ast::EquationDecl, ModelError)> {
-    if let (EquationBody::Made(expr), Some(frame), true) =
-        (&decl.body, &model.frame, has_operations)
-    {
-        match Writer::of_equations(model, frame).scalar(expr) {
-            Ok(made) => {
-                let span = expr.span;
-                decl.body = EquationBody::Made(made.unwrap_or_else(|| build::zero(span)));
-            }
-            Err(error) => return Err((decl, error)),
-        }
-    }
-    Ok(decl)
-}
-
-/// An equation whose faults were told: nothing more is said of what stands in it.
-fn silenced(mut decl: ast::EquationDecl) -> ast::EquationDecl {
-    let error = |span| ast::Expr {
-        kind: ExprKind::Error,
-        span,
-    };
-    decl.body = EquationBody::Written {
-        left: error(decl.name.span),
-        right: error(decl.name.span),
-    };
-    decl
-}
-
-/// The name of a component equation.
-fn component_name(equation: &str, along: &str) -> String {
-    format!("{equation}_{along}")
-}
-
-/// The component equations of a vector equation, those left out in which nothing stands.
-fn component_equations(
-    model: &Model,
-    decl: &ast::EquationDecl,
-    is_faulty: bool,
-) -> Result<Vec<ast::EquationDecl>, Option<ModelError>> {
-    let frame = model.frame.as_ref().ok_or(None)?;
-    let mut made = Vec::new();
-    for (axis, along) in frame.coordinates.iter().enumerate() {
-        let mut component = ast::EquationDecl {
-            name: ast::Name {
-                text: component_name(&decl.name.text, &along.text),
-                span: decl.name.span,
-            },
-            ..decl.clone()
-        };
-        if is_faulty {
-            made.push(silenced(component));
-            continue;
-        }
-        if let Some(body) = component_body(model, frame, &decl.body, axis)? {
-            component.body = body;
-            made.push(component);
-        }
-    }
-    Ok(made)
-}
-
-/// One component of both sides, or of a combination; none where nothing is left.
-fn component_body(
-    model: &Model,
-    frame: &FrameInfo,
-    body: &EquationBody,
-    axis: usize,
-) -> Result<Option<EquationBody>, ModelError> {
-    match body {
-        EquationBody::Written { left, right } => {
-            let mut writer = Writer::new(model, frame);
-            let sides = (
-                writer.component(left, axis)?,
-                writer.component(right, axis)?,
-            );
-            Ok(match sides {
-                (None, None) => None,
-                (one, other) => Some(EquationBody::Written {
-                    left: one.unwrap_or_else(|| build::zero(left.span)),
-                    right: other.unwrap_or_else(|| build::zero(right.span)),
-                }),
-            })
-        }
-        EquationBody::Made(expr) => {
-            let mut writer = Writer::of_equations(model, frame);
-            let Some(made) = writer.component(expr, axis)? else {
-                return Ok(None);
-            };
-            Ok(writer.scalar(&made)?.map(EquationBody::Made))
-        }
-    }
-}
-
-/// Puts the equations into the model under their names.
-fn index(model: &mut Model, equations: Vec<ast::EquationDecl>, errors: &mut Vec<ModelError>) {
-    model.equation_names.clear();
-    for decl in equations {
-        let name = decl.name.text.clone();
-        if let Some(&first) = model.equation_names.get(&name) {
-            errors.push(ModelError::NameClash {
-                name,
-                span: decl.name.span,
-                first: Some(model.equations[first].name.span),
-                what: Clash::Equation,
-            });
-            continue;
-        }
-        model.equation_names.insert(name, model.equations.len());
-        model.equations.push(decl);
-    }
 }
 
 /// In a list of equations the name of a vector equation stands for its components.

@@ -4,6 +4,7 @@ use super::expand::not_a_term;
 use super::pieces::{
     Piece, Pieces, Sided, collected, gathered, leveled, multiplied, named, written_tag,
 };
+use super::tangents::without_tangents;
 use super::written::{has_partials, process_names};
 use super::{Maker, Side, Source, Summand};
 use crate::algebra::product::{Base, Derivative, Factor, Product};
@@ -181,10 +182,12 @@ impl Maker<'_> {
         let Some(idx) = self.model.equation(name) else {
             return Err(no_combination(span));
         };
-        Ok(self
-            .take(idx)
-            .map(|source| source.pieces)
-            .unwrap_or_default())
+        let pieces = self.take(idx).map(|source| source.pieces);
+        let pieces = pieces.unwrap_or_default();
+        if !self.model.is_component(idx) {
+            return Ok(pieces);
+        }
+        on_sides(&pieces, |pieces| sines(pieces, span))
     }
 
     /// An equation that is done; none if an error was reported for it.
@@ -216,8 +219,12 @@ impl Maker<'_> {
         pieces: &[Sided],
         span: Span,
     ) -> Combined {
-        let before = self.product(&factors[..place], span)?;
-        let behind = self.product(&factors[place + 1..], span)?;
+        let mut before = self.product(&factors[..place], span)?;
+        let mut behind = self.product(&factors[place + 1..], span)?;
+        if self.model.frame.is_some() {
+            before = sines(before, span)?;
+            behind = sines(behind, span)?;
+        }
         let highest = self.highest();
         on_sides(pieces, |pieces| {
             let pieces = multiplied(&before, &pieces, highest, span)?;
@@ -478,6 +485,16 @@ impl Maker<'_> {
         }
         Ok(Some(pieces))
     }
+}
+
+/// Pieces whose tangents are sines over cosines.
+fn sines(pieces: Vec<Piece>, span: Span) -> Pieces {
+    let plain = |piece: Piece| {
+        let product = without_tangents(&piece.product);
+        let product = product.map_err(|_| ModelError::TooLarge { span })?;
+        Ok(piece.with_product(product))
+    };
+    pieces.into_iter().map(plain).collect()
 }
 
 fn as_product(factors: &[Factor]) -> Product {

@@ -11,6 +11,7 @@ mod made;
 mod means;
 mod pieces;
 mod sized;
+mod tangents;
 mod written;
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
