@@ -46,6 +46,10 @@ pub const VECTOR_NODES: usize = 20_000;
 /// Most modules and files that one script may bring in.
 pub const MODULES: usize = 200;
 
+/// Most ranges that matter to balances and are searched through; beyond them balances are
+/// looked for at the nominal values.
+pub const RANGES: usize = 10;
+
 /// Most balances that are listed.
 pub const BALANCES: usize = 10_000;
 

@@ -41,16 +41,6 @@ pub(crate) fn saved(
     folders: &Folders<'_>,
     before: &[Saved],
 ) -> Result<Saved, Diagnostic> {
-    if origin
-        .model
-        .coordinates
-        .iter()
-        .any(|info| info.about.is_some())
-    {
-        // The displacement from the origin has no spelling of its own.
-        let message = "a system with a coordinate about an origin cannot be saved by this version";
-        return Err(Diagnostic::error("not-available", save.span, message));
-    }
     let path = folders.path(save)?;
     let refused = |reason: &str| {
         let message = format!("`{}` is not written: {reason}", save.text);

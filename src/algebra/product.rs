@@ -207,6 +207,46 @@ impl Product {
         canonical(&self.factors)
     }
 
+    /// The number and symbols of a monomial.
+    pub fn constants(monomial: &Monomial) -> Product {
+        let factors = monomial.powers().iter().map(|(symbol, power)| Factor {
+            base: Base::Symbol(symbol.clone()),
+            power: *power,
+        });
+        Product {
+            number: monomial.number.clone(),
+            factors: factors.collect(),
+        }
+    }
+
+    /// The same with derived scales and constants replaced.
+    ///
+    /// # Errors
+    /// [`TooLarge`] beyond the limits.
+    pub fn resolved(&self, quantities: &Quantities) -> Result<Product, TooLarge> {
+        let mut found = Product::number(self.number.clone());
+        for factor in &self.factors {
+            let next = match &factor.base {
+                Base::Symbol(symbol) => {
+                    let size = quantities.symbol_size(symbol).resolved;
+                    Product::constants(&size.power(factor.power)?)
+                }
+                Base::Coordinate(_)
+                | Base::Field(_)
+                | Base::Derivative(_)
+                | Base::Absolute(_)
+                | Base::Sized(_)
+                | Base::Mean(_)
+                | Base::Function(_) => Product {
+                    number: Number::one(),
+                    factors: vec![factor.clone()],
+                },
+            };
+            found = found.times(&next)?;
+        }
+        Ok(found)
+    }
+
     /// Its size: number times sizes of its factors.
     ///
     /// # Errors

@@ -185,8 +185,9 @@ impl Search<'_> {
             }],
             at_least_one: vec![ratio.power(Exponent::ONE.negated())?],
             powers: None,
+            with_ranges: true,
         };
-        let prepared = Prepared::new(&query)?;
+        let prepared = Prepared::new(&query);
         let found = prevariety::balances(&prepared.system, watch);
         if found.ending != Ending::Complete {
             self.ending = found.ending;

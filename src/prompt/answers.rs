@@ -7,7 +7,7 @@ use crate::analysis::rank::RankedEquation;
 use crate::analysis::show::Shown;
 use crate::analysis::{Answer, Body};
 use crate::prompt::layout::Sheet;
-use crate::report::layout::{number, percent, quantity, unit};
+use crate::report::layout::{number, percent, quantity, range, unit};
 use crate::report::text;
 use crate::session::changes::{Changes, Moved, OpenName};
 use crate::session::incremental::{Replaced, Taken};
@@ -108,16 +108,26 @@ fn narrow_rank(equation: &RankedEquation, sheet: &Sheet, out: &mut String) {
         let process = term.process.as_ref().map(|process| format!("{process}: "));
         let text = format!("{}{}", process.unwrap_or_default(), term.text);
         out.push_str(&sheet.paragraph("  ", &text));
-        let size = number(term.size.nominal);
+        let size = range(&term.size);
         let verdict = term.verdict.word();
         let figures = format!(
             "{verdict}, {}, {size} {}",
-            percent(term.share.nominal),
+            share(&term.share),
             unit(&equation.unit)
         );
         out.push_str(&sheet.paragraph("      ", &figures));
     }
     out.push('\n');
+}
+
+fn share(share: &Range) -> String {
+    match share.is_exact() {
+        true => percent(share.nominal),
+        false => {
+            let low = percent(share.low);
+            format!("{} .. {}", low.trim_end_matches(" %"), percent(share.high))
+        }
+    }
 }
 
 // Declarations --------------------------------------------------------------------------------

@@ -77,10 +77,14 @@ impl Sheet {
         let mut was_full = false;
         for line in text.lines() {
             let (label, rest) = labelled(line);
-            let goes_on = was_full && label.trim().is_empty();
+            let is_blank = label.trim().is_empty() && !rest.is_empty();
+            let above = open.as_ref().map_or(0, |(above, _)| width(above));
+            // Under the text of a full line, or deep in the last column of a table.
+            let goes_on = is_blank
+                && (was_full && width(&label) == above || width(&label) > LONGEST_LABEL + 7);
             was_full = width(line) > WIDTH * 3 / 4;
             match &mut open {
-                Some((above, text)) if goes_on && width(above) == width(&label) => {
+                Some((_, text)) if goes_on => {
                     text.push(' ');
                     text.push_str(rest);
                 }

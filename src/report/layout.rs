@@ -174,13 +174,36 @@ pub fn wrapped_words(label: &str, words: &[String]) -> String {
     out
 }
 
-/// An equation likewise; a line is broken before a sign, never behind it.
+/// An equation likewise; a line is broken before a sign, never behind it, nor inside a
+/// short bracket.
 pub fn wrapped_equation(label: &str, equation: &str) -> String {
-    let mut glued = equation.to_owned();
+    let mut glued = whole_brackets(equation);
     for sign in ["+", "-", "="] {
         glued = glued.replace(&format!(" {sign} "), &format!(" {sign}\u{a0}"));
     }
     wrapped(label, &glued).replace('\u{a0}', " ")
+}
+
+/// Brackets up to this long stay on one line.
+const BRACKET: usize = 40;
+
+/// The text with blanks that do not break inside short brackets.
+fn whole_brackets(text: &str) -> String {
+    let mut out = String::with_capacity(text.len());
+    let mut rest = text;
+    while let Some(open) = rest.find('(') {
+        let inside = rest[open..].find(')').map(|close| open + close + 1);
+        let Some(close) = inside.filter(|close| close - open <= BRACKET) else {
+            out.push_str(&rest[..=open]);
+            rest = &rest[open + 1..];
+            continue;
+        };
+        out.push_str(&rest[..open]);
+        out.push_str(&rest[open..close].replace(' ', "\u{a0}"));
+        rest = &rest[close..];
+    }
+    out.push_str(rest);
+    out
 }
 
 /// An SI unit as people write it: `m/s²`.

@@ -312,3 +312,28 @@ fn what_is_left_of_a_split_is_spelt_by_its_part() {
         "{equation}"
     );
 }
+
+#[test]
+fn a_mean_of_series_is_a_series_of_means() {
+    let answer = expanded(
+        "scale U = 10 m/s\nscale u_s = 1 m/s\nscale H = 1 km\nscale L = 100 km\n\
+         coordinate x ~ L\ncoordinate z ~ H\nfield U_m(x, z) ~ U\n\
+         fluctuation u', w'(x, z) ~ u_s\nfield u = U_m + u'\n\
+         group eps = u_s/U\ngroup flat = H/L\n\
+         equation flux: d_x(u*u) + d_z(w'*u) = 0\nequation mean_flux from mean(flux)\n\
+         limit eps -> 0 with flat ~ eps\nexpand mean_flux to order 2",
+    );
+    assert_eq!(
+        texts(&answer, "1"),
+        ["2*d_x(U_m_0)*U_m_1 + 2*U_m_0*d_x(U_m_1) + eps*d_z(mean(w'_0*u'_0))/flat = 0"]
+    );
+    let second = &entry(&answer["orders"], "order", "2")["equations"][0];
+    assert!(
+        text(&second["text"])
+            .contains("eps*d_z(mean(w'_0*u'_1))/flat + eps*d_z(mean(w'_1*u'_0))/flat"),
+        "{second}"
+    );
+    let terms = list(&second["terms"]).iter();
+    let mixed = terms.filter(|term| text(&term["factors"]).contains("mean(w'_1*u'_0)"));
+    assert!(mixed.clone().count() == 1 && mixed.clone().all(|term| term["forcing"] == true));
+}

@@ -325,6 +325,57 @@ fn two_balances_share_the_box() {
     assert_close(&found[1]["largest_neglected"], 4.0);
 }
 
+/// A range that an unknown follows, or that acts as another one does, adds nothing.
+#[test]
+fn ranges_that_change_no_ratio_change_no_balance() {
+    let script = |rho: &str, g: &str| {
+        format!(
+            "scale V = 40 m/s within 3  scale R = 100 km within 10  scale dP in hPa  scale dZ in m
+            constant f = 1e-4 1/s  constant rho = 1.1 kg/m^3{rho}  constant g = 9.81 m/s^2{g}
+            group Ro = V/(f*R)
+            coordinate r ~ R   field v(r) ~ V   field p(r) ~ dP
+            equation radial: -v^2/r as centrifugal - f*v as coriolis = -d_r(p)/rho as pressure
+            equation weight: rho*g*dZ as weight = dP as pressure
+            find dP, dZ"
+        )
+    };
+    let exact = candidates(&answered(&script("", "")));
+    let ranged = candidates(&answered(&script(" within 2", " within 20 %")));
+    assert_eq!(exact.len(), 2);
+    for (exact, ranged) in exact.iter().zip(&ranged) {
+        for field in ["balances", "conditions", "whole_box", "largest_neglected"] {
+            assert_eq!(exact[field], ranged[field]);
+        }
+        assert_close(
+            &ranged["scales"]["dP"]["value"]["high"],
+            2.0 * exact["scales"]["dP"]["value"]["high"].as_f64().unwrap(),
+        );
+    }
+}
+
+/// Beyond ten ranges that matter balances are looked for at the nominal values; whether
+/// they stand over the ranges is told all the same.
+#[test]
+fn very_many_ranges_are_looked_at_from_the_nominal_values() {
+    let script = |last: &str| {
+        let constants: String = (0..12)
+            .map(|k| format!("constant c{k} = {} within 2\n", 10_i64.pow(k)))
+            .collect();
+        let terms: String = (0..12).map(|k| format!(" + c{k} as t{k}")).collect();
+        format!(
+            "scale X in 1\n{constants}constant d = {last} within 2\nequation e: X as x{terms} + d as last = 0\nfind X"
+        )
+    };
+    let output = answered(&script("1"));
+    assert_eq!(answer(&output, "find", 0)["nominal_only"], true);
+    let found = candidates(&output);
+    assert_eq!((found.len(), &found[0]["whole_box"]), (1, &json!(true)));
+    assert_eq!(found[0]["balances"]["e"], json!(["x", "t11"]));
+    let found = candidates(&answered(&script("2.8e10")));
+    assert_eq!((found.len(), &found[0]["whole_box"]), (1, &json!(false)));
+    assert_eq!(found[0]["conditions"][0]["text"], "d/c11 <= 1");
+}
+
 /// Known scales without values compare as powers of the small parameter of a limit.
 #[test]
 fn a_limit_compares_scales_without_values() {

@@ -5,6 +5,7 @@ mod candidates;
 mod layers;
 mod random;
 mod searches;
+mod text;
 
 use serde_json::{Value, json};
 

@@ -73,11 +73,7 @@ fn standing(reduction: &Reduction) -> Vec<String> {
 #[test]
 fn a_saved_module_gives_the_same_leading_order() {
     let mut tally = Tally::default();
-    // A displacement from an origin cannot be saved, and saying so is tested below.
-    for (name, script) in scripts()
-        .into_iter()
-        .filter(|(_, script)| !script.contains(" about "))
-    {
+    for (name, script) in scripts() {
         let plain = Session::new().run(&name, &format!("{script}\nreduce\n"), None);
         let answers = reductions(&plain);
         let n_cases = plain
@@ -132,19 +128,23 @@ fn compare(tally: &mut Tally, script: &str, whose: &str, reduction: &Reduction) 
 }
 
 #[test]
-fn a_system_about_an_origin_is_not_saved() {
+fn a_displacement_is_saved_as_a_difference() {
     let script = "
-        constant phi_0 = 45 deg  constant a = 6371 km
-        scale L = 500 km  scale U = 10 m/s
+        constant phi_0 = 45 deg
+        constant a = 6371 km
+        scale L = 1500 km
+        scale U = 10 m/s
         coordinate phi ~ L/a about phi_0
         field u, v(phi) ~ U
         equation turning: sin(phi)*u = v as balance_by_v
         reduce save \"turning.scl\"
     ";
     let outcome = Session::new().run("turns.scl", script, None);
-    let codes: Vec<&str> = outcome.diagnostics.iter().map(|found| found.code).collect();
-    assert!(codes.contains(&"not-available"), "{codes:?}");
-    assert!(outcome.saved.is_empty());
+    let text = &outcome.saved[0].text;
+    assert!(text.contains("cos(phi_0)*(phi - phi_0)*u"), "{text}");
+    let again = Session::new().run("turning.scl", text, None);
+    let (first, second) = (reductions(&outcome), reductions(&again));
+    assert_eq!(standing(first[0].1), standing(second[0].1));
 }
 
 #[test]

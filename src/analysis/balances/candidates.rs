@@ -13,6 +13,8 @@ use crate::analysis::balances::{
     Candidate, FamilyEnd, FindFault, FoundScale, FreeScale, Neglected, condition, recognised,
 };
 use crate::analysis::names::Namer;
+use crate::analysis::reduce;
+use crate::analysis::sizes::same;
 use crate::model::Model;
 use crate::number::{Exponent, TooLarge};
 use crate::polyhedra::prevariety::{self, Inequality, LinearForm, Source};
@@ -89,6 +91,10 @@ impl<'a> Describer<'a> {
             true => Some(self.neglected(found, &solution)?),
             false => None,
         };
+        let (whole_box, conditions) = match self.query.with_ranges {
+            true => (self.covers_box(found), self.conditions(found, &solution)?),
+            false => self.over_ranges(found, &solution, free.is_empty())?,
+        };
         Ok(Candidate {
             names: recognised(self.model, self.case, &balances),
             scales: (self.query.unknowns.iter())
@@ -97,10 +103,11 @@ impl<'a> Describer<'a> {
             free: (free.iter())
                 .map(|id| self.free(*id, found, &solution))
                 .collect::<Result<_, TooLarge>>()?,
+            as_one: self.as_one(),
             balances,
             neglected,
-            whole_box: self.covers_box(found),
-            conditions: self.conditions(found, &solution)?,
+            whole_box,
+            conditions,
             is_adopted: false,
         })
     }
@@ -110,6 +117,27 @@ impl<'a> Describer<'a> {
         let pairs = self.query.entries.iter().zip(self.attaining(found));
         pairs
             .map(|(entry, terms)| (entry.equation.name.clone(), labels(entry, terms)))
+            .collect()
+    }
+
+    /// Equations in which tendency and advection count as one process.
+    fn as_one(&self) -> Vec<String> {
+        let entries = self
+            .query
+            .entries
+            .iter()
+            .zip(&self.prepared.system.equations);
+        entries
+            .filter(|(entry, equation)| {
+                let numbers = |wanted: &str| {
+                    let terms = entry.equation.terms.iter().zip(&equation.terms);
+                    let found = terms.filter(|(term, _)| term.label() == wanted);
+                    found.map(|(_, term)| term.process).next()
+                };
+                let tendency = numbers("tendency");
+                tendency.is_some() && tendency == numbers("advection")
+            })
+            .map(|(entry, _)| entry.equation.name.clone())
             .collect()
     }
 
@@ -152,30 +180,35 @@ impl<'a> Describer<'a> {
         found: &prevariety::Candidate,
         solution: &Solution,
     ) -> Result<Neglected, TooLarge> {
-        let mut largest: Option<(f64, String, String)> = None;
+        // Its height below the balance, its share, its name and its equation.
+        let mut largest: Option<(f64, f64, String, String)> = None;
         for (entry, terms) in self.query.entries.iter().zip(self.attaining(found)) {
             let balancing = labels(entry, terms);
-            let mut heights = Vec::new();
+            let mut sizes = Vec::new();
             for size in &entry.sizes {
-                heights.push(self.height(&solution.replaced(size)?));
+                sizes.push(solution.replaced(size)?);
             }
-            let top = terms
-                .iter()
-                .map(|term| heights[*term])
-                .fold(f64::NEG_INFINITY, f64::max);
-            for (term, height) in entry.equation.terms.iter().zip(&heights) {
+            let heights: Vec<f64> = sizes.iter().map(|size| self.height(size)).collect();
+            let higher = |a: &usize, b: &usize| heights[*a].total_cmp(&heights[*b]);
+            let Some(top) = terms.iter().copied().max_by(higher) else {
+                continue;
+            };
+            for (idx, term) in entry.equation.terms.iter().enumerate() {
                 let is_out = balancing.iter().all(|label| label != term.label());
-                let below = height - top;
-                if is_out && largest.as_ref().is_none_or(|(best, ..)| below > *best) {
+                let below = heights[idx] - heights[top];
+                let is_larger = |best: f64| below > best && !same(below.exp(), best.exp());
+                if is_out && largest.as_ref().is_none_or(|(best, ..)| is_larger(*best)) {
+                    let nominal = |place: usize| self.case.setting.nominal(&sizes[place]);
+                    let share = nominal(idx) / nominal(top);
                     let equation = entry.equation.name.clone();
-                    largest = Some((below, term.label().to_owned(), equation));
+                    largest = Some((below, share, term.label().to_owned(), equation));
                 }
             }
         }
         let is_symbolic = self.query.powers.is_some();
         Ok(match largest {
-            Some((below, term, equation)) => Neglected {
-                share: (!is_symbolic).then(|| below.exp()),
+            Some((below, share, term, equation)) => Neglected {
+                share: (!is_symbolic).then_some(share),
                 power: is_symbolic.then_some(-below),
                 term: Some((term, equation)),
             },
@@ -318,7 +351,7 @@ impl<'a> Describer<'a> {
         &self,
         found: &prevariety::Candidate,
         solution: &Solution,
-    ) -> Result<Vec<crate::analysis::reduce::Inequality>, TooLarge> {
+    ) -> Result<Vec<reduce::Inequality>, TooLarge> {
         let mut conditions = Vec::new();
         for inequality in &found.inequalities {
             if !self.is_of_known(&inequality.form) {
@@ -330,6 +363,33 @@ impl<'a> Describer<'a> {
             }
         }
         Ok(conditions)
+    }
+
+    /// The same for a balance found at the nominal values: what overtakes it somewhere in
+    /// the box. Of a family that is not told.
+    fn over_ranges(
+        &self,
+        found: &prevariety::Candidate,
+        solution: &Solution,
+        is_point: bool,
+    ) -> Result<(bool, Vec<reduce::Inequality>), TooLarge> {
+        let mut ratios: Vec<Monomial> = Vec::new();
+        for (idx, entry) in self.query.entries.iter().enumerate() {
+            let sizes = &self.prepared.formulas[idx];
+            let top = &sizes[found.attaining[idx][0]];
+            for (term, size) in sizes.iter().enumerate().take(entry.sizes.len()) {
+                let ratio = solution.replaced(&size.over(top)?)?;
+                let highest = self.value(&ratio).map_or(0.0, |value| value.high);
+                let attains = found.attaining[idx].contains(&term);
+                if !attains && highest > 1.0 && !ratios.contains(&ratio) {
+                    ratios.push(ratio);
+                }
+            }
+        }
+        let conditions: Vec<reduce::Inequality> = (ratios.iter())
+            .map(|ratio| condition(self.case, ratio, &self.namer))
+            .collect();
+        Ok((is_point && conditions.is_empty(), conditions))
     }
 
     fn is_of_known(&self, form: &LinearForm) -> bool {

@@ -7,7 +7,9 @@
 
 pub(crate) mod candidates;
 pub(crate) mod formulas;
+mod logs;
 pub mod powers;
+pub(crate) mod ranges;
 pub(crate) mod system;
 
 use std::ops::ControlFlow;
@@ -16,9 +18,9 @@ use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::names::Namer;
 use crate::analysis::reduce::{Inequality, Kept};
 use crate::analysis::{Case, Factors, LeftOut};
+use crate::limits;
 use crate::model::Model;
 use crate::model::requests::process_label;
-use crate::model::settings::{Setting, Variable};
 use crate::model::terms::EquationTerms;
 use crate::number::TooLarge;
 use crate::polyhedra::prevariety::{self, Ending};
@@ -48,6 +50,8 @@ pub struct Balances {
     pub candidates: Vec<Candidate>,
     /// Where there is none: equations that contradict one another.
     pub contradiction: Vec<String>,
+    /// Whether so many ranges matter that balances were looked for at the nominal values.
+    pub is_nominal: bool,
     /// Whether the request asks for certain processes.
     pub is_conditioned: bool,
     /// The small parameter by whose powers scales were compared.
@@ -67,6 +71,8 @@ pub struct Candidate {
     pub free: Vec<FreeScale>,
     /// The processes that balance, by equation.
     pub balances: Vec<(String, Vec<String>)>,
+    /// Equations in which tendency and advection of one `D_t` count as one process.
+    pub as_one: Vec<String>,
     /// What is neglected; none for a family.
     pub neglected: Option<Neglected>,
     /// Whether it stands over all ranges.
@@ -187,6 +193,7 @@ pub fn find(
         entries,
         at_least_one: Vec::new(),
         powers: None,
+        with_ranges: true,
     };
     if let Some(placing) = &wanted.placing
         && has_open_symbol(&query)
@@ -194,32 +201,21 @@ pub fn find(
         let placed = Powers::place(&case.setting, placing, &query.unknowns, &query.entries);
         query.powers = Some(placed.map_err(|fault| placing_fault(case, fault))?);
     }
-    let prepared = Prepared::new(&query)?;
-    let found = prevariety::balances(&prepared.system, watch);
-    let describer = candidates::Describer::new(model, case, &query, &prepared);
-    let mut candidates = Vec::new();
-    let mut seen = Vec::new();
-    for candidate in &found.candidates {
-        let key = describer.attaining(candidate);
-        if describer.has_inside(candidate) && !seen.contains(&key) {
-            candidates.push(describer.describe(candidate)?);
-            seen.push(key);
-        }
+    let mut prepared = Prepared::new(&query);
+    let is_nominal = prepared.ranged.len() > limits::RANGES;
+    if is_nominal {
+        query.with_ranges = false;
+        prepared = Prepared::new(&query);
     }
-    candidates.sort_by(candidates::order);
-    if let ([only], Ending::Complete) = (candidates.as_mut_slice(), found.ending) {
-        only.is_adopted = true;
-    }
-    let mut ending = found.ending;
+    let (candidates, mut ending) = described(model, case, &query, &prepared, watch)?;
     let mut contradiction = Vec::new();
     if candidates.is_empty() && ending == Ending::Complete {
         let mut is_stopped = false;
-        let mut watched = |n_found| {
+        contradiction = contradicting(&mut query, &prepared, &mut |n_found| {
             let step = watch(n_found);
             is_stopped |= step.is_break();
             step
-        };
-        contradiction = contradicting(&query, &prepared, &mut watched)?;
+        });
         if is_stopped {
             ending = Ending::Stopped;
         }
@@ -230,11 +226,38 @@ pub fn find(
             .collect(),
         candidates,
         contradiction,
+        is_nominal,
         is_conditioned: !wanted.conditions.is_empty(),
         small: query.powers.as_ref().map(|powers| powers.text.clone()),
         ending,
     };
     Ok((balances, left_out))
+}
+
+/// All candidates of a query, described and in order; one that is alone is adopted.
+fn described(
+    model: &Model,
+    case: &Case,
+    query: &Query<'_>,
+    prepared: &Prepared,
+    watch: Watch<'_>,
+) -> Result<(Vec<Candidate>, Ending), FindFault> {
+    let found = prevariety::balances(&prepared.system, watch);
+    let describer = candidates::Describer::new(model, case, query, prepared);
+    let mut all = Vec::new();
+    let mut seen = Vec::new();
+    for candidate in &found.candidates {
+        let key = describer.attaining(candidate);
+        if describer.has_inside(candidate) && !seen.contains(&key) {
+            all.push(describer.describe(candidate)?);
+            seen.push(key);
+        }
+    }
+    all.sort_by(candidates::order);
+    if let ([only], Ending::Complete) = (all.as_mut_slice(), found.ending) {
+        only.is_adopted = true;
+    }
+    Ok((all, found.ending))
 }
 
 /// The equations that hold an unknown. Those that hold other open names are left out,
@@ -361,29 +384,11 @@ fn placing_fault(case: &Case, fault: PlacingFault) -> FindFault {
 
 /// A smallest set of equations without a common balance, at the nominal values where the
 /// ranges have one that is no part of them.
-fn contradicting(
-    query: &Query<'_>,
-    prepared: &Prepared,
-    watch: Watch<'_>,
-) -> Result<Vec<String>, FindFault> {
+fn contradicting(query: &mut Query<'_>, prepared: &Prepared, watch: Watch<'_>) -> Vec<String> {
     let mut found = prevariety::contradiction(&prepared.system, watch);
     if found.is_none() && !prepared.ranged.is_empty() {
-        let nominal = nominal_setting(query.setting);
-        let at_nominal = Query {
-            setting: &nominal,
-            unknowns: query.unknowns.clone(),
-            entries: (query.entries.iter())
-                .map(|entry| Entry {
-                    equation: entry.equation,
-                    sizes: entry.sizes.clone(),
-                    required: entry.required.clone(),
-                    leaders: entry.leaders.clone(),
-                })
-                .collect(),
-            at_least_one: query.at_least_one.clone(),
-            powers: None,
-        };
-        found = prevariety::contradiction(&Prepared::new(&at_nominal)?.system, watch);
+        query.with_ranges = false;
+        found = prevariety::contradiction(&Prepared::new(query).system, watch);
     }
     let mut places: Vec<usize> = match found {
         Some(places) => places
@@ -395,18 +400,7 @@ fn contradicting(
     places.sort_unstable();
     places.dedup();
     let name = |place: usize| query.entries[place].equation.name.clone();
-    Ok(places.into_iter().map(name).collect())
-}
-
-/// The same setting without its ranges.
-fn nominal_setting(setting: &Setting) -> Setting {
-    let mut nominal = setting.clone();
-    for variable in &mut nominal.variables {
-        if let Variable::Known(value) = variable {
-            value.range = Range::exact(value.range.nominal);
-        }
-    }
-    nominal
+    places.into_iter().map(name).collect()
 }
 
 /// The declared balances that this is, of two for the same equations the first: those

@@ -7,7 +7,6 @@ use crate::algebra::series::{self, Graded, Series};
 use crate::analysis::hierarchy::HierarchyFault;
 use crate::analysis::hierarchy::expander::Part;
 use crate::analysis::hierarchy::series::coefficient_of;
-use crate::analysis::hierarchy::solvability::resolved;
 use crate::analysis::hierarchy::view::View;
 use crate::model::terms::Side;
 use crate::number::{Exponent, Number, TooLarge};
@@ -123,9 +122,10 @@ fn derivatives(base: &Base) -> Vec<CoordinateId> {
 
 /// The leading order of an equation, all on its left side.
 fn leading(view: &View<'_>, parts: &[Part]) -> Result<Series, TooLarge> {
+    let quantities = &view.expander.case.setting.quantities;
     let mut sum = Vec::new();
     for part in parts.iter().filter(|part| part.degree == 0) {
-        let product = resolved(view, &part.product)?;
+        let product = part.product.resolved(quantities)?;
         sum.push(Graded::plain(match part.side {
             Side::Left => product,
             Side::Right => product.negated(),

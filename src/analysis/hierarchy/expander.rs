@@ -190,6 +190,7 @@ impl<'a> Expander<'a> {
                 }
             }
         }
+        without_common_number(&mut found)?;
         self.placed.push(found);
         Ok(())
     }
@@ -430,6 +431,26 @@ impl<'a> Expander<'a> {
         }
         Ok(parts)
     }
+}
+
+/// Divides an equation by the number that all terms of its leading order have in common
+/// through their sizes; a number that is written in all of them stays.
+fn without_common_number(terms: &mut [PlacedTerm<'_>]) -> Result<(), HierarchyFault> {
+    let leading = terms.iter().filter(|placed| placed.power.is_zero());
+    let numbers: Vec<(Number, Number)> = leading
+        .map(|placed| (placed.number.abs(), placed.term.product.number.abs()))
+        .collect();
+    let Some((common, written)) = numbers.first() else {
+        return Ok(());
+    };
+    let is_common = numbers.iter().all(|(number, _)| number == common);
+    if !is_common || numbers.iter().all(|(_, own)| own == written) {
+        return Ok(());
+    }
+    for placed in terms {
+        placed.number = placed.number.over(common)?.ok_or(TooLarge)?;
+    }
+    Ok(())
 }
 
 /// Adds a part to a like one, or behind the others.

@@ -4,7 +4,7 @@
 //! The coefficient of a field at one order is a field of its own, so that all of it is
 //! ordinary algebra; [`Coefficients`] tells which is which.
 
-use crate::algebra::product::{Base, Derivative, Factor, Product};
+use crate::algebra::product::{Base, Derivative, Factor, Factors, Product};
 use crate::algebra::quantities::{CoordinateId, FieldId, Quantities};
 use crate::algebra::series::{self, Graded, Series};
 use crate::number::{Exponent, Number, TooLarge};
@@ -107,7 +107,7 @@ impl Coefficients {
 
     fn factor_series(&self, factor: &Factor) -> Result<Series, SeriesFault> {
         let base = match &factor.base {
-            Base::Symbol(_) | Base::Coordinate(_) | Base::Mean(_) => {
+            Base::Symbol(_) | Base::Coordinate(_) => {
                 return Ok(vec![Graded::plain(Product {
                     number: Number::one(),
                     factors: vec![factor.clone()],
@@ -115,6 +115,7 @@ impl Coefficients {
             }
             Base::Field(id) => self.field_series(*id),
             Base::Derivative(derivative) => self.derivative_series(derivative)?,
+            Base::Mean(inside) => self.mean_series(inside)?,
             Base::Absolute(_) | Base::Sized(_) | Base::Function(_) => {
                 return Err(SeriesFault::NotAProduct);
             }
@@ -130,6 +131,25 @@ impl Coefficients {
                 degree: *degree,
             })
             .collect()
+    }
+
+    fn mean_series(&self, inside: &Factors) -> Result<Series, SeriesFault> {
+        let operand = Product {
+            number: Number::one(),
+            factors: inside.clone(),
+        };
+        let series = self.series(&operand, 0)?;
+        let means = series.into_iter().map(|term| Graded {
+            product: Product {
+                number: term.product.number,
+                factors: vec![Factor {
+                    base: Base::Mean(Box::new(term.product.factors)),
+                    power: Exponent::ONE,
+                }],
+            },
+            degree: term.degree,
+        });
+        Ok(series::collected(means.collect()))
     }
 
     fn derivative_series(&self, derivative: &Derivative) -> Result<Series, SeriesFault> {

@@ -228,7 +228,8 @@ impl System {
         for (parts, entry) in equations.iter().zip(vector) {
             let mut own = Vec::new();
             for part in parts.iter().filter(|part| part.degree == degree) {
-                let product = resolved(view, &part.product)?;
+                let quantities = &view.expander.case.setting.quantities;
+                let product = part.product.resolved(quantities)?;
                 own.push(Graded::plain(match part.side {
                     Side::Left => product,
                     Side::Right => product.negated(),
@@ -343,45 +344,6 @@ fn symbols_of(rows: &[Vec<Linear<'_>>]) -> Result<Symbols, TooLarge> {
     symbols.constants.sort_unstable();
     symbols.constants.dedup();
     Ok(symbols)
-}
-
-/// A product with derived scales and constants replaced.
-pub(super) fn resolved(view: &View<'_>, product: &Product) -> Result<Product, TooLarge> {
-    let quantities = &view.expander.case.setting.quantities;
-    let mut found = Product::number(product.number.clone());
-    for factor in &product.factors {
-        let next = match &factor.base {
-            Base::Symbol(symbol) => {
-                let size = quantities
-                    .symbol_size(symbol)
-                    .resolved
-                    .power(factor.power)?;
-                Product {
-                    number: size.number.clone(),
-                    factors: size
-                        .powers()
-                        .iter()
-                        .map(|(symbol, power)| Factor {
-                            base: Base::Symbol(symbol.clone()),
-                            power: *power,
-                        })
-                        .collect(),
-                }
-            }
-            Base::Coordinate(_)
-            | Base::Field(_)
-            | Base::Derivative(_)
-            | Base::Absolute(_)
-            | Base::Sized(_)
-            | Base::Mean(_)
-            | Base::Function(_) => Product {
-                number: Number::one(),
-                factors: vec![factor.clone()],
-            },
-        };
-        found = found.times(&next)?;
-    }
-    Ok(found)
 }
 
 /// A sum that must vanish, with its coefficients over the largest of them.

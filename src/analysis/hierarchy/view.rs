@@ -240,7 +240,12 @@ impl View<'_> {
             Base::Mean(_) | Base::Absolute(_) | Base::Sized(_) | Base::Function(_) => {
                 let speller = self.expander.speller(quantities, false);
                 let alone = Product::base(factor.base.clone());
-                Some(plain(speller.product(&alone)))
+                let degrees = alone.fields().into_iter();
+                let highest = degrees.map(|id| self.coefficients.of(id).1).max();
+                Some(OrderFactor {
+                    order: order_of(highest.unwrap_or(0), self.steps),
+                    ..plain(speller.product(&alone))
+                })
             }
         }
     }

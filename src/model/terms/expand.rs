@@ -34,7 +34,7 @@ impl Maker<'_> {
                         Sign::Minus => piece.negated(),
                     }));
                 }
-                sum
+                self.displaced(sum, span)?
             }
             ExprKind::Product(factors) => self.product(factors, span)?,
             ExprKind::Negate(inside) => self.expand(inside)?.iter().map(Piece::negated).collect(),

@@ -493,7 +493,7 @@ impl Maker<'_> {
             let product = displacement.power(power).map_err(too_large)?;
             return Ok(vec![Graded { product, degree }]);
         }
-        let level = level_product(&origin.level);
+        let level = Product::constants(&origin.level);
         let small = [Graded {
             product: displacement,
             degree: 1,
@@ -574,18 +574,6 @@ fn as_product(factor: &Factor) -> Product {
     Product {
         number: Number::one(),
         factors: vec![factor.clone()],
-    }
-}
-
-/// The origin of a coordinate as a product.
-fn level_product(level: &Monomial) -> Product {
-    let factors = level.powers().iter().map(|(symbol, power)| Factor {
-        base: Base::Symbol(symbol.clone()),
-        power: *power,
-    });
-    Product {
-        number: level.number.clone(),
-        factors: factors.collect(),
     }
 }
 

@@ -5,6 +5,7 @@
 //! and its text.
 
 mod derivatives;
+mod displacements;
 mod expand;
 mod expansion;
 mod made;

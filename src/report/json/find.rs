@@ -11,6 +11,7 @@ pub(super) fn find(balances: &Balances) -> Value {
     let mut object = json!({
         "unknowns": balances.unknowns,
         "candidates": list(&balances.candidates, candidate),
+        "nominal_only": balances.is_nominal,
     });
     if let (true, Value::Object(object)) = (balances.candidates.is_empty(), &mut object) {
         object.insert("contradiction".to_owned(), json!(balances.contradiction));

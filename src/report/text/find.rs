@@ -15,6 +15,13 @@ pub(super) fn find(balances: &Balances, pen: &Pen, out: &mut String) {
         return;
     }
     out.push_str(&wrapped("", &summary(balances)));
+    if balances.is_nominal {
+        let text = format!(
+            "more than {} ranges matter: balances are looked for at the nominal values",
+            crate::limits::RANGES
+        );
+        out.push_str(&wrapped("", &text));
+    }
     if let Some(small) = &balances.small {
         out.push_str(&wrapped("", &format!("sizes compare as powers of {small}")));
     }
@@ -81,7 +88,8 @@ fn write_candidate(
             padded(word, 9),
             padded(equation, names.min(24))
         );
-        out.push_str(&wrapped(&label, &processes.join(" ~ ")));
+        let is_one = candidate.as_one.contains(equation);
+        out.push_str(&wrapped(&label, &balance_words(processes, is_one)));
     }
     if let Some(neglected) = &candidate.neglected {
         let text = neglected_words(neglected, small);
@@ -89,6 +97,22 @@ fn write_candidate(
     }
     stands(candidate, out);
     out.push('\n');
+}
+
+/// `tendency + advection ~ pressure_gradient` where the first two count as one process.
+fn balance_words(processes: &[String], is_one: bool) -> String {
+    let of_one = |process: &str| process == "tendency" || process == "advection";
+    let mut text = String::new();
+    for (idx, process) in processes.iter().enumerate() {
+        let sign = match idx {
+            0 => "",
+            _ if is_one && of_one(process) && of_one(&processes[idx - 1]) => " + ",
+            _ => " ~ ",
+        };
+        text.push_str(sign);
+        text.push_str(process);
+    }
+    text
 }
 
 fn scales(candidate: &Candidate, out: &mut String) {
