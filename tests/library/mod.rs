@@ -6,7 +6,9 @@ use std::fs;
 use std::path::PathBuf;
 
 use scalewright::model::library::{MODULES, Module};
+use scalewright::{Session, report};
 use serde_json::Value;
+use unicode_width::UnicodeWidthStr;
 
 use crate::harness::{answers, list, text};
 
@@ -113,6 +115,42 @@ fn every_demonstration_holds() {
         found.extend(faults.iter().map(|fault| format!("{}: {fault}", demo.name)));
     }
     assert!(found.is_empty(), "{}", found.join("\n"));
+}
+
+#[test]
+fn reports_of_demonstrations_fit_a_terminal() {
+    for demo in MODULES.iter().filter(is_demo) {
+        let outcome = Session::new().run(demo.name, demo.text, None);
+        let report = report::text::report(&outcome, false);
+        for line in report.lines() {
+            assert!(line.width() <= 80, "{}: {line}", demo.name);
+        }
+    }
+}
+
+#[test]
+fn of_many_dropped_terms_those_far_below_the_tolerance_are_counted() {
+    let demo = scalewright::model::library::find("demo.sphere").expect("it is bundled");
+    let outcome = Session::new().run(demo.name, demo.text, None);
+    let report = report::text::report(&outcome, false);
+    let dropped = list(&answers(demo.text)["answers"][0]["equations"][0]["dropped"]).len();
+    let unwrapped = report.split_whitespace().collect::<Vec<_>>().join(" ");
+    let first = unwrapped.split(" error ").next().unwrap_or_default();
+    let (_, listed) = first.split_once(" dropped ").expect("terms are dropped");
+    let terms: Vec<&str> = listed.split(", ").collect();
+    let (last, named) = terms.split_last().expect("some are listed");
+    let counted: usize = last
+        .split(' ')
+        .next()
+        .unwrap_or_default()
+        .parse()
+        .expect("a count");
+    assert!(last.contains("more of at most"), "{last}");
+    assert_eq!(named.len() + counted, dropped);
+    assert!(
+        named.iter().any(|term| term.starts_with("u*w/a ")),
+        "{named:?}"
+    );
 }
 
 /// The errors and warnings of a script that uses these modules and asks nothing of them.
