@@ -4,7 +4,7 @@
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::{self, Case};
 use crate::model::settings::{Setting, Variable};
-use crate::model::{FieldInfo, Meaning, Model, names, requests};
+use crate::model::{FieldInfo, Meaning, Model, names};
 use crate::source::Span;
 use crate::syntax::{ast, print};
 use crate::units::{self, Dimension, Range};
@@ -113,7 +113,7 @@ fn used(model: &Model, cases: &[Case]) -> Vec<bool> {
         }
     }
     for (own, request) in &model.requests {
-        requests::visit_expressions(request, &mut |expr| {
+        request.visit_expressions(&mut |expr| {
             waiting.extend(names::symbols_in(expr, model, *own));
         });
         match &request.kind {

@@ -11,7 +11,7 @@ use crate::algebra::monomial::Monomial;
 use crate::analysis::show::{self, CaseNames, Quotient};
 use crate::analysis::sizes::{self, at_most, same};
 use crate::model::values::Fault;
-use crate::model::{declarations, dimensions, settings};
+use crate::model::{declarations, dimensions, spreading};
 use crate::number::rational_to_f64;
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ClaimWord, Relation};
@@ -146,7 +146,7 @@ fn ratio(
 ) -> Result<Held, Fault> {
     let limit = match (relation, within) {
         (Relation::Similar, None) => 10f64.sqrt(),
-        (Relation::Similar, Some(within)) => rational_to_f64(&settings::factor(within)?),
+        (Relation::Similar, Some(within)) => rational_to_f64(&spreading::factor(within)?),
         (_, None) => names.case.setting.tolerance(),
         (_, Some(within)) => rational_to_f64(&declarations::share(within)?),
     };

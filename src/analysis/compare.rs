@@ -363,7 +363,7 @@ pub fn check(model: &Model, request: &ast::Request) -> Vec<ModelError> {
     };
     let phenomena = phenomena
         .iter()
-        .filter_map(|name| crate::model::requests::phenomenon(model, name).err());
+        .filter_map(|name| crate::analysis::requests::phenomenon(model, name).err());
     let groups = matching
         .iter()
         .flatten()

@@ -16,6 +16,7 @@ pub mod neglected;
 pub mod nondimensional;
 pub mod rank;
 pub mod reduce;
+pub mod requests;
 pub mod shelf;
 pub mod show;
 pub mod sizes;

@@ -17,9 +17,9 @@ pub mod limit;
 pub mod modules;
 pub mod names;
 pub mod order;
-pub mod requests;
 pub mod settings;
 pub mod spelling;
+pub mod spreading;
 pub mod terms;
 pub mod values;
 

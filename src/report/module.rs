@@ -342,7 +342,8 @@ fn knows(origin: &Origin<'_>, kept: &[&ReducedEquation], part: &ast::BalancePart
         return false;
     };
     part.processes.iter().all(|process| {
-        let label = crate::model::requests::process_label(origin.model, origin.case, idx, process);
+        let label =
+            crate::analysis::requests::process_label(origin.model, origin.case, idx, process);
         label.is_ok_and(|label| {
             let mut kept = equation.kept.iter();
             kept.any(|term| term.process.as_deref().unwrap_or(&term.text) == label)

@@ -8,7 +8,7 @@ use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
 use crate::model::limit;
 use crate::number::Exponent;
-use crate::session::{Answering, LimitWords};
+use crate::session::answering::{Answering, LimitWords};
 use crate::source::Span;
 use crate::syntax::ast;
 

@@ -6,17 +6,18 @@
 //! each declaration the whole page is checked anew, which is fast; a request is answered
 //! on the model that stands.
 
-use crate::analysis::Case;
 use crate::analysis::show::{self, CaseNames, Shown};
+use crate::analysis::{Case, requests};
 use crate::diagnostic::{self, Diagnostic};
 use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::ModelError;
 use crate::model::modules;
-use crate::model::{Level, Model, declarations, requests};
+use crate::model::{Level, Model, declarations};
 use crate::saving;
+use crate::session::answering::Answering;
 use crate::session::changes::{self, Changes};
 use crate::session::merge::{self, Merged, Written};
-use crate::session::{Answering, Checked, Outcome, Session, check_model, judged};
+use crate::session::{Checked, Outcome, Session, check_model, judged};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, Statement, StatementKind};
 use crate::syntax::errors::SyntaxError;

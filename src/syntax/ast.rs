@@ -415,6 +415,46 @@ pub struct Request {
     pub span: Span,
 }
 
+impl Request {
+    /// Calls `visit` for every expression of the request.
+    pub fn visit_expressions<'a>(&'a self, visit: &mut impl FnMut(&'a Expr)) {
+        match &self.kind {
+            RequestKind::Show { expr, .. } => visit(expr),
+            RequestKind::Claim(Claim::Relation { left, right, .. }) => {
+                visit(left);
+                visit(right);
+            }
+            RequestKind::Limit { small, places } => {
+                visit(small);
+                for place in places {
+                    if let LimitPlace::Group(group, power) = place {
+                        visit(group);
+                        visit(power);
+                    }
+                }
+            }
+            RequestKind::Sweep(axis) => {
+                visit(&axis.from);
+                visit(&axis.to);
+            }
+            RequestKind::Regimes(x, y) => [x, y].into_iter().for_each(|axis| {
+                visit(&axis.from);
+                visit(&axis.to);
+            }),
+            RequestKind::Claim(Claim::Verdict { .. })
+            | RequestKind::Rank { .. }
+            | RequestKind::Nondimensionalize { .. }
+            | RequestKind::Reduce { .. }
+            | RequestKind::Bounds { .. }
+            | RequestKind::Find { .. }
+            | RequestKind::Layers
+            | RequestKind::Groups
+            | RequestKind::Expand { .. }
+            | RequestKind::Compare { .. } => {}
+        }
+    }
+}
+
 /// The kinds of request.
 #[derive(Debug, Clone)]
 pub enum RequestKind {

@@ -14,11 +14,12 @@ use crate::analysis::bounds::conditions::Condition;
 use crate::analysis::bounds::standing::{Reduced, Threat, Why};
 use crate::analysis::movable;
 use crate::analysis::names::Namer;
+use crate::analysis::requests;
 use crate::analysis::sizes::SAME;
 use crate::audit;
+use crate::model::Model;
 use crate::model::errors::ModelError;
 use crate::model::values::Fault;
-use crate::model::{Model, requests};
 use crate::syntax::ast::{self, RequestKind};
 
 /// Where the reduced system stands.

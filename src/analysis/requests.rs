@@ -302,7 +302,7 @@ impl Checker<'_> {
         use ast::Relation as R;
         let result = match relation {
             R::MuchLess | R::MuchGreater => declarations::tolerance_value(within).map(|_| ()),
-            R::Similar => crate::model::settings::factor(within).map(|_| ()),
+            R::Similar => crate::model::spreading::factor(within).map(|_| ()),
             R::Equal => match declarations::share(within) {
                 Ok(share) if share >= BigRational::one() => Err(ModelError::WrongForm {
                     found: "a factor",
@@ -320,36 +320,6 @@ impl Checker<'_> {
         if let Err(error) = result {
             self.errors.push(error);
         }
-    }
-}
-
-/// Calls `visit` for every expression of a request.
-pub fn visit_expressions<'a>(request: &'a ast::Request, visit: &mut impl FnMut(&'a ast::Expr)) {
-    match &request.kind {
-        RequestKind::Show { expr, .. } => visit(expr),
-        RequestKind::Claim(Claim::Relation { left, right, .. }) => {
-            visit(left);
-            visit(right);
-        }
-        RequestKind::Limit { small, .. } => visit(small),
-        RequestKind::Sweep(axis) => {
-            visit(&axis.from);
-            visit(&axis.to);
-        }
-        RequestKind::Regimes(x, y) => [x, y].into_iter().for_each(|axis| {
-            visit(&axis.from);
-            visit(&axis.to);
-        }),
-        RequestKind::Claim(Claim::Verdict { .. })
-        | RequestKind::Rank { .. }
-        | RequestKind::Nondimensionalize { .. }
-        | RequestKind::Reduce { .. }
-        | RequestKind::Bounds { .. }
-        | RequestKind::Find { .. }
-        | RequestKind::Layers
-        | RequestKind::Groups
-        | RequestKind::Expand { .. }
-        | RequestKind::Compare { .. } => {}
     }
 }
 
