@@ -428,9 +428,9 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::OneUnit(number, unit, rest) => format!(
             "a unit has no blank inside: write `{number} {unit}.{rest}`, or `{number} {unit} * {rest}` for a product"
         ),
-        Mend::UnitAlone(number, unit, operator, function) => format!(
-            "a unit ends at a blank: write `{number} {unit} {operator} {function}(...)`"
-        ),
+        Mend::UnitAlone(number, unit, operator, function) => {
+            format!("a unit ends at a blank: write `{number} {unit} {operator} {function}(...)`")
+        }
         Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
