@@ -170,6 +170,9 @@ pub enum Mend {
     /// A unit with a blank inside: the number, the unit so far and what stands behind the
     /// blank.
     OneUnit(String, String, String),
+    /// A blank between a unit and the operator behind it, which took the name of a function
+    /// into the unit: the number, the unit alone, the operator and the function.
+    UnitAlone(String, String, char, String),
     /// A product sign before it.
     Sign,
     /// `show` before it.
@@ -425,6 +428,9 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::OneUnit(number, unit, rest) => format!(
             "a unit has no blank inside: write `{number} {unit}.{rest}`, or `{number} {unit} * {rest}` for a product"
         ),
+        Mend::UnitAlone(number, unit, operator, function) => {
+            format!("a unit ends at a blank: write `{number} {unit} {operator} {function}(...)`")
+        }
         Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
