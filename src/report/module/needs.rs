@@ -5,6 +5,7 @@ use crate::algebra::monomial::SymbolId;
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::analysis::reduce::ReducedEquation;
 use crate::model::{GroupId, Meaning, Model, names};
+use crate::report::conditions;
 use crate::report::module::Origin;
 use crate::syntax::ast;
 
@@ -38,8 +39,8 @@ impl Needs {
         for equation in equations {
             let parts = equation.sides.iter().flatten();
             parts.for_each(|part| search.expr(&part.named));
-            let conditions = equation.kept.iter().flat_map(|term| &term.conditions);
-            let groups = conditions.filter_map(|condition| condition.groups.as_ref());
+            let told = equation.kept.iter().flat_map(|term| &term.conditions);
+            let groups = told.filter_map(conditions::told_groups);
             for (name, _) in groups.flat_map(|(_, groups)| groups) {
                 search.name(name);
             }
