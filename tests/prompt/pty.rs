@@ -114,7 +114,11 @@ impl Desk {
                 self.read();
                 std::thread::sleep(Duration::from_millis(5));
             }
-            assert!(start.elapsed() < PATIENCE, "no {behind} on\n{}", self.screen());
+            assert!(
+                start.elapsed() < PATIENCE,
+                "no {behind} on\n{}",
+                self.screen()
+            );
         }
     }
 
