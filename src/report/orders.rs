@@ -1,6 +1,7 @@
 //! What the reports of `expand` say in words, whatever they set it in.
 
-use crate::analysis::hierarchy::{Hierarchy, Order, Solvability};
+use crate::analysis::hierarchy::{Hierarchy, Order, OrderEquation, Solvability};
+use crate::report::layout::number;
 
 /// Stands between a condition and the form that it comes from.
 pub const BEFORE: &str = "before the fields that the leading order gives are put in:";
@@ -8,13 +9,54 @@ pub const BEFORE: &str = "before the fields that the leading order gives are put
 /// Stands before equations that look otherwise with dimensions.
 pub const WITH_DIMENSIONS: &str = "with dimensions";
 
-/// What is small and how the other groups go with it: `Ro -> 0, Bu ~ 1, Ek ~ Ro^2`.
+/// What is small and how the other groups go with it, each with its value:
+/// `Ro -> 0 (now 0.05), Bu ~ 1 (now 0.8), Ek ~ Ro^2 (now 0.001)`.
 pub fn small(hierarchy: &Hierarchy) -> String {
     let small = &hierarchy.small;
+    let value = number(hierarchy.value);
     match hierarchy.has_limit {
-        true => format!("{small} -> 0{}", others(hierarchy)),
-        false => format!("{small}, the largest ratio of what is split"),
+        true => format!("{small} -> 0 (now {value}){}", others(hierarchy)),
+        false => format!("{small}, the largest ratio of what is split, {value}"),
     }
+}
+
+/// That what goes to 0 is not small at these values.
+pub fn not_small(hierarchy: &Hierarchy) -> Option<String> {
+    let is_small = hierarchy.value < 1.0 / 10_f64.sqrt();
+    (!is_small).then(|| {
+        format!(
+            "{} is {} at these values, which is not small: the orders are exact, but the first \
+             ones are no approximation here",
+            hierarchy.small,
+            number(hierarchy.value)
+        )
+    })
+}
+
+/// What an order without series adds to the sides of an equation: `+ d_x(eta*u)`.
+pub fn added(equation: &str) -> Vec<(&'static str, String)> {
+    let (left, right) = equation.split_once(" = ").unwrap_or((equation, "0"));
+    let sides = [("left", left), ("right", right)].into_iter();
+    let sides = sides.filter(|(_, side)| *side != "0");
+    sides
+        .map(|(name, side)| match side.strip_prefix('-') {
+            Some(side) => (name, format!("- {side}")),
+            None => (name, format!("+ {side}")),
+        })
+        .collect()
+}
+
+/// Whether an order only adds to the equations below it.
+pub fn adds(hierarchy: &Hierarchy, order: &Order) -> bool {
+    !hierarchy.has_limit && !order.order.is_zero()
+}
+
+/// Equations that look otherwise with dimensions, and whether there are others.
+pub fn with_dimensions(equations: &[OrderEquation]) -> (Vec<&OrderEquation>, bool) {
+    let differ = |equation: &&OrderEquation| equation.dimensional != equation.text;
+    let own: Vec<&OrderEquation> = equations.iter().filter(differ).collect();
+    let has_others = !own.is_empty() && own.len() < equations.len();
+    (own, has_others)
 }
 
 fn others(hierarchy: &Hierarchy) -> String {
@@ -23,22 +65,26 @@ fn others(hierarchy: &Hierarchy) -> String {
         true => small.clone(),
         false => format!("({small})"),
     };
-    let others = hierarchy.placed.iter().filter(|(name, _)| name != small);
+    let others = hierarchy.placed.iter().filter(|group| group.name != *small);
     let texts: Vec<String> = others
-        .map(|(name, power)| match power.to_string().as_str() {
-            "0" => format!(", {name} ~ 1"),
-            "1" => format!(", {name} ~ {base}"),
-            power if power.contains('/') => format!(", {name} ~ {base}^({power})"),
-            power => format!(", {name} ~ {base}^{power}"),
+        .map(|group| {
+            let like = match group.power.to_string().as_str() {
+                "0" => "1".to_owned(),
+                "1" => base.clone(),
+                power if power.contains('/') => format!("{base}^({power})"),
+                power => format!("{base}^{power}"),
+            };
+            format!(", {} ~ {like} (now {})", group.name, number(group.value))
         })
         .collect();
     texts.concat()
 }
 
 /// The heading of an order.
-pub fn order(order: &Order) -> String {
+pub fn order(hierarchy: &Hierarchy, order: &Order) -> String {
     match order.order.to_string() {
         power if power == "0" => "order 0, the leading order".to_owned(),
+        power if adds(hierarchy, order) => format!("order {power} adds"),
         power => format!("order {power}"),
     }
 }

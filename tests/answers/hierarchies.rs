@@ -337,3 +337,21 @@ fn a_mean_of_series_is_a_series_of_means() {
     let mixed = terms.filter(|term| text(&term["factors"]).contains("mean(w'_1*u'_0)"));
     assert!(mixed.clone().count() == 1 && mixed.clone().all(|term| term["forcing"] == true));
 }
+
+#[test]
+fn a_parameter_that_is_not_small_is_told() {
+    let script = |eps: &str| {
+        format!(
+            "constant eps = {eps}\ncoordinate x ~ 1\nfield y(x) ~ 1\ngroup e = eps\n\
+             equation ode: eps*d_x^2(y) + d_x(y) + y = 0\nlimit e -> 0\nexpand to order 1"
+        )
+    };
+    let report = |eps: &str| {
+        let outcome = scalewright::Session::new().run("case.scl", &script(eps), None);
+        scalewright::report::text::report(&outcome, false)
+    };
+    assert!(report("0.01").contains("small  e -> 0 (now 0.01)"));
+    assert!(!report("0.01").contains("is not small"));
+    assert!(report("2").contains("e is 2 at these values, which is not small"));
+    assert_eq!(expanded(&script("2"))["value"], 2.0);
+}

@@ -14,7 +14,7 @@ use crate::analysis::hierarchy::placement::{self, Placed};
 use crate::analysis::hierarchy::series::{Coefficients, SeriesFault};
 use crate::analysis::hierarchy::view::View;
 use crate::analysis::hierarchy::{
-    Hierarchy, HierarchyFault, Solvability, Wanted, ratios, solvability,
+    Hierarchy, HierarchyFault, PlacedGroup, Solvability, Wanted, ratios, solvability,
 };
 use crate::analysis::names::{GroupProduct, Namer};
 use crate::analysis::sizes;
@@ -333,6 +333,7 @@ impl<'a> Expander<'a> {
         };
         Ok(Hierarchy {
             small: self.small_text(),
+            value: self.small_value(),
             has_limit: has_series,
             placed: self.placed_groups()?,
             orders: view.orders(
@@ -350,13 +351,31 @@ impl<'a> Expander<'a> {
         }
     }
 
-    fn placed_groups(&self) -> Result<Vec<(String, Exponent)>, HierarchyFault> {
+    fn small_value(&self) -> f64 {
+        let setting = &self.case.setting;
+        let value = |group: usize| setting.nominal(&setting.groups[group].size.resolved);
+        match &self.small {
+            Small::Limit(limit, _) => {
+                let powers = limit.small.iter();
+                let values = powers.map(|(group, power)| value(*group).powf(power.to_f64()));
+                values.product()
+            }
+            Small::Ratio(small) => setting.nominal(&small.size),
+        }
+    }
+
+    fn placed_groups(&self) -> Result<Vec<PlacedGroup>, HierarchyFault> {
         let Small::Limit(_, placed) = &self.small else {
             return Ok(Vec::new());
         };
         let powers = placed.powers.iter().map(|(group, power)| {
-            let name = self.case.setting.groups[*group].name.clone();
-            Ok((name, Exponent::from_rational(power)?))
+            let setting = &self.case.setting;
+            let info = &setting.groups[*group];
+            Ok(PlacedGroup {
+                name: info.name.clone(),
+                power: Exponent::from_rational(power)?,
+                value: setting.nominal(&info.size.resolved),
+            })
         });
         powers.collect()
     }

@@ -34,14 +34,27 @@ use expander::Expander;
 pub struct Hierarchy {
     /// The small parameter.
     pub small: String,
+    /// Its nominal value.
+    pub value: f64,
     /// Whether a `limit` sets it.
     pub has_limit: bool,
     /// The groups with their powers.
-    pub placed: Vec<(String, Exponent)>,
+    pub placed: Vec<PlacedGroup>,
     /// The orders, rising.
     pub orders: Vec<Order>,
     /// What the leading order leaves open.
     pub solvability: Solvability,
+}
+
+/// A group of the coefficients.
+#[derive(Debug, Clone)]
+pub struct PlacedGroup {
+    /// Its name.
+    pub name: String,
+    /// Which power of the small parameter it counts as.
+    pub power: Exponent,
+    /// Its nominal value.
+    pub value: f64,
 }
 
 /// One order.

@@ -15,9 +15,15 @@ pub(super) fn expand(hierarchy: &Hierarchy) -> Value {
             conditions,
         } => (undetermined.as_slice(), conditions.as_slice()),
     };
+    let placed: Vec<(String, Exponent)> = hierarchy
+        .placed
+        .iter()
+        .map(|group| (group.name.clone(), group.power))
+        .collect();
     json!({
         "small": hierarchy.small,
-        "placed": exponents(&hierarchy.placed),
+        "value": hierarchy.value,
+        "placed": exponents(&placed),
         "orders": list(&hierarchy.orders, |order| json!({
             "order": order.order.to_string(),
             "equations": list(&order.equations, equation),

@@ -7,8 +7,9 @@ use crate::report::sheets::{Block, labelled, words};
 /// Each order with its equations, then what the leading order leaves open.
 pub fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
     let mut blocks = vec![labelled("Small", orders::small(hierarchy))];
+    blocks.extend(orders::not_small(hierarchy).map(|text| labelled("Note", text)));
     for order in &hierarchy.orders {
-        blocks.push(labelled(&capital(&orders::order(order)), ""));
+        blocks.push(labelled(&capital(&orders::order(hierarchy, order)), ""));
         if order.equations.is_empty() {
             blocks.push(Block::Paragraph(words("nothing")));
         }

@@ -1,7 +1,7 @@
 //! `expand` for a terminal.
 
 use crate::analysis::hierarchy::{Condition, Hierarchy, OrderEquation, Solvability};
-use crate::report::layout::{width, wrapped, wrapped_equation};
+use crate::report::layout::{width, wrapped, wrapped_equation, wrapped_words};
 use crate::report::orders;
 use crate::report::text::Pen;
 
@@ -10,15 +10,23 @@ const LABEL: usize = 16;
 
 /// Writes a hierarchy.
 pub(super) fn expand(hierarchy: &Hierarchy, pen: &Pen, out: &mut String) {
-    out.push_str(&wrapped("small  ", &orders::small(hierarchy)));
+    let small = orders::small(hierarchy).replace(", ", ",\n");
+    let small: Vec<String> = small.lines().map(str::to_owned).collect();
+    out.push_str(&wrapped_words("small  ", &small));
+    if let Some(text) = orders::not_small(hierarchy) {
+        out.push_str(&wrapped("note   ", &text));
+    }
     out.push('\n');
     for order in &hierarchy.orders {
-        out.push_str(&pen.head(&orders::order(order)));
+        out.push_str(&pen.head(&orders::order(hierarchy, order)));
         out.push('\n');
         if order.equations.is_empty() {
             out.push_str("    nothing\n");
         }
-        write_equations(&order.equations, out);
+        match orders::adds(hierarchy, order) {
+            true => write_added(&order.equations, out),
+            false => write_equations(&order.equations, out),
+        }
         out.push('\n');
     }
     let text = orders::solvability(hierarchy);
@@ -55,15 +63,33 @@ fn write_equations(equations: &[OrderEquation], out: &mut String) {
     for equation in equations {
         out.push_str(&line(&equation.name, &equation.text, column));
     }
-    let mut with_dimensions = equations
-        .iter()
-        .filter(|equation| equation.dimensional != equation.text)
-        .peekable();
-    if with_dimensions.peek().is_some() {
-        out.push_str(&format!("  {}\n", orders::WITH_DIMENSIONS));
+    let (with_dimensions, has_others) = orders::with_dimensions(equations);
+    if !with_dimensions.is_empty() {
+        let others = if has_others {
+            ", the others as above"
+        } else {
+            ""
+        };
+        out.push_str(&format!("  {}{others}\n", orders::WITH_DIMENSIONS));
     }
     for equation in with_dimensions {
         out.push_str(&line(&equation.name, &equation.dimensional, column));
+    }
+}
+
+/// What an order adds to the sides of the equations.
+fn write_added(equations: &[OrderEquation], out: &mut String) {
+    for equation in equations {
+        out.push_str(&format!("    {}\n", equation.name));
+        for (side, text) in orders::added(&equation.text) {
+            out.push_str(&wrapped_equation(&format!("      {side:<7}"), &text));
+        }
+        if equation.dimensional != equation.text {
+            out.push_str(&format!("      {}\n", orders::WITH_DIMENSIONS));
+            for (side, text) in orders::added(&equation.dimensional) {
+                out.push_str(&wrapped_equation(&format!("      {side:<7}"), &text));
+            }
+        }
     }
 }
 
