@@ -7,6 +7,7 @@ use crate::analysis::{self, Case};
 use crate::diagnostic::Diagnostic;
 use crate::model::errors::ModelError;
 use crate::model::modules::{self, Files, Main};
+use crate::model::needs::{Needs, Search};
 use crate::model::{Meaning, Model, declarations, dimensions, frames, library};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, ExprKind, StatementKind};
@@ -30,8 +31,11 @@ pub struct Shelf {
     pub vectors: Vec<Item<Vector>>,
     /// Scales and constants without a value.
     pub open: Vec<Item<Open>>,
-    /// Scales and constants with a value.
+    /// Scales and constants with a value: its own, and those of other modules that
+    /// equations, fields, groups or its own values need.
     pub given: Vec<Item<ast::ValueDecl>>,
+    /// How many others have a value, per module that they come from.
+    pub spare: Vec<(String, usize)>,
     /// Named groups.
     pub groups: Vec<Item<ast::GroupDecl>>,
     /// Balances.
@@ -209,6 +213,7 @@ impl Gatherer<'_> {
         let model = self.model;
         let equations = self.declared.iter();
         let balances = model.balances.iter();
+        let (given, spare) = self.all_given();
         Shelf {
             name: main.name.clone(),
             about: library::head(&main.text),
@@ -226,9 +231,8 @@ impl Gatherer<'_> {
             open: (0..model.symbols.len())
                 .filter_map(|idx| self.open(idx))
                 .collect(),
-            given: (0..model.symbols.len())
-                .filter_map(|idx| self.given(idx))
-                .collect(),
+            given,
+            spare,
             groups: model
                 .groups
                 .iter()
@@ -313,6 +317,53 @@ impl Gatherer<'_> {
         let decl = self.effective(idx);
         let is_given = crate::model::is_given(decl) && self.model.symbols[idx].local_to.is_none();
         is_given.then(|| self.item(decl.name.span, decl.clone()))
+    }
+
+    /// What has a value and is of use here, and how much else each module brings.
+    fn all_given(&self) -> (Vec<Item<ast::ValueDecl>>, Vec<(String, usize)>) {
+        let needs = self.needs();
+        let (mut given, mut spare) = (Vec::new(), Vec::<(String, usize)>::new());
+        for idx in 0..self.model.symbols.len() {
+            let Some(item) = self.given(idx) else {
+                continue;
+            };
+            match &item.from {
+                Some(from) if !needs.symbols[idx] => {
+                    match spare.iter_mut().find(|(module, _)| module == from) {
+                        Some((_, count)) => *count += 1,
+                        None => spare.push((from.clone(), 1)),
+                    }
+                }
+                Some(_) | None => given.push(item),
+            }
+        }
+        (given, spare)
+    }
+
+    /// What the equations, fields and groups need, and the values of the module itself.
+    fn needs(&self) -> Needs {
+        let model = self.model;
+        let mut search = Search::new(model, None);
+        for equation in &model.equations {
+            match &equation.body {
+                ast::EquationBody::Made(made) => search.expr(made),
+                ast::EquationBody::Written { left, right } => {
+                    search.expr(left);
+                    search.expr(right);
+                }
+            }
+        }
+        let fields = model.fields.iter().map(|info| &info.name);
+        let groups = model.groups.iter().map(|info| &info.name);
+        fields
+            .chain(groups)
+            .for_each(|name| search.name(&name.text));
+        let values = (0..model.symbols.len()).map(|idx| &self.effective(idx).name);
+        values
+            .filter(|name| name.span.file == self.own)
+            .for_each(|name| search.name(&name.text));
+        search.motion();
+        search.run()
     }
 
     // How a script begins ---------------------------------------------------------------------

@@ -16,6 +16,7 @@ pub mod library;
 pub mod limit;
 pub mod modules;
 pub mod names;
+pub mod needs;
 pub mod order;
 pub mod settings;
 pub mod spelling;

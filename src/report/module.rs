@@ -13,10 +13,10 @@ use crate::algebra::monomial::SymbolId;
 use crate::analysis::Case;
 use crate::analysis::rank::speller;
 use crate::analysis::reduce::{Lone, Part, ReducedEquation, Reduction};
+use crate::model::needs::Needs;
 use crate::model::settings::Variable;
 use crate::model::{Level, Model, spelling};
 use crate::report::layout::{self, percent};
-use crate::report::module::needs::Needs;
 use crate::report::module::shelves::Shelves;
 use crate::report::words;
 use crate::source::Sources;
@@ -52,7 +52,7 @@ pub fn module(origin: &Origin<'_>) -> Option<String> {
         return None;
     }
     let shelves = Shelves::of(origin);
-    let needs = Needs::of(origin, &kept);
+    let needs = needs::of(origin, &kept);
     let mut blocks = vec![
         head(origin, &kept),
         uses(&shelves),

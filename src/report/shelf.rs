@@ -109,6 +109,7 @@ pub fn shelf(shelf: &Shelf) -> String {
             pages.given(held, out);
         },
     );
+    spare(&shelf.spare, &mut out);
     section("named groups", &shelf.groups, &mut out, |held, out| {
         pages.groups(held, out);
     });
@@ -152,6 +153,19 @@ fn section<T>(
         write(&own, out);
     }
     out.push('\n');
+}
+
+/// What other modules bring besides, counted.
+fn spare(counts: &[(String, usize)], out: &mut String) {
+    let counts = counts
+        .iter()
+        .map(|(module, count)| format!("{count} of {module}"));
+    let counts: Vec<String> = counts.collect();
+    if !counts.is_empty() {
+        let text = format!("{}, for which nothing here asks", counts.join(", "));
+        out.push_str(&wrapped("also given  ", &text));
+        out.push('\n');
+    }
 }
 
 struct Pages<'a> {

@@ -170,6 +170,9 @@ pub enum Mend {
     /// A unit with a blank inside: the number with the whole unit, and the product that may
     /// be meant.
     OneUnit(String, Option<String>),
+    /// A blank between a unit and the operator behind it, which took the name of a function
+    /// into the unit: the number, the unit alone, the operator and the function.
+    UnitAlone(String, String, char, String),
     /// A product sign before it.
     Sign,
     /// `show` before it.
@@ -430,6 +433,9 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::OneUnit(whole, None) => format!("a unit has no blank inside: write `{whole}`"),
         Mend::OneUnit(whole, Some(product)) => {
             format!("a unit has no blank inside: write `{whole}`, or `{product}` for a product")
+        }
+        Mend::UnitAlone(number, unit, operator, function) => {
+            format!("a unit ends at a blank: write `{number} {unit} {operator} {function}(...)`")
         }
         Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),

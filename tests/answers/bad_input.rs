@@ -167,6 +167,21 @@ fn names_and_units_that_are_not_there_come_with_a_suggestion() {
         help("scale L = 1 m\nshow L(2)"),
         "for a product write `L*(...)`"
     );
+    for (script, mend) in [
+        (
+            "show 1000 hPa/standard_pressure(5 km)",
+            "1000 hPa / standard_pressure(...)",
+        ),
+        ("show 10 kg.m.sqrt(4)", "10 kg.m * sqrt(...)"),
+    ] {
+        let found = help(script);
+        assert_eq!(found, format!("a unit ends at a blank: write `{mend}`"));
+    }
+    assert_eq!(
+        answers("show 10 kg.m * sqrt(4)")["answers"][0]["value"]["nominal"],
+        20.0
+    );
+    assert_eq!(help("show 10 m/s(4)"), "write `10*m/s` for a product");
     assert_error("show 1 for nobody", "unknown-phenomenon", 1);
     assert_error("rank momentum", "unknown-equation", 1);
 }

@@ -107,6 +107,32 @@ fn equations_are_shown_as_on_paper_with_their_processes() {
 }
 
 #[test]
+fn of_the_constants_of_another_module_those_in_use_are_shown() {
+    let main = Main {
+        name: "cooling.scl".to_owned(),
+        text: "use seawater\nscale Q_f in W/m^2\nscale dT_f in K\n\
+            group fall = alpha_surface_10*dT_f"
+            .to_owned(),
+        path: None,
+        folder: PathBuf::new(),
+        root: PathBuf::new(),
+    };
+    let gathered = shelf(&main, &NoFiles).expect("it is sound");
+    let given: Vec<&str> = gathered
+        .given
+        .iter()
+        .map(|item| item.held.name.text.as_str())
+        .collect();
+    assert_eq!(given, ["alpha_surface_10"]);
+    let all = module("seawater").given.len();
+    assert_eq!(gathered.spare, [("seawater".to_owned(), all - 1)]);
+    let shown = view::shelf(&gathered);
+    let counted = format!("also given  {} of seawater, ", all - 1);
+    assert!(shown.contains(&counted), "{shown}");
+    assert!(!shown.contains("alpha_surface_20"), "{shown}");
+}
+
+#[test]
 fn the_list_has_one_line_a_module() {
     let list = view::list(MODULES);
     assert!(list.lines().all(|line| line.width() <= 80), "{list}");

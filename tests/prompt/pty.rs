@@ -103,6 +103,25 @@ impl Desk {
         }
     }
 
+    /// Leaves the prompt, until what stands behind it shows. On a busy machine a late Ctrl-C
+    /// can take the typed word with it, so it is typed again.
+    pub(super) fn leave(&mut self, behind: &str) {
+        let start = Instant::now();
+        while !self.screen().contains(behind) {
+            self.keys("leave\r");
+            let pause = Instant::now();
+            while pause.elapsed() < Duration::from_secs(1) && !self.screen().contains(behind) {
+                self.read();
+                std::thread::sleep(Duration::from_millis(5));
+            }
+            assert!(
+                start.elapsed() < PATIENCE,
+                "no {behind} on\n{}",
+                self.screen()
+            );
+        }
+    }
+
     /// The lines of `stty -a` that tell how lines are read and echoed.
     pub(super) fn settings(&self) -> Vec<String> {
         let raw = String::from_utf8_lossy(&self.raw);

@@ -188,8 +188,7 @@ fn random_keys_leave_the_terminal_as_it_was() {
         desk.keys(&keys);
         desk.drop_line();
     }
-    desk.keys("leave\r");
-    desk.until_shown("over");
+    desk.leave("over");
     desk.until("the settings", |desk| desk.settings().len() % 2 == 0);
     let raw = String::from_utf8_lossy(&desk.raw).into_owned();
     assert!(!raw.contains("panicked"), "{raw}");

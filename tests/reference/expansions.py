@@ -6,9 +6,10 @@
 A case holds a script with an equation whose terms hold split fields in linear and nonlinear
 places. `ranked` lists, for each written term, what `rank` makes of it: exact number (amount)
 and exponents over scales and constants; nonlinear places go to the second order in the ratios
-of the parts, linear ones are exact. `orders` lists, order by order up to the third, what
-`expand` makes of the equation under its limit: exact number with its sign on its side, groups
-without the small one, and fields with their orders and powers.
+of the parts, linear ones are exact; what cancels with the third order is left out. `orders`
+lists, order by order up to the third, what `expand` makes of the equation under its limit:
+exact number with its sign on its side, groups without the small one, and fields with their
+orders and powers.
 """
 
 import random
@@ -32,6 +33,10 @@ def symbol(name):
 
 def exact(number):
     return str(sp.nsimplify(number))
+
+
+def pieces(expression):
+    return sp.Add.make_args(sp.expand(expression))
 
 
 class Case:
@@ -135,8 +140,12 @@ class Case:
                     exprs *= symbol(base) ** power * marked
                 scale *= symbol("B_" + name.split("_")[1]) ** (-power)
             # Whole powers are multiplied out and do not count.
+            # What the next order takes away again, as in q*(1/q), is not there.
+            series = sp.series(exprs, DELTA, 0, 4).removeO()
+            beyond = {piece.as_coeff_Mul()[1] for piece in pieces(series.subs(DELTA, 1))}
             series = sp.series(exprs, DELTA, 0, 3).removeO().subs(DELTA, 1)
-            total = sp.expand(number * sp.expand(series))
+            own = pieces(series)
+            total = sp.expand(number * sp.Add(*(p for p in own if p.as_coeff_Mul()[1] in beyond)))
             sizes = {}
             for i, name in enumerate(self.splits):
                 base, _, part, _ = self.splits[name]

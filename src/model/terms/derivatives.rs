@@ -43,7 +43,14 @@ impl Maker<'_> {
             self.vanished.push(text);
         }
         let pieces = found.into_iter();
-        Ok(pieces.map(|product| piece.with_product(product)).collect())
+        Ok(pieces
+            .map(|product| {
+                let smaller = self.smaller_left(&piece.splits, &product);
+                let mut piece = piece.with_product(product);
+                piece.splits.smaller = smaller;
+                piece
+            })
+            .collect())
     }
 
     fn vanished_text(&self, product: &Product, along: CoordinateId) -> String {

@@ -79,6 +79,7 @@ impl Maker<'_> {
         {
             let mut parts = Vec::new();
             self.split(id, false, &mut parts);
+            self.mark_smaller(id, &mut parts);
             return Ok(parts);
         }
         let base = match self.model.meaning(name, None) {
@@ -92,7 +93,7 @@ impl Maker<'_> {
     }
 
     /// The parts of a split field, those of split parts in their places.
-    fn split(&self, id: FieldId, is_negative: bool, found: &mut Vec<Piece>) {
+    pub(super) fn split(&self, id: FieldId, is_negative: bool, found: &mut Vec<Piece>) {
         for (sign, part) in &self.model.fields[id.0 as usize].parts {
             let is_negative = is_negative != (*sign == Sign::Minus);
             let base = match self.model.meaning(&part.text, None) {

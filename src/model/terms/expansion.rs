@@ -8,7 +8,7 @@
 use std::sync::Arc;
 
 use super::expand::is_constant;
-use super::pieces::{Piece, Pieces, collected, common_tag, tagged};
+use super::pieces::{Piece, Pieces, Splits, collected, common_tag, tagged};
 use super::{Maker, SmallRatio};
 use crate::algebra::monomial::{self, Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Applied, Base, Factor, Product};
@@ -45,6 +45,7 @@ impl Maker<'_> {
         span: Span,
     ) -> Pieces {
         let tag = common_tag(&pieces)?;
+        let splits = Splits::of_expanded(&pieces);
         let (leading, small) = self.parted(pieces);
         if leading.number.is_negative() && !exponent.is_whole() {
             return Err(ModelError::OutOfDomain {
@@ -55,7 +56,7 @@ impl Maker<'_> {
         self.check_ratios(&leading, &small, span);
         let series = series::power(&leading, &small, exponent, self.highest())
             .map_err(|_| ModelError::TooLarge { span })?;
-        Ok(tagged(series, tag.as_ref()))
+        Ok(tagged(series, tag.as_ref(), &splits))
     }
 
     /// The amount of a sum: the largest part has its sign.
@@ -67,6 +68,7 @@ impl Maker<'_> {
             return Ok(Vec::new());
         }
         let tag = common_tag(&pieces)?;
+        let splits = Splits::of_expanded(&pieces);
         let (leading, small) = self.parted(pieces);
         self.check_ratios(&leading, &small, span);
         let amount = Piece::plain(leading.clone()).absolute().product;
@@ -77,7 +79,7 @@ impl Maker<'_> {
         let ratio = [Graded::plain(per_leading)];
         let mut series = vec![Graded::plain(amount)];
         series.extend(series::times(&ratio, &small, self.highest()).map_err(too_large)?);
-        Ok(tagged(series, tag.as_ref()))
+        Ok(tagged(series, tag.as_ref(), &splits))
     }
 
     /// A function of what varies. One product stays inside the function until its term is
@@ -94,25 +96,30 @@ impl Maker<'_> {
             let applied = applied(function, &single.product);
             return Ok(vec![single.with_product(applied)]);
         }
+        let splits = Splits::of_expanded(&pieces);
         let (leading, small) = self.parted(pieces);
         self.check_arguments(function, &leading, &small, span);
         let series = self.composed(function, Exponent::ONE, &leading, &small, span)?;
-        Ok(tagged(series, tag.as_ref()))
+        Ok(tagged(series, tag.as_ref(), &splits))
     }
 
-    /// The largest part at the nominal values, the first of equals; and the others, each
-    /// of order 1 or more.
-    fn parted(&self, pieces: Vec<Piece>) -> (Product, Series) {
+    /// The place of the largest part at the nominal values, the first of equals.
+    pub(super) fn largest(&self, pieces: &[Piece]) -> usize {
         let sizes: Vec<f64> = pieces
             .iter()
             .map(|piece| self.nominal(&piece.product))
             .collect();
         // While a scale is open the first part, as it is written, is taken for the largest.
-        let largest = if sizes.iter().any(|size| size.is_nan()) {
-            0
-        } else {
-            crate::analysis::sizes::largest(sizes).unwrap_or(0)
-        };
+        match sizes.iter().any(|size| size.is_nan()) {
+            true => 0,
+            false => crate::analysis::sizes::largest(sizes).unwrap_or(0),
+        }
+    }
+
+    /// The largest part at the nominal values, the first of equals; and the others, each
+    /// of order 1 or more.
+    fn parted(&self, pieces: Vec<Piece>) -> (Product, Series) {
+        let largest = self.largest(&pieces);
         let mut leading = Product::number(Number::whole(0));
         let mut small = Vec::with_capacity(pieces.len());
         for (idx, piece) in pieces.into_iter().enumerate() {
@@ -120,8 +127,8 @@ impl Maker<'_> {
                 leading = piece.product;
             } else {
                 small.push(Graded {
-                    product: piece.product,
                     degree: piece.degree.max(1),
+                    product: piece.product,
                 });
             }
         }
@@ -427,6 +434,7 @@ impl Maker<'_> {
                 product: term.product,
                 degree: term.degree + piece.degree,
                 tag: piece.tag.clone(),
+                splits: piece.splits.clone(),
             }));
         }
         Ok(collected(found))

@@ -2,7 +2,8 @@
 
 use super::expand::not_a_term;
 use super::pieces::{
-    Piece, Pieces, Sided, collected, gathered, leveled, multiplied, named, written_tag,
+    Piece, Pieces, Sided, collected, gathered, leveled, multiplied, named, without_cancelling,
+    written_tag,
 };
 use super::tangents::without_tangents;
 use super::written::{has_partials, process_names};
@@ -46,11 +47,15 @@ impl Maker<'_> {
         });
         match resolved {
             Ok(pieces) => {
-                // What is left out does not cancel with what is not.
                 let order = self.depth.order;
-                let (within, beyond): (Vec<Sided>, Vec<Sided>) = pieces
+                let (within, beyond): (Vec<Sided>, Vec<Sided>) = without_cancelling(pieces)
                     .into_iter()
                     .partition(|(_, piece)| piece.degree <= order);
+                let highest = self.highest();
+                let beyond = beyond
+                    .into_iter()
+                    .filter(|(_, piece)| piece.whole_order() <= highest)
+                    .collect();
                 self.put_all(gathered(leveled(within)), span);
                 self.put_all(gathered(leveled(beyond)), span);
             }
@@ -303,6 +308,7 @@ impl Maker<'_> {
                             is_used = true;
                             found.extend(inside.into_iter().map(|new| Piece {
                                 degree: new.degree + piece.degree,
+                                splits: new.splits.and(&piece.splits),
                                 ..new
                             }));
                         }

@@ -12,6 +12,7 @@ mod made;
 mod means;
 mod pieces;
 mod sized;
+mod splits;
 mod tangents;
 mod written;
 
@@ -29,7 +30,7 @@ use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind, Sign};
 use crate::syntax::print;
 use crate::units::Range;
-use pieces::{Piece, Sided, Tag, collected, merged, named, written_tag};
+use pieces::{Piece, Sided, Tag, collected, merged, named, without_cancelling, written_tag};
 use written::{has_partials, holds_material, leading_minus, process_names, unnamed};
 
 /// Left or right of `=`.
@@ -411,7 +412,12 @@ impl<'a> Maker<'a> {
         let n_zeros = self.zeros.0.len();
         let idx = self.made.summands.len();
         let is_within = |piece: &Piece| piece.degree <= self.depth.order;
-        let (within, beyond): (Vec<Piece>, Vec<Piece>) = pieces.into_iter().partition(is_within);
+        // The side has no say here.
+        let sided = pieces.into_iter().map(|piece| (Side::Left, piece));
+        let left = without_cancelling(sided.collect()).into_iter();
+        let (within, mut beyond): (Vec<Piece>, Vec<Piece>) =
+            left.map(|(_, piece)| piece).partition(is_within);
+        beyond.retain(|piece| piece.whole_order() <= self.highest());
         let within = merged(within);
         let is_single = within.len() == 1;
         let is_as_written = is_single && !self.holds_split(&summand.expr);
@@ -454,6 +460,7 @@ impl<'a> Maker<'a> {
             product,
             degree,
             tag,
+            ..
         } = piece;
         if product.number.is_zero() {
             return None;

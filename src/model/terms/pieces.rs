@@ -3,10 +3,12 @@
 use std::collections::BTreeMap;
 
 use crate::algebra::product::{Base, Factors, Product};
+use crate::algebra::quantities::FieldId;
 use crate::algebra::series::Graded;
 use crate::limits;
 use crate::model::errors::ModelError;
 use crate::model::terms::Side;
+use crate::number::Number;
 use crate::source::Span;
 use crate::syntax::ast;
 
@@ -23,8 +25,77 @@ pub(super) struct Tag {
 #[derive(Debug, Clone)]
 pub(super) struct Piece {
     pub(super) product: Product,
+    /// The order in the ratios of what was expanded.
     pub(super) degree: u32,
     pub(super) tag: Option<Tag>,
+    pub(super) splits: Splits,
+}
+
+/// The split fields that a product comes from.
+///
+/// A smaller part that stands as a factor is no order of its own. Beside an expansion of
+/// the same field it tells how far the product is complete: `rho*(1/rho)` to second order
+/// ends with a third power that the next order of the quotient takes away.
+#[derive(Debug, Clone, Default, PartialEq, Eq)]
+pub(super) struct Splits {
+    /// How many factors are smaller parts of a field.
+    pub(super) smaller: Vec<(FieldId, u32)>,
+    /// The fields that were expanded.
+    pub(super) expanded: Vec<FieldId>,
+}
+
+impl Splits {
+    /// A smaller part of a field.
+    pub(super) fn smaller(field: FieldId) -> Splits {
+        Splits {
+            smaller: vec![(field, 1)],
+            expanded: Vec::new(),
+        }
+    }
+
+    /// Those of an expansion of a sum of such products.
+    pub(super) fn of_expanded(pieces: &[Piece]) -> Splits {
+        let mut expanded: Vec<FieldId> = pieces
+            .iter()
+            .map(|piece| &piece.splits)
+            .flat_map(|own| {
+                let smaller = own.smaller.iter().map(|(field, _)| *field);
+                smaller.chain(own.expanded.iter().copied())
+            })
+            .collect();
+        expanded.sort_unstable();
+        expanded.dedup();
+        Splits {
+            smaller: Vec::new(),
+            expanded,
+        }
+    }
+
+    /// Those of a product of two.
+    pub(super) fn and(&self, other: &Splits) -> Splits {
+        let mut found = self.clone();
+        for (field, n) in &other.smaller {
+            match found.smaller.iter_mut().find(|(own, _)| own == field) {
+                Some((_, own)) => *own = own.saturating_add(*n),
+                None => found.smaller.push((*field, *n)),
+            }
+        }
+        for field in &other.expanded {
+            if !found.expanded.contains(field) {
+                found.expanded.push(*field);
+            }
+        }
+        found
+    }
+
+    /// The orders that smaller parts count for.
+    fn orders(&self) -> u32 {
+        let counting = self
+            .smaller
+            .iter()
+            .filter(|(field, _)| self.expanded.contains(field));
+        counting.map(|(_, n)| *n).fold(0, u32::saturating_add)
+    }
 }
 
 pub(super) type Pieces = Result<Vec<Piece>, ModelError>;
@@ -36,7 +107,14 @@ impl Piece {
             product,
             degree: 0,
             tag: None,
+            splits: Splits::default(),
         }
+    }
+
+    /// Its order with the smaller parts that stand beside an expansion of their field: up to
+    /// the order of the expansions all products of one such order are there.
+    pub(super) fn whole_order(&self) -> u32 {
+        self.degree.saturating_add(self.splits.orders())
     }
 
     /// Another product in its place.
@@ -45,6 +123,7 @@ impl Piece {
             product,
             degree: self.degree,
             tag: self.tag.clone(),
+            splits: self.splits.clone(),
         }
     }
 
@@ -69,12 +148,13 @@ impl Piece {
     }
 }
 
-/// A series whose terms all belong to one process.
-pub(super) fn tagged(series: Vec<Graded>, tag: Option<&Tag>) -> Vec<Piece> {
+/// A series whose terms all belong to one process and come from these fields.
+pub(super) fn tagged(series: Vec<Graded>, tag: Option<&Tag>, splits: &Splits) -> Vec<Piece> {
     let piece = |term: Graded| Piece {
         product: term.product,
         degree: term.degree,
         tag: tag.cloned(),
+        splits: splits.clone(),
     };
     series.into_iter().map(piece).collect()
 }
@@ -118,19 +198,20 @@ pub(super) fn multiplied(left: &[Piece], right: &[Piece], highest: u32, span: Sp
     for a in left {
         for b in right {
             let tag = met(a.tag.as_ref(), b.tag.as_ref())?;
-            let degree = a.degree.saturating_add(b.degree);
-            if degree > highest {
+            let mut piece = Piece {
+                product: Product::number(Number::one()),
+                degree: a.degree.saturating_add(b.degree),
+                tag,
+                splits: a.splits.and(&b.splits),
+            };
+            if piece.degree > highest {
                 continue;
             }
-            let product = a
+            piece.product = a
                 .product
                 .times(&b.product)
                 .map_err(|_| ModelError::TooLarge { span })?;
-            pieces.push(Piece {
-                product,
-                degree,
-                tag,
-            });
+            pieces.push(piece);
         }
     }
     Ok(pieces)
@@ -242,7 +323,7 @@ pub(super) fn gathered(pieces: Vec<Sided>) -> Vec<Sided> {
 }
 
 /// The number of a piece with another added to it, the other brought to its side.
-fn total((side, piece): &Sided, other_side: Side, other: &Piece) -> Option<crate::number::Number> {
+fn total((side, piece): &Sided, other_side: Side, other: &Piece) -> Option<Number> {
     let number = if *side == other_side {
         other.product.number.clone()
     } else {
@@ -257,7 +338,7 @@ fn cancel(sum: &mut [Sided], places: &[usize]) {
         for other in &places[place + 1..] {
             let (side, piece) = sum[*other].clone();
             if total(&sum[*idx], side, &piece).is_some_and(|number| number.is_zero()) {
-                let zero = crate::number::Number::whole(0);
+                let zero = Number::whole(0);
                 sum[*idx].1.product.number = zero.clone();
                 sum[*other].1.product.number = zero;
                 break;
@@ -278,11 +359,37 @@ fn cancel(sum: &mut [Sided], places: &[usize]) {
         && all.product.number.is_zero()
     {
         for idx in places {
-            sum[*idx].1.product.number = crate::number::Number::whole(0);
+            sum[*idx].1.product.number = Number::whole(0);
         }
     }
 }
 
 fn name_of(piece: &Piece) -> Option<&str> {
     piece.tag.as_ref().map(|tag| tag.name.as_str())
+}
+
+/// Takes out what cancels over all orders, like the last power of `rho*(1/rho)`.
+pub(super) fn without_cancelling(pieces: Vec<Sided>) -> Vec<Sided> {
+    let mut totals: BTreeMap<(Option<String>, Factors), Option<Sided>> = BTreeMap::new();
+    let key = |piece: &Piece| (name_of(piece).map(str::to_owned), piece.product.likeness());
+    for (side, piece) in &pieces {
+        let found = totals.entry(key(piece)).or_insert_with(|| {
+            Some((*side, piece.with_product(Product::number(Number::whole(0)))))
+        });
+        if let Some(sum) = found {
+            match total(sum, *side, piece) {
+                Some(number) => sum.1.product.number = number,
+                // Numbers without a common form do not cancel.
+                None => *found = None,
+            }
+        }
+    }
+    let cancels = |piece: &Piece| {
+        let found = totals.get(&key(piece)).and_then(Option::as_ref);
+        found.is_some_and(|(_, sum)| sum.product.number.is_zero())
+    };
+    pieces
+        .into_iter()
+        .filter(|(_, piece)| piece.product.number.is_zero() || !cancels(piece))
+        .collect()
 }

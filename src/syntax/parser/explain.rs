@@ -207,7 +207,15 @@ fn product(at: usize, place: &Place<'_, '_>) -> Mend {
         (Kind::Unit, Kind::Name) if at >= 2 => {
             Mend::Product(format!("{} {}", text(at - 2), text(at - 1)), text(at))
         }
-        (Kind::Unit, _) if at >= 2 => Mend::Product(text(at - 2), text(at - 1)),
+        (Kind::Unit, _) if at >= 2 => {
+            let number = text(at - 2);
+            match unit_alone(before.text) {
+                Some((unit, operator, function)) if found.kind == Kind::LeftBracket => {
+                    Mend::UnitAlone(number, unit.to_owned(), operator, function.to_owned())
+                }
+                _ => Mend::Product(number, text(at - 1)),
+            }
+        }
         (Kind::RightBracket, _) | (_, Kind::LeftBracket) => Mend::Sign,
         _ => Mend::Product(text(at - 1), text(at)),
     }
@@ -229,6 +237,18 @@ fn one_unit(at: usize, place: &Place<'_, '_>) -> Option<Mend> {
         format!("{} {}", before.text, unit_spelling::spelt(run)?),
         may_be_product.then(product),
     ))
+}
+
+/// A unit that took in a function behind its last operator, as in `hPa/sqrt(x)`: the unit
+/// without it, the operator that is meant, and the function. What is as short as most units
+/// is taken for one.
+fn unit_alone(written: &str) -> Option<(&str, char, &str)> {
+    let at = written.rfind(['/', '.', '\u{B7}'])?;
+    let (unit, rest) = written.split_at(at);
+    let operator = if rest.starts_with('/') { '/' } else { '*' };
+    let function = rest.trim_start_matches(['/', '.', '\u{B7}']);
+    let is_word = function.chars().all(|c| c.is_alphanumeric() || c == '_');
+    (is_word && function.len() > 2).then_some((unit, operator, function))
 }
 
 fn is_number(token: &Token<'_>) -> bool {
