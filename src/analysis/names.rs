@@ -87,6 +87,15 @@ impl<'c> Namer<'c> {
         Some(number)
     }
 
+    /// Whether a product of groups holds a symbol that cancels out of the ratio.
+    pub fn has_foreign(&self, ratio: &Monomial, product: &[(usize, Exponent)]) -> bool {
+        let groups = product
+            .iter()
+            .map(|(idx, _)| &self.case.setting.groups[*idx]);
+        let mut symbols = groups.flat_map(|group| group.size.resolved.powers());
+        symbols.any(|(symbol, _)| !holds(ratio, symbol))
+    }
+
     fn search(&self, ratio: &Monomial) -> Option<GroupProduct> {
         let columns = self.columns(ratio);
         let symbols = symbols_of(ratio, &columns);

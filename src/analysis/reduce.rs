@@ -106,6 +106,8 @@ pub struct Inequality {
     pub factors: Factors,
     /// The ratio as a number times named groups, where they give it.
     pub groups: Option<(Number, Exponents)>,
+    /// Whether these groups hold a symbol that cancels out of the ratio.
+    pub has_foreign: bool,
     /// Its value.
     pub value: Range,
     /// The limit.
@@ -313,12 +315,16 @@ pub fn conditions(
 
 /// `ratio <= limit`, with its value and its named groups.
 pub fn inequality(case: &Case, ratio: &Monomial, limit: f64, namer: &Namer<'_>) -> Inequality {
-    let groups = namer
-        .product(ratio)
-        .and_then(|product| Some((namer.rest(ratio, &product)?, namer.named(&product))));
+    let product = namer.product(ratio);
+    let has_foreign = product
+        .as_ref()
+        .is_some_and(|product| namer.has_foreign(ratio, product));
+    let groups =
+        product.and_then(|product| Some((namer.rest(ratio, &product)?, namer.named(&product))));
     Inequality {
         factors: case.factors(ratio),
         groups,
+        has_foreign,
         value: case
             .setting
             .monomial_range(ratio)

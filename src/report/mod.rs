@@ -2,6 +2,7 @@
 //! `ruler` of decades), `json` for other programs. `words` and `standing` hold the
 //! sentences that all forms share, `layout` numbers, columns and wrapping.
 
+pub mod conditions;
 pub mod dimensionless;
 pub mod given;
 pub mod json;

@@ -18,7 +18,7 @@ use crate::model::settings::Variable;
 use crate::model::{Level, Model, spelling};
 use crate::report::layout::{self, percent};
 use crate::report::module::shelves::Shelves;
-use crate::report::words;
+use crate::report::{conditions, words};
 use crate::source::Sources;
 use crate::syntax::ast::{self, StatementKind};
 use crate::syntax::print;
@@ -124,10 +124,9 @@ fn about(equation: &ReducedEquation, is_kept: bool, out: &mut String) {
         );
         comment("  error     ", &error, out);
     }
-    for terms in words::conditions(equation) {
-        let texts: Vec<&str> = terms.iter().map(|term| term.text.as_str()).collect();
-        let condition = words::condition_with_values(terms[0]);
-        let text = format!("{}: may go where {condition}", texts.join(", "));
+    for found in conditions::depends(equation) {
+        let texts: Vec<&str> = found.terms.iter().map(|term| term.text.as_str()).collect();
+        let text = format!("{}: {}", texts.join(", "), conditions::fate(&found));
         comment("  depends   ", &text, out);
     }
 }

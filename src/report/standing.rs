@@ -6,8 +6,8 @@ use crate::analysis::bounds::standing::Why;
 use crate::analysis::bounds::{Bound, Bounds, Dropped, End, Place};
 use crate::analysis::matching::Matching;
 use crate::diagnostic::Diagnostic;
-use crate::report::layout::{range, significant};
-use crate::report::words;
+use crate::report::layout::significant;
+use crate::report::{conditions, words};
 use crate::source::Span;
 use crate::units::Range;
 
@@ -130,13 +130,11 @@ pub fn needed(conditions: &[Condition]) -> Vec<(String, String)> {
     )
 }
 
-/// The conditions under which more terms may go, each with those terms.
-pub fn may_go(conditions: &[Condition]) -> Vec<(String, String)> {
-    told(
-        conditions
-            .iter()
-            .filter(|condition| condition.role == Role::MayGo),
-    )
+/// The conditions under which more terms may go somewhere in the ranges, each with those
+/// terms.
+pub fn may_go(found: &[Condition]) -> Vec<(String, String)> {
+    let may_go = found.iter().filter(|found| found.role == Role::MayGo);
+    told(may_go.filter(|found| conditions::is_reachable(&found.inequality)))
 }
 
 /// Conditions that read alike, told once and those nearest to their limit first: the
@@ -165,12 +163,7 @@ fn told<'a>(conditions: impl Iterator<Item = &'a Condition>) -> Vec<(String, Str
 
 /// `Ro <= 0.1 (now 0.0946)`.
 pub fn condition_with_value(condition: &Condition) -> String {
-    let inequality = &condition.inequality;
-    format!(
-        "{} (now {})",
-        words::inequality(inequality),
-        range(&inequality.value)
-    )
+    conditions::with_value(&condition.inequality)
 }
 
 fn rests(role: Role, places: &[&Place]) -> String {

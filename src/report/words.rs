@@ -4,11 +4,8 @@ use num_integer::Integer as _;
 
 use crate::analysis::balances::Balances;
 use crate::analysis::claims::{Astray, Held, Measured};
-use crate::analysis::reduce::{
-    Inequality, Kind, Lone, LostDerivative, Part, ReducedEquation, ReducedTerm,
-};
+use crate::analysis::reduce::{Kind, Lone, LostDerivative, Part, ReducedEquation, ReducedTerm};
 use crate::analysis::show::Shown;
-use crate::analysis::sizes::Verdict;
 use crate::analysis::{Answer, Body, Exponents, Factors};
 use crate::diagnostic::Severity;
 use crate::number::{Exponent, Number};
@@ -118,38 +115,7 @@ const ALWAYS_LISTED: usize = 8;
 /// Part of the tolerance below which a dropped term is far from mattering.
 const FAR_BELOW: f64 = 1e-4;
 
-/// `Ro <= 0.1`.
-pub fn inequality(condition: &Inequality) -> String {
-    let left = match &condition.groups {
-        Some((rest, groups)) => product(rest, groups),
-        None => factors(&condition.factors),
-    };
-    format!("{left} <= {}", number(condition.limit))
-}
-
-/// The conditions under which a term may go, any of which is enough.
-pub fn condition(term: &ReducedTerm) -> Option<String> {
-    let texts: Vec<String> = term.conditions.iter().map(inequality).collect();
-    (!texts.is_empty()).then(|| texts.join(" or "))
-}
-
-/// The same with present values: `Ro <= 0.1 (now 0.03 .. 0.09 .. 0.28)`.
-pub fn condition_with_values(term: &ReducedTerm) -> String {
-    let texts: Vec<String> = term
-        .conditions
-        .iter()
-        .map(|condition| {
-            format!(
-                "{} (now {})",
-                inequality(condition),
-                range(&condition.value)
-            )
-        })
-        .collect();
-    texts.join(" or ")
-}
-
-/// Scales with the factors that they would have to take.
+/// Scales with the factors that they would have to take, any of which is enough.
 pub fn mends(mends: &[(String, f64)]) -> String {
     let texts: Vec<String> = mends
         .iter()
@@ -161,7 +127,10 @@ pub fn mends(mends: &[(String, f64)]) -> String {
             }
         })
         .collect();
-    texts.join(", ")
+    match texts.as_slice() {
+        [first @ .., last] if !first.is_empty() => format!("{} or {last}", first.join(", ")),
+        texts => texts.concat(),
+    }
 }
 
 fn ordinal(order: u32) -> String {
@@ -206,13 +175,27 @@ pub fn signed(parts: &[Part], text: impl Fn(&Part) -> String) -> Vec<String> {
         .collect()
 }
 
-/// Which balance leads, and whether it was put in.
+/// Which balance leads, whether it was put in, and whether the equation keeps more.
 pub fn leading_order(equation: &ReducedEquation) -> String {
     let name = equation.balance.as_deref().unwrap_or("unnamed");
-    match equation.by_construction {
-        true => format!("{name}, by construction: derived scales put this balance in"),
-        false => name.to_owned(),
+    let depend = "and terms that depend on the ranges";
+    let put_in = "by construction: derived scales put this balance in";
+    match (equation.by_construction, keeps_more(equation)) {
+        (true, false) => format!("{name}, {put_in}"),
+        (true, true) => format!("{name} ({put_in}), {depend}"),
+        (false, true) if equation.leading.is_empty() => {
+            "no process over all ranges, only terms that depend on them".to_owned()
+        }
+        (false, true) => format!("{name}, {depend}"),
+        (false, false) => name.to_owned(),
     }
+}
+
+/// Whether a term of a process that does not lead is kept.
+fn keeps_more(equation: &ReducedEquation) -> bool {
+    let label = |term: &ReducedTerm| term.process.clone().unwrap_or_else(|| term.text.clone());
+    let mut kept = equation.kept.iter();
+    kept.any(|term| !equation.leading.contains(&label(term)))
 }
 
 /// What a reduced equation of base fields alone is good for.
@@ -501,21 +484,6 @@ pub fn measured(held: &Held) -> String {
             ..
         } => measured_processes(*word, found, astray),
     }
-}
-
-/// The conditions under which terms may go, each with the terms that it holds for.
-pub fn conditions(equation: &ReducedEquation) -> Vec<Vec<&ReducedTerm>> {
-    let mut found: Vec<Vec<&ReducedTerm>> = Vec::new();
-    let depends = |term: &&ReducedTerm| term.verdict == Verdict::Depends;
-    for term in equation.kept.iter().filter(depends) {
-        let text = condition_with_values(term);
-        let like = |terms: &&mut Vec<&ReducedTerm>| condition_with_values(terms[0]) == text;
-        match found.iter_mut().find(like) {
-            Some(terms) => terms.push(term),
-            None => found.push(vec![term]),
-        }
-    }
-    found
 }
 
 /// The dropped terms, the one with the highest share first.

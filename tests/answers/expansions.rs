@@ -315,3 +315,24 @@ fn splits_and_expansions_that_make_no_sense_are_refused() {
         "too-large"
     );
 }
+
+#[test]
+fn a_quotient_by_a_split_field_cancels_exactly() {
+    let output = output(
+        "scale T = L/U coordinate t ~ T field w(z, t) ~ U
+        equation whole: rho*d_t(w) as tendency = -rho*w/T as drag
+        equation e from whole/rho",
+    );
+    let equation = entry(&answer_equations(&output, "reduce"), "name", "e").clone();
+    assert_eq!(equation["reduced"], "d_t(w) = -w/T");
+    assert_eq!(equation["error"], 0.0);
+    assert_eq!(list(&equation["dropped"]).len(), 0);
+}
+
+/// The equations of the one answer to a request.
+fn answer_equations(output: &Value, request: &str) -> Value {
+    let answers = list(&output["answers"]).iter();
+    let mut own = answers.filter(|answer| answer["request"] == request);
+    own.next()
+        .map_or(Value::Null, |answer| answer["equations"].clone())
+}

@@ -197,6 +197,34 @@ reduce
 }
 
 #[test]
+fn a_mean_beside_its_fluctuation_is_no_base_state() {
+    let script = "
+scale U = 8 m/s   scale u_f = 0.8 m/s   scale P = 1 hPa   scale p_f = 1 Pa   scale L = 200 km
+constant rho = 1.2 kg/m^3
+coordinate x ~ L
+field u_m(x) ~ U
+field p_m(x) ~ P
+fluctuation u'(x) ~ u_f
+fluctuation p'(x) ~ p_f
+field u = u_m + u'
+field p = p_m + p'
+equation momentum: d_x(u*u) as flux = -d_x(p)/rho as pressure_gradient
+equation mean_momentum from mean(momentum)
+reduce mean_momentum
+";
+    let output = output(script);
+    assert_eq!(
+        reduced(&output, "mean_momentum"),
+        "d_x(u_m^2) = -d_x(p_m)/rho"
+    );
+    let equations = &output["answers"][0]["equations"];
+    assert_eq!(
+        entry(equations, "name", "mean_momentum")["base_state"],
+        false
+    );
+}
+
+#[test]
 fn combinations_that_make_no_sense_are_refused() {
     let given = "scale U = 1 m/s\nscale L = 1 km\ncoordinate x ~ L\nfield u, v(x) ~ U\n\
                  equation a: d_x(u) = d_x(v)\n";

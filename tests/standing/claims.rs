@@ -197,6 +197,7 @@ fn an_unmet_claim_reads_well() {
     ));
     let words: Vec<&str> = text.split_whitespace().collect();
     assert!(words.join(" ").contains(
-        "tendency, not claimed, has a share of 20 %; misses by a factor 2; would hold with"
+        "tendency, not claimed, has a share of 20 %; misses by a factor 2; \
+         would hold with U ÷ 2 or L × 2"
     ));
 }

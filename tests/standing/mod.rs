@@ -4,6 +4,7 @@
 mod bounds;
 mod claims;
 mod compare;
+mod words;
 
 use serde_json::Value;
 

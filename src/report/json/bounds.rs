@@ -4,8 +4,8 @@ use serde_json::{Value, json};
 
 use crate::analysis::bounds::conditions::Condition;
 use crate::analysis::bounds::{Bound, Bounds, End, Interval, Place};
+use crate::report::conditions;
 use crate::report::json::{exponents, list, range};
-use crate::report::words;
 
 /// Its own fields.
 pub(super) fn bounds(bounds: &Bounds) -> Value {
@@ -62,7 +62,7 @@ fn condition(condition: &Condition) -> Value {
     json!({
         "equation": condition.place.equation,
         "term": condition.place.term,
-        "text": words::inequality(inequality),
+        "text": conditions::in_groups(inequality),
         "groups": inequality.groups.as_ref().map(|(_, groups)| exponents(groups)),
         "value": inequality.value.nominal,
         "limit": inequality.limit,

@@ -4,7 +4,7 @@ use serde_json::{Map, Value, json};
 
 use crate::analysis::balances::{Balances, Candidate, FamilyEnd, FoundScale, FreeScale};
 use crate::report::json::{exponents, list, number, range};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Its own fields.
 pub(super) fn find(balances: &Balances) -> Value {
@@ -43,7 +43,7 @@ fn candidate(candidate: &Candidate) -> Value {
         "neglected_power": neglected.and_then(|found| found.power),
         "whole_box": candidate.whole_box,
         "conditions": list(&candidate.conditions, |condition| json!({
-            "text": words::inequality(condition),
+            "text": conditions::in_groups(condition),
             "value": range(&condition.value),
         })),
         "adopted": candidate.is_adopted,

@@ -4,7 +4,7 @@ use serde_json::{Value, json};
 
 use crate::analysis::layers::{Layer, Layers};
 use crate::report::json::{exponents, list, number, range};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Its own fields.
 pub(super) fn layers(found: &Layers) -> Value {
@@ -28,7 +28,7 @@ fn layer(layer: &Layer) -> Value {
         "inside": layer.inside,
         "whole_box": layer.whole_box,
         "conditions": list(&layer.conditions, |condition| json!({
-            "text": words::inequality(condition),
+            "text": conditions::in_groups(condition),
             "value": range(&condition.value),
         })),
     })

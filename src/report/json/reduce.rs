@@ -4,7 +4,7 @@ use serde_json::{Value, json};
 
 use crate::analysis::reduce::{Kind, ReducedEquation, ReducedTerm, Reduction};
 use crate::report::json::{list, mends, range};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Its own fields.
 pub(super) fn reduce(reduction: &Reduction) -> Value {
@@ -63,6 +63,6 @@ fn reduced_term(term: &ReducedTerm) -> Value {
         "process": term.process,
         "share": range(&term.share),
         "verdict": term.verdict.word(),
-        "condition": words::condition(term),
+        "condition": conditions::all_in_groups(term),
     })
 }

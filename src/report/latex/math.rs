@@ -7,7 +7,7 @@
 
 use crate::analysis::Exponents;
 use crate::number::{Exponent, Number};
-use crate::report::latex::escape;
+use crate::report::latex::{escape, unit};
 use crate::source::FileId;
 use crate::syntax::ast::{self, Expr, ExprKind, Name, Operator, Sign};
 use crate::syntax::parser;
@@ -190,33 +190,10 @@ pub fn number(text: &str) -> Math {
 }
 
 /// A unit: upright, with thin spaces for its dots.
-pub fn unit(unit: &str) -> Math {
-    let mut out = String::new();
-    let mut chars = unit.chars().peekable();
-    while let Some(c) = chars.next() {
-        match c {
-            '.' | '·' => out.push_str("\\,"),
-            '%' => out.push_str("\\%"),
-            '^' => {
-                let is_open = chars.peek() == Some(&'(');
-                let is_part = |c: &char| c.is_ascii_digit() || "+-/()".contains(*c);
-                let mut exponent = String::new();
-                while let Some(part) = chars.next_if(is_part) {
-                    exponent.push(part);
-                    if is_open && part == ')' {
-                        break;
-                    }
-                }
-                let bare = exponent.trim_start_matches('(').trim_end_matches(')');
-                out.push_str(&format!("^{{{bare}}}"));
-            }
-            c if c.is_ascii() => out.push(c),
-            c => out.push_str(&escape::sign(c).unwrap_or_else(|| escape::text(&c.to_string()))),
-        }
-    }
+pub fn unit(text: &str) -> Math {
     Math::new(
-        format!("\\mathrm{{{out}}}"),
-        LETTER * unit.chars().count() as f64,
+        format!("\\mathrm{{{}}}", unit::unit(text)),
+        LETTER * text.chars().count() as f64,
     )
 }
 

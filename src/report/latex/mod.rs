@@ -14,6 +14,7 @@ mod ruler;
 mod sheet;
 mod show;
 mod table;
+mod unit;
 
 use crate::analysis::{Answer, Body};
 use crate::report::latex::escape::{breakable, text};

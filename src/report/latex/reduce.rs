@@ -1,12 +1,13 @@
 //! `reduce` in LaTeX.
 
 use crate::analysis::reduce::{Inequality, ReducedEquation, ReducedTerm, Reduction};
+use crate::report::conditions::Depends;
 use crate::report::latex::escape::{backticked, breakable, text};
 use crate::report::latex::math::{self, Style};
 use crate::report::latex::table::table;
 use crate::report::latex::{equation, equation_head};
 use crate::report::layout::{number, percent, range};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Writes a reduced system.
 pub(super) fn reduce(reduction: &Reduction, out: &mut String) {
@@ -52,13 +53,8 @@ fn term_row(term: &ReducedTerm) -> Vec<String> {
 
 /// `Ro <= 0.1 (now 0.03 .. 0.28)`.
 fn inequality(condition: &Inequality) -> String {
-    let left = match &condition.groups {
-        Some((rest, groups)) => math::product(rest, groups, Style::Inline),
-        None => {
-            let factors = &condition.factors;
-            math::product(&factors.number, &factors.exponents, Style::Inline)
-        }
-    };
+    let (factor, exponents) = conditions::left(condition);
+    let left = math::product(factor, exponents, Style::Inline);
     format!(
         "${} \\le {}$ (now {})",
         left.text,
@@ -68,10 +64,7 @@ fn inequality(condition: &Inequality) -> String {
 }
 
 fn remarks(equation: &ReducedEquation, out: &mut String) {
-    let mut items: Vec<String> = words::conditions(equation)
-        .iter()
-        .map(|terms| depends(terms))
-        .collect();
+    let mut items: Vec<String> = conditions::depends(equation).iter().map(depends).collect();
     if let Some(first) = &equation.first_neglected {
         items.push(format!(
             "\\textbf{{Error:}} at most {} of the largest term, from {}, the first neglected \
@@ -103,15 +96,14 @@ fn remarks(equation: &ReducedEquation, out: &mut String) {
     }
 }
 
-fn depends(terms: &[&ReducedTerm]) -> String {
-    let texts: Vec<String> = terms.iter().map(|term| math::inline(&term.expr)).collect();
-    let texts = texts.join(", ");
-    let conditions: Vec<String> = terms[0].conditions.iter().map(inequality).collect();
-    match conditions.is_empty() {
-        true => format!("\\textbf{{Depends:}} {texts}."),
-        false => format!(
-            "\\textbf{{Depends:}} {texts} may go where {}.",
-            conditions.join(" or ")
-        ),
-    }
+fn depends(found: &Depends<'_>) -> String {
+    let terms = found.terms.iter().map(|term| math::inline(&term.expr));
+    let texts: Vec<String> = terms.collect();
+    let met = found.conditions.iter().copied().map(inequality);
+    let conditions: Vec<String> = met.collect();
+    let fate = match conditions.is_empty() {
+        true => conditions::MATTERS_IN_PART.to_owned(),
+        false => format!("may go where {}", conditions.join(" or ")),
+    };
+    format!("\\textbf{{Depends:}} {} {fate}.", texts.join(", "))
 }

@@ -5,7 +5,7 @@ use crate::report::latex::equation;
 use crate::report::layout::percent;
 use crate::report::markdown::equation_head;
 use crate::report::markdown::table::{Align, backticked, code, table, text};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Writes a reduced system.
 pub(super) fn reduce(reduction: &Reduction, out: &mut String) {
@@ -51,16 +51,13 @@ fn term_row(term: &ReducedTerm) -> Vec<String> {
 
 fn remarks(equation: &ReducedEquation) -> String {
     let mut out = String::new();
-    for terms in words::conditions(equation) {
-        let texts: Vec<String> = terms.iter().map(|term| code(&term.text)).collect();
-        let texts = texts.join(", ");
-        out.push_str(&match words::condition_with_values(terms[0]).as_str() {
-            "" => format!("- **Depends:** {texts}.\n"),
-            condition => format!(
-                "- **Depends:** {texts} may go where {}.\n",
-                text(&condition.replace("<=", "≤"))
-            ),
-        });
+    for found in conditions::depends(equation) {
+        let texts: Vec<String> = found.terms.iter().map(|term| code(&term.text)).collect();
+        out.push_str(&format!(
+            "- **Depends:** {} {}.\n",
+            texts.join(", "),
+            text(&conditions::fate(&found).replace("<=", "≤"))
+        ));
     }
     if let Some(first) = &equation.first_neglected {
         out.push_str(&format!(

@@ -4,6 +4,7 @@
 use crate::analysis::reduce::ReducedEquation;
 use crate::model::needs::{Needs, Search};
 use crate::model::{Meaning, names};
+use crate::report::conditions;
 use crate::report::module::Origin;
 
 /// The needs of these equations.
@@ -12,8 +13,8 @@ pub(super) fn of(origin: &Origin<'_>, equations: &[&ReducedEquation]) -> Needs {
     for equation in equations {
         let parts = equation.sides.iter().flatten();
         parts.for_each(|part| search.expr(&part.named));
-        let conditions = equation.kept.iter().flat_map(|term| &term.conditions);
-        let groups = conditions.filter_map(|condition| condition.groups.as_ref());
+        let told = equation.kept.iter().flat_map(|term| &term.conditions);
+        let groups = told.filter_map(conditions::told_groups);
         for (name, _) in groups.flat_map(|(_, groups)| groups) {
             search.name(name);
         }

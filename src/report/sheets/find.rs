@@ -1,10 +1,10 @@
 //! `find` as a sheet.
 
 use crate::analysis::balances::{Balances, Candidate, FoundScale};
-use crate::report::layout::{quantity_in, range};
+use crate::report::layout::quantity_in;
 use crate::report::sheets::{Block, Line, Piece, formula, head, labelled, numbers, words};
 use crate::report::text;
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// All balances.
 pub fn find(balances: &Balances) -> Vec<Block> {
@@ -58,10 +58,7 @@ fn candidate_blocks(candidate: &Candidate, small: Option<&str>, blocks: &mut Vec
     if !candidate.whole_box {
         let conditions = candidate.conditions.iter();
         let texts: Vec<String> = conditions
-            .map(|found| {
-                let inequality = words::inequality(found).replace("<=", "≤");
-                format!("{inequality} (now {})", range(&found.value))
-            })
+            .map(|found| conditions::with_value(found).replace("<=", "≤"))
             .collect();
         let text = match texts.as_slice() {
             [] => "over part of the ranges only".to_owned(),

@@ -4,7 +4,7 @@ use crate::analysis::layers::{Layer, Layers};
 use crate::report::layout::{quantity, range};
 use crate::report::sheets::{Block, Line, formula, head, numbers, words};
 use crate::report::text;
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// All thin layers.
 pub fn layers(found: &Layers) -> Vec<Block> {
@@ -41,10 +41,7 @@ fn layer_row(layer: &Layer) -> Vec<Line> {
     if !layer.whole_box {
         let conditions = layer.conditions.iter();
         let texts: Vec<String> = conditions
-            .map(|found| {
-                let inequality = words::inequality(found).replace("<=", "≤");
-                format!("{inequality} (now {})", range(&found.value))
-            })
+            .map(|found| conditions::with_value(found).replace("<=", "≤"))
             .collect();
         balance.push_str(&format!("; stands where {}", texts.join(" and ")));
     }

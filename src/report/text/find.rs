@@ -1,10 +1,9 @@
 //! `find` for a terminal.
 
 use crate::analysis::balances::{Balances, Candidate, FamilyEnd, FreeScale, Neglected};
-use crate::report::layout::{number, padded, percent, quantity_in, range, width, wrapped};
+use crate::report::layout::{number, padded, percent, quantity_in, width, wrapped};
 use crate::report::text::Pen;
-use crate::report::words;
-use crate::units::Range;
+use crate::report::{conditions, words};
 
 /// Writes all balances.
 pub(super) fn find(balances: &Balances, pen: &Pen, out: &mut String) {
@@ -213,21 +212,11 @@ fn stands(candidate: &Candidate, out: &mut String) {
         return;
     }
     let texts: Vec<String> = (candidate.conditions.iter())
-        .map(|condition| {
-            format!(
-                "{} (now {})",
-                words::inequality(condition),
-                now(&condition.value)
-            )
-        })
+        .map(conditions::with_value)
         .collect();
     let text = match texts.as_slice() {
         [] => "over part of the ranges only".to_owned(),
         texts => format!("where {}", texts.join(" and ")),
     };
     out.push_str(&wrapped(&format!("  {}  ", padded("stands", 9)), &text));
-}
-
-fn now(value: &Range) -> String {
-    range(value)
 }

@@ -3,7 +3,7 @@
 use crate::analysis::layers::{Layer, Layers};
 use crate::report::layout::{number, padded, quantity, range, wrapped};
 use crate::report::text::Pen;
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Writes all thin layers, those of one thickness together.
 pub(super) fn layers(found: &Layers, pen: &Pen, out: &mut String) {
@@ -92,10 +92,7 @@ fn write_layer(layer: &Layer, out: &mut String) {
     row("  outside", &outside(layer), out);
     if !layer.whole_box {
         let texts: Vec<String> = (layer.conditions.iter())
-            .map(|condition| {
-                let now = range(&condition.value);
-                format!("{} (now {now})", words::inequality(condition))
-            })
+            .map(conditions::with_value)
             .collect();
         row("  stands", &format!("where {}", texts.join(" and ")), out);
     }

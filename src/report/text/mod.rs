@@ -13,6 +13,7 @@ mod nondimensional;
 mod rank;
 mod reduce;
 mod show;
+mod sizes;
 
 use std::fmt::Write as _;
 

@@ -3,7 +3,7 @@
 use crate::analysis::reduce::{ReducedEquation, Reduction};
 use crate::report::layout::{padded, percent, wrapped, wrapped_words};
 use crate::report::text::{Pen, equation_head};
-use crate::report::words;
+use crate::report::{conditions, words};
 
 /// Writes a reduced system.
 pub(super) fn reduce(reduction: &Reduction, pen: &Pen, out: &mut String) {
@@ -59,12 +59,9 @@ fn reduced(equation: &ReducedEquation, pen: &Pen, out: &mut String) {
 }
 
 fn depends(equation: &ReducedEquation, out: &mut String) {
-    for terms in words::conditions(equation) {
-        let texts: Vec<&str> = terms.iter().map(|term| term.text.as_str()).collect();
-        let text = match words::condition_with_values(terms[0]).as_str() {
-            "" => texts.join(", "),
-            condition => format!("{}: may go where {condition}", texts.join(", ")),
-        };
+    for found in conditions::depends(equation) {
+        let texts: Vec<&str> = found.terms.iter().map(|term| term.text.as_str()).collect();
+        let text = format!("{}: {}", texts.join(", "), conditions::fate(&found));
         out.push_str(&wrapped("  depends  ", &text));
     }
 }
