@@ -8,6 +8,7 @@ pub mod incremental;
 mod merge;
 mod solving;
 
+use std::collections::HashMap;
 use std::path::{Path, PathBuf};
 
 use crate::analysis::claims::Held;
@@ -255,6 +256,7 @@ fn judged(
     outcome.diagnostics.extend(errors);
     let (model, errors) = declarations::gather(scripts);
     let (checked, errors) = check_model(model, errors, nothing_at, has_form);
+    let errors = without_repeats(errors);
     outcome.diagnostics.extend(
         errors
             .iter()
@@ -352,6 +354,25 @@ fn is_of_module(found: &Diagnostic) -> bool {
         found.code,
         "unreadable-file" | "not-utf8" | "unknown-module" | "outside-folder" | "use-cycle"
     )
+}
+
+/// What nothing declares is told once, at its first place.
+fn without_repeats(errors: Vec<ModelError>) -> Vec<ModelError> {
+    let unknown = |error: &ModelError| match error {
+        ModelError::UnknownName { name, span, .. } => Some((false, name.clone(), *span)),
+        ModelError::NotAFunction { name, span, .. } => Some((true, name.clone(), *span)),
+        _ => None,
+    };
+    let mut first: HashMap<(bool, String), Span> = HashMap::new();
+    for (is_function, name, span) in errors.iter().filter_map(unknown) {
+        let place = first.entry((is_function, name)).or_insert(span);
+        *place = span.min(*place);
+    }
+    let is_first = |error: &ModelError| match unknown(error) {
+        Some((is_function, name, span)) => first.get(&(is_function, name)) == Some(&span),
+        None => true,
+    };
+    errors.into_iter().filter(is_first).collect()
 }
 
 fn is_echo(error: &ModelError, unreadable: &[String], is_whole: bool) -> bool {

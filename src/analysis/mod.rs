@@ -21,11 +21,14 @@ pub mod shelf;
 pub mod show;
 pub mod sizes;
 
+use std::collections::BTreeMap;
+
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::model::settings::{self, Adopted, Setting};
 use crate::model::terms::{self, Depth, EquationTerms};
 use crate::model::{Model, errors::ModelError};
 use crate::number::{Exponent, Number};
+use crate::source::Span;
 
 /// One phenomenon with everything that answers need: its setting and its equations.
 #[derive(Debug)]
@@ -72,7 +75,34 @@ pub fn cases(model: &Model) -> (Vec<Case>, Vec<ModelError>) {
         cases.extend(case);
         errors.extend(found);
     }
+    errors.extend(idle_relations(model, &cases));
     (cases, errors)
+}
+
+/// Relations behind a `using` that replace nothing, in no phenomenon and no component.
+fn idle_relations(model: &Model, cases: &[Case]) -> Vec<ModelError> {
+    let mut found: BTreeMap<Span, (bool, ModelError)> = BTreeMap::new();
+    for equation in cases.iter().flat_map(|case| &case.equations) {
+        for put_in in &equation.put_in {
+            let span = put_in.name.span;
+            let (is_used, _) = found.entry(span).or_insert_with(|| {
+                let mut vectors = model.vector_equations.iter();
+                let whole = vectors.find(|whole| whole.components.contains(&equation.name));
+                let error = ModelError::NothingReplaced {
+                    relation: put_in.name.text.clone(),
+                    left: put_in.left.clone(),
+                    equation: whole
+                        .map_or(&equation.name, |whole| &whole.name.text)
+                        .clone(),
+                    span,
+                };
+                (false, error)
+            });
+            *is_used |= put_in.is_used;
+        }
+    }
+    let idle = found.into_values().filter(|(is_used, _)| !is_used);
+    idle.map(|(_, error)| error).collect()
 }
 
 /// Works out one phenomenon.

@@ -7,7 +7,7 @@
 
 use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::analysis::Case;
-use crate::model::errors::ModelError;
+use crate::model::errors::{Missing, ModelError};
 use crate::model::{Meaning, Model, names};
 use crate::syntax::ast;
 
@@ -51,6 +51,8 @@ fn symbol(model: &Model, case: &Case, name: &ast::Name) -> Result<SymbolId, Mode
                 name: name.text.clone(),
                 span: name.span,
                 nearest: names::nearest(&name.text, model.visible_names(phenomenon)),
+                missing: Missing::Value,
+                unit: None,
             });
         }
     };
@@ -82,6 +84,8 @@ pub fn group(model: &Model, name: &ast::Name) -> Result<(), ModelError> {
                 name: name.text.clone(),
                 span: name.span,
                 nearest: names::nearest(&name.text, groups),
+                missing: Missing::Group,
+                unit: None,
             });
         }
     };

@@ -7,7 +7,7 @@ use num_traits::One;
 use crate::analysis::{Case, compare};
 use crate::limits;
 use crate::model::dimensions::{self, Dim, Place};
-use crate::model::errors::{Alike, ModelError, Unavailable};
+use crate::model::errors::{Alike, Missing, ModelError, Unavailable};
 use crate::model::{Meaning, Model, declarations, limit, names, terms};
 use crate::source::Span;
 use crate::syntax::ast::{self, Claim, ExprKind, ProcessRef, RequestKind};
@@ -228,6 +228,8 @@ impl Checker<'_> {
                     name: name.text.clone(),
                     span: name.span,
                     nearest: names::nearest(&name.text, known),
+                    missing: Missing::Open,
+                    unit: None,
                 });
                 return;
             }

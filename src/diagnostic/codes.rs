@@ -180,6 +180,9 @@ pub const CODES: &[Explained] = codes! {
     "not-a-relation":
         "What stands behind `from` is no linear combination of equations, or an equation behind `using` has nothing to replace."
         "Write `from d_x(y_momentum) - d_y(x_momentum)`; behind `using` one factor on the left.";
+    "nothing-replaced":
+        "The left side of an equation behind `using` does not occur in the equation it is put into."
+        "Leave it out, or put something on its left that the equation holds.";
     "free-groups":
         "The limit does not say how some groups go with the small one."
         "Place those that are listed behind `with`, or write `others ~ 1`.";

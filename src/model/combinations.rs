@@ -52,6 +52,7 @@ pub fn check(model: &Model) -> Vec<ModelError> {
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
+            is_split: false,
         });
     }
     errors

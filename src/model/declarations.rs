@@ -27,6 +27,7 @@ pub fn gather(scripts: Vec<(Level, ast::Script)>) -> (Model, Vec<ModelError>) {
         }
     }
     gatherer.close_phenomena();
+    gatherer.tell_reopened();
     (gatherer.model, gatherer.errors)
 }
 
@@ -130,9 +131,27 @@ impl Gatherer {
                 span: decl.name.span,
                 first: first.name.span,
                 phenomenon: None,
+                is_opened: false,
             });
         }
         self.model.symbols[id.idx()].entries.push((level, decl));
+    }
+
+    /// Says which names the script opens though a module gives them a value.
+    fn tell_reopened(&mut self) {
+        for info in &self.model.symbols {
+            if let Some(decl) = info.reopened() {
+                let first = info.entries.iter().find(|(_, entry)| is_given(entry));
+                self.errors
+                    .extend(first.map(|(_, first)| ModelError::ValueOverridden {
+                        name: info.name.clone(),
+                        span: decl.name.span,
+                        first: first.name.span,
+                        phenomenon: None,
+                        is_opened: true,
+                    }));
+            }
+        }
     }
 
     fn new_symbol(&mut self, level: Level, decl: ast::ValueDecl, local_to: Option<usize>) {
@@ -329,6 +348,7 @@ impl Gatherer {
             span: info.name.span,
             first: place.name.span,
             phenomenon: None,
+            is_opened: false,
         });
         self.places.insert(info.name.text.clone(), info.name.span);
         *place = info;
@@ -447,12 +467,13 @@ impl Gatherer {
             return;
         }
         let overridden = info.entries.iter().find(|(_, entry)| is_given(entry));
-        if let (Some((_, first)), None, true) = (overridden, info.local_to, is_given(&decl)) {
+        if let (Some((_, first)), None) = (overridden, info.local_to) {
             self.errors.push(ModelError::ValueOverridden {
                 name: decl.name.text.clone(),
                 span: decl.name.span,
                 first: first.name.span,
                 phenomenon: Some(self.model.phenomena[idx].name.text.clone()),
+                is_opened: !is_given(&decl),
             });
         }
         self.model.phenomena[idx].values.push((id, decl));

@@ -10,7 +10,7 @@ pub use expressions::dimension;
 
 use crate::algebra::monomial::SymbolId;
 use crate::limits;
-use crate::model::errors::{Alike, Clash, ModelError};
+use crate::model::errors::{Alike, Clash, Missing, ModelError};
 use crate::model::frames;
 use crate::model::names;
 use crate::model::order::order;
@@ -112,6 +112,7 @@ pub fn circular(model: &Model, ring: &[usize]) -> ModelError {
     ModelError::Circular {
         names: ring.iter().map(|idx| decl(idx).text.clone()).collect(),
         spans: ring.iter().map(|idx| decl(idx).span).collect(),
+        is_split: false,
     }
 }
 
@@ -356,6 +357,7 @@ fn splits(model: &mut Model, errors: &mut Vec<ModelError>) {
             errors.push(ModelError::Circular {
                 names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
                 spans: ring.iter().map(|idx| name(idx).span).collect(),
+                is_split: true,
             });
         }
     }
@@ -411,7 +413,13 @@ fn split_dimension(model: &Model, idx: usize, errors: &mut Vec<ModelError>) -> O
                 None
             }
             None => {
-                errors.push(unknown(&part.text, part.span, model, None));
+                errors.push(unknown(
+                    &part.text,
+                    part.span,
+                    model,
+                    None,
+                    Missing::Quantity,
+                ));
                 None
             }
         };
@@ -498,6 +506,8 @@ fn coordinate(
                 name: name.text.clone(),
                 span: name.span,
                 nearest: names::nearest(&name.text, known),
+                missing: Missing::Coordinate,
+                unit: None,
             });
             None
         }
@@ -560,7 +570,7 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
         let Some(Meaning::Field(id)) = meaning else {
             errors.push(match meaning {
                 Some(other) => out_of_place(&field.text, field.span, other, model, "a field"),
-                None => unknown(&field.text, field.span, model, None),
+                None => unknown(&field.text, field.span, model, None, Missing::Quantity),
             });
             continue;
         };
@@ -579,11 +589,19 @@ fn velocity(model: &Model, errors: &mut Vec<ModelError>) {
     }
 }
 
-fn unknown(name: &str, span: Span, model: &Model, phenomenon: Option<usize>) -> ModelError {
+fn unknown(
+    name: &str,
+    span: Span,
+    model: &Model,
+    phenomenon: Option<usize>,
+    missing: Missing,
+) -> ModelError {
     ModelError::UnknownName {
         name: name.to_owned(),
         span,
         nearest: names::nearest(name, model.visible_names(phenomenon)),
+        missing,
+        unit: None,
     }
 }
 
@@ -605,6 +623,7 @@ fn groups(model: &Model, errors: &mut Vec<ModelError>) {
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
+            is_split: false,
         });
     }
 }

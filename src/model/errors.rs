@@ -21,6 +21,8 @@ pub enum ModelError {
         name: String,
         span: Span,
         nearest: Option<String>,
+        missing: Missing,
+        unit: Option<String>,
     },
     /// A name with brackets behind it that is no function.
     NotAFunction {
@@ -71,6 +73,7 @@ pub enum ModelError {
         span: Span,
         first: Span,
         phenomenon: Option<String>,
+        is_opened: bool,
     },
     /// Two process names that meet in one product.
     TwoProcesses {
@@ -159,6 +162,7 @@ pub enum ModelError {
     Circular {
         names: Vec<String>,
         spans: Vec<Span>,
+        is_split: bool,
     },
     /// A script with nothing to answer for.
     NothingToRank { span: Span },
@@ -214,6 +218,21 @@ pub enum ModelError {
     /// An expression that is no linear combination of equations, or an equation that
     /// says nothing to put in elsewhere.
     NotARelation { span: Span, what: Relation },
+    /// A relation whose left side holds a field that is split.
+    SplitOnTheLeft {
+        relation: String,
+        field: String,
+        parts: Vec<String>,
+        span: Span,
+        declared: Span,
+    },
+    /// A relation whose left side does not occur in the equation it is put into.
+    NothingReplaced {
+        relation: String,
+        left: String,
+        equation: String,
+        span: Span,
+    },
     /// A relation whose right side holds its left one.
     HoldsItself { relation: String, span: Span },
     /// A derivative along a coordinate on which its field does not depend.
@@ -301,6 +320,23 @@ pub enum Shape {
 pub enum Unavailable {
     /// A request, by its keyword.
     Request(&'static str),
+}
+
+/// What a name that nothing declares should be.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Missing {
+    /// A scale or a constant.
+    Value,
+    /// A scale or a constant without a value.
+    Open,
+    /// What an equation may hold.
+    Quantity,
+    /// A coordinate.
+    Coordinate,
+    /// A group.
+    Group,
+    /// A vector.
+    Vector,
 }
 
 /// What is no relation.

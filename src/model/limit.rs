@@ -1,6 +1,6 @@
 //! What a `limit` says: products of named groups as powers of one small parameter.
 
-use crate::model::errors::{ModelError, Product};
+use crate::model::errors::{Missing, ModelError, Product};
 use crate::model::{Meaning, Model, names};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
@@ -105,6 +105,8 @@ fn powers(model: &Model, expr: &ast::Expr) -> Result<GroupPowers, ModelError> {
                     name,
                     model.groups.iter().map(|group| group.name.text.as_str()),
                 ),
+                missing: Missing::Group,
+                unit: None,
             }),
         },
         ExprKind::Bracket(inside) => powers(model, inside),

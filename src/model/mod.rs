@@ -126,6 +126,22 @@ pub struct SymbolInfo {
     pub local_to: Option<usize>,
 }
 
+impl SymbolInfo {
+    /// The value of the highest level, phenomena apart.
+    fn given(&self) -> Option<&(Level, ast::ValueDecl)> {
+        let given = self.entries.iter().filter(|(_, decl)| is_given(decl));
+        given.max_by_key(|(level, _)| *level)
+    }
+
+    /// The script's declaration that opens it, where only modules give it a value.
+    fn reopened(&self) -> Option<&ast::ValueDecl> {
+        let (given, _) = self.given()?;
+        let mut entries = self.entries.iter();
+        let opened = entries.find(|(level, decl)| level > given && !is_given(decl));
+        opened.map(|(_, decl)| decl)
+    }
+}
+
 /// A coordinate.
 #[derive(Debug)]
 pub struct CoordinateInfo {
@@ -274,7 +290,7 @@ impl Model {
     }
 
     /// The declaration that holds for a symbol in a phenomenon: the value of the highest
-    /// level, or the one that opens it.
+    /// level, or what opens it, above all values or without any.
     pub fn effective(&self, id: SymbolId, phenomenon: Option<usize>) -> (Level, &ast::ValueDecl) {
         let own = phenomenon.and_then(|idx| {
             let values = &self.phenomena[idx].values;
@@ -283,13 +299,13 @@ impl Model {
         if let Some((_, decl)) = own {
             return (Level::Phenomenon, decl);
         }
-        let entries = &self.symbols[id.idx()].entries;
-        let given = entries
-            .iter()
-            .filter(|(_, decl)| is_given(decl))
-            .max_by_key(|(level, _)| *level);
-        let (level, decl) = given
-            .or(entries.first())
+        let info = &self.symbols[id.idx()];
+        if let Some(decl) = info.reopened() {
+            return (Level::Script, decl);
+        }
+        let (level, decl) = info
+            .given()
+            .or(info.entries.first())
             .expect("a symbol is made from its first declaration");
         (*level, decl)
     }

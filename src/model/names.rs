@@ -287,6 +287,24 @@ pub fn symbols_in(expr: &ast::Expr, model: &Model, phenomenon: Option<usize>) ->
     found
 }
 
+/// The built-in function nearest to a name: spelt nearly so, or a longer or shorter form
+/// of it, as `lap` is of `laplacian`.
+pub fn nearest_function(name: &str) -> Option<String> {
+    const SHORTEST: usize = 3;
+    let known = || {
+        let functions = FUNCTIONS.iter().map(|(known, _)| *known);
+        functions.chain(OPERATIONS)
+    };
+    let is_form = |known: &&str| {
+        let (short, long) = match known.len() < name.len() {
+            true => (*known, name),
+            false => (name, *known),
+        };
+        short.len() >= SHORTEST && long.starts_with(short)
+    };
+    nearest(name, known()).or_else(|| known().find(is_form).map(str::to_owned))
+}
+
 /// The candidate nearest to a misspelt name, if one is near.
 pub fn nearest<'a>(name: &str, candidates: impl IntoIterator<Item = &'a str>) -> Option<String> {
     let allowed = match name.chars().count() {

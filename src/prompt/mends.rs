@@ -28,6 +28,9 @@ pub(super) fn mend(faults: &mut [Diagnostic], text: &str, page: &Page<'_>) {
 }
 
 fn lone_word(word: &Token<'_>, page: &Page<'_>) -> Option<String> {
+    if matches!(word.text, "quit" | "exit" | "bye") {
+        return Some("write `leave` to end the session".to_owned());
+    }
     let keywords = RESERVED.iter().filter(|(kind, _)| kind.begins_statement());
     let known = keywords
         .map(|(_, word)| *word)

@@ -20,7 +20,7 @@ use crate::session::merge::{self, Merged, Written};
 use crate::session::{Checked, Outcome, Session, check_model, judged};
 use crate::source::{FileId, Sources, Span};
 use crate::syntax::ast::{self, Statement, StatementKind};
-use crate::syntax::errors::SyntaxError;
+use crate::syntax::errors::{Mend, SyntaxError};
 use crate::syntax::{parser, print};
 use crate::units::Dimension;
 
@@ -494,7 +494,10 @@ fn expr_start(text: &str, file: FileId) -> usize {
 /// as the latter: its first word is no statement, and none that is merely misspelt.
 fn is_meant_as_expression(errors: &[SyntaxError], start: usize) -> bool {
     errors.iter().any(|error| match error {
-        SyntaxError::NoStatement { span, .. } => span.start as usize == start,
+        // A word with a keyword to take its place was no expression.
+        SyntaxError::NoStatement { span, mend, .. } => {
+            span.start as usize == start && !matches!(mend, Mend::Word(_))
+        }
         _ => false,
     })
 }

@@ -167,9 +167,9 @@ pub enum Mend {
     Word(&'static str),
     /// A product sign between two factors, which are as written.
     Product(String, String),
-    /// A unit with a blank inside: the number, the unit so far and what stands behind the
-    /// blank.
-    OneUnit(String, String, String),
+    /// A unit with a blank inside: the number with the whole unit, and the product that may
+    /// be meant.
+    OneUnit(String, Option<String>),
     /// A blank between a unit and the operator behind it, which took the name of a function
     /// into the unit: the number, the unit alone, the operator and the function.
     UnitAlone(String, String, char, String),
@@ -177,6 +177,8 @@ pub enum Mend {
     Sign,
     /// `show` before it.
     Show,
+    /// A keyword at the beginning of a statement.
+    Keyword,
     /// A digit before a decimal point.
     Digit,
     /// A function in place of `∇·` or `∇²`.
@@ -271,7 +273,10 @@ impl SyntaxError {
                 mended(error, &Mend::Form(*keyword))
             }
             SyntaxError::NoStatement { found, mend, .. } => {
-                let message = format!("expected a statement, found {}", quoted(found));
+                let message = match found.starts_with(char::is_alphabetic) {
+                    true => format!("no statement begins with {}", quoted(found)),
+                    false => format!("expected a statement, found {}", quoted(found)),
+                };
                 mended(Diagnostic::error("unexpected-word", at, message), mend)
             }
             SyntaxError::Misspelt { found, keyword, .. } => {
@@ -425,14 +430,18 @@ fn help(mend: &Mend) -> Option<String> {
         Mend::None => return None,
         Mend::Word(word) => format!("did you mean `{word}`?"),
         Mend::Product(left, right) => format!("write `{left}*{right}` for a product"),
-        Mend::OneUnit(number, unit, rest) => format!(
-            "a unit has no blank inside: write `{number} {unit}.{rest}`, or `{number} {unit} * {rest}` for a product"
-        ),
+        Mend::OneUnit(whole, None) => format!("a unit has no blank inside: write `{whole}`"),
+        Mend::OneUnit(whole, Some(product)) => {
+            format!("a unit has no blank inside: write `{whole}`, or `{product}` for a product")
+        }
         Mend::UnitAlone(number, unit, operator, function) => {
             format!("a unit ends at a blank: write `{number} {unit} {operator} {function}(...)`")
         }
         Mend::Sign => "write `*` between the factors of a product".to_owned(),
         Mend::Show => "write `show` before an expression to see its value".to_owned(),
+        Mend::Keyword => {
+            "begin it with a keyword, as `scale`, `field`, `equation` or `show`".to_owned()
+        }
         Mend::Digit => "write a digit before the point, as in `0.5`".to_owned(),
         Mend::Functions => "write `grad(q)`, `div(V)` or `laplacian(q)`".to_owned(),
         Mend::NothingOpen => "leave it out: nothing is open that it could close".to_owned(),

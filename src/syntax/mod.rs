@@ -12,3 +12,4 @@ mod print_statement;
 pub mod structure;
 pub mod token;
 mod unit_run;
+pub(crate) mod unit_spelling;

@@ -92,7 +92,7 @@ fn bracket_length(text: &str, depth: usize) -> usize {
 
 /// The length of a symbol. Subscripts and primes, which no unit has, are taken along, so
 /// that `2 u'` is one unknown unit and not a unit with a stray prime.
-fn symbol_length(text: &str) -> usize {
+pub(crate) fn symbol_length(text: &str) -> usize {
     let is_start = |c: char| c.is_alphabetic() || matches!(c, '%' | '\u{B0}' | '_');
     let is_part = |c: char| {
         is_start(c)

@@ -21,6 +21,16 @@ fn errors(script: &str) -> Vec<(String, u64)> {
     found
 }
 
+/// What is said of a script, as code, message and help.
+fn said(script: &str) -> Vec<[String; 3]> {
+    let output = answers(script);
+    let text = |found: &Value, field: &str| found[field].as_str().unwrap_or("").to_owned();
+    list(&output["diagnostics"])
+        .iter()
+        .map(|found| ["code", "message", "help"].map(|field| text(found, field)))
+        .collect()
+}
+
 /// The script has this one error, on this line.
 fn assert_error(script: &str, code: &str, line: u64) {
     assert_eq!(errors(script), [(code.to_owned(), line)], "{script}");
@@ -174,6 +184,117 @@ fn names_and_units_that_are_not_there_come_with_a_suggestion() {
     assert_eq!(help("show 10 m/s(4)"), "write `10*m/s` for a product");
     assert_error("show 1 for nobody", "unknown-phenomenon", 1);
     assert_error("rank momentum", "unknown-equation", 1);
+}
+
+#[test]
+fn a_name_that_is_also_a_unit_is_to_be_declared_and_told_once() {
+    let found = said("scale U = H/T\nscale W = H/T\nshow U/H");
+    let helps: Vec<(&str, &str)> = found
+        .iter()
+        .map(|[_, message, help]| (message.as_str(), help.as_str()))
+        .collect();
+    let expected = [
+        (
+            "nothing declares `H`",
+            "declare it, as in `scale H = 10 m`, or check its spelling",
+        ),
+        (
+            "nothing declares `T`",
+            "declare it, as in `scale T = 10 s`, or check its spelling",
+        ),
+    ];
+    assert_eq!(helps, expected);
+    let help = |script: &str| said(script)[0][2].clone();
+    assert_eq!(help("scale Ha = 1 m\nshow 2*H"), "did you mean `Ha`?");
+    assert_eq!(
+        help("scale L = 1 m\ncoordinate x ~ L\nfield u(x) ~ L\nequation a: u = h"),
+        "declare it as a field, a scale or a constant, or check its spelling"
+    );
+    assert!(help("find W").contains("`scale W in UNIT`"));
+}
+
+#[test]
+fn a_unit_with_blanks_around_its_signs_is_spelt_as_one() {
+    let help = |script: &str| said(script)[0][2].clone();
+    let unit = |name: &str, whole: &str| {
+        format!("for the unit `{name}` write `{whole}`: a unit has no blank inside")
+    };
+    assert_eq!(help("show 10 m / s"), unit("s", "10 m/s"));
+    assert_eq!(help("show 10 m / s^2"), unit("s", "10 m/s^2"));
+    assert_eq!(help("show 10 J / kg / K"), unit("kg", "10 J/(kg.K)"));
+    assert_eq!(help("show 10 kg * m"), unit("m", "10 kg.m"));
+    let declared = help("scale s = 1 m\nshow 10 m / s / T");
+    assert!(declared.contains("`scale T = 10 s`"), "{declared}");
+    let bare = help("show 2*T");
+    assert!(bare.contains("`scale T = 10 s`"), "{bare}");
+}
+
+const SPLIT: &str = "scale L = 1 m\nscale U = 1 m/s\ncoordinate x, z ~ L\nfield u, w_m(x, z) ~ U
+fluctuation w'(x, z) ~ U\nfield w = w_m + w'\nequation A: u*d_z(w) + u*d_x(u) = 0\n";
+
+#[test]
+fn a_split_field_on_the_left_of_a_relation_is_named_with_its_parts() {
+    let script = format!("{SPLIT}equation vol: d_z(w) = -d_x(u)\nequation B from A using vol");
+    assert_error(&script, "not-a-product", 8);
+    let [_, message, help] = &said(&script)[0];
+    assert_eq!(
+        message,
+        "`w` on the left of `vol` is a sum of its parts `w_m`, `w'`"
+    );
+    assert!(help.contains("`w'` in place of `w`"), "{help}");
+    let mended = script.replace("vol: d_z(w) = -d_x(u)", "vol: d_z(w') = -d_x(u) - d_z(w_m)");
+    let output = answers(&mended);
+    assert_eq!(output["diagnostics"][0]["code"], "one-term");
+}
+
+#[test]
+fn a_relation_that_replaces_nothing_is_warned_of() {
+    let script = format!("{SPLIT}equation C: d_z(u) = d_x(w_m)\nequation B from A using C");
+    let found = said(&script);
+    let [code, message, _] = &found[0];
+    assert_eq!(
+        (found.len(), code.as_str(), message.as_str()),
+        (
+            1,
+            "nothing-replaced",
+            "`C` replaces nothing in `B`: `d_z(u)` does not occur there"
+        )
+    );
+    assert_eq!(answers(&script)["outcome"], "ok");
+    let used = script.replace("C: d_z(u) = d_x(w_m)", "C: d_x(u) = d_z(u)");
+    assert_eq!(said(&used), Vec::<[String; 3]>::new());
+}
+
+#[test]
+fn a_relation_used_in_one_component_alone_is_used() {
+    let script = "scale L = 1 m\nscale U = 1 m/s\nconstant c = 1 m/s
+coordinate x, y, z ~ L\nframe cartesian (x, y, z)\nfield u, v, w(x, y, z) ~ U\nvector V = (u, v, w)
+equation m: dot(V, V)*V = c^2*L*curl(V)\nequation r: d_y(w) = d_z(w)\nequation n from m*c using r\n";
+    let codes = |script: &str| -> Vec<String> {
+        let found = said(script).into_iter();
+        found.map(|[code, ..]| code).collect()
+    };
+    assert_eq!(codes(script), Vec::<String>::new());
+    let idle = script.replace("r: d_y(w) =", "r: d_x(u) =");
+    assert_eq!(codes(&idle), ["nothing-replaced"]);
+}
+
+#[test]
+fn a_field_that_is_a_part_of_itself_is_told_how_to_name_the_part() {
+    let head = "scale L = 1 m\ncoordinate x ~ L\nfield p_b(x) ~ L\n";
+    let script = format!("{head}field p = p_b + p\nshow L");
+    assert_error(&script, "circular-definition", 4);
+    assert_eq!(said(&script)[0][2], "give the part another name, as `p'`");
+}
+
+#[test]
+fn a_function_of_a_vector_that_is_not_there_comes_with_a_suggestion() {
+    let script = "scale L = 1 m\ncoordinate x, y, z ~ L\nframe cartesian (x, y, z)
+field a, b, c(x, y, z) ~ L\nvector u = (a, b, c)\nequation m: u = L^2*lap(u) + L^2*lap(u)";
+    assert_error(script, "unknown-name", 6);
+    let [_, message, help] = &said(script)[0];
+    assert_eq!(message, "there is no function `lap`");
+    assert_eq!(help, "did you mean `laplacian`?");
 }
 
 #[test]

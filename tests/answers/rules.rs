@@ -231,6 +231,35 @@ fn levels_override_with_a_note() {
 }
 
 #[test]
+fn an_open_declaration_above_a_value_opens_the_name_again() {
+    let head = "use base.planet\n";
+    let script = format!("{head}constant g in m/s^2\nshow g");
+    assert_eq!(codes(&script), ["value-overridden", "open-scale"]);
+    // A value at the same level, or above it, stands.
+    let script = format!("{head}constant g in m/s^2\nconstant g = 2 m/s^2\nshow g");
+    assert_near(&script, 2.0);
+    let script =
+        format!("{head}constant g in m/s^2\nphenomenon a {{ constant g = 3 m/s^2 show g }}");
+    assert_near(&script, 3.0);
+    let script = "scale U = 1 m/s\nphenomenon a { scale U in m/s show U }";
+    assert_eq!(codes(script), ["value-overridden", "open-scale"]);
+    // Modules share a name that one of them opens.
+    assert_near(
+        "use atmosphere.vortex\nuse settings.dust_devil\nconstant nu = 0.1 m^2/s\nshow R/(1 m)",
+        15f64.sqrt(),
+    );
+}
+
+#[test]
+fn a_scale_of_the_settings_can_be_left_to_find() {
+    let script = "use atmosphere.vortex\nuse settings.dust_devil\nscale dP in Pa
+constant nu = 0.1 m^2/s\nfind dP";
+    let output = answers(script);
+    assert_eq!(output["outcome"], "ok", "{:#}", output["diagnostics"]);
+    assert_eq!(output["answers"][0]["request"], "find");
+}
+
+#[test]
 fn a_name_of_a_phenomenon_exists_there_only() {
     assert_eq!(
         codes("phenomenon a { scale V = 2 m/s }\nshow 1\nequation e: V = 1 m/s"),

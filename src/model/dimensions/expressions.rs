@@ -1,13 +1,14 @@
 //! The dimension of one expression in its place: the walk over its tree.
 
 use super::{Dim, Place, alike, coordinate, equation, out_of_place, unknown};
-use crate::model::errors::{Alike, ModelError, Shape};
+use crate::model::errors::{Alike, Missing, ModelError, Shape};
 use crate::model::frames;
 use crate::model::names::{self, Call, Function};
 use crate::model::{Meaning, Model};
 use crate::number::{Exponent, TooLarge};
 use crate::source::Span;
 use crate::syntax::ast::{self, ExprKind};
+use crate::syntax::{print, unit_spelling};
 use crate::units::{self, Dimension, StandardAtmosphere};
 
 /// The dimension of an expression in its place.
@@ -26,6 +27,7 @@ pub fn dimension(
             Place::Constant | Place::Size => Some(expr.span),
             Place::Group | Place::Equation | Place::Combination | Place::Request => None,
         },
+        meant_unit: None,
         errors,
     };
     walker.dimension(expr)
@@ -37,6 +39,8 @@ struct Walker<'a> {
     place: Place,
     /// The whole expression, where it is the value of a declaration.
     whole: Option<Span>,
+    /// Where a factor may be meant as a unit: the number with all of it.
+    meant_unit: Option<String>,
     errors: &'a mut Vec<ModelError>,
 }
 
@@ -185,7 +189,7 @@ impl Walker<'_> {
             if names::is_pi(name) {
                 return Dim::Known(Dimension::one(), span);
             }
-            return self.fault(unknown(name, span, self.model, self.phenomenon));
+            return self.unknown(name, span);
         };
         let may_vary = self.is_in_equation();
         let may_be_group =
@@ -206,6 +210,54 @@ impl Walker<'_> {
         };
         // Without a dimension an error was reported at the declaration.
         found.map_or(Dim::Faulty, |dimension| Dim::Known(dimension, span))
+    }
+
+    fn unknown(&mut self, name: &str, span: Span) -> Dim {
+        let missing = match self.is_in_equation() {
+            true => Missing::Quantity,
+            false => Missing::Value,
+        };
+        let mut fault = unknown(name, span, self.model, self.phenomenon, missing);
+        if let ModelError::UnknownName { unit, .. } = &mut fault {
+            *unit = self.meant_unit.clone();
+        }
+        self.fault(fault)
+    }
+
+    /// `10 m / s`, where nothing declares `s`: the number with the unit that may be meant.
+    fn meant_unit(&self, factors: &[(ast::Operator, ast::Expr)], place: usize) -> Option<String> {
+        let is_unit = |factor: &ast::Expr| {
+            let base = match &factor.kind {
+                ExprKind::Power { base, .. } => base,
+                _ => factor,
+            };
+            matches!(&base.kind, ExprKind::Name(name)
+                if units::find_unit(name).is_some()
+                    && self.model.meaning(name, self.phenomenon).is_none())
+        };
+        if !is_unit(&factors[place].1) {
+            return None;
+        }
+        let is_other = |(_, factor): &(ast::Operator, ast::Expr)| !is_unit(factor);
+        let start = factors[..place].iter().rposition(is_other)?;
+        let ExprKind::Number(number) = &factors[start].1.kind else {
+            return None;
+        };
+        let mut written = number.unit.as_ref()?.text.clone();
+        let behind = &factors[start + 1..];
+        let end = behind.iter().position(is_other).unwrap_or(behind.len());
+        for (operator, factor) in &behind[..end] {
+            written.push(match operator {
+                ast::Operator::Times => '.',
+                ast::Operator::Over => '/',
+            });
+            written.push_str(&print::expression(factor));
+        }
+        Some(format!(
+            "{} {}",
+            number.text,
+            unit_spelling::spelt(&written)?
+        ))
     }
 
     fn process(&mut self, name: &ast::Name, process: &ast::ProcessName, span: Span) -> Dim {
@@ -245,8 +297,11 @@ impl Walker<'_> {
     fn product(&mut self, factors: &[(ast::Operator, ast::Expr)], span: Span) -> Dim {
         let mut product = Dimension::one();
         let mut is_faulty = false;
-        for (operator, factor) in factors {
-            let found = match self.dimension(factor) {
+        for (place, (operator, factor)) in factors.iter().enumerate() {
+            self.meant_unit = self.meant_unit(factors, place);
+            let dimension = self.dimension(factor);
+            self.meant_unit = None;
+            let found = match dimension {
                 Dim::Known(found, _) => found,
                 // A product with 0 still has the dimension of the rest.
                 Dim::Any => Dimension::one(),
@@ -323,16 +378,11 @@ impl Walker<'_> {
         match found {
             Call::Unknown => {
                 let is_declared = self.model.meaning(function, self.phenomenon).is_some();
-                let known = names::FUNCTIONS
-                    .iter()
-                    .map(|(name, _)| *name)
-                    .chain(names::OPERATIONS);
-                let nearest = names::nearest(function, known);
                 self.fault(ModelError::NotAFunction {
                     name: function.to_owned(),
                     span,
                     is_declared,
-                    nearest,
+                    nearest: names::nearest_function(function),
                 })
             }
             Call::Mean => match self.operand("a mean", function, arguments, span) {

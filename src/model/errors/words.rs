@@ -1,7 +1,9 @@
 //! The faults of a model in words: the one `match` of this stage.
 
 use crate::diagnostic::Diagnostic;
-use crate::model::errors::{Alike, Clash, ModelError, Product, Relation, Shape, Unavailable};
+use crate::model::errors::{
+    Alike, Clash, Missing, ModelError, Product, Relation, Shape, Unavailable,
+};
 use crate::source::Span;
 use crate::units::Dimension;
 
@@ -14,14 +16,14 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
     };
     match error {
             E::NotAvailable { what, span } => not_available(*what, *span),
-            E::UnknownName { name, span, nearest } => {
+            E::UnknownName { name, span, nearest, missing, unit } => {
                 let found = Diagnostic::error("unknown-name", *span, format!("nothing declares `{name}`"));
-                match (nearest, crate::units::find_unit(name)) {
-                (None, Some(_)) => found.with_help(format!(
-                    "`{name}` is a unit only right behind a number: a unit has no blank inside, as in `10 m/s`"
-                )),
-                _ => with_nearest(found, nearest, "declare it, or check its spelling"),
-            }
+                match unit {
+                    Some(unit) => found.with_help(format!(
+                        "for the unit `{name}` write `{unit}`: a unit has no blank inside"
+                    )),
+                    None => with_nearest(found, nearest, &declare(name, *missing)),
+                }
             }
             E::NotAFunction { name, span, is_declared, nearest } => {
                 not_a_function(name, *span, *is_declared, nearest.as_ref())
@@ -59,13 +61,16 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
                     .with_related(*first, "given here first")
                     .with_help("keep one of the two; a phenomenon may override a value of the script")
             }
-            E::ValueOverridden { name, span, first, phenomenon } => {
+            E::ValueOverridden { name, span, first, phenomenon, is_opened } => {
                 let whose = match phenomenon {
                     Some(phenomenon) => format!("phenomenon `{phenomenon}`"),
                     None => "the script".to_owned(),
                 };
-                Diagnostic::note("value-overridden", *span, format!("{whose} overrides the value of `{name}`"))
-                    .with_related(*first, "the value it replaces")
+                let (message, label) = match is_opened {
+                    true => (format!("{whose} leaves `{name}` open in place of its value"), "the value that is left out"),
+                    false => (format!("{whose} overrides the value of `{name}`"), "the value it replaces"),
+                };
+                Diagnostic::note("value-overridden", *span, message).with_related(*first, label)
             }
             E::TwoProcesses { first, second } => Diagnostic::error(
                 "name-clash",
@@ -228,7 +233,14 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
             .with_help("ask in a script whose equations hold fewer of them"),
             E::DividesByZero { span } => Diagnostic::error("divides-by-zero", *span, "this divides by 0"),
             E::OutOfDomain { span, what } => Diagnostic::error("not-positive", *span, format!("expected {what}")),
-            E::Circular { names, spans } => circular("circular-definition", "these need one another", names, spans),
+            E::Circular { names, spans, is_split } => {
+                let found = circular("circular-definition", "these need one another", names, spans);
+                match names.as_slice() {
+                    [name] if *is_split => found.with_help(format!("give the part another name, as `{name}'`")),
+                    _ if *is_split => found.with_help("give one of the parts another name, and declare it as a field"),
+                    _ => found,
+                }
+            }
             E::NothingToRank { span } => Diagnostic::error("nothing-to-rank", *span, "there is no equation and no request here")
                 .with_help("declare an `equation`, or ask for something with `show` or `groups`"),
             E::OneTerm { equation, span } => Diagnostic::error(
@@ -361,6 +373,27 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
                 )
                 .with_help("write it with the wanted factor alone on the left: `equation no_divergence: ∂w/∂z = -∂u/∂x - ∂v/∂y`"),
             },
+            E::SplitOnTheLeft { relation, field, parts, span, declared } => {
+                let found = Diagnostic::error(
+                    "not-a-product",
+                    *span,
+                    format!("`{field}` on the left of `{relation}` is a sum of its parts {}", listed(parts)),
+                )
+                .with_label("behind `using` a single product stands here")
+                .with_related(*declared, format!("`{field}` is split here"));
+                match parts.last() {
+                    Some(part) => found.with_help(format!(
+                        "write the relation for a part: `{part}` in place of `{field}` on the left, the other parts on the right"
+                    )),
+                    None => found,
+                }
+            }
+            E::NothingReplaced { relation, left, equation, span } => Diagnostic::warning(
+                "nothing-replaced",
+                *span,
+                format!("`{relation}` replaces nothing in `{equation}`: `{left}` does not occur there"),
+            )
+            .with_help(format!("leave it out, or put something on its left that `{equation}` holds")),
             E::HoldsItself { relation, span } => Diagnostic::error(
                 "circular-definition",
                 *span,
@@ -469,6 +502,28 @@ pub(super) fn diagnostic(error: &ModelError) -> Diagnostic {
             )
             .with_help("name a folder that holds both with `--root DIR`"),
     }
+}
+
+/// How to declare a name that nothing declares.
+fn declare(name: &str, missing: Missing) -> String {
+    let example = match missing {
+        Missing::Value => match name {
+            "L" | "H" | "D" | "h" | "l" | "d" => format!("scale {name} = 10 m"),
+            "U" | "V" | "W" => format!("scale {name} = 10 m/s"),
+            "T" | "t" => format!("scale {name} = 10 s"),
+            "N" | "f" => format!("constant {name} = 1e-4 1/s"),
+            _ => format!("scale {name} = VALUE"),
+        },
+        Missing::Quantity => {
+            return "declare it as a field, a scale or a constant, or check its spelling"
+                .to_owned();
+        }
+        Missing::Open => format!("scale {name} in UNIT"),
+        Missing::Coordinate => format!("coordinate {name} ~ SCALE"),
+        Missing::Group => format!("group {name} = EXPR"),
+        Missing::Vector => format!("vector {name} = (u, v, w)"),
+    };
+    format!("declare it, as in `{example}`, or check its spelling")
 }
 
 fn wrong_shape(wanted: Shape, found: Shape, span: Span, because: Option<Span>) -> Diagnostic {

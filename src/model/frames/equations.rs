@@ -52,6 +52,7 @@ fn order_of(
         errors.push(ModelError::Circular {
             names: ring.iter().map(|idx| name(idx).text.clone()).collect(),
             spans: ring.iter().map(|idx| name(idx).span).collect(),
+            is_split: false,
         });
         for idx in ring {
             needs[idx].clear();

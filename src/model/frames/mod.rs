@@ -14,7 +14,7 @@ mod rules;
 mod shapes;
 
 use crate::algebra::quantities::CoordinateId;
-use crate::model::errors::{ModelError, Shape};
+use crate::model::errors::{Missing, ModelError, Shape};
 use crate::model::frames::components::Writer;
 use crate::model::frames::rules::Rules;
 use crate::model::frames::shapes::{Found, Shapes};
@@ -153,6 +153,8 @@ fn frame_names(model: &Model) -> Vec<ModelError> {
                     name: name.text.clone(),
                     span: name.span,
                     nearest: names::nearest(&name.text, known),
+                    missing: Missing::Coordinate,
+                    unit: None,
                 });
             }
         }
@@ -225,6 +227,8 @@ fn velocity(model: &mut Model, frame_needed: &mut Option<Span>, errors: &mut Vec
                 name: name.text.clone(),
                 span: name.span,
                 nearest: names::nearest(&name.text, model.visible_names(None)),
+                missing: Missing::Vector,
+                unit: None,
             },
         });
         model.velocity = Some(VelocityInfo {

@@ -185,12 +185,33 @@ impl<'a> Shapes<'a> {
                 [argument] => self.scalar_or_vector(argument),
                 _ => Found::Known(Shape::Scalar),
             },
-            Call::Function(_) | Call::Unknown => {
+            Call::Function(_) => {
                 for argument in arguments {
                     self.scalar(argument);
                 }
                 Found::Known(Shape::Scalar)
             }
+            Call::Unknown => self.unknown_call(function, arguments, span),
+        }
+    }
+
+    /// What nothing is known of counts as a scalar of scalars, which is refused where
+    /// dimensions are checked; of a vector it is refused here.
+    fn unknown_call(&mut self, function: &str, arguments: &[Expr], span: Span) -> Found {
+        let mut found = Found::Known(Shape::Scalar);
+        for argument in arguments {
+            if let Found::Known(Shape::Vector | Shape::Stress) = self.shape(argument) {
+                found = Found::Faulty;
+            }
+        }
+        match found {
+            Found::Faulty => self.fault(ModelError::NotAFunction {
+                name: function.to_owned(),
+                span,
+                is_declared: self.model.meaning(function, None).is_some(),
+                nearest: names::nearest_function(function),
+            }),
+            Found::Any | Found::Known(_) => found,
         }
     }
 

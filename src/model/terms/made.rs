@@ -7,7 +7,7 @@ use super::pieces::{
 };
 use super::tangents::without_tangents;
 use super::written::{has_partials, process_names};
-use super::{Maker, Side, Source, Summand};
+use super::{Maker, PutIn, Side, Source, Summand};
 use crate::algebra::product::{Base, Derivative, Factor, Product};
 use crate::algebra::quantities::CoordinateId;
 use crate::limits;
@@ -299,15 +299,19 @@ impl Maker<'_> {
             let Some(relation) = self.relation(name)? else {
                 continue;
             };
+            let mut is_used = false;
             pieces = on_sides(&pieces, |pieces| {
                 let mut found = Vec::with_capacity(pieces.len());
                 for piece in pieces {
                     match self.replaced(&piece.product, &relation, name.span)? {
-                        Some(inside) => found.extend(inside.into_iter().map(|new| Piece {
-                            degree: new.degree + piece.degree,
-                            splits: new.splits.and(&piece.splits),
-                            ..new
-                        })),
+                        Some(inside) => {
+                            is_used = true;
+                            found.extend(inside.into_iter().map(|new| Piece {
+                                degree: new.degree + piece.degree,
+                                splits: new.splits.and(&piece.splits),
+                                ..new
+                            }));
+                        }
                         None => found.push(piece),
                     }
                 }
@@ -317,6 +321,12 @@ impl Maker<'_> {
                 return Err(ModelError::TooLarge { span: name.span });
             }
             pieces = gathered(pieces);
+            let left = self.speller().product(&relation.left);
+            self.made.put_in.push(PutIn {
+                name: name.clone(),
+                left,
+                is_used,
+            });
         }
         Ok(pieces)
     }
@@ -341,10 +351,7 @@ impl Maker<'_> {
         let [single] = left.as_slice() else {
             return Err(match left.is_empty() {
                 true => no_relation(name.span),
-                false => ModelError::NotAProduct {
-                    span: self.model.equations[idx].name.span,
-                    what: Wanted::Using,
-                },
+                false => self.no_single_left(&self.model.equations[idx]),
             });
         };
         if single.product.factors.is_empty() {
@@ -364,6 +371,35 @@ impl Maker<'_> {
             }
         }
         Ok(Some(relation))
+    }
+
+    /// Why the left side of a relation is no single product.
+    fn no_single_left(&self, decl: &ast::EquationDecl) -> ModelError {
+        let mut split = None;
+        if let EquationBody::Written { left, .. } = &decl.body {
+            names::visit_names(left, &mut |name, _| {
+                if let Some(Meaning::Field(id)) = self.model.meaning(name, None)
+                    && !self.model.fields[id.0 as usize].parts.is_empty()
+                {
+                    split.get_or_insert((id, left.span));
+                }
+            });
+        }
+        let Some((id, span)) = split else {
+            return ModelError::NotAProduct {
+                span: decl.name.span,
+                what: Wanted::Using,
+            };
+        };
+        let field = &self.model.fields[id.0 as usize];
+        let parts = field.parts.iter();
+        ModelError::SplitOnTheLeft {
+            relation: decl.name.text.clone(),
+            field: field.name.text.clone(),
+            parts: parts.map(|(_, part)| part.text.clone()).collect(),
+            span,
+            declared: field.name.span,
+        }
     }
 
     fn mention(&mut self, piece: &Piece) {

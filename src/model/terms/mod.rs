@@ -113,6 +113,17 @@ pub struct Summand {
     pub named: ast::Expr,
 }
 
+/// A relation that is put into an equation.
+#[derive(Debug, Clone)]
+pub struct PutIn {
+    /// Its name behind `using`.
+    pub name: ast::Name,
+    /// The text of its left side.
+    pub left: String,
+    /// Whether it replaces something.
+    pub is_used: bool,
+}
+
 /// A ratio in which an expansion goes.
 #[derive(Debug, Clone)]
 pub struct SmallRatio {
@@ -145,6 +156,8 @@ pub struct EquationTerms {
     pub ratios: Vec<SmallRatio>,
     /// Its summands as written, in order.
     pub summands: Vec<Summand>,
+    /// The relations behind its `using`, in order.
+    pub put_in: Vec<PutIn>,
     /// Every process that is named in it, those whose terms are all gone included.
     pub process_names: Vec<String>,
     /// Whether the program spells what it makes with `∂`.
@@ -280,6 +293,7 @@ impl<'a> Maker<'a> {
                 faults: Vec::new(),
                 ratios: Vec::new(),
                 summands: Vec::new(),
+                put_in: Vec::new(),
                 process_names: Vec::new(),
                 with_partials: false,
             },

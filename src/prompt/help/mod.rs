@@ -6,7 +6,7 @@ use crate::diagnostic::codes::{self, CODES, Explained};
 use crate::model::library::{self, Module};
 use crate::model::names::nearest;
 use crate::prompt::entry::{OWN_WORDS, OwnWord};
-use crate::prompt::help::words::{WORDS, Word};
+use crate::prompt::help::words::{NOTIONS, WORDS, Word};
 use crate::prompt::layout::Sheet;
 use crate::source::FileId;
 use crate::syntax::ast::{self, StatementKind};
@@ -18,7 +18,7 @@ const LISTS: [&str; 2] = ["codes", "library"];
 
 /// Every topic, for completion.
 pub fn topics() -> Vec<&'static str> {
-    let words = WORDS.iter().map(|found| found.word);
+    let words = WORDS.iter().chain(NOTIONS).map(|found| found.word);
     let own = OWN_WORDS.iter().map(|found| found.word);
     let codes = CODES.iter().map(|found| found.code);
     let modules = library::MODULES.iter().map(|found| found.name);
@@ -35,7 +35,8 @@ pub fn help(topic: &str, sheet: &Sheet) -> String {
     if topic.is_empty() {
         return first_screen(sheet);
     }
-    if let Some(found) = WORDS.iter().find(|found| found.word == topic) {
+    let mut words = WORDS.iter().chain(NOTIONS);
+    if let Some(found) = words.find(|found| found.word == topic) {
         return word(found, sheet);
     }
     if let Some(found) = OWN_WORDS.iter().find(|found| found.word == topic) {
@@ -200,6 +201,23 @@ mod tests {
                 text.lines().all(|line| line.chars().count() <= columns),
                 "{text}"
             );
+        }
+    }
+
+    #[test]
+    fn splits_and_means_have_topics() {
+        let sheet = Sheet::plain(80);
+        for (topic, example) in [
+            ("field", "field p = p_0 + p'"),
+            ("split", "field p = p_0 + p'"),
+            ("mean", "from mean(x_momentum)"),
+            ("fluctuation", "fluctuation u', v'"),
+            ("using", "using no_divergence"),
+            ("base", "d_z(p_0) = -rho_0*g"),
+        ] {
+            let text = help(topic, &sheet);
+            let line = text.split_whitespace().collect::<Vec<_>>().join(" ");
+            assert!(line.contains(example), "{topic}:\n{text}");
         }
     }
 

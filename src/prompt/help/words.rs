@@ -30,9 +30,9 @@ pub const WORDS: &[Word] = words! {
         "frame spherical (lambda, phi, r)";
     "vector": "Three components under one name.",
         "vector V = (u, v, w)";
-    "field": "What varies: on which coordinates it depends, and its size.",
+    "field": "What varies: on which coordinates it depends, and its size; `field p = p_0 + p'` splits it into parts.",
         "field u, v(x, y, z, t) ~ U";
-    "fluctuation": "Fields whose mean is zero.",
+    "fluctuation": "Fields whose mean is zero, as parts of split fields; `help mean` tells how an equation is averaged.",
         "fluctuation u', v'(x, y, z, t) ~ U";
     "velocity": "What the material derivative `D_t` carries with.",
         "velocity (u, v, w) along (x, y, z)";
@@ -100,12 +100,23 @@ pub const WORDS: &[Word] = words! {
         "limit Ro -> 0 with others ~ 1";
     "varying": "By how much a field varies, where that differs from its level.",
         "field theta(x, z) ~ 300 K varying 5 K";
-    "using": "Equations whose left sides are replaced by their right sides.",
-        "equation made from d_x(x_momentum) using continuity";
+    "using": "Equations, each with one product alone on its left, which is replaced by the right side wherever it occurs.",
+        "equation vorticity from d_x(y_momentum) - d_y(x_momentum) using no_divergence";
     "save": "Writes the reduced system of one phenomenon to a file.",
         "reduce x_momentum save \"leading.scl\" for winter_low";
     "matching": "The groups that a comparison wants equal.",
         "compare winter_low, squall_vortex matching Ro";
+};
+
+/// What is looked for under words that are not reserved.
+#[rustfmt::skip]
+pub const NOTIONS: &[Word] = words! {
+    "split": "A field as a sum of fields and constants declared elsewhere, which take its place everywhere; in quotients, powers and functions it is expanded about the largest part.",
+        "field p = p_0 + p'";
+    "mean": "The average in an equation: linear, 0 for a `fluctuation`, any other field itself. The mean of an equation brings in the stresses of the split fields.",
+        "equation mean_x from mean(x_momentum)";
+    "base": "A base state: the part of a split field that is at rest, with an equation of its own that `using` takes out of others. The library's shared symbols stand in the modules `base.axes`, `base.planet` and so on.",
+        "equation hydrostatic_base: d_z(p_0) = -rho_0*g";
 };
 
 #[cfg(test)]
@@ -114,6 +125,16 @@ mod tests {
     use crate::source::FileId;
     use crate::syntax::parser;
     use crate::syntax::token::{self, RESERVED};
+
+    #[test]
+    fn every_notion_has_an_example_that_parses() {
+        for found in NOTIONS {
+            assert!(!token::is_reserved(found.word), "{}", found.word);
+            let (script, errors) = parser::parse(found.example, FileId::default());
+            assert!(errors.is_empty(), "{}: {errors:?}", found.example);
+            assert_eq!(script.statements.len(), 1, "{}", found.example);
+        }
+    }
 
     #[test]
     fn every_reserved_word_has_a_topic_with_an_example_of_it() {

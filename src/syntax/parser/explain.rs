@@ -3,8 +3,10 @@
 use crate::source::Span;
 use crate::syntax::errors::{Mend, SyntaxError};
 use crate::syntax::parser::rule::{Fault, FaultKind, span_of_tokens};
-use crate::syntax::parser::words::{Speller, begins_line};
+use crate::syntax::parser::words::{Speller, begins_line, keyword_for};
 use crate::syntax::token::{Kind, Kinds, Token};
+use crate::syntax::unit_spelling;
+use crate::units;
 
 /// The tokens of a statement in the script that they come from.
 pub(super) struct Place<'t, 's> {
@@ -36,14 +38,15 @@ pub(super) fn explain(fault: Fault, place: &Place<'_, '_>, speller: &mut Speller
 
 /// What a word that begins no statement may mean.
 pub(super) fn mend_of_stray(token: &Token<'_>, is_expression: bool, speller: &mut Speller) -> Mend {
-    if token.kind == Kind::Name
-        && let Some((_, word)) = speller.nearest(token.text, Kind::begins_statement)
-    {
-        return Mend::Word(word);
+    if token.kind == Kind::Name {
+        let near = speller.nearest(token.text, Kind::begins_statement);
+        if let Some(word) = near.map(|(_, word)| word).or(keyword_for(token.text)) {
+            return Mend::Word(word);
+        }
     }
     match is_expression {
         true => Mend::Show,
-        false => Mend::None,
+        false => Mend::Keyword,
     }
 }
 
@@ -75,6 +78,9 @@ fn unexpected(
     place: &Place<'_, '_>,
     speller: &mut Speller,
 ) -> SyntaxError {
+    if let Some(error) = no_statement(at, expected, place, speller) {
+        return error;
+    }
     if let Some(error) = unit_apart(at, place) {
         return error;
     }
@@ -85,6 +91,35 @@ fn unexpected(
         expected,
         mend: mend(at, expected, place, speller),
     }
+}
+
+/// A word at the beginning of a line that cannot go on with the statement above, and has
+/// no operator behind it, was meant to begin a statement.
+fn no_statement(
+    at: usize,
+    expected: Kinds,
+    place: &Place<'_, '_>,
+    speller: &mut Speller,
+) -> Option<SyntaxError> {
+    let tokens = place.tokens;
+    let found = &tokens[at];
+    let before = &tokens[at.checked_sub(1)?];
+    if found.kind != Kind::Name
+        || !expected.has_end()
+        || !begins_line(tokens, at, place.text)
+        || is_number(before) && units::find_unit(found.text).is_some()
+    {
+        return None;
+    }
+    let next = tokens.get(at + 1);
+    let next = next.filter(|_| !begins_line(tokens, at + 1, place.text));
+    let is_keyword =
+        next.is_none_or(|next| matches!(next.kind, Kind::Name | Kind::Number | Kind::Text));
+    is_keyword.then(|| SyntaxError::NoStatement {
+        span: found.span,
+        found: found.text.to_owned(),
+        mend: mend_of_stray(found, next.is_none(), speller),
+    })
 }
 
 /// A name that begins the line behind a bare number is a unit gone astray.
@@ -99,10 +134,12 @@ fn unit_apart(at: usize, place: &Place<'_, '_>) -> Option<SyntaxError> {
     }
     let start = found.span.start as usize;
     let rest = place.text.get(start..)?;
-    let len = rest.find(char::is_whitespace).unwrap_or(rest.len());
+    let first = rest.find(char::is_whitespace).unwrap_or(rest.len());
+    let len = first + unit_spelling::length_apart(&rest[first..]);
+    let spelt = unit_spelling::spelt(&rest[..len]).filter(|_| len > first);
     Some(SyntaxError::UnitApart {
         unit: Span::new(found.span.file, start, start + len),
-        text: rest[..len].to_owned(),
+        text: spelt.unwrap_or_else(|| rest[..len].to_owned()),
         number: number.span,
     })
 }
@@ -119,6 +156,11 @@ fn mend(at: usize, expected: Kinds, place: &Place<'_, '_>, speller: &mut Speller
         return Mend::Word(word);
     }
     let before = at.checked_sub(1).map(|before| &tokens[before]);
+    if before.is_some_and(|before| before.kind == Kind::Unit)
+        && let Some(mend) = one_unit(at, place)
+    {
+        return mend;
+    }
     if expected.has(Kind::Star) && begins_operand(found) && before.is_some_and(ends_operand) {
         return match begins_line(tokens, at, place.text) {
             true => Mend::Show,
@@ -162,7 +204,9 @@ fn product(at: usize, place: &Place<'_, '_>) -> Mend {
     let text = |idx: usize| place.tokens[idx].text.to_owned();
     let (before, found) = (&place.tokens[at - 1], &place.tokens[at]);
     match (before.kind, found.kind) {
-        (Kind::Unit, Kind::Name) if at >= 2 => Mend::OneUnit(text(at - 2), text(at - 1), text(at)),
+        (Kind::Unit, Kind::Name) if at >= 2 => {
+            Mend::Product(format!("{} {}", text(at - 2), text(at - 1)), text(at))
+        }
         (Kind::Unit, _) if at >= 2 => {
             let number = text(at - 2);
             match unit_alone(before.text) {
@@ -175,6 +219,24 @@ fn product(at: usize, place: &Place<'_, '_>) -> Mend {
         (Kind::RightBracket, _) | (_, Kind::LeftBracket) => Mend::Sign,
         _ => Mend::Product(text(at - 1), text(at)),
     }
+}
+
+/// A unit behind a unit is one unit with a blank inside, as far as units stand there.
+fn one_unit(at: usize, place: &Place<'_, '_>) -> Option<Mend> {
+    let [before, unit, found] = [at.checked_sub(2)?, at - 1, at].map(|idx| &place.tokens[idx]);
+    let (start, end) = (unit.span.start as usize, unit.span.end as usize);
+    let behind = place.text.get(end..)?;
+    let len = unit_spelling::length_apart(behind);
+    let run = place.text.get(start..end + len)?;
+    if len == 0 {
+        return None;
+    }
+    let may_be_product = is_number(before) && behind[..len].trim() == found.text;
+    let product = || format!("{} {} * {}", before.text, unit.text, found.text);
+    Some(Mend::OneUnit(
+        format!("{} {}", before.text, unit_spelling::spelt(run)?),
+        may_be_product.then(product),
+    ))
 }
 
 /// A unit that took in a function behind its last operator, as in `hPa/sqrt(x)`: the unit

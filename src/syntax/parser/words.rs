@@ -40,6 +40,18 @@ impl Speller {
     }
 }
 
+/// The keyword for what is called otherwise elsewhere.
+pub(super) fn keyword_for(word: &str) -> Option<&'static str> {
+    Some(match word {
+        "split" | "variable" => "field",
+        "let" | "define" => "scale",
+        "parameter" => "constant",
+        "import" | "include" => "use",
+        "print" => "show",
+        _ => return None,
+    })
+}
+
 /// How many words are looked at.
 const LOOKS: usize = 200;
 
