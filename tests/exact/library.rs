@@ -168,7 +168,7 @@ fn a_shelf_of_declarations_can_be_checked() {
     );
 }
 
-/// The row of the table of symbols in DEVELOPERS.md that begins with this name.
+/// The row of the tables in grammar/library.md that begins with this name.
 fn has_row(table: &str, name: &str, cell: &str) -> bool {
     let start = format!("| `{name}` |");
     let mut rows = table.lines().filter(|line| line.starts_with(&start));
@@ -176,8 +176,8 @@ fn has_row(table: &str, name: &str, cell: &str) -> bool {
 }
 
 #[test]
-fn every_open_symbol_stands_in_the_table_for_developers() {
-    let table = crate::harness::read("../DEVELOPERS.md");
+fn every_open_symbol_stands_in_the_table_of_the_library() {
+    let table = crate::harness::read("../grammar/library.md");
     for bundled in MODULES
         .iter()
         .filter(|module| !module.name.starts_with("demo."))
