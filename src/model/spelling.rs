@@ -41,6 +41,42 @@ pub fn monomial(monomial: &Monomial, speller: &Speller<'_>) -> Expr {
     quotient(&monomial.number, &symbol_factors(monomial), speller)
 }
 
+/// A product whose number has a unit: behind its number where that is a short decimal,
+/// else behind a 1 before it.
+pub fn with_unit(expr: Expr, unit: &str) -> Expr {
+    let mut factors = match expr.kind {
+        ExprKind::Product(factors) => factors,
+        _ => vec![(Operator::Times, expr)],
+    };
+    let literals = factors.iter().enumerate().map_while(|(place, part)| {
+        let (operator, factor) = part;
+        let belongs = (*operator == Operator::Times) == (place == 0);
+        match &factor.kind {
+            ExprKind::Number(number) if belongs => Some(number.value.clone()),
+            _ => None,
+        }
+    });
+    let literals: Vec<BigRational> = literals.collect();
+    // Denominators that the program writes are not 0.
+    let value = literals.iter().cloned().reduce(|value, next| value / next);
+    let short = value.and_then(|value| Some((decimal(&value)?, value)));
+    let n_literals = if short.is_some() { literals.len() } else { 0 };
+    let (text, value) = short.unwrap_or_else(|| ("1".to_owned(), BigRational::one()));
+    let literal = made(ExprKind::Number(ast::Number {
+        value,
+        text,
+        unit: Some(ast::UnitText {
+            text: unit.to_owned(),
+            span: Span::default(),
+        }),
+    }));
+    factors.splice(..n_literals, [(Operator::Times, literal)]);
+    match factors.as_slice() {
+        [(_, single)] => single.clone(),
+        _ => made(ExprKind::Product(factors)),
+    }
+}
+
 /// An expression under the name of a process.
 pub fn named(expr: &Expr, process: Option<&str>) -> Expr {
     let Some(process) = process else {
@@ -125,6 +161,20 @@ fn number_parts(number: &Number) -> Vec<(Operator, Expr)> {
         parts.push((Operator::Times, raised(pi, number.pi_power())));
     }
     parts
+}
+
+/// A positive number as a decimal of few digits, if it is one.
+fn decimal(value: &BigRational) -> Option<String> {
+    let ten = BigInt::from(10);
+    let n_digits = (0..=6_u32).find(|n| (value * ten.pow(*n)).is_integer())?;
+    let digits = (value * ten.pow(n_digits)).to_integer().to_string();
+    if n_digits == 0 {
+        return Some(digits);
+    }
+    let width = n_digits as usize + 1;
+    let digits = format!("{digits:0>width$}");
+    let (whole, behind) = digits.split_at(digits.len() - n_digits as usize);
+    Some(format!("{whole}.{behind}"))
 }
 
 fn whole(value: &BigInt) -> Expr {

@@ -336,3 +336,25 @@ fn answer_equations(output: &Value, request: &str) -> Value {
     own.next()
         .map_or(Value::Null, |answer| answer["equations"].clone())
 }
+
+#[test]
+fn a_literal_keeps_its_unit_in_the_terms_made_of_it() {
+    let given = "scale U = 1 m/s scale L = 1 km coordinate x ~ L coordinate t ~ L/U
+        field u(x, t) ~ U field a, b(x, t) ~ U field q = a + b
+        equation e: d_t(u) = 0.5 1/s*q/(2 s)*(2 s) - q*u/(3 m)
+        tolerance 1 %";
+    let output = answers(&format!("{given}\nrank\nreduce save \"kept.scl\""));
+    assert_eq!(output["outcome"], "ok", "{:#}", output["diagnostics"]);
+    let terms = list(&output["answers"][0]["equations"][0]["terms"]).iter();
+    let texts: Vec<String> = terms.map(|term| text(&term["text"])).collect();
+    for expected in ["0.5 1/s * a", "0.5 1/s * b", "1 1/m * 1/3*a*u", "1 1/m * 1/3*b*u"] {
+        assert!(texts.iter().any(|text| text == expected), "{texts:?}");
+    }
+    let outcome = scalewright::Session::new().run(
+        "given.scl",
+        &format!("{given}\nreduce save \"kept.scl\""),
+        None,
+    );
+    let saved = &outcome.saved[0].text;
+    assert_eq!(answers(saved)["outcome"], "ok", "{saved}");
+}

@@ -355,3 +355,13 @@ fn a_parameter_that_is_not_small_is_told() {
     assert!(report("2").contains("e is 2 at these values, which is not small"));
     assert_eq!(expanded(&script("2"))["value"], 2.0);
 }
+
+#[test]
+fn a_declared_name_is_not_taken_for_an_order() {
+    let answer = expanded(
+        "constant eps = 0.01\ncoordinate x ~ 1\nfield y_0(x) ~ 1\nfield y(x) ~ 1\n\
+         group e = eps\nequation ode: eps*d_x(y) + y = y_0\nlimit e -> 0\nexpand to order 1",
+    );
+    assert_eq!(texts(&answer, "0"), ["y_(0) = y_0_(0)"]);
+    assert_eq!(texts(&answer, "1"), ["d_x(y_(0)) + y_(1) = y_0_(1)"]);
+}

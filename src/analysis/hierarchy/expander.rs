@@ -387,11 +387,23 @@ impl<'a> Expander<'a> {
         steps: u32,
         has_series: bool,
     ) -> Result<Coefficients, HierarchyFault> {
+        let setting = &self.case.setting;
+        let plain = |name: &str, degree: u32| format!("{name}_{}", order_text(degree, steps));
+        let is_declared = |name: &str| {
+            let mut fields = setting.quantities.fields.iter();
+            setting.names.iter().any(|known| known == name)
+                || fields.any(|field| field.name == name)
+        };
+        // A field `p_0` beside `p` leaves `p_0` no room for the order 0 of `p`.
+        let clashes = setting.quantities.fields.iter().any(|field| {
+            let mut degrees = degrees.iter();
+            degrees.any(|degree| is_declared(&plain(&field.name, *degree)))
+        });
         let spelt = |name: &str, degree: u32| {
             let order = order_text(degree, steps);
-            match (has_series, order.contains('/')) {
+            match (has_series, clashes || order.contains('/')) {
                 (false, _) => name.to_owned(),
-                (true, false) => format!("{name}_{order}"),
+                (true, false) => plain(name, degree),
                 (true, true) => format!("{name}_({order})"),
             }
         };

@@ -20,6 +20,7 @@ use crate::algebra::monomial::{Monomial, Symbol, SymbolId};
 use crate::algebra::product::{Product, Speller};
 use crate::algebra::quantities::Size;
 use crate::limits;
+use crate::model::dimensions::{self, Dim, Place};
 use crate::model::errors::ModelError;
 use crate::model::settings::{Setting, Variable};
 use crate::model::spelling;
@@ -447,6 +448,19 @@ impl<'a> Maker<'a> {
         holds
     }
 
+    /// The unit that the number of a spelt term lost, if it came from a literal with one.
+    fn unit_of_number(&self, expr: &ast::Expr) -> Option<String> {
+        let whole = self.model.equation_dimensions[self.made.idx]?;
+        let (phenomenon, mut errors) = (self.setting.phenomenon, Vec::new());
+        let place = Place::Equation;
+        match dimensions::dimension(expr, self.model, phenomenon, place, &mut errors) {
+            Dim::Known(found, _) if found != whole && errors.is_empty() => {
+                Some(whole.over(&found).ok()?.unit_text())
+            }
+            Dim::Known(..) | Dim::Any | Dim::Faulty => None,
+        }
+    }
+
     /// A term out of a piece; none if a 0 takes it out.
     fn term(
         &mut self,
@@ -472,7 +486,13 @@ impl<'a> Maker<'a> {
             let speller = self.speller();
             let expr = spelling::product(&product, &speller);
             let is_negative = summand.is_negative != product.number.is_negative();
-            (speller.product(&product), expr, is_negative)
+            match self.unit_of_number(&expr) {
+                Some(unit) => {
+                    let expr = spelling::with_unit(expr, &unit);
+                    (print::expression(&expr), expr, is_negative)
+                }
+                None => (speller.product(&product), expr, is_negative),
+            }
         };
         let size = match product.size(&self.setting.quantities) {
             Ok(size) => size,
