@@ -347,7 +347,12 @@ fn a_literal_keeps_its_unit_in_the_terms_made_of_it() {
     assert_eq!(output["outcome"], "ok", "{:#}", output["diagnostics"]);
     let terms = list(&output["answers"][0]["equations"][0]["terms"]).iter();
     let texts: Vec<String> = terms.map(|term| text(&term["text"])).collect();
-    for expected in ["0.5 1/s * a", "0.5 1/s * b", "1 1/m * 1/3*a*u", "1 1/m * 1/3*b*u"] {
+    for expected in [
+        "0.5 1/s * a",
+        "0.5 1/s * b",
+        "1 1/m * 1/3*a*u",
+        "1 1/m * 1/3*b*u",
+    ] {
         assert!(texts.iter().any(|text| text == expected), "{texts:?}");
     }
     let outcome = scalewright::Session::new().run(
