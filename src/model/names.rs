@@ -227,30 +227,11 @@ pub fn exponent(expr: &ast::Expr) -> Result<Exponent, ModelError> {
 
 /// Calls `visit` for every name that stands for a value in an expression, in order.
 pub fn visit_names<'a>(expr: &'a ast::Expr, visit: &mut impl FnMut(&'a str, Span)) {
-    match &expr.kind {
-        ExprKind::Name(name) => visit(name, expr.span),
-        ExprKind::Number(_) | ExprKind::Process { .. } | ExprKind::Error => {}
-        ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| visit_names(term, visit)),
-        ExprKind::Product(factors) => factors
-            .iter()
-            .for_each(|(_, factor)| visit_names(factor, visit)),
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => visit_names(inside, visit),
-        ExprKind::As { expr, .. } => visit_names(expr, visit),
-        ExprKind::Power { base, exponent } => {
-            visit_names(base, visit);
-            visit_names(exponent, visit);
+    expr.visit(&mut |expr| {
+        if let ExprKind::Name(name) = &expr.kind {
+            visit(name, expr.span);
         }
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments
-                .iter()
-                .for_each(|argument| visit_names(argument, visit));
-        }
-        ExprKind::Derivative { operand, .. } => visit_names(operand, visit),
-        ExprKind::Sized { expr, size } => {
-            visit_names(expr, visit);
-            visit_names(size, visit);
-        }
-    }
+    });
 }
 
 /// Whether an expression holds a name other than π.

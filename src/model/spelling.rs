@@ -164,7 +164,7 @@ fn number_parts(number: &Number) -> Vec<(Operator, Expr)> {
 }
 
 /// A positive number as a decimal of few digits, if it is one.
-fn decimal(value: &BigRational) -> Option<String> {
+pub fn decimal(value: &BigRational) -> Option<String> {
     let ten = BigInt::from(10);
     let n_digits = (0..=6_u32).find(|n| (value * ten.pow(*n)).is_integer())?;
     let digits = (value * ten.pow(n_digits)).to_integer().to_string();

@@ -624,6 +624,46 @@ pub struct Expr {
     pub span: Span,
 }
 
+impl Expr {
+    /// Calls `visit` for it and for every expression in it, the outer ones first.
+    pub fn visit<'a>(&'a self, visit: &mut impl FnMut(&'a Expr)) {
+        visit(self);
+        match &self.kind {
+            ExprKind::Number(_)
+            | ExprKind::Name(_)
+            | ExprKind::Process { .. }
+            | ExprKind::Error => {}
+            ExprKind::Sum(terms) => terms.iter().for_each(|(_, term)| term.visit(visit)),
+            ExprKind::Product(factors) => {
+                factors.iter().for_each(|(_, factor)| factor.visit(visit))
+            }
+            ExprKind::Negate(inside) | ExprKind::Bracket(inside) => inside.visit(visit),
+            ExprKind::As { expr, .. } => expr.visit(visit),
+            ExprKind::Power { base, exponent } => {
+                base.visit(visit);
+                exponent.visit(visit);
+            }
+            ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
+                arguments.iter().for_each(|argument| argument.visit(visit));
+            }
+            ExprKind::Derivative { operand, .. } => operand.visit(visit),
+            ExprKind::Sized { expr, size } => {
+                expr.visit(visit);
+                size.visit(visit);
+            }
+        }
+    }
+
+    /// Whether a number in it has a unit.
+    pub fn holds_unit(&self) -> bool {
+        let mut found = false;
+        self.visit(&mut |expr| {
+            found |= matches!(&expr.kind, ExprKind::Number(number) if number.unit.is_some());
+        });
+        found
+    }
+}
+
 /// The kinds of expression. Sums and products are flat, so that long ones do not nest.
 #[derive(Debug, Clone, PartialEq)]
 pub enum ExprKind {

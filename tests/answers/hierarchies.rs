@@ -365,3 +365,17 @@ fn a_declared_name_is_not_taken_for_an_order() {
     assert_eq!(texts(&answer, "0"), ["y_(0) = y_0_(0)"]);
     assert_eq!(texts(&answer, "1"), ["d_x(y_(0)) + y_(1) = y_0_(1)"]);
 }
+
+#[test]
+fn a_literal_keeps_its_unit_with_dimensions() {
+    let answer = expanded(
+        "constant eps = 0.01\ncoordinate t ~ 1000 s\nfield u, a, b(t) ~ 1 m/s\nfield q = a + b\n\
+         group e = eps\nequation ode: d_t(u) + 0.001 1/s*eps*q = 0.002 1/s*q\n\
+         limit e -> 0\nexpand to order 0",
+    );
+    let equation = &answer["orders"][0]["equations"][0];
+    assert_eq!(
+        equation["dimensional"],
+        "d_t(u_0) = 0.002 1/s * a_0 + 0.002 1/s * b_0"
+    );
+}

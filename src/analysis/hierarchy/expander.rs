@@ -56,6 +56,8 @@ pub(super) struct Part {
     pub factor: Number,
     /// Its coefficient, the small parameter taken out.
     pub coefficient: Coefficient,
+    /// The unit of its number, where that has one.
+    pub unit: Option<String>,
     /// Its order, in steps.
     pub degree: u32,
 }
@@ -451,6 +453,7 @@ impl<'a> Expander<'a> {
                         product: term.product,
                         factor: factor.clone(),
                         coefficient: placed.coefficient.clone(),
+                        unit: placed.term.unit.clone(),
                         degree: term.degree,
                     },
                 );

@@ -390,6 +390,7 @@ fn condition(
                 product: term.product,
                 factor: factor.ok_or(TooLarge)?,
                 coefficient,
+                unit: None,
                 degree,
             },
         );

@@ -4,13 +4,14 @@
 use std::sync::Arc;
 
 use crate::algebra::monomial::{Function, Symbol};
-use crate::algebra::product::{Base, Factor, Product};
+use crate::algebra::product::{Base, Factor, Product, Speller};
 use crate::algebra::quantities::{CoordinateId, FieldId};
 use crate::analysis::hierarchy::expander::{Coefficient, Expander, Part, Small, order_of};
 use crate::analysis::hierarchy::series::Coefficients;
 use crate::analysis::hierarchy::{HierarchyFault, Order, OrderEquation, OrderFactor, OrderTerm};
 use crate::analysis::names::GroupProduct;
 use crate::analysis::reduce::joined;
+use crate::model::spelling;
 use crate::model::terms::Side;
 use crate::number::{Exponent, Number};
 
@@ -136,7 +137,7 @@ impl View<'_> {
         let expander = self.expander;
         let speller = expander.speller(&self.coefficients.quantities, with_partials);
         if is_dimensional {
-            return speller.product(&part.product);
+            return with_unit(&part.product, part.unit.as_deref(), &speller);
         }
         let mut dimensionless = Product::number(self.number(part));
         let symbol = |symbol: Symbol, power: Exponent| Factor {
@@ -249,6 +250,22 @@ impl View<'_> {
             }
         }
     }
+}
+
+/// A product whose number has a unit; without its sign, like any product.
+fn with_unit(product: &Product, unit: Option<&str>, speller: &Speller<'_>) -> String {
+    let Some(unit) = unit else {
+        return speller.product(product);
+    };
+    let number = product.number.abs();
+    let mut rest = product.clone();
+    let rational = number.rational_part().clone();
+    let decimal = spelling::decimal(&rational);
+    if let Some(decimal) = decimal.filter(|_| number == Number::rational(rational)) {
+        rest.number = Number::one();
+        return format!("{decimal} {unit} * {}", speller.product(&rest));
+    }
+    format!("1 {unit} * {}", speller.product(&rest))
 }
 
 /// A group as a symbol, for spelling.

@@ -82,6 +82,8 @@ pub struct Term {
     pub summand: usize,
     /// For an expression with a size of its own: how far below its largest part it lies.
     pub below_parts: Option<f64>,
+    /// The unit of its number, where that came from a literal with one.
+    pub unit: Option<String>,
     /// Its order in the ratios of the expansions that it comes from; 0 without any.
     pub degree: u32,
     /// Where it, or what it comes from, is written.
@@ -175,8 +177,13 @@ pub fn all(
     let mut sources: Vec<Option<Source>> = vec![None; model.equations.len()];
     let mut found: Vec<Option<(EquationTerms, Vec<ModelError>)>> = Vec::new();
     found.resize_with(model.equations.len(), || None);
+    let has_units = model.equations.iter().any(|decl| match &decl.body {
+        ast::EquationBody::Written { left, right } => left.holds_unit() || right.holds_unit(),
+        ast::EquationBody::Made(from) => from.holds_unit(),
+    });
     for idx in combinations::order(model) {
         let mut maker = Maker::new(model, setting, idx, depth);
+        maker.has_units = has_units;
         maker.sources = sources;
         maker.equation();
         sources = std::mem::take(&mut maker.sources);
@@ -235,6 +242,8 @@ struct Maker<'a> {
     has_no_time: Option<Span>,
     below_parts: Option<f64>,
     depth: Depth,
+    /// Whether a number in any equation has a unit.
+    has_units: bool,
     /// The equations that are done, for those made of them.
     sources: Vec<Option<Source>>,
     /// This equation's products before functions in them are expanded.
@@ -280,6 +289,7 @@ impl<'a> Maker<'a> {
             has_no_time: None,
             below_parts: None,
             depth,
+            has_units: false,
             sources: Vec::new(),
             source: Vec::new(),
             made: EquationTerms {
@@ -448,8 +458,12 @@ impl<'a> Maker<'a> {
         holds
     }
 
-    /// The unit that the number of a spelt term lost, if it came from a literal with one.
-    fn unit_of_number(&self, expr: &ast::Expr) -> Option<String> {
+    /// The unit of a product's number, if it came from a literal with one.
+    fn unit_of_number(&self, product: &Product) -> Option<String> {
+        if !self.has_units {
+            return None;
+        }
+        let expr = &spelling::product(product, &self.speller());
         let whole = self.model.equation_dimensions[self.made.idx]?;
         let (phenomenon, mut errors) = (self.setting.phenomenon, Vec::new());
         let place = Place::Equation;
@@ -479,6 +493,7 @@ impl<'a> Maker<'a> {
         if product.number.is_zero() {
             return None;
         }
+        let unit = self.unit_of_number(&product);
         let (text, expr, is_negative) = if is_as_written {
             let expr = summand.expr.clone();
             (summand.text.clone(), expr, summand.is_negative)
@@ -486,9 +501,9 @@ impl<'a> Maker<'a> {
             let speller = self.speller();
             let expr = spelling::product(&product, &speller);
             let is_negative = summand.is_negative != product.number.is_negative();
-            match self.unit_of_number(&expr) {
+            match &unit {
                 Some(unit) => {
-                    let expr = spelling::with_unit(expr, &unit);
+                    let expr = spelling::with_unit(expr, unit);
                     (print::expression(&expr), expr, is_negative)
                 }
                 None => (speller.product(&product), expr, is_negative),
@@ -527,6 +542,7 @@ impl<'a> Maker<'a> {
             side: summand.side,
             summand: idx,
             below_parts: None,
+            unit,
             degree,
             span,
         })

@@ -2,7 +2,7 @@
 
 use crate::analysis::bounds::{Bound, Bounds, End};
 use crate::report::layout::percent;
-use crate::report::sheets::{Block, Line, formula, head, labelled, numbers, words};
+use crate::report::sheets::{Block, Line, Piece, formula, head, labelled, numbers, words};
 use crate::report::{standing, words};
 
 /// Where a reduced system stands.
@@ -42,7 +42,7 @@ pub fn bounds(bounds: &Bounds) -> Vec<Block> {
         let columns = [("condition", 0.45), ("what rests on it", 0.55)];
         let rows = conditions
             .into_iter()
-            .map(|(condition, rests)| vec![numbers(condition.replace("<=", "≤")), words(rests)]);
+            .map(|(text, rests)| vec![condition(&text), words(rests)]);
         blocks.push(Block::Table(head(&columns), rows.collect()));
     }
     for text in standing::left_out(&bounds.dropped) {
@@ -77,4 +77,15 @@ fn ends(bound: &Bound) -> Vec<Vec<Line>> {
         row("changes above", bound.unchanged.high.as_ref()),
         row("stands up to", bound.stands.high.as_ref()),
     ]
+}
+
+/// `Ro <= 0.1 (now 0.05)`: its ratio as a formula, the rest as numbers.
+fn condition(text: &str) -> Line {
+    match text.split_once(" <= ") {
+        Some((ratio, rest)) => vec![
+            Piece::Formula(ratio.to_owned()),
+            Piece::Numbers(format!(" ≤ {rest}")),
+        ],
+        None => numbers(text),
+    }
 }

@@ -3,6 +3,7 @@
 use crate::analysis::hierarchy::{Condition, Hierarchy, OrderEquation, Solvability};
 use crate::report::orders;
 use crate::report::sheets::{Block, labelled, words};
+use crate::report::words::capital;
 
 /// Each order with its equations, then what the leading order leaves open.
 pub fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
@@ -28,13 +29,6 @@ pub fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
         }
     }
     blocks
-}
-
-fn capital(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map_or_else(String::new, |first| {
-        first.to_uppercase().chain(letters).collect()
-    })
 }
 
 fn write_condition(condition: &Condition, blocks: &mut Vec<Block>) {
