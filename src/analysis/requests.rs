@@ -418,38 +418,13 @@ pub(crate) fn named_processes(
     expr: &ast::Expr,
     errors: &mut Vec<ModelError>,
 ) {
-    match &expr.kind {
-        ExprKind::Process { equation, process } => {
-            if let Some(idx) = model.equation(&equation.text) {
-                errors.extend(known_process(case, idx, &process.text, process.span).err());
-            }
+    expr.visit(&mut |expr| {
+        if let ExprKind::Process { equation, process } = &expr.kind
+            && let Some(idx) = model.equation(&equation.text)
+        {
+            errors.extend(known_process(case, idx, &process.text, process.span).err());
         }
-        ExprKind::Sum(terms) => terms
-            .iter()
-            .for_each(|(_, term)| named_processes(model, case, term, errors)),
-        ExprKind::Product(factors) => {
-            factors
-                .iter()
-                .for_each(|(_, factor)| named_processes(model, case, factor, errors));
-        }
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => {
-            named_processes(model, case, inside, errors)
-        }
-        ExprKind::Power { base, exponent } => {
-            named_processes(model, case, base, errors);
-            named_processes(model, case, exponent, errors);
-        }
-        ExprKind::Call { arguments, .. } | ExprKind::Tuple(arguments) => {
-            arguments
-                .iter()
-                .for_each(|argument| named_processes(model, case, argument, errors));
-        }
-        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => {
-            named_processes(model, case, expr, errors)
-        }
-        ExprKind::Derivative { operand, .. } => named_processes(model, case, operand, errors),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Error => {}
-    }
+    });
 }
 
 /// A process by its name.

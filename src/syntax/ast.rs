@@ -654,13 +654,16 @@ impl Expr {
         }
     }
 
+    /// Whether something is so of it or of an expression in it.
+    pub fn any(&self, is_so: impl Fn(&Expr) -> bool) -> bool {
+        let mut found = false;
+        self.visit(&mut |expr| found |= is_so(expr));
+        found
+    }
+
     /// Whether a number in it has a unit.
     pub fn holds_unit(&self) -> bool {
-        let mut found = false;
-        self.visit(&mut |expr| {
-            found |= matches!(&expr.kind, ExprKind::Number(number) if number.unit.is_some());
-        });
-        found
+        self.any(|expr| matches!(&expr.kind, ExprKind::Number(number) if number.unit.is_some()))
     }
 }
 

@@ -273,16 +273,21 @@ fn a_sum_with_a_size_of_its_own_stays_below_its_parts() {
     assert_eq!(high["joins"], json!(["divergence"]));
 }
 
-#[test]
-fn ranges_say_where_a_balance_stands() {
-    let output = answered(
-        "scale V = 40 m/s within 3  scale R = 30 km within 3  scale dP in hPa
+/// A swirl of this radius whose pressure fall is looked for.
+fn swirl(radius: &str) -> String {
+    format!(
+        "scale V = 40 m/s within 3  scale R = {radius}  scale dP in hPa
         constant f = 1e-4 1/s  constant rho = 1.1 kg/m^3
         group Ro = V/(f*R)
         coordinate r ~ R   field v(r) ~ V   field p(r) ~ dP
         equation radial: -v^2/r as centrifugal - f*v as coriolis = -d_r(p)/rho as pressure
-        find dP",
-    );
+        find dP"
+    )
+}
+
+#[test]
+fn ranges_say_where_a_balance_stands() {
+    let output = answered(&swirl("30 km within 3"));
     // At the nominal values Ro is 13; over the ranges it goes from 1.5 to 120.
     let found = candidates(&output);
     assert_eq!(found.len(), 1);
@@ -294,14 +299,7 @@ fn ranges_say_where_a_balance_stands() {
 
 #[test]
 fn two_balances_share_the_box() {
-    let output = answered(
-        "scale V = 40 m/s within 3  scale R = 100 km within 10  scale dP in hPa
-        constant f = 1e-4 1/s  constant rho = 1.1 kg/m^3
-        group Ro = V/(f*R)
-        coordinate r ~ R   field v(r) ~ V   field p(r) ~ dP
-        equation radial: -v^2/r as centrifugal - f*v as coriolis = -d_r(p)/rho as pressure
-        find dP",
-    );
+    let output = answered(&swirl("100 km within 10"));
     let found = candidates(&output);
     let balances: Vec<_> = found
         .iter()

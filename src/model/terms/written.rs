@@ -4,24 +4,12 @@
 use crate::model::names;
 use crate::syntax::ast::{self, ExprKind, Operator};
 
+/// Whether a derivative in it is spelled with `∂`, as vector operations are.
 pub(super) fn has_partials(expr: &ast::Expr) -> bool {
-    match &expr.kind {
-        ExprKind::Derivative { .. } => true,
-        ExprKind::Sum(terms) => terms.iter().any(|(_, term)| has_partials(term)),
-        ExprKind::Product(factors) => factors.iter().any(|(_, factor)| has_partials(factor)),
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => has_partials(inside),
-        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => has_partials(expr),
-        ExprKind::Power { base, .. } => has_partials(base),
-        ExprKind::Call {
-            function,
-            arguments,
-            ..
-        } => names::is_vector_operation(&function.text) || arguments.iter().any(has_partials),
-        ExprKind::Tuple(arguments) => arguments.iter().any(has_partials),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
-            false
-        }
-    }
+    expr.any(|expr| match &expr.kind {
+        ExprKind::Call { function, .. } => names::is_vector_operation(&function.text),
+        kind => matches!(kind, ExprKind::Derivative { .. }),
+    })
 }
 
 /// The process names written in an expression, and those that `D_t` gives.
@@ -131,22 +119,5 @@ pub(super) fn leading_minus(
 
 /// Whether an expression holds a `D_t`.
 pub(super) fn holds_material(expr: &ast::Expr) -> bool {
-    let any = |exprs: &[ast::Expr]| exprs.iter().any(holds_material);
-    match &expr.kind {
-        ExprKind::Call {
-            function,
-            arguments,
-            ..
-        } => function.text == "D_t" || any(arguments),
-        ExprKind::Sum(terms) => terms.iter().any(|(_, term)| holds_material(term)),
-        ExprKind::Product(factors) => factors.iter().any(|(_, factor)| holds_material(factor)),
-        ExprKind::Negate(inside) | ExprKind::Bracket(inside) => holds_material(inside),
-        ExprKind::As { expr, .. } | ExprKind::Sized { expr, .. } => holds_material(expr),
-        ExprKind::Power { base, .. } => holds_material(base),
-        ExprKind::Derivative { operand, .. } => holds_material(operand),
-        ExprKind::Tuple(parts) => any(parts),
-        ExprKind::Number(_) | ExprKind::Name(_) | ExprKind::Process { .. } | ExprKind::Error => {
-            false
-        }
-    }
+    expr.any(|expr| matches!(&expr.kind, ExprKind::Call { function, .. } if function.text == "D_t"))
 }
