@@ -6,7 +6,6 @@
 mod claims;
 pub mod equation;
 pub mod escape;
-mod given;
 pub mod math;
 mod rank;
 mod reduce;
@@ -16,8 +15,9 @@ mod show;
 mod table;
 mod unit;
 
-use crate::analysis::{Answer, Body};
+use crate::analysis::Answer;
 use crate::report::latex::escape::{breakable, text};
+use crate::report::sheets::View;
 use crate::report::{CAUTION, sheets, words};
 use crate::session::Outcome;
 
@@ -63,7 +63,11 @@ fn write_report(outcome: &Outcome, out: &mut String) {
         out.push_str("Nothing was answered.\n\n");
         return;
     }
-    given::given(outcome, out);
+    let given = sheets::given(outcome);
+    if !given.is_empty() {
+        out.push_str("\\subsection*{What was given}\n\n");
+    }
+    sheet::sheet(&given, out);
     if outcome.answers.iter().any(words::has_verdicts) {
         let legend = text(words::LEGEND);
         out.push_str(&format!(
@@ -87,21 +91,13 @@ fn write_answer(answer: &Answer, out: &mut String) {
         breakable(&heading.request),
         text(&heading.subject)
     ));
-    match &answer.body {
-        Body::Show(shown) => show::show(shown, out),
-        Body::Rank(equations) => equations
+    match sheets::view(&answer.body) {
+        View::Show(shown) => show::show(shown, out),
+        View::Rank(equations) => equations
             .iter()
             .for_each(|equation| rank::ranked(equation, out)),
-        Body::Reduce(reduction) => reduce::reduce(reduction, out),
-        Body::Groups(groups) => sheet::sheet(&sheets::groups(groups), out),
-        Body::Nondimensionalize(equations) => {
-            sheet::sheet(&sheets::nondimensional(equations), out);
-        }
-        Body::Find(balances) => sheet::sheet(&sheets::find(balances), out),
-        Body::Layers(layers) => sheet::sheet(&sheets::layers(layers), out),
-        Body::Bounds(bounds) => sheet::sheet(&sheets::bounds(bounds), out),
-        Body::Compare(comparison) => sheet::sheet(&sheets::compare(comparison), out),
-        Body::Expand(hierarchy) => sheet::sheet(&sheets::expand(hierarchy), out),
+        View::Reduce(reduction) => reduce::reduce(reduction, out),
+        View::Sheet(blocks) => sheet::sheet(&blocks, out),
     }
     for left in &answer.left_out {
         out.push_str(&format!(

@@ -1,6 +1,6 @@
 //! Sheets in LaTeX.
 
-use crate::report::latex::escape::text;
+use crate::report::latex::escape::{backticked, text};
 use crate::report::latex::math::{self, Style};
 use crate::report::latex::table::table;
 use crate::report::latex::{equation, equation_head};
@@ -15,6 +15,7 @@ pub(super) fn sheet(blocks: &[Block], out: &mut String) {
                 Some(math) => math,
                 None => format!("{}\n\n", text(equation)),
             },
+            Block::Caption(line) => format!("{}\\nopagebreak\n\n", words(line)),
             Block::Paragraph(line) => format!("{}\n\n", words(line)),
             Block::Table(head, rows) => {
                 let titles: Vec<String> = head.iter().map(|(title, _)| text(title)).collect();
@@ -39,6 +40,8 @@ fn words(line: &[Piece]) -> String {
         Piece::Strong(words) => format!("\\textbf{{{}}}", text(words)),
         Piece::Formula(formula) => format!("${}$", math::read(formula, Style::Inline).text),
         Piece::Numbers(numbers) => math::numbers(numbers),
+        Piece::Unit(unit) => format!("${}$", math::unit(unit).text),
+        Piece::Message(message) => backticked(message),
     });
     pieces.collect()
 }

@@ -4,15 +4,15 @@
 //! of its own.
 
 mod claims;
-mod given;
 mod rank;
 mod reduce;
 mod sheet;
 mod show;
 mod table;
 
-use crate::analysis::{Answer, Body};
+use crate::analysis::Answer;
 use crate::report::markdown::table::{code, text};
+use crate::report::sheets::View;
 use crate::report::{CAUTION, sheets, words};
 use crate::session::Outcome;
 
@@ -22,7 +22,11 @@ pub fn report(outcome: &Outcome) -> String {
     if outcome.answers.is_empty() && outcome.claims.is_empty() {
         return out + "Nothing was answered.\n";
     }
-    given::given(outcome, &mut out);
+    let given = sheets::given(outcome);
+    if !given.is_empty() {
+        out.push_str("## What was given\n\n");
+    }
+    sheet::sheet(&given, &mut out);
     if outcome.answers.iter().any(words::has_verdicts) {
         out.push_str(&format!(
             "## How to read the answers\n\n{}\n\n",
@@ -39,21 +43,13 @@ pub fn report(outcome: &Outcome) -> String {
 
 fn write_answer(answer: &Answer, out: &mut String) {
     out.push_str(&heading(answer));
-    match &answer.body {
-        Body::Show(shown) => show::show(shown, out),
-        Body::Rank(equations) => equations
+    match sheets::view(&answer.body) {
+        View::Show(shown) => show::show(shown, out),
+        View::Rank(equations) => equations
             .iter()
             .for_each(|equation| rank::ranked(equation, out)),
-        Body::Reduce(reduction) => reduce::reduce(reduction, out),
-        Body::Groups(groups) => sheet::sheet(&sheets::groups(groups), out),
-        Body::Nondimensionalize(equations) => {
-            sheet::sheet(&sheets::nondimensional(equations), out);
-        }
-        Body::Find(balances) => sheet::sheet(&sheets::find(balances), out),
-        Body::Layers(layers) => sheet::sheet(&sheets::layers(layers), out),
-        Body::Bounds(bounds) => sheet::sheet(&sheets::bounds(bounds), out),
-        Body::Compare(comparison) => sheet::sheet(&sheets::compare(comparison), out),
-        Body::Expand(hierarchy) => sheet::sheet(&sheets::expand(hierarchy), out),
+        View::Reduce(reduction) => reduce::reduce(reduction, out),
+        View::Sheet(blocks) => sheet::sheet(&blocks, out),
     }
     for left in &answer.left_out {
         out.push_str(&format!(

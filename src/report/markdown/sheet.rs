@@ -1,8 +1,9 @@
 //! Sheets in Markdown.
 
 use crate::report::latex::equation;
+use crate::report::layout;
 use crate::report::markdown::equation_head;
-use crate::report::markdown::table::{Align, code, table, text};
+use crate::report::markdown::table::{Align, backticked, code, table, text};
 use crate::report::sheets::{Block, Piece};
 
 /// Writes the parts of a sheet.
@@ -14,7 +15,7 @@ pub(super) fn sheet(blocks: &[Block], out: &mut String) {
                 Some(math) => format!("$$\n{math}\n$$\n\n"),
                 None => format!("{}\n\n", code(text)),
             },
-            Block::Paragraph(line) => format!("{}\n\n", words(line)),
+            Block::Caption(line) | Block::Paragraph(line) => format!("{}\n\n", words(line)),
             Block::Table(head, rows) => {
                 let titles: Vec<String> = head.iter().map(|(title, _)| text(title)).collect();
                 let columns: Vec<(&str, Align)> = titles
@@ -36,6 +37,8 @@ fn words(line: &[Piece]) -> String {
         Piece::Words(words) | Piece::Numbers(words) => text(words),
         Piece::Strong(words) => format!("**{}**", text(words)),
         Piece::Formula(formula) => code(formula),
+        Piece::Unit(unit) => text(&layout::unit(unit)),
+        Piece::Message(message) => backticked(message),
     });
     pieces.collect::<String>().trim().to_owned()
 }

@@ -6,7 +6,7 @@ use crate::report::sheets::{Block, Line, Piece, formula, head, labelled, numbers
 use crate::report::{standing, words};
 
 /// Where a reduced system stands.
-pub fn bounds(bounds: &Bounds) -> Vec<Block> {
+pub(super) fn bounds(bounds: &Bounds) -> Vec<Block> {
     let nearest = standing::nearest(bounds);
     let nearest = nearest.unwrap_or_else(|| "no scale alone ends it".to_owned());
     let mut blocks = vec![labelled(

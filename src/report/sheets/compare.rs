@@ -7,7 +7,7 @@ use crate::report::{standing, words};
 use crate::units::Range;
 
 /// Phenomena side by side.
-pub fn compare(comparison: &Comparison) -> Vec<Block> {
+pub(super) fn compare(comparison: &Comparison) -> Vec<Block> {
     let mut blocks = Vec::new();
     for (name, title) in comparison.phenomena.iter().zip(&comparison.titles) {
         if let Some(title) = title {

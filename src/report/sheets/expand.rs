@@ -6,7 +6,7 @@ use crate::report::sheets::{Block, labelled, words};
 use crate::report::words::capital;
 
 /// Each order with its equations, then what the leading order leaves open.
-pub fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
+pub(super) fn expand(hierarchy: &Hierarchy) -> Vec<Block> {
     let mut blocks = vec![labelled("Small", orders::small(hierarchy))];
     blocks.extend(orders::not_small(hierarchy).map(|text| labelled("Note", text)));
     for order in &hierarchy.orders {

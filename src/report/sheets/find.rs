@@ -7,7 +7,7 @@ use crate::report::text;
 use crate::report::{conditions, words};
 
 /// All balances.
-pub fn find(balances: &Balances) -> Vec<Block> {
+pub(super) fn find(balances: &Balances) -> Vec<Block> {
     if balances.candidates.is_empty() {
         let message = words::no_balance(balances);
         return vec![labelled(

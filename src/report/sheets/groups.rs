@@ -8,7 +8,7 @@ use crate::report::words;
 use crate::units::Range;
 
 /// The independent groups, then the named ones over them.
-pub fn groups(groups: &Groups) -> Vec<Block> {
+pub(super) fn groups(groups: &Groups) -> Vec<Block> {
     let mut blocks = vec![Block::Paragraph(words(format!(
         "{} independent groups of {}.",
         groups.independent.len(),

@@ -7,7 +7,7 @@ use crate::report::text;
 use crate::report::{conditions, words};
 
 /// All thin layers.
-pub fn layers(found: &Layers) -> Vec<Block> {
+pub(super) fn layers(found: &Layers) -> Vec<Block> {
     if found.layers.is_empty() {
         return vec![Block::Paragraph(words(
             "No thin layer: no highest derivative is dropped that a layer could bring back.",

@@ -1,21 +1,49 @@
 //! Answers as headings, paragraphs and tables, which Markdown and LaTeX set each in its
-//! way: one file a request. `rank`, `reduce` and `show` have views of their own there.
+//! way: one file a request, and one for what was given. `rank`, `reduce` and `show` have views of their own there.
 
 mod bounds;
 mod compare;
 mod expand;
 mod find;
+mod given;
 mod groups;
 mod layers;
 mod nondimensional;
 
-pub use bounds::bounds;
-pub use compare::compare;
-pub use expand::expand;
-pub use find::find;
-pub use groups::groups;
-pub use layers::layers;
-pub use nondimensional::nondimensional;
+pub use given::given;
+
+use crate::analysis::Body;
+use crate::analysis::rank::RankedEquation;
+use crate::analysis::reduce::Reduction;
+use crate::analysis::show::Shown;
+
+/// How an answer is shown: by a view of its own, or as a sheet.
+pub enum View<'a> {
+    /// `show`.
+    Show(&'a Shown),
+    /// `rank`.
+    Rank(&'a [RankedEquation]),
+    /// `reduce`.
+    Reduce(&'a Reduction),
+    /// Any other request.
+    Sheet(Vec<Block>),
+}
+
+/// The view of an answer.
+pub fn view(body: &Body) -> View<'_> {
+    View::Sheet(match body {
+        Body::Show(shown) => return View::Show(shown),
+        Body::Rank(equations) => return View::Rank(equations),
+        Body::Reduce(reduction) => return View::Reduce(reduction),
+        Body::Groups(found) => groups::groups(found),
+        Body::Nondimensionalize(equations) => nondimensional::nondimensional(equations),
+        Body::Find(balances) => find::find(balances),
+        Body::Layers(found) => layers::layers(found),
+        Body::Bounds(found) => bounds::bounds(found),
+        Body::Compare(comparison) => compare::compare(comparison),
+        Body::Expand(hierarchy) => expand::expand(hierarchy),
+    })
+}
 
 /// A part of a page.
 #[derive(Debug, Clone, PartialEq)]
@@ -24,6 +52,8 @@ pub enum Block {
     Heading(String, Option<String>),
     /// An equation in the language, `left = right`.
     Equation(String),
+    /// What stands above a table.
+    Caption(Line),
     /// A paragraph.
     Paragraph(Line),
     /// A table: titles of its columns with their widths, as parts of the whole, and rows.
@@ -44,6 +74,10 @@ pub enum Piece {
     Formula(String),
     /// A number, a range or a quantity, as the reports print them.
     Numbers(String),
+    /// A unit in the language.
+    Unit(String),
+    /// A message of the program, which sets names in backticks.
+    Message(String),
 }
 
 /// Words alone.

@@ -6,7 +6,7 @@ use crate::report::layout::range;
 use crate::report::sheets::{Block, Line, Piece, formula, head, numbers, words};
 
 /// Each equation with its coefficients, and what its variables are measured by.
-pub fn nondimensional(equations: &[DimensionlessEquation]) -> Vec<Block> {
+pub(super) fn nondimensional(equations: &[DimensionlessEquation]) -> Vec<Block> {
     let mut blocks = Vec::new();
     for equation in equations {
         blocks.push(Block::Heading(
